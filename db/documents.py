@@ -1,0 +1,228 @@
+"""What a bridge file and a visit file say, in SI (m, kN, rad, degC), checked once when made.
+
+The exchange modules turn text into these; everything past them is plain floats. Checks that
+need only the values themselves live here; checks that need the text (units, spelling of field
+names) live with the file format.
+"""
+
+from __future__ import annotations
+
+import datetime as dt
+from dataclasses import dataclass, field
+
+PERMANENT = "permanent"
+"""The id of the load state measured from the as-built datum under permanent load."""
+
+QUANTITIES = ("compression", "deflection", "settlement", "rotation", "strain")
+
+
+@dataclass(frozen=True, kw_only=True)
+class SectionDoc:
+    """A girder cross-section: stiffness and factored resistance as new."""
+
+    id: str
+    youngs_modulus: float  # kN/m2
+    second_moment: float  # m4
+    shear_area: float | None = None  # m2; None leaves shear flexibility out
+    shear_modulus: float | None = None  # kN/m2; None means E / 2.6
+    sagging_capacity: float | None = None  # kN m; None: not given, utilisation not determined
+    hogging_capacity: float | None = None  # kN m
+    shear_capacity: float | None = None  # kN
+
+
+@dataclass(frozen=True, kw_only=True)
+class PieceDoc:
+    """A part of a span with its own section; start and end from the span's left end."""
+
+    start: float  # m
+    end: float  # m
+    section: str
+
+
+@dataclass(frozen=True, kw_only=True)
+class SpanDoc:
+    """A span: its length, its section, and the pieces that override it (sorted, no overlap)."""
+
+    length: float  # m
+    section: str
+    pieces: tuple[PieceDoc, ...] = ()
+
+
+@dataclass(frozen=True, kw_only=True)
+class SupportDoc:
+    """A support of a girder line: a pad (yields) or a pin (holds its level)."""
+
+    id: str
+    kind: str  # "pad" | "pin"
+    stiffness: float | None = None  # kN/m, nominal; None for a pin
+    stiffness_cv: float | None = None  # coefficient of variation of the nominal stiffness
+    rotation: float = 0.0  # kN m/rad; 0 free, inf fixed
+    temperature_coefficient: float | None = None  # 1/K, growth of ln k per kelvin colder than 20 degC
+
+
+@dataclass(frozen=True, kw_only=True)
+class PermanentDoc:
+    """A permanent load: uniform over [start, end], or a point load at `at`; x from the girder's left end."""
+
+    name: str
+    uniform: float | None = None  # kN/m, downward
+    start: float = 0.0  # m
+    end: float = 0.0  # m
+    point: float | None = None  # kN, downward
+    at: float | None = None  # m
+
+
+@dataclass(frozen=True, kw_only=True)
+class GirderDoc:
+    """One girder line: n spans on n + 1 supports."""
+
+    id: str
+    live_share: float
+    spans: tuple[SpanDoc, ...]
+    supports: tuple[SupportDoc, ...]
+    permanent: tuple[PermanentDoc, ...] = ()
+
+    @property
+    def length(self) -> float:
+        """Total length, m."""
+        return sum(span.length for span in self.spans)
+
+    @property
+    def support_positions(self) -> tuple[float, ...]:
+        """x of every support from the left end, m."""
+        x = [0.0]
+        for span in self.spans:
+            x.append(x[-1] + span.length)
+        return tuple(x)
+
+    def support_index(self, support_id: str) -> int:
+        """Index of a support by id; KeyError if there is none."""
+        for i, support in enumerate(self.supports):
+            if support.id == support_id:
+                return i
+        raise KeyError(support_id)
+
+
+@dataclass(frozen=True, kw_only=True)
+class VehicleDoc:
+    """A vehicle: axles as (distance behind the leading axle in m, load in kN)."""
+
+    id: str
+    axles: tuple[tuple[float, float], ...]
+
+
+@dataclass(frozen=True, kw_only=True)
+class LiveDoc:
+    """A live load the bridge is assessed for: `count` vehicles coupled at `pitch`."""
+
+    id: str
+    vehicle: str
+    count: int = 1
+    pitch: float = 0.0  # m, leading axle to leading axle; 0 only if count is 1
+    dynamic: float = 0.0  # dynamic allowance, added to 1
+
+
+@dataclass(frozen=True, kw_only=True)
+class FactorsDoc:
+    """The owner's partial factors."""
+
+    name: str
+    permanent: float
+    live: float
+    resistance: float = 1.0
+    permanent_relieving: float | None = None  # on a permanent effect that relieves; None: min(1, permanent)
+
+
+@dataclass(frozen=True, kw_only=True)
+class BridgeDoc:
+    """A bridge file."""
+
+    id: str
+    name: str
+    carries: str = ""
+    built: dt.date | None = None
+    zero: str = ""  # what stands at x = 0
+    visit_interval_years: float | None = None  # the owner's own interval between visits
+    sections: tuple[SectionDoc, ...]
+    girders: tuple[GirderDoc, ...]
+    vehicles: tuple[VehicleDoc, ...] = ()
+    live: tuple[LiveDoc, ...] = ()
+    factors: FactorsDoc
+    text: str = field(repr=False)  # the file as read
+    digest: str  # sha256 of the text
+
+    def girder(self, girder_id: str) -> GirderDoc:
+        """Return a girder by id; KeyError if there is none."""
+        for girder in self.girders:
+            if girder.id == girder_id:
+                return girder
+        raise KeyError(girder_id)
+
+    def section(self, section_id: str) -> SectionDoc:
+        """Return a section by id; KeyError if there is none."""
+        for section in self.sections:
+            if section.id == section_id:
+                return section
+        raise KeyError(section_id)
+
+    def vehicle(self, vehicle_id: str) -> VehicleDoc:
+        """Return a vehicle by id; KeyError if there is none."""
+        for vehicle in self.vehicles:
+            if vehicle.id == vehicle_id:
+                return vehicle
+        raise KeyError(vehicle_id)
+
+
+@dataclass(frozen=True, kw_only=True)
+class LoadStateDoc:
+    """A load state of a visit: the permanent one (no vehicle), or a placed test vehicle."""
+
+    id: str
+    vehicle: str | None = None
+    leading_axle_at: float | None = None  # m
+    towards: str = "larger x"  # the way the vehicle faces: "larger x" | "smaller x"
+
+
+@dataclass(frozen=True, kw_only=True)
+class ReadingDoc:
+    """One reading: the SI value beside the value as entered."""
+
+    girder: str
+    state: str
+    quantity: str  # one of QUANTITIES
+    support: str | None = None
+    at: float | None = None  # m from the girder's left end
+    height: float | None = None  # m above the section's neutral axis; strain only
+    value: float  # m, rad, or strain
+    sd: float  # same unit as value
+    value_entered: str  # as written, e.g. "1.42 mm"
+    sd_entered: str
+    unit: str  # as written, e.g. "mm": results are shown in it
+    instrument: str = ""
+    remark: str = ""
+    source: str = ""  # where it stands: "visit.toml, reading 2" or "visit.csv, row 7"
+    row: int | None = None  # the record's own number, once kept
+
+
+@dataclass(frozen=True, kw_only=True)
+class VisitDoc:
+    """A visit file with its table of readings."""
+
+    bridge: str
+    date: dt.date
+    party: str = ""
+    pad_temperature: float | None = None  # degC
+    datum: str = ""
+    remark: str = ""
+    states: tuple[LoadStateDoc, ...]
+    readings: tuple[ReadingDoc, ...]
+    text: str = field(repr=False)  # the TOML as read
+    table_text: str = field(default="", repr=False)  # the readings table as read, if there is one
+    digest: str  # sha256 over both
+
+    def state(self, state_id: str) -> LoadStateDoc:
+        """Return a load state by id; KeyError if there is none."""
+        for state in self.states:
+            if state.id == state_id:
+                return state
+        raise KeyError(state_id)
