@@ -1,0 +1,21 @@
+"""`bedstone init`."""
+
+from __future__ import annotations
+
+import click
+
+
+@click.command("init")
+@click.pass_obj
+def command(record: str) -> None:
+    """Make an empty record, or bring an older one up to date.
+
+    \b
+    Example:
+      bedstone init
+      bedstone --record north-line.sqlite init
+    """
+    from assess import workflow
+
+    made = workflow.init_record(record)
+    click.echo(f"Record {record}: {'made' if made else 'is there already and up to date'}.")

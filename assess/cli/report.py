@@ -1,0 +1,40 @@
+"""`bedstone report`."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import click
+
+from assess.cli.params import bridge_argument
+from assess.cli.progress import progress_on_stderr
+from db.errors import BedstoneError
+
+
+@click.command("report")
+@bridge_argument
+@click.option(
+    "-o", "--output", metavar="FILE.html", required=True, type=click.Path(path_type=Path), help="The page to write."
+)
+@click.pass_obj
+def command(record: str, bridge: str, output: Path) -> None:
+    """Write the report: one HTML file that needs no network and can be printed.
+
+    \b
+    Example:
+      bedstone report quillmere -o quillmere.html
+    """
+    if not output.parent.is_dir():
+        raise BedstoneError("this folder does not exist", file=str(output.parent), remedy="make it, or give -o another place")
+    from assess import workflow
+    from assess.report import write_report
+
+    with progress_on_stderr() as progress:
+        view = workflow.report_view(record, bridge, progress=progress)
+    try:
+        write_report(view, output)
+    except OSError as error:
+        raise BedstoneError(
+            f"cannot be written: {error.strerror or error}", file=str(output), remedy="give -o another place"
+        ) from error
+    click.echo(f"Wrote the report {output}.")

@@ -1,0 +1,62 @@
+"""`bedstone visit log | list`."""
+
+from __future__ import annotations
+
+from pathlib import Path
+
+import click
+
+from assess.cli.json_out import print_json
+from assess.cli.params import bridge_argument, file_argument, json_option
+
+
+@click.group("visit", no_args_is_help=False)
+def command() -> None:
+    """Visits: log what a visit measured, list the visits of a bridge.
+
+    \b
+    Example:
+      bedstone visit log visit-2024.toml
+      bedstone visit list quillmere
+    """
+
+
+@command.command("log")
+@file_argument
+@click.pass_obj
+def log(record: str, file: Path) -> None:
+    """Take a visit file into the record: the whole of it, or nothing.
+
+    The same file again changes nothing; another file for the same day is refused.
+
+    \b
+    Example:
+      bedstone visit log visit-2024.toml
+    """
+    from assess import workflow
+    from assess.cli.tables.records import show_visit_taken
+
+    document, taken = workflow.log_visit(record, file)
+    show_visit_taken(document, taken)
+
+
+@command.command("list")
+@bridge_argument
+@json_option
+@click.pass_obj
+def list_(record: str, bridge: str, as_json: bool) -> None:
+    """List the visits of a bridge by date.
+
+    \b
+    Example:
+      bedstone visit list quillmere
+      bedstone visit list quillmere --json
+    """
+    from assess import workflow
+    from assess.cli.tables.records import show_visits
+
+    visits = workflow.list_visits(record, bridge)
+    if as_json:
+        print_json({"bridge": bridge, "visits": visits})
+    else:
+        show_visits(bridge, visits)

@@ -1,0 +1,222 @@
+"""The condensed girder: everything but the support levels eliminated, once.
+
+    support forces   R(d) = P - K d              any response   y(d) = y0 + Y d
+
+Slope-deflection on whole spans: the spans' flexibilities are exact (`span.py`), the unknowns are
+the n support rotations, and what is left are the n support levels d. Pads then cost one n x n
+solve per stiffness set, batched over any leading dimensions:
+
+    d = s + F R,   (I + K F) R = P - K s,   F = diag(f).
+
+Source of the method: stiffness method with static condensation (any text on matrix structural
+analysis); unit-load theorem for the span flexibilities; Maxwell-Betti for the load terms.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from assess.girder.model import Girder
+from assess.girder.span import SimpleSpan
+
+Floats = NDArray[np.float64]
+
+
+@dataclass(frozen=True)
+class SupportState:
+    """What the supports do: reaction (..., n) kN upward on the girder, displacement (..., n) m downward."""
+
+    reaction: Floats
+    displacement: Floats
+
+
+@dataclass(frozen=True)
+class SupportDerivatives:
+    """Exact derivatives of a support state.
+
+    Attributes
+    ----------
+    reaction_by_log_stiffness, displacement_by_log_stiffness : (..., n, n)
+        row: support whose reaction / level changes; column: ln k of which pad. Zero for f = 0.
+    reaction_by_settlement, displacement_by_settlement : (..., n, n)
+        column: seat that drops.
+    """
+
+    reaction_by_log_stiffness: Floats
+    displacement_by_log_stiffness: Floats
+    reaction_by_settlement: Floats
+    displacement_by_settlement: Floats
+
+
+class Condensed:
+    """A girder in its condensed form.
+
+    Attributes
+    ----------
+    girder : Girder
+    spans : list of SimpleSpan
+    K : (n, n) condensed stiffness, kN/m, symmetric positive semidefinite
+    moments_by_load : (spans, 2, spans, 2) span-end moments per end rotation a load gives the simple span
+    moments_by_drop : (spans, 2, n) span-end moments per unit support drop, kN
+    rotations_by_drop : (n, n) support rotations per unit support drop
+    """
+
+    def __init__(self, girder: Girder) -> None:
+        self.girder = girder
+        self.spans = [SimpleSpan(pieces) for pieces in girder.spans]
+        self.positions = girder.support_positions
+        n, m = girder.n_supports, len(self.spans)
+        lengths = np.array([span.length for span in self.spans])
+        k = np.array([span.stiffness for span in self.spans])  # (m, 2, 2)
+        s = np.arange(m)
+        by_rotation = np.zeros((m, 2, n))  # end rotations from the chord, (left, minus right)
+        by_rotation[s, 0, s] = 1.0
+        by_rotation[s, 1, s + 1] = -1.0
+        by_drop = np.zeros((m, 2, n))
+        by_drop[s, 0, s], by_drop[s, 0, s + 1] = 1.0 / lengths, -1.0 / lengths
+        by_drop[s, 1, s], by_drop[s, 1, s + 1] = -1.0 / lengths, 1.0 / lengths
+
+        free = np.isfinite(girder.rotation)
+        joint = np.einsum("sia,sij,sjb->ab", by_rotation, k, by_rotation)
+        joint[np.diag_indices(n)] += np.where(free, girder.rotation, 0.0)
+        drop = np.einsum("sia,sij,sjb->ab", by_rotation, k, by_drop)
+        load = np.einsum("sia,sij->asj", by_rotation, k).reshape(n, 2 * m)
+        solved = np.zeros((n, n + 2 * m))
+        if free.any():
+            right = np.concatenate([-drop, load], axis=1)[free]
+            solved[free] = np.linalg.solve(joint[np.ix_(free, free)], right)
+        self.rotations_by_drop: Floats = solved[:, :n]
+        rotations_by_load = solved[:, n:].reshape(n, m, 2)
+
+        self.moments_by_drop: Floats = np.einsum(
+            "sij,sjb->sib", k, by_rotation @ self.rotations_by_drop + by_drop
+        )
+        moments = np.einsum("sij,sja,atb->sitb", k, by_rotation, rotations_by_load)
+        moments[s, :, s, :] -= k
+        self.moments_by_load: Floats = moments
+        self._by_drop = by_drop
+        stiffness = np.einsum("sia,sib->ab", by_drop, self.moments_by_drop)
+        self.K: Floats = (stiffness + stiffness.T) / 2.0
+        self._scale = float(np.trace(self.K) / n)
+
+    @property
+    def n_supports(self) -> int:
+        """Number of supports."""
+        return self.girder.n_supports
+
+    # places ---------------------------------------------------------------------------------
+
+    def locate(self, x: Floats, side: NDArray[np.intp] | int = 1) -> tuple[NDArray[np.intp], Floats]:
+        """Span index and distance from the span's left end; `side` -1 / +1 picks the face at a support."""
+        faces = np.broadcast_to(np.asarray(side), np.shape(x))
+        right = np.searchsorted(self.positions, x, side="right") - 1
+        left = np.searchsorted(self.positions, x, side="left") - 1
+        span = np.clip(np.where(faces > 0, right, left), 0, len(self.spans) - 1)
+        return span, x - self.positions[span]
+
+    # unit loads, supports held level ----------------------------------------------------------
+
+    def unit_end_moments(self, a: Floats) -> Floats:
+        """Span-end moments (..., spans, 2) of a unit load at a (...), supports held level; 0 off the girder."""
+        a = np.asarray(a, dtype=np.float64)
+        span, local = self.locate(a)
+        on = (a >= 0.0) & (a <= self.positions[-1])
+        local = np.where(on, local, 0.0)
+        moments = np.zeros((*a.shape, len(self.spans), 2))
+        for j, one in enumerate(self.spans):
+            here = on & (span == j)
+            if here.any():
+                rotation = one.end_deflection(local[here])
+                moments[here] = np.einsum("sib,pb->psi", self.moments_by_load[:, :, j, :], rotation)
+        return moments
+
+    def unit_forces(self, a: Floats) -> Floats:
+        """Support forces (..., n) under a unit load at a (...), supports held level; 0 off the girder.
+
+        By Mueller-Breslau the influence lines of the reactions of the girder on unyielding supports.
+        """
+        a = np.asarray(a, dtype=np.float64)
+        return self.forces_from(self.unit_end_moments(a), self.unit_simple_forces(a))
+
+    def unit_simple_forces(self, a: Floats) -> Floats:
+        """Lever-rule support forces (..., n) of a unit load at a (...), as if every span were simple."""
+        a = np.asarray(a, dtype=np.float64)
+        span, local = self.locate(a)
+        on = (a >= 0.0) & (a <= self.positions[-1])
+        lengths = np.diff(self.positions)[span]
+        share = np.where(on, local / lengths, 0.0)
+        forces = np.zeros((*a.shape, self.n_supports))
+        np.put_along_axis(forces, span[..., None], (on - share)[..., None], axis=-1)
+        np.put_along_axis(forces, span[..., None] + 1, share[..., None], axis=-1)
+        return forces
+
+    def forces_from(self, end_moments: Floats, simple: Floats) -> Floats:
+        """Support forces (..., n) from span-end moments (..., spans, 2) and lever-rule forces (..., n)."""
+        flat = end_moments.reshape(*end_moments.shape[:-2], -1)
+        by_drop: Floats = self._by_drop.reshape(-1, self.n_supports)
+        return np.asarray(simple - flat @ by_drop)
+
+    # yielding supports -----------------------------------------------------------------------
+
+    def _system(self, compliance: Floats) -> tuple[Floats, Floats, Floats]:
+        """Return the scaled system and the factors that turn its unknown z into R and F R.
+
+        R = w z and F R = (f w) z with w = 1 / (1 + c f), so neither f = 0 (unyielding) nor f = inf
+        (no support) is a special case; c is the mean diagonal of K.
+        """
+        finite = np.isfinite(compliance)
+        held = np.where(finite, compliance, 0.0)
+        w = np.where(finite, 1.0 / (1.0 + self._scale * held), 0.0)
+        fw = np.where(finite, held * w, 1.0 / self._scale)
+        system = self.K * fw[..., None, :]
+        diagonal = np.arange(self.n_supports)
+        system[..., diagonal, diagonal] += w
+        return system, w, fw
+
+    def solve(self, compliance: Floats, forces: Floats, settlement: Floats | None = None) -> SupportState:
+        """Solve for the supports.
+
+        Parameters
+        ----------
+        compliance : (..., n) m/kN; 0 unyielding, inf no support
+        forces : (..., n) support forces with all supports held level, kN (`forces_of`, `unit_forces`)
+        settlement : (..., n) seat drops, m, optional
+
+        Returns
+        -------
+        SupportState with (..., n) arrays, the leading dimensions broadcast
+        """
+        system, w, fw = self._system(np.asarray(compliance, dtype=np.float64))
+        right = np.asarray(forces, dtype=np.float64)
+        drop = 0.0 if settlement is None else np.asarray(settlement, dtype=np.float64)
+        if settlement is not None:
+            right = right - drop @ self.K
+        z = np.linalg.solve(system, right[..., None])[..., 0]
+        return SupportState(reaction=w * z, displacement=drop + fw * z)
+
+    def displacement_operator(self, compliance: Floats) -> Floats:
+        """Matrix (..., n, n) that turns held support forces into support displacements, m/kN."""
+        system, _, fw = self._system(np.asarray(compliance, dtype=np.float64))
+        return np.asarray(fw[..., :, None] * np.linalg.inv(system))
+
+    def derivatives(self, compliance: Floats, state: SupportState) -> SupportDerivatives:
+        """Exact derivatives of a support state (METHODS: dR/df_i = -(I + K F)^-1 K e_i R_i)."""
+        f = np.asarray(compliance, dtype=np.float64)
+        system, w, fw = self._system(f)
+        solved = np.linalg.solve(system, np.broadcast_to(self.K, system.shape))
+        by_settlement = -w[..., :, None] * solved
+        f_by_settlement = -fw[..., :, None] * solved
+        n = np.arange(self.n_supports)
+        compression = np.where(np.isfinite(f), f, 0.0) * state.reaction
+        moved = f_by_settlement.copy()
+        moved[..., n, n] += 1.0
+        # ln k up by one takes f R off the pad's shortening, as a seat rising by f R would
+        return SupportDerivatives(
+            reaction_by_log_stiffness=-by_settlement * compression[..., None, :],
+            displacement_by_log_stiffness=-moved * compression[..., None, :],
+            reaction_by_settlement=by_settlement,
+            displacement_by_settlement=moved,
+        )

@@ -1,0 +1,185 @@
+"""What a train does as it passes: influence lines on yielding supports and live envelopes.
+
+An influence line on yielding supports is IL(a) = IL0(a) + Y d(a), and d(a) follows from the support
+forces of the held girder, so no position of a train needs a solve of its own. A train is evaluated on
+a grid no coarser than a two-hundredth of the shortest span, and at every place with every axle on it.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from assess.girder.condensed import Condensed
+from assess.girder.response import Places
+from assess.loads import Train
+
+Floats = NDArray[np.float64]
+
+GRID_PER_SPAN = 200
+_FACE = 1e-7  # m; how far past a place an axle stands to be on its other face
+
+
+@dataclass(frozen=True, kw_only=True)
+class Envelope:
+    """Extremes of a response at p places; 0 is among the positions (no train), so maximum >= 0 >= minimum.
+
+    Attributes
+    ----------
+    maximum, minimum : (..., p)
+    leading_at_maximum, leading_at_minimum : (..., p) leading axle, m; NaN where the empty girder governs.
+        For the reversed running direction the position is that of the axle with the largest x as well.
+    """
+
+    maximum: Floats
+    minimum: Floats
+    leading_at_maximum: Floats
+    leading_at_minimum: Floats
+
+
+def influence_line(place: Places, a: Floats, compliance: Floats) -> Floats:
+    """Influence lines (..., p, m) for unit loads at a (m,) on supports of compliance (..., n)."""
+    operator = place.condensed.displacement_operator(compliance)
+    forces = place.condensed.unit_forces(a)
+    return np.asarray(place.unit(a) + place.rows @ operator @ forces.T)
+
+
+def train_forces(condensed: Condensed, train: Train, leading: Floats) -> Floats:
+    """Support forces (..., n) with all supports held level for leading axles at `leading` (...)."""
+    return condensed.forces_from(*_train_state(condensed, train, np.asarray(leading, dtype=np.float64)))
+
+
+def _train_state(condensed: Condensed, train: Train, leading: Floats) -> tuple[Floats, Floats]:
+    """Span-end moments (..., spans, 2) and lever-rule forces (..., n) of the whole train."""
+    ends = np.zeros((*leading.shape, len(condensed.spans), 2))
+    simple = np.zeros((*leading.shape, condensed.n_supports))
+    for offset, load in zip(train.offsets, train.loads, strict=True):
+        ends += load * condensed.unit_end_moments(leading - offset)
+        simple += load * condensed.unit_simple_forces(leading - offset)
+    return ends, simple
+
+
+@dataclass(frozen=True, kw_only=True)
+class Passage:
+    """A train passing p places, before the supports are known.
+
+    Attributes
+    ----------
+    place : Places
+    leading : (p, m) leading-axle positions examined at each place
+    held : (p, m) response with all supports held level
+    forces : (p, m, n) support forces with all supports held level; (1, m, n) where all places share them
+    """
+
+    place: Places
+    leading: Floats
+    held: Floats
+    forces: Floats
+
+    def responses(self, compliance: Floats) -> Floats:
+        """Response (..., p, m) on supports of compliance (..., n)."""
+        operator = self.place.condensed.displacement_operator(compliance)
+        weights = self.place.rows @ operator  # (..., p, n)
+        if self.forces.shape[0] == 1:
+            return np.asarray(self.held + weights @ self.forces[0].T)
+        return np.asarray(self.held + (self.forces @ weights[..., :, :, None])[..., 0])
+
+    def governing(self, compliances: Floats) -> Passage:
+        """Keep, at each place, the positions that govern for one of the compliances (s, n), and their neighbours."""
+        m = self.held.shape[1]
+        count = self.place.x.size
+        chosen = np.zeros((count, m), dtype=bool)
+        index = np.arange(count)
+        for compliance in compliances:
+            y = self.responses(compliance)
+            for best in (y.argmax(axis=1), y.argmin(axis=1)):
+                for beside in (-1, 0, 1):
+                    chosen[index, np.clip(best + beside, 0, m - 1)] = True
+        width = int(chosen.sum(axis=1).max())
+        keep = np.argsort(~chosen, axis=1, kind="stable")[:, :width]
+        forces = np.broadcast_to(self.forces, (count, *self.forces.shape[1:]))
+        return Passage(
+            place=self.place,
+            leading=np.take_along_axis(self.leading, keep, axis=1),
+            held=np.take_along_axis(self.held, keep, axis=1),
+            forces=np.take_along_axis(forces, keep[:, :, None], axis=1),
+        )
+
+
+def grid_step(condensed: Condensed) -> float:
+    """Spacing of the leading-axle grid, m."""
+    return float(np.diff(condensed.positions).min() / GRID_PER_SPAN)
+
+
+def passages(place: Places, train: Train, *, both_ways: bool = True) -> list[Passage]:
+    """Let a train pass: one `Passage` on the common grid and one with its axles on each place, each way."""
+    ways = [train]
+    if both_ways and not train.is_symmetric():
+        ways.append(train.reversed())
+    result = []
+    for way in ways:
+        result.append(_on_grid(place, way))
+        result.append(_on_places(place, way))
+    return result
+
+
+def _on_grid(place: Places, train: Train) -> Passage:
+    condensed = place.condensed
+    end = condensed.positions[-1] + train.length
+    leading = np.linspace(0.0, end, max(2, int(np.ceil(end / grid_step(condensed))) + 1))
+    ends, simple = _train_state(condensed, train, leading)
+    held = np.empty((place.x.size, leading.size))
+    for j, one in enumerate(condensed.spans):
+        here = np.flatnonzero(place.span == j)
+        if not here.size:
+            continue
+        block = place.carry[here] @ ends[:, j, :].T
+        start = condensed.positions[j]
+        x, side = place.local[here, None], place.side[here, None]
+        for offset, load in zip(train.offsets, train.loads, strict=True):
+            # the leading grid ascends, so an axle is inside a span over one run of positions
+            first, last = np.searchsorted(leading, [start + offset, start + one.length + offset])
+            if first < last:
+                a = np.clip(leading[None, first:last] - offset - start, 0.0, one.length)
+                block[:, first:last] += load * one.load_response(place.quantity, x, a, side)
+        held[here] = block
+    shared = np.broadcast_to(leading, held.shape)
+    return Passage(place=place, leading=shared, held=held, forces=condensed.forces_from(ends, simple)[None])
+
+
+def _on_places(place: Places, train: Train) -> Passage:
+    condensed = place.condensed
+    leading = place.x[:, None] + train.offsets
+    if place.quantity == "shear":
+        leading = np.concatenate([leading - _FACE, leading + _FACE], axis=1)
+    ends, simple = _train_state(condensed, train, leading)
+    own = ends[np.arange(place.x.size), :, place.span, :]
+    held = (own * place.carry[:, None, :]).sum(axis=-1)
+    for offset, load in zip(train.offsets, train.loads, strict=True):
+        held += load * place.local_unit(leading - offset)
+    return Passage(place=place, leading=leading, held=held, forces=condensed.forces_from(ends, simple))
+
+
+def envelope(parts: list[Passage], compliance: Floats) -> Envelope:
+    """Live envelope over passages at the same places on supports of compliance (..., n)."""
+    maximum = minimum = at_maximum = at_minimum = None
+    for part in parts:
+        y = part.responses(compliance)
+        high, low = y.argmax(axis=-1), y.argmin(axis=-1)
+        top = np.take_along_axis(y, high[..., None], axis=-1)[..., 0]
+        bottom = np.take_along_axis(y, low[..., None], axis=-1)[..., 0]
+        index = np.arange(part.place.x.size)
+        at_top, at_bottom = part.leading[index, high], part.leading[index, low]
+        if maximum is None or minimum is None or at_maximum is None or at_minimum is None:
+            zero, nowhere = np.zeros(top.shape), np.full(top.shape, np.nan)
+            maximum, minimum, at_maximum, at_minimum = zero, zero, nowhere, nowhere
+        at_maximum = np.where(top > maximum, at_top, at_maximum)
+        at_minimum = np.where(bottom < minimum, at_bottom, at_minimum)
+        maximum, minimum = np.maximum(maximum, top), np.minimum(minimum, bottom)
+    if maximum is None or minimum is None or at_maximum is None or at_minimum is None:
+        raise ValueError("an envelope needs at least one passage")
+    return Envelope(
+        maximum=maximum, minimum=minimum, leading_at_maximum=at_maximum, leading_at_minimum=at_minimum
+    )

@@ -1,0 +1,146 @@
+"""Responses at any place on the girder: deflection, slope, moment, shear.
+
+Downward deflection and sagging moment are positive; slope is the rotation of the cross-section, positive
+where the girder goes down towards larger x; shear is dM/dx, so it is positive just right of a loaded support.
+All values are exact for prismatic pieces: nothing is interpolated.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from assess.girder.condensed import Condensed
+from assess.loads import LoadCase
+
+Floats = NDArray[np.float64]
+
+RESPONSES = ("deflection", "slope", "moment", "shear")
+_GAUSS = np.polynomial.legendre.leggauss(2)  # exact for the cubics that influence lines are made of
+
+
+@dataclass(frozen=True, kw_only=True)
+class Places:
+    """One kind of response at several places of a condensed girder.
+
+    Attributes
+    ----------
+    quantity : one of RESPONSES
+    x : (p,) m from the girder's left end
+    side : (p,) -1 or +1, the face meant where x stands on a support or under a load
+    span, local : (p,) the span and the distance from its left end
+    carry : (p, 2) response per unit moment at the span's own two ends
+    rows : (p, n) response per unit support drop: Y of y = y0 + Y d
+    """
+
+    condensed: Condensed
+    quantity: str
+    x: Floats
+    side: NDArray[np.intp]
+    span: NDArray[np.intp]
+    local: Floats
+    carry: Floats
+    rows: Floats
+
+    def unit(self, a: Floats) -> Floats:
+        """Response (p, m) to a unit load at each a (m,), supports held level: influence lines at d = 0."""
+        a = np.asarray(a, dtype=np.float64)
+        return self.unit_paired(np.broadcast_to(a, (self.x.size, a.size)))
+
+    def unit_paired(self, a: Floats) -> Floats:
+        """Response (p, m) where place p has its own load positions a[p]; 0 for loads off the girder."""
+        ends = self.condensed.unit_end_moments(a)
+        own = ends[np.arange(self.x.size), :, self.span, :]
+        return np.asarray((own * self.carry[:, None, :]).sum(axis=-1) + self.local_unit(a))
+
+    def local_unit(self, a: Floats) -> Floats:
+        """The part of `unit_paired` a simple span carries, (p, m); 0 for loads in other spans."""
+        result = np.zeros(a.shape)
+        for j, one in enumerate(self.condensed.spans):
+            here = self.span == j
+            places = a[here] - self.condensed.positions[j]
+            within = (places >= 0.0) & (places <= one.length)
+            if within.any():
+                x, side = self.local[here, None], self.side[here, None]
+                values = one.load_response(self.quantity, x, np.where(within, places, 0.0), side)
+                result[here] = np.where(within, values, 0.0)
+        return result
+
+    def held(self, loads: LoadCase) -> Floats:
+        """Response (p,) to a load case, supports held level: y0."""
+        result = np.zeros(self.x.size)
+        if loads.points:
+            at, weight = np.array(loads.points, dtype=np.float64).T
+            result += self.unit(at) @ weight
+        breaks = self.condensed.girder.breakpoints
+        own = np.column_stack([np.broadcast_to(breaks, (self.x.size, breaks.size)), self.x])
+        for start, end, intensity in loads.uniforms:
+            # influence lines are cubic between the ends of pieces and the place itself
+            nodes, weights = _gauss(own, start, end)
+            result += intensity * (self.unit_paired(nodes) * weights).sum(axis=1)
+        return result
+
+
+def _gauss(breaks: Floats, start: float, end: float) -> tuple[Floats, Floats]:
+    """Two-point Gauss nodes and weights on [start, end] split at breaks (p, b): both (p, 2 b + 2)."""
+    edges = np.sort(np.clip(breaks, start, end), axis=-1)
+    ends = np.full((*edges.shape[:-1], 1), end)
+    edges = np.concatenate([np.full_like(ends, start), edges, ends], axis=-1)
+    half, middle = np.diff(edges) / 2.0, (edges[..., 1:] + edges[..., :-1]) / 2.0
+    nodes = middle[..., None] + half[..., None] * _GAUSS[0]
+    weights = half[..., None] * _GAUSS[1]
+    shape = (*edges.shape[:-1], -1)
+    return nodes.reshape(shape), weights.reshape(shape)
+
+
+def forces_of(condensed: Condensed, loads: LoadCase) -> Floats:
+    """Support forces P (n,) of a load case with all supports held level, kN."""
+    forces = np.zeros(condensed.n_supports)
+    if loads.points:
+        at, weight = np.array(loads.points, dtype=np.float64).T
+        forces += weight @ condensed.unit_forces(at)
+    for start, end, intensity in loads.uniforms:
+        nodes, weights = _gauss(condensed.girder.breakpoints[None, :], start, end)
+        forces += intensity * (weights[0] @ condensed.unit_forces(nodes[0]))
+    return forces
+
+
+def places(condensed: Condensed, quantity: str, x: Floats, side: NDArray[np.intp] | int = 1) -> Places:
+    """Prepare one kind of response at places x (p,), m from the girder's left end.
+
+    Raises
+    ------
+    ValueError
+        for an unknown quantity, or a place outside the girder.
+    """
+    if quantity not in RESPONSES:
+        raise ValueError(f"unknown response {quantity!r}; one of {', '.join(RESPONSES)}")
+    x = np.atleast_1d(np.asarray(x, dtype=np.float64))
+    if np.any(x < 0.0) or np.any(x > condensed.positions[-1]):
+        raise ValueError(f"a place lies outside the girder of {condensed.positions[-1]:g} m")
+    sides = np.broadcast_to(np.asarray(side, dtype=np.intp), x.shape)
+    span, local = condensed.locate(x, sides)
+    carry = np.empty((x.size, 2))
+    for j, one in enumerate(condensed.spans):
+        here = span == j
+        carry[here] = one.end_response(quantity, local[here])
+    rigid = np.zeros((x.size, condensed.n_supports))
+    lengths = np.diff(condensed.positions)[span]
+    rows = np.arange(x.size)
+    if quantity == "deflection":
+        rigid[rows, span], rigid[rows, span + 1] = 1.0 - local / lengths, local / lengths
+    elif quantity == "slope":
+        rigid[rows, span], rigid[rows, span + 1] = -1.0 / lengths, 1.0 / lengths
+    drop_rows = np.einsum("pi,pin->pn", carry, condensed.moments_by_drop[span]) + rigid
+    return Places(
+        condensed=condensed,
+        quantity=quantity,
+        x=x,
+        side=sides,
+        span=span,
+        local=local,
+        carry=carry,
+        rows=drop_rows,
+    )
