@@ -20,7 +20,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.girder.model import Girder
-from assess.girder.span import SimpleSpan
+from assess.girder.span import REACH, SimpleSpan
 
 Floats = NDArray[np.float64]
 
@@ -68,6 +68,7 @@ class Condensed:
         self.girder = girder
         self.spans = [SimpleSpan(pieces) for pieces in girder.spans]
         self.positions = girder.support_positions
+        self.tolerance = REACH * girder.length
         n, m = girder.n_supports, len(self.spans)
         lengths = np.array([span.length for span in self.spans])
         k = np.array([span.stiffness for span in self.spans])  # (m, 2, 2)
@@ -112,19 +113,23 @@ class Condensed:
     def locate(self, x: Floats, side: NDArray[np.intp] | int = 1) -> tuple[NDArray[np.intp], Floats]:
         """Span index and distance from the span's left end; `side` -1 / +1 picks the face at a support."""
         faces = np.broadcast_to(np.asarray(side), np.shape(x))
-        right = np.searchsorted(self.positions, x, side="right") - 1
-        left = np.searchsorted(self.positions, x, side="left") - 1
+        right = np.searchsorted(self.positions - self.tolerance, x, side="right") - 1
+        left = np.searchsorted(self.positions + self.tolerance, x, side="left") - 1
         span = np.clip(np.where(faces > 0, right, left), 0, len(self.spans) - 1)
-        return span, x - self.positions[span]
+        start, end = self.positions[span], self.positions[span + 1]
+        return span, np.clip(x, start, end) - start
+
+    def carries(self, a: Floats) -> NDArray[np.bool_]:
+        """Tell which x (...) are on the girder."""
+        return np.asarray((a >= -self.tolerance) & (a <= self.positions[-1] + self.tolerance))
 
     # unit loads, supports held level ----------------------------------------------------------
 
     def unit_end_moments(self, a: Floats) -> Floats:
-        """Span-end moments (..., spans, 2) of a unit load at a (...), supports held level; 0 off the girder."""
+        """Span-end moments (..., spans, 2) of a unit load at a (...), supports level; 0 off the girder."""
         a = np.asarray(a, dtype=np.float64)
         span, local = self.locate(a)
-        on = (a >= 0.0) & (a <= self.positions[-1])
-        local = np.where(on, local, 0.0)
+        on = self.carries(a)
         moments = np.zeros((*a.shape, len(self.spans), 2))
         for j, one in enumerate(self.spans):
             here = on & (span == j)
@@ -145,7 +150,7 @@ class Condensed:
         """Lever-rule support forces (..., n) of a unit load at a (...), as if every span were simple."""
         a = np.asarray(a, dtype=np.float64)
         span, local = self.locate(a)
-        on = (a >= 0.0) & (a <= self.positions[-1])
+        on = self.carries(a)
         lengths = np.diff(self.positions)[span]
         share = np.where(on, local / lengths, 0.0)
         forces = np.zeros((*a.shape, self.n_supports))

@@ -87,7 +87,7 @@ class Passage:
         return np.asarray(self.held + (self.forces @ weights[..., :, :, None])[..., 0])
 
     def governing(self, compliances: Floats) -> Passage:
-        """Keep, at each place, the positions that govern for one of the compliances (s, n), and their neighbours."""
+        """Keep, at each place, the positions that govern for a compliance of (s, n), and their neighbours."""
         m = self.held.shape[1]
         count = self.place.x.size
         chosen = np.zeros((count, m), dtype=bool)

@@ -64,12 +64,13 @@ class Girder:
     @property
     def support_positions(self) -> Floats:
         """x of the supports, (n_supports,), m."""
-        return np.concatenate([[0.0], np.cumsum(self.span_lengths)])
+        last = np.cumsum([len(pieces) for pieces in self.spans])
+        return np.asarray(self.breakpoints[np.concatenate([[0], last])])
 
     @property
     def length(self) -> float:
         """Length from first to last support, m."""
-        return float(self.span_lengths.sum())
+        return float(self.breakpoints[-1])
 
     @property
     def breakpoints(self) -> Floats:

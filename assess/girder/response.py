@@ -61,10 +61,11 @@ class Places:
         for j, one in enumerate(self.condensed.spans):
             here = self.span == j
             places = a[here] - self.condensed.positions[j]
-            within = (places >= 0.0) & (places <= one.length)
+            reach = self.condensed.tolerance
+            within = (places >= -reach) & (places <= one.length + reach)
             if within.any():
                 x, side = self.local[here, None], self.side[here, None]
-                values = one.load_response(self.quantity, x, np.where(within, places, 0.0), side)
+                values = one.load_response(self.quantity, x, np.clip(places, 0.0, one.length), side)
                 result[here] = np.where(within, values, 0.0)
         return result
 
@@ -118,8 +119,9 @@ def places(condensed: Condensed, quantity: str, x: Floats, side: NDArray[np.intp
     if quantity not in RESPONSES:
         raise ValueError(f"unknown response {quantity!r}; one of {', '.join(RESPONSES)}")
     x = np.atleast_1d(np.asarray(x, dtype=np.float64))
-    if np.any(x < 0.0) or np.any(x > condensed.positions[-1]):
+    if not np.all(condensed.carries(x)):
         raise ValueError(f"a place lies outside the girder of {condensed.positions[-1]:g} m")
+    x = np.clip(x, 0.0, condensed.positions[-1])
     sides = np.broadcast_to(np.asarray(side, dtype=np.intp), x.shape)
     span, local = condensed.locate(x, sides)
     carry = np.empty((x.size, 2))

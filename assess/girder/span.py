@@ -19,6 +19,8 @@ from assess.girder.model import Piece
 
 Floats = NDArray[np.float64]
 
+REACH = 1e-11  # of a length: within this of a support or a place x stands on it, so rounding picks no face
+
 
 class SimpleSpan:
     """Flexibilities of a simple span.
@@ -47,12 +49,14 @@ class SimpleSpan:
         self._s = _running(self._g * (right - left))
         length2 = self.length**2
         shear = self._s[-1] / length2
-        near = self._b[0] / length2 + shear
-        cross = float(self._hat(np.array(self.length))) / length2 - shear
-        far = self._a2[-1] / length2 + shear
+        near = self._b[0] / length2
+        cross = float(self._hat(np.array(self.length))) / length2
+        far = self._a2[-1] / length2
+        # f is symmetric positive definite; its inverse is written out to keep the symmetry, and the
+        # square of the shear term, which cancels, is left out of the determinant
+        det = near * far - cross * cross + shear * (near + far + 2.0 * cross)
+        near, cross, far = near + shear, cross - shear, far + shear
         self.flexibility: Floats = np.array([[near, cross], [cross, far]])
-        # f is symmetric positive definite; its inverse is written out to keep the symmetry
-        det = near * far - cross * cross
         self.stiffness: Floats = np.array([[far, -cross], [-cross, near]]) / det
 
     # running integrals ------------------------------------------------------------------
@@ -162,7 +166,8 @@ class SimpleSpan:
 
     def load_shear(self, x: Floats, a: Floats, side: NDArray[np.intp] | int) -> Floats:
         """Shear at x under a unit load at a (broadcast); `side` says which face of a load standing at x."""
-        beyond = np.where(np.asarray(side) > 0, a <= x, a < x)
+        near = REACH * self.length
+        beyond = np.where(np.asarray(side) > 0, a <= x + near, a < x - near)
         return np.asarray((self.length - a) / self.length - beyond)
 
 
