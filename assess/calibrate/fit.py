@@ -1,0 +1,222 @@
+"""Back-analysis: weighted least squares on ln k, with what the readings can and cannot tell.
+
+Minimises sum ((y - h(theta)) / sigma)^2 + sum ((ln k - ln k_nominal) / tau)^2 with the exact Jacobian
+(trust-region reflective algorithm of scipy.optimize.least_squares). The covariance is (J'J)^-1 at the
+solution, prior rows included. Redundancy numbers and standardised residuals follow Baarda (1968):
+r = 1 - diag(J C J'), w = v / (sigma sqrt r); a reading is suspect past 3.29 (alpha 0.001).
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+from scipy import stats
+from scipy.optimize import least_squares
+
+from assess.calibrate.observations import ObservationModel
+
+Floats = NDArray[np.float64]
+
+SUSPECT = 3.29
+Z95 = float(stats.norm.ppf(0.975))
+_RANK = 1e-9  # smallest over largest singular value below which a direction is not told at all
+_UNBOUNDED = 8.0  # ln k this far from its start, or this uncertain, is not bounded by the readings
+
+
+class NotDetermined(ValueError):
+    """The readings alone do not fix the unknowns.
+
+    Attributes
+    ----------
+    pads : positions (in the model's list of pads) that are not told
+    readings, unknowns : counts
+    """
+
+    def __init__(self, reason: str, *, pads: list[int], readings: int, unknowns: int) -> None:
+        super().__init__(reason)
+        self.pads = pads
+        self.readings = readings
+        self.unknowns = unknowns
+
+
+@dataclass(frozen=True, kw_only=True)
+class PadPrior:
+    """Prior of the pads: ln k ~ N(mean, sd), both (q,)."""
+
+    mean: Floats
+    sd: Floats
+
+
+@dataclass(frozen=True, kw_only=True)
+class Fit:
+    """A calibrated girder line.
+
+    Attributes
+    ----------
+    log_stiffness : (q,) estimate of ln k, k in kN/m
+    covariance : (q, q) of ln k
+    information : (q, q) inverse variance of ln k from the readings alone; singular where they tell nothing
+    seat_drops : (r,) drops in m of the seats read in test states
+    predicted : (m,) in the readings' SI units
+    redundancy : (m,) share of each reading that the others check, 0 to 1
+    standardised : (m,) v / (sigma sqrt r); NaN where nothing checks the reading
+    suspect : (m,) |standardised| > 3.29
+    chi_square, degrees_of_freedom, p_value : global test of the readings; p NaN without a degree of freedom.
+        With a prior the unknowns count as far as the readings tell them: readings less the trace of the hat
+        matrix, rounded.
+    data_share : (q,) 1 - posterior variance / prior variance; 1 without a prior
+    evaluations : function evaluations used
+    """
+
+    log_stiffness: Floats
+    covariance: Floats
+    information: Floats
+    seat_drops: Floats
+    predicted: Floats
+    redundancy: Floats
+    standardised: Floats
+    suspect: NDArray[np.bool_]
+    chi_square: float
+    degrees_of_freedom: int
+    p_value: float
+    data_share: Floats
+    evaluations: int
+
+    @property
+    def sd(self) -> Floats:
+        """Standard deviations of ln k, (q,)."""
+        return np.sqrt(np.diag(self.covariance))
+
+    def draws(self, count: int, seed: int) -> Floats:
+        """Seeded draws of ln k, (count, q), from the normal approximation."""
+        return draw_normal(self.log_stiffness, self.covariance, count, seed)
+
+
+def draw_normal(mean: Floats, covariance: Floats, count: int, seed: int) -> Floats:
+    """Draws (count, q) of a normal vector; a semidefinite covariance is allowed."""
+    values, vectors = np.linalg.eigh((covariance + covariance.T) / 2.0)
+    root = vectors * np.sqrt(np.clip(values, 0.0, None))
+    noise = np.random.default_rng(seed).standard_normal((count, mean.size))
+    return np.asarray(mean + noise @ root.T)
+
+
+def fit(model: ObservationModel, *, start: Floats, prior: PadPrior | None) -> Fit:
+    """Fit the pads of one girder.
+
+    Parameters
+    ----------
+    model : ObservationModel with m readings and q pads
+    start : (q,) ln k to start from, the nominal stiffnesses
+    prior : PadPrior, or None to let the readings speak alone
+
+    Raises
+    ------
+    NotDetermined
+        without a prior, where the readings do not fix every pad.
+    RuntimeError
+        if the minimisation does not converge.
+    """
+    q = start.size
+    weight = 1.0 / model.sd
+    begin = np.concatenate([start, np.zeros(len(model.seats))])
+    if prior is None:
+        _require_rank(model.jacobian(begin) * weight[:, None], q)
+
+    def residuals(theta: Floats) -> Floats:
+        data = (model.predict(theta) - model.value) * weight
+        return data if prior is None else np.concatenate([data, (theta[:q] - prior.mean) / prior.sd])
+
+    prior_rows = np.zeros((0, model.size))
+    if prior is not None:
+        prior_rows = np.eye(q, model.size) / prior.sd[:, None]
+
+    def jacobian(theta: Floats) -> Floats:
+        return np.concatenate([model.jacobian(theta) * weight[:, None], prior_rows])
+
+    found = least_squares(
+        residuals, begin, jac=jacobian, method="trf", x_scale="jac", xtol=1e-12, ftol=1e-12, gtol=1e-12,
+        max_nfev=400,
+    )  # fmt: skip
+    if not found.success:
+        raise RuntimeError(f"the fit did not converge in {found.nfev} evaluations")
+    return _summarise(model, found.x, start, prior, prior_rows, int(found.nfev))
+
+
+def _summarise(
+    model: ObservationModel,
+    theta: Floats,
+    start: Floats,
+    prior: PadPrior | None,
+    prior_rows: Floats,
+    evaluations: int,
+) -> Fit:
+    q = start.size
+    data = model.jacobian(theta) / model.sd[:, None]
+    if prior is None:
+        _require_rank(data, q)
+    full = data.T @ data + prior_rows.T @ prior_rows
+    scale = 1.0 / np.sqrt(np.diag(full))
+    covariance = scale[:, None] * np.linalg.inv(scale[:, None] * full * scale) * scale
+    if prior is None:
+        _require_bounds(theta[:q], np.sqrt(np.diag(covariance)[:q]), start, model)
+    residual = (model.value - model.predict(theta)) / model.sd
+    hat = np.einsum("mi,ij,mj->m", data, covariance, data)
+    redundancy = np.clip(1.0 - hat, 0.0, 1.0)
+    checked = redundancy > 1e-6
+    standardised = np.full(residual.shape, np.nan)
+    standardised[checked] = residual[checked] / np.sqrt(redundancy[checked])
+    chi_square = float(residual @ residual)
+    told = model.size if prior is None else round(float(hat.sum()))
+    freedom = max(0, model.value.size - told)
+    pads = covariance[:q, :q]
+    share = np.ones(q) if prior is None else 1.0 - np.diag(pads) / prior.sd**2
+    return Fit(
+        log_stiffness=theta[:q],
+        covariance=pads,
+        information=_information(data, q),
+        seat_drops=theta[q:],
+        predicted=model.predict(theta),
+        redundancy=redundancy,
+        standardised=standardised,
+        suspect=np.abs(np.nan_to_num(standardised)) > SUSPECT,
+        chi_square=chi_square,
+        degrees_of_freedom=freedom,
+        p_value=float(stats.chi2.sf(chi_square, freedom)) if freedom else np.nan,
+        data_share=np.clip(share, 0.0, 1.0),
+        evaluations=evaluations,
+    )
+
+
+def _information(data: Floats, q: int) -> Floats:
+    """Inverse variance of the pads from the readings alone, the seat drops eliminated."""
+    pads, seats = data[:, :q], data[:, q:]
+    if seats.shape[1]:
+        projector = seats @ np.linalg.pinv(seats)
+        pads = pads - projector @ pads
+    return np.asarray(pads.T @ pads)
+
+
+def _require_rank(whitened: Floats, q: int) -> None:
+    readings, unknowns = whitened.shape
+    length = np.linalg.norm(whitened, axis=0)
+    silent = [int(i) for i in np.flatnonzero(length[:q] <= 1e-12 * max(length.max(initial=0.0), 1e-300))]
+    if readings >= unknowns and not silent:
+        _, values, vectors = np.linalg.svd(whitened / length)
+        if values[-1] > _RANK * values[0]:
+            return
+        silent = [int(i) for i in np.flatnonzero(np.abs(vectors[-1][:q]) > 0.3)]
+    reason = "too few readings" if readings < unknowns else "the readings do not tell the pads apart"
+    raise NotDetermined(reason, pads=silent, readings=readings, unknowns=unknowns)
+
+
+def _require_bounds(theta: Floats, sd: Floats, start: Floats, model: ObservationModel) -> None:
+    loose = np.flatnonzero((np.abs(theta - start) > _UNBOUNDED) | (sd > _UNBOUNDED))
+    if loose.size:
+        raise NotDetermined(
+            "the readings do not bound the stiffness",
+            pads=[int(i) for i in loose],
+            readings=model.value.size,
+            unknowns=model.size,
+        )
