@@ -11,7 +11,7 @@ from assess.cli.params import bridge_argument, json_option, visit_option
 from assess.cli.progress import progress_on_stderr
 
 
-@click.command("assess")
+@click.command("assess", short_help="Recompute the moments and set them against capacity.")
 @bridge_argument
 @visit_option
 @json_option

@@ -6,12 +6,12 @@ from pathlib import Path
 
 import click
 
+from assess.cli.failures import cannot_write, wrong
 from assess.cli.json_out import print_json
 from assess.cli.params import file_argument, json_option
-from db.errors import BedstoneError
 
 
-@click.group("bridge", no_args_is_help=False)
+@click.group("bridge", short_help="Draft, add and list bridge files.", no_args_is_help=False)
 def command() -> None:
     """Bridge files: draft one, add one to the record, list them.
 
@@ -62,8 +62,12 @@ def list_(record: str, as_json: bool) -> None:
 
 
 @command.command("draft")
-@click.option("--spans", metavar="LENGTHS", required=True, help='Span lengths with units, such as "12 m, 15 m, 12 m".')
-@click.option("-o", "--output", metavar="FILE", default="-", show_default=True, help="Where to write; - prints it.")
+@click.option(
+    "--spans", metavar="LENGTHS", required=True, help='Span lengths with units, such as "12 m, 15 m, 12 m".'
+)
+@click.option(
+    "-o", "--output", metavar="FILE", default="-", show_default=True, help="Where to write; - prints it."
+)
 def draft(spans: str, output: str) -> None:
     """Write a commented starter bridge file, to be filled in and added.
 
@@ -88,10 +92,7 @@ def _write_new(path: Path, text: str) -> None:
         with path.open("x", encoding="utf-8") as file:
             file.write(text)
     except FileExistsError as error:
-        raise BedstoneError(
-            "this file exists already and is not overwritten", file=str(path), remedy="give -o another name"
-        ) from error
+        problem = "this file exists already and is not overwritten"
+        raise wrong(problem, file=path, remedy="give -o another name") from error
     except OSError as error:
-        raise BedstoneError(
-            f"cannot be written: {error.strerror or error}", file=str(path), remedy="give -o another place"
-        ) from error
+        raise cannot_write(path, error) from error

@@ -11,12 +11,19 @@ from assess.cli.params import bridge_argument, json_option, visit_option
 from assess.cli.progress import progress_on_stderr
 
 
-@click.command("calibrate")
+@click.command("calibrate", short_help="Find the bearing stiffnesses that explain the readings.")
 @bridge_argument
 @visit_option
 @click.option("--all", "every", is_flag=True, help="Every visit of the bridge, one after the other.")
-@click.option("--no-prior", is_flag=True, help="Let the readings alone decide; nominal stiffness is not used.")
-@click.option("--readings", "all_readings", is_flag=True, help="Show every reading beside its fit, not the suspects only.")
+@click.option(
+    "--no-prior", is_flag=True, help="Let the readings alone decide; nominal stiffness is not used."
+)
+@click.option(
+    "--readings",
+    "all_readings",
+    is_flag=True,
+    help="Show every reading beside its fit, not the suspects only.",
+)
 @json_option
 @click.pass_obj
 def command(

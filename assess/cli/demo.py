@@ -8,14 +8,14 @@ from pathlib import Path
 
 import click
 
-from db.errors import BedstoneError
+from assess.cli.failures import cannot_write, wrong
 
 BRIDGE = "hollin-water"
 RECORD = "demo.sqlite"
 SUFFIXES = (".toml", ".csv")
 
 
-@click.command("demo")
+@click.command("demo", short_help="Run everything on an invented bridge.")
 @click.argument("folder", metavar="[FOLDER]", default="bedstone-demo", type=click.Path(path_type=Path))
 @click.pass_context
 def command(ctx: click.Context, folder: Path) -> None:
@@ -47,11 +47,9 @@ def _sample_files() -> dict[str, bytes]:
 def _check_free(folder: Path, names: list[str]) -> None:
     there = [name for name in names if (folder / name).exists()]
     if there:
-        raise BedstoneError(
-            f"the folder already has {there[0]}, and the demo overwrites nothing",
-            file=str(folder),
-            remedy="name another folder, for example: bedstone demo bedstone-demo-2",
-        )
+        problem = f"the folder already has {there[0]}, and the demo overwrites nothing"
+        remedy = "name another folder, for example: bedstone demo another-folder"
+        raise wrong(problem, file=folder, remedy=remedy)
 
 
 def _copy(files: dict[str, bytes], folder: Path) -> None:
@@ -60,9 +58,7 @@ def _copy(files: dict[str, bytes], folder: Path) -> None:
         for name, content in files.items():
             (folder / name).write_bytes(content)
     except OSError as error:
-        raise BedstoneError(
-            f"cannot be written: {error.strerror or error}", file=str(folder), remedy="name another folder"
-        ) from error
+        raise cannot_write(folder, error) from error
 
 
 def _command_lines(files: dict[str, bytes], *, folder: Path, page: Path) -> list[list[str]]:

@@ -3,8 +3,13 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from pathlib import Path
+from typing import TYPE_CHECKING
 
 import click
+
+if TYPE_CHECKING:
+    from db.errors import BedstoneError
 
 INPUT_OR_CALL = 2
 DEFECT = 1
@@ -37,6 +42,18 @@ def read_failure(error: Exception) -> Failure:
         "set BEDSTONE_TRACEBACK=1 and run it again to see where",
         exit_code=DEFECT,
     )
+
+
+def wrong(problem: str, *, file: Path, remedy: str) -> BedstoneError:
+    """Return a `BedstoneError` about a file; the family is imported only once something is wrong."""
+    from db.errors import BedstoneError
+
+    return BedstoneError(problem, file=str(file), remedy=remedy)
+
+
+def cannot_write(path: Path, error: OSError) -> BedstoneError:
+    """Return the error for a file that the system does not let us write."""
+    return wrong(f"cannot be written: {error.strerror or error}", file=path, remedy="name another place")
 
 
 def _usage_line(error: click.UsageError) -> str:

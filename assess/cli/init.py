@@ -5,7 +5,7 @@ from __future__ import annotations
 import click
 
 
-@click.command("init")
+@click.command("init", short_help="Make an empty record, or upgrade an older one.")
 @click.pass_obj
 def command(record: str) -> None:
     """Make an empty record, or bring an older one up to date.

@@ -6,15 +6,20 @@ from pathlib import Path
 
 import click
 
+from assess.cli.failures import cannot_write, wrong
 from assess.cli.params import bridge_argument
 from assess.cli.progress import progress_on_stderr
-from db.errors import BedstoneError
 
 
-@click.command("report")
+@click.command("report", short_help="Write the report, one self-contained HTML file.")
 @bridge_argument
 @click.option(
-    "-o", "--output", metavar="FILE.html", required=True, type=click.Path(path_type=Path), help="The page to write."
+    "-o",
+    "--output",
+    metavar="FILE.html",
+    required=True,
+    type=click.Path(path_type=Path),
+    help="The page to write.",
 )
 @click.pass_obj
 def command(record: str, bridge: str, output: Path) -> None:
@@ -25,7 +30,7 @@ def command(record: str, bridge: str, output: Path) -> None:
       bedstone report quillmere -o quillmere.html
     """
     if not output.parent.is_dir():
-        raise BedstoneError("this folder does not exist", file=str(output.parent), remedy="make it, or give -o another place")
+        raise wrong("this folder does not exist", file=output.parent, remedy="make it, or name another place")
     from assess import workflow
     from assess.report import write_report
 
@@ -34,7 +39,5 @@ def command(record: str, bridge: str, output: Path) -> None:
     try:
         write_report(view, output)
     except OSError as error:
-        raise BedstoneError(
-            f"cannot be written: {error.strerror or error}", file=str(output), remedy="give -o another place"
-        ) from error
+        raise cannot_write(output, error) from error
     click.echo(f"Wrote the report {output}.")

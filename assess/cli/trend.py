@@ -9,7 +9,7 @@ from assess.cli.params import bridge_argument, json_option
 from assess.cli.progress import progress_on_stderr
 
 
-@click.command("trend")
+@click.command("trend", short_help="Follow the pads over the visits, and look ahead.")
 @bridge_argument
 @json_option
 @click.pass_obj

@@ -10,7 +10,7 @@ from assess.cli.json_out import print_json
 from assess.cli.params import bridge_argument, file_argument, json_option
 
 
-@click.group("visit", no_args_is_help=False)
+@click.group("visit", short_help="Log what a visit measured; list visits.", no_args_is_help=False)
 def command() -> None:
     """Visits: log what a visit measured, list the visits of a bridge.
 
