@@ -13,12 +13,13 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.girder.condensed import Condensed
-from assess.girder.response import Places
+from assess.girder.response import REACTION, Places
 from assess.loads import Train
 
 Floats = NDArray[np.float64]
 
 GRID_PER_SPAN = 200
+_BLOCK = 4_000_000  # responses held at once, 32 MB
 _FACE = 1e-7  # m; how far past a place an axle stands to be on its other face
 
 
@@ -84,7 +85,19 @@ class Passage:
         weights = self.place.rows @ operator  # (..., p, n)
         if self.forces.shape[0] == 1:
             return np.asarray(self.held + weights @ self.forces[0].T)
-        return np.asarray(self.held + (self.forces @ weights[..., :, :, None])[..., 0])
+        flat = weights.reshape(-1, *weights.shape[-2:])
+        moved = np.moveaxis(self.forces @ flat.transpose(1, 2, 0), 2, 0)  # one product for all sets
+        return np.asarray(self.held + moved.reshape(*weights.shape[:-2], *self.held.shape))
+
+    def at(self, index: NDArray[np.intp]) -> Passage:
+        """Return the passage of some of its places."""
+        shared = self.forces.shape[0] == 1
+        return Passage(
+            place=self.place.at(index),
+            leading=self.leading[index],
+            held=self.held[index],
+            forces=self.forces if shared else self.forces[index],
+        )
 
     def governing(self, compliances: Floats) -> Passage:
         """Keep, at each place, the positions that govern for a compliance of (s, n), and their neighbours."""
@@ -130,7 +143,11 @@ def _on_grid(place: Places, train: Train) -> Passage:
     end = condensed.positions[-1] + train.length
     leading = np.linspace(0.0, end, max(2, int(np.ceil(end / grid_step(condensed))) + 1))
     ends, simple = _train_state(condensed, train, leading)
-    held = np.empty((place.x.size, leading.size))
+    forces = condensed.forces_from(ends, simple)
+    shared = np.broadcast_to(leading, (place.x.size, leading.size))
+    if place.quantity == REACTION:
+        return Passage(place=place, leading=shared, held=forces.T[place.supports], forces=forces[None])
+    held = np.empty(shared.shape)
     for j, one in enumerate(condensed.spans):
         here = np.flatnonzero(place.span == j)
         if not here.size:
@@ -145,8 +162,7 @@ def _on_grid(place: Places, train: Train) -> Passage:
                 a = np.clip(leading[None, first:last] - offset - start, 0.0, one.length)
                 block[:, first:last] += load * one.load_response(place.quantity, x, a, side)
         held[here] = block
-    shared = np.broadcast_to(leading, held.shape)
-    return Passage(place=place, leading=shared, held=held, forces=condensed.forces_from(ends, simple)[None])
+    return Passage(place=place, leading=shared, held=held, forces=forces[None])
 
 
 def _on_places(place: Places, train: Train) -> Passage:
@@ -155,11 +171,29 @@ def _on_places(place: Places, train: Train) -> Passage:
     if place.quantity == "shear":
         leading = np.concatenate([leading - _FACE, leading + _FACE], axis=1)
     ends, simple = _train_state(condensed, train, leading)
+    forces = condensed.forces_from(ends, simple)
+    if place.quantity == REACTION:
+        held = forces[np.arange(place.x.size), :, place.supports]
+        return Passage(place=place, leading=leading, held=held, forces=forces)
     own = ends[np.arange(place.x.size), :, place.span, :]
     held = (own * place.carry[:, None, :]).sum(axis=-1)
     for offset, load in zip(train.offsets, train.loads, strict=True):
         held += load * place.local_unit(leading - offset)
-    return Passage(place=place, leading=leading, held=held, forces=condensed.forces_from(ends, simple))
+    return Passage(place=place, leading=leading, held=held, forces=forces)
+
+
+def extremes(parts: list[Passage], compliances: Floats) -> tuple[Floats, Floats]:
+    """Live maxima and minima (sets, p) for many sets of compliances (sets, n), worked in blocks."""
+    sets, count = compliances.shape[0], parts[0].place.x.size
+    maximum, minimum = np.zeros((sets, count)), np.zeros((sets, count))
+    block = max(1, _BLOCK // sum(part.held.size for part in parts))
+    for first in range(0, sets, block):
+        some = slice(first, first + block)
+        for part in parts:
+            y = part.responses(compliances[some])
+            np.maximum(maximum[some], y.max(axis=-1), out=maximum[some])
+            np.minimum(minimum[some], y.min(axis=-1), out=minimum[some])
+    return maximum, minimum
 
 
 def envelope(parts: list[Passage], compliance: Floats) -> Envelope:

@@ -18,6 +18,7 @@ from assess.loads import LoadCase
 Floats = NDArray[np.float64]
 
 RESPONSES = ("deflection", "slope", "moment", "shear")
+REACTION = "reaction"
 _GAUSS = np.polynomial.legendre.leggauss(2)  # exact for the cubics that influence lines are made of
 
 
@@ -27,7 +28,7 @@ class Places:
 
     Attributes
     ----------
-    quantity : one of RESPONSES
+    quantity : one of RESPONSES, or "reaction" (`support_places`)
     x : (p,) m from the girder's left end
     side : (p,) -1 or +1, the face meant where x stands on a support or under a load
     span, local : (p,) the span and the distance from its left end
@@ -44,13 +45,35 @@ class Places:
     carry: Floats
     rows: Floats
 
+    def at(self, index: NDArray[np.intp]) -> Places:
+        """Return some of the places."""
+        return Places(
+            condensed=self.condensed,
+            quantity=self.quantity,
+            x=self.x[index],
+            side=self.side[index],
+            span=self.span[index],
+            local=self.local[index],
+            carry=self.carry[index],
+            rows=self.rows[index],
+        )
+
+    @property
+    def supports(self) -> NDArray[np.intp]:
+        """The support (p,) each place stands on, for reactions."""
+        return np.searchsorted(self.condensed.positions - self.condensed.tolerance, self.x, side="right") - 1
+
     def unit(self, a: Floats) -> Floats:
         """Response (p, m) to a unit load at each a (m,), supports held level: influence lines at d = 0."""
         a = np.asarray(a, dtype=np.float64)
+        if self.quantity == REACTION:
+            return np.asarray(self.condensed.unit_forces(a).T[self.supports])
         return self.unit_paired(np.broadcast_to(a, (self.x.size, a.size)))
 
     def unit_paired(self, a: Floats) -> Floats:
         """Response (p, m) where place p has its own load positions a[p]; 0 for loads off the girder."""
+        if self.quantity == REACTION:
+            return np.asarray(self.condensed.unit_forces(a)[np.arange(self.x.size), :, self.supports])
         ends = self.condensed.unit_end_moments(a)
         own = ends[np.arange(self.x.size), :, self.span, :]
         return np.asarray((own * self.carry[:, None, :]).sum(axis=-1) + self.local_unit(a))
@@ -145,4 +168,21 @@ def places(condensed: Condensed, quantity: str, x: Floats, side: NDArray[np.intp
         local=local,
         carry=carry,
         rows=drop_rows,
+    )
+
+
+def support_places(condensed: Condensed) -> Places:
+    """Prepare the reactions of all supports (n,) as responses: R = P - K d, so Y is -K."""
+    x, n = condensed.positions, condensed.n_supports
+    side = np.ones(n, dtype=np.intp)
+    span, local = condensed.locate(x, side)
+    return Places(
+        condensed=condensed,
+        quantity=REACTION,
+        x=x,
+        side=side,
+        span=span,
+        local=local,
+        carry=np.zeros((n, 2)),
+        rows=-condensed.K,
     )
