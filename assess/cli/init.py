@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+
 import click
 
 
@@ -18,4 +20,9 @@ def command(record: str) -> None:
     from assess import workflow
 
     made = workflow.init_record(record)
-    click.echo(f"Record {record}: {'made' if made else 'is there already and up to date'}.")
+    click.echo(f"Record {without_password(record)}: {'made' if made else 'is there already and up to date'}.")
+
+
+def without_password(record: str) -> str:
+    """Return the path or URL as it may be shown: a password in it is replaced by ***."""
+    return re.sub(r"(://[^/@:]*):.*@", r"\1:***@", record)
