@@ -1,0 +1,237 @@
+"""What stands on the page, in the order in which it stands there."""
+
+from __future__ import annotations
+
+from collections.abc import Iterable
+from dataclasses import dataclass, field
+
+from markupsafe import Markup
+
+from assess.report import tables, words
+from assess.report.figures import elevation, history, moments, residuals, utilisation
+from assess.results import GirderAssessment, GirderCalibration, GirderView, ReportView, TrendResult
+
+
+@dataclass(frozen=True, kw_only=True)
+class Figure:
+    """A drawing with its caption; `small` ones stand two side by side."""
+
+    svg: Markup
+    caption: str
+
+
+@dataclass(frozen=True, kw_only=True)
+class GirderPage:
+    """One girder line on the page; empty lists where there is nothing to show."""
+
+    name: str
+    key: str
+    verdict: str
+    number: str
+    cautions: list[str]
+    status: str
+    mark: Markup
+    elevation: Figure | None = None
+    states: list[Figure] = field(default_factory=list)
+    pads: list[list[str]] = field(default_factory=list)
+    moments: list[Figure] = field(default_factory=list)
+    sections: list[tables.SectionRow] = field(default_factory=list)
+    reactions: list[list[str]] = field(default_factory=list)
+    histories: list[Figure] = field(default_factory=list)
+    pad_trends: list[list[str]] = field(default_factory=list)
+    span_trends: list[list[str]] = field(default_factory=list)
+    fit: str = ""
+    residuals: list[Figure] = field(default_factory=list)
+    readings: list[list[str]] = field(default_factory=list)
+
+
+def build(view: ReportView) -> dict[str, object]:
+    """Return all that the template prints."""
+    return {
+        "name": words.plain(view.name) or view.bridge,
+        "facts": _facts(view),
+        "next_visit": _next_visit(view.trend),
+        "girders": [_girder(view, name, f"g{i + 1}") for i, name in enumerate(_names(view))],
+        "visits": [
+            [
+                words.date(day),
+                party or words.not_determined("no party given"),
+                words.not_determined("no pad temperature taken")
+                if warmth is None
+                else words.entered(warmth, "°C"),
+                str(count),
+            ]
+            for day, party, warmth, count in view.visits
+        ],
+        "has_trend": view.trend is not None,
+        "cautions": _cautions(view),
+        "fixed_cautions": list(words.FIXED_CAUTIONS),
+        "provenance": _provenance(view),
+    }
+
+
+def _names(view: ReportView) -> list[str]:
+    return list(dict.fromkeys([g.girder for g in view.girders] + [g.girder for g in view.assessment.girders]))
+
+
+def _facts(view: ReportView) -> list[tuple[str, str]]:
+    latest = max((v[0] for v in view.visits), default=None)
+    return [
+        ("Carries", view.carries or words.not_determined("the bridge file does not say")),
+        ("Built", words.date(view.built, "the bridge file does not say")),
+        ("x = 0 at", view.zero or words.not_determined("the bridge file does not say")),
+        ("Latest visit", words.date(latest, "no visit is kept")),
+        (
+            "Pads from the visit of",
+            words.date(
+                view.assessment.calibration_visit, "no calibration is kept, the pads are taken as designed"
+            ),
+        ),
+    ]
+
+
+def _next_visit(trend: TrendResult | None) -> str:
+    if trend is None:
+        return "Next visit " + words.not_determined("no trend was drawn up") + "."
+    reason = trend.next_visit_reason.strip().rstrip(".")
+    if trend.next_visit_by is None:
+        return "Next visit " + words.not_determined(reason) + "."
+    return f"Next visit by {words.date(trend.next_visit_by)}" + (f": {reason}." if reason else ".")
+
+
+def _girder(view: ReportView, name: str, key: str) -> GirderPage:
+    drawn = next((g for g in view.girders if g.girder == name), None)
+    assessed = next((g for g in view.assessment.girders if g.girder == name), None)
+    fits = view.calibration.girders if view.calibration is not None else []
+    fit = next((c for c in fits if c.girder == name), None)
+    status, mark = _status(assessed, key)
+    big, small = (None, []) if drawn is None else _elevations(view, drawn, key)
+    return GirderPage(
+        name=name,
+        key=key,
+        verdict=view.verdicts.get(name)
+        or "What to do " + words.not_determined("no verdict for this girder") + ".",
+        number=tables.number_behind(assessed),
+        cautions=view.verdict_cautions.get(name, []),
+        status=status,
+        mark=mark,
+        elevation=big,
+        states=small,
+        pads=[] if drawn is None else tables.pad_rows(drawn.supports, fit),
+        moments=[] if drawn is None else _moments(view, drawn, key),
+        sections=[] if assessed is None else tables.section_rows(assessed, key),
+        reactions=[] if assessed is None else tables.reaction_rows(assessed.reactions),
+        histories=[] if drawn is None else _histories(view, drawn, key),
+        pad_trends=[] if view.trend is None else tables.pad_trend_rows(view.trend, name),
+        span_trends=[] if view.trend is None else tables.span_trend_rows(view.trend, name),
+        fit="" if fit is None else tables.fit_sentence(fit),
+        residuals=[] if fit is None else _residuals(fit, key),
+        readings=[] if fit is None else tables.reading_rows(fit.readings),
+    )
+
+
+def _status(assessed: GirderAssessment | None, key: str) -> tuple[str, Markup]:
+    section = None if assessed is None else tables.governing(assessed)
+    if section is None:
+        return "unknown", Markup(
+            utilisation.mark(None, None, None, key=f"{key}-verdict", name="governing section")
+        )
+    case = section.calibrated
+    name = words.section(section.effect, section.span, section.support)
+    mark = utilisation.mark(
+        case.utilisation, case.utilisation_low95, case.utilisation_high95, key=f"{key}-verdict", name=name
+    )
+    return words.status(case.utilisation), Markup(mark)
+
+
+def _elevations(view: ReportView, girder: GirderView, key: str) -> tuple[Figure, list[Figure]]:
+    """Return the state with the largest movement drawn large, and the others small."""
+    states = girder.states
+    first = max(states, key=elevation.largest_movement_mm, default=None)
+    told = (
+        f"test state {first.state}" if first is not None else "no test state is kept, so no movement is shown"
+    )
+    big = Figure(
+        svg=Markup(elevation.full(girder, first, key=f"{key}-elevation", zero=view.zero or "the left end")),
+        caption=f"Girder {girder.girder}: {told}.",
+    )
+    small = [
+        Figure(svg=Markup(elevation.small(girder, s, key=f"{key}-state{i}")), caption=f"State {s.state}")
+        for i, s in enumerate(states)
+        if s is not first
+    ]
+    return big, small
+
+
+def _moments(view: ReportView, girder: GirderView, key: str) -> list[Figure]:
+    zero = view.zero or "the left end"
+    return [
+        Figure(
+            svg=Markup(moments.envelopes(girder, key=f"{key}-moments", zero=zero)),
+            caption=f"Girder {girder.girder}: factored moments, permanent and live together.",
+        ),
+        Figure(
+            svg=Markup(moments.permanent(girder, key=f"{key}-permanent", zero=zero)),
+            caption=f"Girder {girder.girder}: moments of the permanent loads alone.",
+        ),
+    ]
+
+
+def _histories(view: ReportView, girder: GirderView, key: str) -> list[Figure]:
+    if not girder.histories:
+        return []
+    limits = history.common_axes(girder.histories)
+    steps = {}
+    if view.trend is not None:
+        steps = {p.support: p.step_between for p in view.trend.pads if p.girder == girder.girder}
+    return [
+        Figure(
+            svg=Markup(history.plot(h, limits, key=f"{key}-pad{i}", step=steps.get(h.support))),
+            caption=f"Pad at {h.support}",
+        )
+        for i, h in enumerate(girder.histories)
+    ]
+
+
+def _residuals(fit: GirderCalibration, key: str) -> list[Figure]:
+    count = residuals.ROWS_MOST
+    parts = [fit.readings[i : i + count] for i in range(0, len(fit.readings), count)]
+    return [
+        Figure(
+            svg=Markup(
+                residuals.plot(
+                    part, key=f"{key}-residuals{i}", title=f"Readings against the fit, girder {fit.girder}"
+                )
+            ),
+            caption=f"Girder {fit.girder}: standardised residuals"
+            + (f", part {i + 1} of {len(parts)}." if len(parts) > 1 else "."),
+        )
+        for i, part in enumerate(parts)
+    ]
+
+
+def _cautions(view: ReportView) -> list[str]:
+    """Return every caution once, in the order in which they were raised."""
+    raised: list[Iterable[str]] = [view.cautions, *view.verdict_cautions.values()]
+    raised += [r.cautions for r in (view.calibration, view.assessment, view.trend) if r is not None]
+    return list(dict.fromkeys(c for group in raised for c in group))
+
+
+def _provenance(view: ReportView) -> list[tuple[str, str]]:
+    rows = [
+        ("Bridge file", f"{view.bridge}, revision {view.revision}, digest {view.bridge_digest}"),
+        ("Assessment", f"Bedstone {view.assessment.version}, input digest {view.assessment.input_digest}"),
+        ("Draws", f"{view.assessment.draws} draws of the pads, seed {view.assessment.seed}"),
+    ]
+    if view.calibration is None:
+        rows.append(("Calibration", words.not_determined("no calibration is kept")))
+    else:
+        kept = view.calibration
+        told = f"visit of {words.date(kept.visit)}, Bedstone {kept.version}, input digest {kept.input_digest}"
+        rows.append(("Calibration", told))
+    if view.trend is not None:
+        rows.append(("Trend as of", words.date(view.trend.as_of)))
+    rows.append(("Factors", view.factors or words.not_determined("no factor set given")))
+    rows.append(("Live loads", "; ".join(view.live) or words.not_determined("no live load given")))
+    rows += list(view.options.items())
+    return rows

@@ -1,0 +1,253 @@
+"""The rows of the report's tables, every cell in words."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+from markupsafe import Markup
+
+from assess.report import words
+from assess.report.figures import utilisation
+from assess.results import (
+    CalibratedCase,
+    CaseResult,
+    GirderAssessment,
+    GirderCalibration,
+    ReactionResult,
+    ReadingResult,
+    SectionResult,
+    SpanTrend,
+    SupportView,
+    TrendResult,
+)
+
+NO_CAPACITY = "no capacity given here"
+
+
+@dataclass(frozen=True, kw_only=True)
+class CaseCell:
+    """One section under one set of supports."""
+
+    utilisation: str
+    lines: list[str]
+
+
+@dataclass(frozen=True, kw_only=True)
+class SectionRow:
+    """One section, the three cases side by side."""
+
+    name: str
+    cases: list[CaseCell]
+    probability: str
+    status: str
+    mark: Markup
+
+
+def section_rows(girder: GirderAssessment, key: str) -> list[SectionRow]:
+    """Return the utilisation table of a girder; `key` makes the ids of its marks."""
+    return [_section_row(section, f"{key}-u{i}") for i, section in enumerate(girder.sections)]
+
+
+def _section_row(section: SectionResult, key: str) -> SectionRow:
+    name = words.section(section.effect, section.span, section.support)
+    case = section.calibrated
+    unit = "kN" if section.effect == "shear" else "kN m"
+    return SectionRow(
+        name=name,
+        cases=[
+            _cell(section.unyielding, unit, words.quantity(section.unyielding.utilisation, "", NO_CAPACITY)),
+            _cell(section.nominal, unit, words.quantity(section.nominal.utilisation, "", NO_CAPACITY)),
+            _cell(case, unit, calibrated_utilisation(case)),
+        ],
+        probability=words.probability(case.probability_over_1, NO_CAPACITY),
+        status=words.status(case.utilisation),
+        mark=Markup(
+            utilisation.mark(
+                case.utilisation, case.utilisation_low95, case.utilisation_high95, key=key, name=name
+            )
+        ),
+    )
+
+
+def calibrated_utilisation(case: CalibratedCase) -> str:
+    """Word the calibrated utilisation with its 95 % band."""
+    return words.interval(
+        case.utilisation, case.utilisation_low95, case.utilisation_high95, reason=NO_CAPACITY
+    )
+
+
+def _cell(case: CaseResult, unit: str, told: str) -> CaseCell:
+    no_factor = "no capacity" if case.capacity is None else "no live load effect to divide by"
+    of = "" if case.capacity is None else f" of {words.number(case.capacity)}"
+    return CaseCell(
+        utilisation=told,
+        lines=[
+            f"at {words.place(case.x_m)}",
+            f"rating factor {words.quantity(case.rating_factor, '', no_factor)}",
+            f"factored {words.number(case.factored)}{of} {unit}",
+            f"permanent {words.number(case.permanent)}, live {words.number(case.live)} {unit}",
+        ],
+    )
+
+
+def governing(girder: GirderAssessment) -> SectionResult | None:
+    """Return the section with the largest calibrated utilisation; None if none could be determined."""
+    found = [(s.calibrated.utilisation, s) for s in girder.sections]
+    rated = [(u, s) for u, s in found if u is not None and words.known(u)]
+    return max(rated, key=lambda pair: pair[0])[1] if rated else None
+
+
+def number_behind(girder: GirderAssessment | None) -> str:
+    """Word the number that a verdict rests on."""
+    section = None if girder is None else governing(girder)
+    if girder is None or section is None:
+        return (
+            "Governing utilisation " + words.not_determined("no section has a capacity to compare with") + "."
+        )
+    name = words.section(section.effect, section.span, section.support)
+    case = section.calibrated
+    unrated = sum(1 for s in girder.sections if s.calibrated.utilisation is None)
+    rest = f" Not determined for {unrated} other section(s): no capacity given." if unrated else ""
+    return (
+        f"Governing: {name} at {words.place(case.x_m)}, utilisation {calibrated_utilisation(case)} on "
+        f"calibrated pads, {words.quantity(section.unyielding.utilisation, '', NO_CAPACITY)} on unyielding "
+        f"supports; probability of exceeding 1: "
+        f"{words.probability(case.probability_over_1, NO_CAPACITY)}.{rest}"
+    )
+
+
+def reaction_rows(reactions: list[ReactionResult]) -> list[list[str]]:
+    """Return the reactions of a girder with uplift in words."""
+    return [
+        [
+            r.support,
+            words.number(r.unyielding_permanent_kN),
+            words.number(r.calibrated_permanent_kN),
+            words.number(r.calibrated_live_max_kN),
+            words.number(r.calibrated_live_min_kN),
+            _contact(r),
+        ]
+        for r in reactions
+    ]
+
+
+def _contact(reaction: ReactionResult) -> str:
+    least = reaction.calibrated_permanent_kN + min(reaction.calibrated_live_min_kN, 0.0)
+    if reaction.calibrated_permanent_kN < 0.0:
+        return f"uplift under permanent loads alone; least {words.number(least)} kN"
+    if least < 0.0:
+        return f"uplift when live load lifts: least {words.number(least)} kN"
+    return f"stays in contact: least {words.number(least)} kN"
+
+
+def pad_rows(supports: list[SupportView], calibration: GirderCalibration | None) -> list[list[str]]:
+    """Return the supports of a girder with stiffness in kN/mm, ratio, what told it, and the seat."""
+    pads = {p.support: p for p in calibration.pads} if calibration is not None else {}
+    rows = []
+    for s in supports:
+        pad = pads.get(s.support)
+        if s.kind == "pin":
+            stiffness, nominal, ratio, told = "pin: holds its level", "pin", "pin", "pin"
+        else:
+            why = "no calibration"
+            ratio = words.interval(s.ratio, s.ratio_low, s.ratio_high, reason=why)
+            told = words.told_by(s.data_share)
+            stiffness = nominal = words.not_determined(why)
+            if pad is not None:
+                stiffness = words.interval(
+                    pad.stiffness_kN_per_m / 1000.0,
+                    pad.low95_kN_per_m / 1000.0,
+                    pad.high95_kN_per_m / 1000.0,
+                    "kN/mm",
+                )
+                nominal = words.quantity(pad.nominal_kN_per_m / 1000.0, "kN/mm")
+        rows.append([s.support, words.place(s.x_m), stiffness, nominal, ratio, told, _seat(s)])
+    return rows
+
+
+def _seat(support: SupportView) -> str:
+    if support.seat_drop_mm is None:
+        return words.not_determined("no level of this seat")
+    sense = "down" if support.seat_drop_mm >= 0.0 else "up"
+    sd = words.not_determined("no sd given")
+    if support.seat_drop_sd_mm is not None:
+        sd = words.entered(support.seat_drop_sd_mm, "mm")
+    return f"{sense} {words.entered(abs(support.seat_drop_mm))} mm (sd {sd})"
+
+
+def pad_trend_rows(trend: TrendResult, girder: str) -> list[list[str]]:
+    """Return law and change per year of the pads of a girder."""
+    rows = []
+    for p in trend.pads:
+        if p.girder != girder:
+            continue
+        why = "one visit gives no rate" if p.visits < 2 else "the law has no steady rate"
+        step = "no step told"
+        if p.step_between is not None:
+            step = f"between {words.date(p.step_between[0])} and {words.date(p.step_between[1])}"
+        change = words.interval(p.change_per_year_percent, p.low95, p.high95, "% a year", why)
+        rows.append([p.support, str(p.visits), words.law(p.law), change, step])
+    return rows
+
+
+def span_trend_rows(trend: TrendResult, girder: str) -> list[list[str]]:
+    """Return the governing sections of a girder carried forward."""
+    return [
+        [
+            words.section(s.effect, s.span, s.support),
+            s.status,
+            words.quantity(s.utilisation_now, "", NO_CAPACITY),
+            words.probability(s.probability_over_1_now, NO_CAPACITY),
+            words.date(s.median_crossing, _no_date(s)),
+            words.date(s.earliest_5_percent, _no_date(s)),
+        ]
+        for s in trend.spans
+        if s.girder == girder
+    ]
+
+
+def _no_date(span: SpanTrend) -> str:
+    if span.utilisation_now is None:
+        return NO_CAPACITY
+    return "no crossing within the forecast"
+
+
+def reading_rows(readings: list[ReadingResult]) -> list[list[str]]:
+    """Return the readings beside the fit, suspects named in words."""
+    rows = []
+    for r in readings:
+        where = [r.support] if r.support is not None else []
+        where += [words.place(r.at_m)] if r.at_m is not None else []
+        residual = words.quantity(r.standardised_residual, "", "no other reading checks it")
+        remark = "suspect: past 3.29" if r.suspect else "within 3.29"
+        if r.standardised_residual is None and not r.suspect:
+            remark = "unchecked"
+        rows.append(
+            [
+                r.state,
+                r.quantity,
+                ", ".join(where) or words.not_determined("no place given"),
+                words.entered(r.observed, r.unit),
+                words.quantity(r.predicted, r.unit, "the fit gives none"),
+                words.entered(r.sd, r.unit),
+                residual,
+                remark,
+            ]
+        )
+    return rows
+
+
+def fit_sentence(calibration: GirderCalibration) -> str:
+    """Word the global test of a fit."""
+    freedom = calibration.degrees_of_freedom
+    told = (
+        f"{len(calibration.readings)} readings, chi-square {words.number(calibration.chi_square)} on "
+        f"{freedom} degrees of freedom, p value "
+        + words.quantity(calibration.p_value, "", "no degrees of freedom are left")
+        + ". "
+    )
+    if calibration.p_value is None:
+        return told + "Whether the girder as modelled explains the readings could not be tested."
+    if calibration.p_value < 0.05:
+        return told + "The girder as modelled does not explain the readings well."
+    return told + "Nothing in the readings speaks against the girder as modelled."
