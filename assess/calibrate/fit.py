@@ -58,6 +58,7 @@ class Fit:
     log_stiffness : (q,) estimate of ln k, k in kN/m
     covariance : (q, q) of ln k
     information : (q, q) inverse variance of ln k from the readings alone; singular where they tell nothing
+    information_vector : (q,) so that the readings' own likelihood is -x' information x / 2 + information_vector' x
     seat_drops : (r,) drops in m of the seats read in test states
     predicted : (m,) in the readings' SI units
     redundancy : (m,) share of each reading that the others check, 0 to 1
@@ -73,6 +74,7 @@ class Fit:
     log_stiffness: Floats
     covariance: Floats
     information: Floats
+    information_vector: Floats
     seat_drops: Floats
     predicted: Floats
     redundancy: Floats
@@ -171,11 +173,16 @@ def _summarise(
     told = model.size if prior is None else round(float(hat.sum()))
     freedom = max(0, model.value.size - told)
     pads = covariance[:q, :q]
+    information = _information(data, q)
+    vector = information @ theta[:q]
+    if prior is not None:  # at the optimum the readings pull as hard as the prior holds
+        vector = vector + (theta[:q] - prior.mean) / prior.sd**2
     share = np.ones(q) if prior is None else 1.0 - np.diag(pads) / prior.sd**2
     return Fit(
         log_stiffness=theta[:q],
         covariance=pads,
-        information=_information(data, q),
+        information=information,
+        information_vector=vector,
         seat_drops=theta[q:],
         predicted=model.predict(theta),
         redundancy=redundancy,

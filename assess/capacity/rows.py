@@ -1,0 +1,192 @@
+"""The rows of an assessment: which station governs, how far it is used, and how surely.
+
+Utilisation is the factored effect over the factored resistance. The rating factor has the form of the AASHTO
+Manual for Bridge Evaluation (6A.4.2), RF = (C - g_D D) / (g_L L), with the dynamic allowance and the live share
+in L. A permanent effect of the other sign than the checked one relieves and takes its own factor.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from assess.capacity.checks import Check, CheckPlan, Factors
+from assess.capacity.effects import Effects
+
+Floats = NDArray[np.float64]
+Ints = NDArray[np.intp]
+
+_SAMPLE = 32  # draws that choose the stations and train positions kept for all draws
+
+
+@dataclass(frozen=True, kw_only=True)
+class Case:
+    """One row under one set of supports: kN m, or kN for shear; effects signed, resistance positive."""
+
+    x: float
+    resistance: float
+    permanent: float
+    live: float
+    factored: float
+    utilisation: float  # NaN where the resistance is not given
+    rating_factor: float  # NaN where there is no adverse live effect or no resistance
+
+
+@dataclass(frozen=True, kw_only=True)
+class Row:
+    """A check with its governing case."""
+
+    check: Check
+    case: Case
+
+
+@dataclass(frozen=True, kw_only=True)
+class RowDraws:
+    """A check over draws of the supports: utilisation (draws,); NaN where the resistance is not given."""
+
+    check: Check
+    utilisation: Floats
+
+
+@dataclass(frozen=True, kw_only=True)
+class Demand:
+    """Signed effects at all stations in one sense: `sign` +1 for maxima, -1 for minima; arrays (..., p)."""
+
+    sign: float
+    permanent: Floats
+    live: Floats
+    factored: Floats
+
+
+def demand(factors: Factors, permanent: Floats, live: Floats, sign: float) -> Demand:
+    """Factor permanent and live effects (..., p) in the adverse sense `sign`."""
+    adverse = sign * permanent >= 0.0
+    factor = np.where(adverse, factors.permanent, factors.permanent_relieving)
+    return Demand(
+        sign=sign, permanent=permanent, live=live, factored=factor * permanent + factors.live * live
+    )
+
+
+def _senses(effect: str) -> tuple[float, ...]:
+    return {"sagging": (1.0,), "hogging": (-1.0,), "shear": (1.0, -1.0)}[effect]
+
+
+def response_of(effect: str) -> str:
+    """Name of the girder response a check looks at."""
+    return "shear" if effect == "shear" else "moment"
+
+
+def demands_at(
+    effects: Effects, factors: Factors, compliance: Floats, settlement: Floats
+) -> dict[tuple[str, float], Demand]:
+    """Factored moments and shears (p,) in both senses, by (response, sign), on one set of supports."""
+    demands: dict[tuple[str, float], Demand] = {}
+    for name in ("moment", "shear"):
+        permanent = effects.permanent(name, compliance, settlement)
+        live = effects.live(name, compliance)
+        for sign, extreme in ((1.0, live.maximum), (-1.0, live.minimum)):
+            demands[name, sign] = demand(factors, permanent, extreme, sign)
+    return demands
+
+
+def evaluate(effects: Effects, factors: Factors, compliance: Floats, settlement: Floats) -> list[Row]:
+    """Evaluate all rows of a plan on supports of compliance (n,) with seat drops (n,)."""
+    demands = demands_at(effects, factors, compliance, settlement)
+    rows = []
+    for check in effects.plan.checks:
+        senses = [demands[response_of(check.effect), sign] for sign in _senses(check.effect)]
+        rows.append(Row(check=check, case=_govern(effects.plan, check, senses, factors)))
+    return rows
+
+
+def _uses(plan: CheckPlan, check: Check, demands: list[Demand]) -> Floats:
+    """Use (senses, ..., c) of a check's stations: factored effect over resistance, not clipped.
+
+    A station without a given resistance is measured by the largest one given in the row (1 if there is none),
+    so that it still shows up where it governs.
+    """
+    resistance = plan.resistance(check.effect)[check.stations]
+    given = resistance[np.isfinite(resistance)]
+    ruler = np.where(np.isfinite(resistance), resistance, given.max() if given.size else 1.0)
+    return np.array([d.sign * d.factored[..., check.stations] / ruler for d in demands])
+
+
+def _govern(plan: CheckPlan, check: Check, demands: list[Demand], factors: Factors) -> Case:
+    uses = _uses(plan, check, demands)
+    sense, place = np.unravel_index(int(uses.argmax()), uses.shape)
+    chosen, station = demands[int(sense)], int(check.stations[int(place)])
+    permanent, live = float(chosen.permanent[station]), float(chosen.live[station])
+    factored, sign = float(chosen.factored[station]), chosen.sign
+    capacity = float(plan.resistance(check.effect)[station])
+    adverse = sign * factors.live * live
+    steady = sign * factored - adverse
+    return Case(
+        x=float(plan.x[station]),
+        resistance=capacity,
+        permanent=permanent,
+        live=live,
+        factored=factored,
+        utilisation=max(0.0, sign * factored) / capacity,
+        rating_factor=(capacity - steady) / adverse if adverse > 0.0 else np.nan,
+    )
+
+
+def evaluate_draws(
+    effects: Effects, factors: Factors, compliances: Floats, settlements: Floats
+) -> list[RowDraws]:
+    """Utilisation of every row over draws of the supports.
+
+    Parameters
+    ----------
+    effects : Effects
+    factors : Factors
+    compliances, settlements : (draws, n)
+
+    Notes
+    -----
+    A spread sample of the draws chooses the stations and train positions that can govern; all draws are then
+    evaluated on those in one batch.
+    """
+    sample = _spread(compliances, settlements)
+    kept = _governing_stations(effects, factors, compliances[sample], settlements[sample])
+    used: dict[int, Floats] = {}
+    for name in ("moment", "shear"):
+        rows = [i for i, check in enumerate(effects.plan.checks) if response_of(check.effect) == name]
+        stations = np.unique(np.concatenate([kept[i] for i in rows]))
+        permanent = effects.permanent(name, compliances, settlements, stations)
+        maximum, minimum = effects.live_draws(name, stations, compliances, sample)
+        for sign, live in ((1.0, maximum), (-1.0, minimum)):
+            factored = demand(factors, permanent, live, sign).factored
+            for i in rows:
+                check = effects.plan.checks[i]
+                if sign not in _senses(check.effect):
+                    continue
+                column = np.searchsorted(stations, kept[i])
+                resistance = effects.plan.resistance(check.effect)[kept[i]]
+                value = np.clip(sign * factored[:, column] / resistance, 0.0, None).max(axis=1)
+                used[i] = np.maximum(used[i], value) if i in used else value
+    return [RowDraws(check=check, utilisation=used[i]) for i, check in enumerate(effects.plan.checks)]
+
+
+def _governing_stations(
+    effects: Effects, factors: Factors, compliances: Floats, settlements: Floats
+) -> list[Ints]:
+    """Stations that govern each row for at least one of some sets of supports (sets, n)."""
+    found: list[set[int]] = [set() for _ in effects.plan.checks]
+    for compliance, settlement in zip(compliances, settlements, strict=True):
+        demands = demands_at(effects, factors, compliance, settlement)
+        for i, check in enumerate(effects.plan.checks):
+            own = [demands[response_of(check.effect), sign] for sign in _senses(check.effect)]
+            uses = _uses(effects.plan, check, own)
+            found[i].add(int(check.stations[int(uses.argmax()) % check.stations.size]))
+    return [np.array(sorted(stations), dtype=np.intp) for stations in found]
+
+
+def _spread(compliances: Floats, settlements: Floats) -> Ints:
+    """Indices of a sample that holds the extremes of every support and some of the rest."""
+    both = np.concatenate([compliances, settlements], axis=1)
+    ends = np.concatenate([both.argmin(axis=0), both.argmax(axis=0)])
+    rest = np.linspace(0, compliances.shape[0] - 1, min(_SAMPLE, compliances.shape[0])).astype(np.intp)
+    return np.unique(np.concatenate([ends, rest]))

@@ -1,0 +1,15 @@
+"""Pads over the years: steady or drift, and what that does to the utilisations."""
+
+from assess.trend.forecast import Crossing, PadFuture, crossing, pad_future
+from assess.trend.laws import PadLaw, Trend, VisitEstimate, fit_trend
+
+__all__ = [
+    "Crossing",
+    "PadFuture",
+    "PadLaw",
+    "Trend",
+    "VisitEstimate",
+    "crossing",
+    "fit_trend",
+    "pad_future",
+]

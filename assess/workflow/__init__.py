@@ -1,0 +1,29 @@
+"""Load, compute, keep: the only room that knows both the record and the mechanics."""
+
+from assess.workflow.assessing import assess
+from assess.workflow.calibrating import calibrate
+from assess.workflow.records import (
+    add_bridge,
+    draft_bridge,
+    init_record,
+    list_bridges,
+    list_visits,
+    log_visit,
+)
+from assess.workflow.study import Progress
+from assess.workflow.trending import trend
+from assess.workflow.viewing import report_view
+
+__all__ = [
+    "Progress",
+    "add_bridge",
+    "assess",
+    "calibrate",
+    "draft_bridge",
+    "init_record",
+    "list_bridges",
+    "list_visits",
+    "log_visit",
+    "report_view",
+    "trend",
+]

@@ -1,0 +1,323 @@
+"""Assess a bridge: unyielding, nominal and calibrated supports side by side."""
+
+from __future__ import annotations
+
+import datetime as dt
+from dataclasses import asdict, dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from assess.calibrate import draw_normal
+from assess.capacity import Case, Row, RowDraws, evaluate, evaluate_draws
+from assess.results import (
+    AssessmentResult,
+    CalibratedCase,
+    CaseResult,
+    GirderAssessment,
+    ReactionResult,
+    SectionResult,
+)
+from assess.workflow import cautions
+from assess.workflow.building import GirderModel
+from assess.workflow.calibrating import GirderFit, VisitFit, from_kept
+from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
+from db.records import KeptResult
+from db.store import open_record
+
+Floats = NDArray[np.float64]
+
+
+@dataclass(frozen=True, kw_only=True)
+class Settlement:
+    """A measured seat drop: m, with its standard deviation and the visit it was last measured on."""
+
+    value: float
+    sd: float
+    date: dt.date
+
+
+@dataclass(frozen=True, kw_only=True)
+class Supports:
+    """What is known of one girder's supports for the calibrated case.
+
+    Attributes
+    ----------
+    log_stiffness, covariance : (q,), (q, q) of ln k
+    source : visit of the calibration, None for nominal pads
+    settlements : by support id; none with nominal pads
+    """
+
+    log_stiffness: Floats
+    covariance: Floats
+    source: dt.date | None
+    fit: GirderFit | None
+    settlements: dict[str, Settlement]
+
+    def drops(self, model: GirderModel) -> Floats:
+        """Seat drops (n,), m."""
+        drops = np.zeros(model.n)
+        for support, one in self.settlements.items():
+            drops[model.doc.support_index(support)] = one.value
+        return drops
+
+    def draws(self, model: GirderModel, count: int, seed: int) -> tuple[Floats, Floats]:
+        """Draw compliances and seat drops, both (count, n)."""
+        log_stiffness = draw_normal(self.log_stiffness, self.covariance, count, seed)
+        return model.compliance(log_stiffness), self.drop_draws(model, count, seed)
+
+    def drop_draws(self, model: GirderModel, count: int, seed: int) -> Floats:
+        """Draw seat drops, (count, n)."""
+        sd = np.zeros(model.n)
+        for support, one in self.settlements.items():
+            sd[model.doc.support_index(support)] = one.sd
+        noise = np.random.default_rng([seed, 1]).standard_normal((count, model.n))
+        return np.asarray(self.drops(model) + sd * noise)
+
+
+def assess(
+    url: str, bridge: str, *, visit: dt.date | None = None, progress: Progress | None = None
+) -> AssessmentResult:
+    """Assess a bridge with its latest kept calibration (up to a visit, if one is named), and keep the result."""
+    with open_record(url) as record:
+        study = Study.fetch(record, bridge)
+        if visit is not None:
+            study.visit(visit)
+        result = assess_study(study, visit=visit, progress=progress or quiet)
+        record.keep(
+            KeptResult(
+                kind="assessment",
+                bridge=bridge,
+                visit=result.calibration_visit,
+                revision=study.kept.revision,
+                input_digest=result.input_digest,
+                options={"draws": result.draws, "visit": visit.isoformat() if visit else None},
+                seed=result.seed,
+                version=VERSION,
+                result=_plain(result),
+            )
+        )
+    return result
+
+
+def _plain(result: AssessmentResult) -> dict[str, object]:
+    plain = asdict(result)
+    plain["calibration_visit"] = result.calibration_visit and result.calibration_visit.isoformat()
+    return plain
+
+
+def kept_fits(study: Study, until: dt.date | None) -> dict[dt.date, tuple[VisitFit, KeptResult]]:
+    """The newest kept calibration of every visit up to a day, by date."""
+    newest: dict[dt.date, tuple[VisitFit, KeptResult]] = {}
+    for kept in study.calibrations:
+        if kept.visit is not None and (until is None or kept.visit <= until):
+            newest[kept.visit] = (from_kept(kept), kept)
+    return dict(sorted(newest.items()))
+
+
+def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> AssessmentResult:
+    """Assess a fetched bridge."""
+    fits = kept_fits(study, visit)
+    latest = max(fits) if fits else None
+    girders, said = [], _of_sources(study, fits, visit)
+    if not study.bridge.live:
+        said.append(cautions.no_live(study.bridge.id))
+    digests = []
+    for i, girder in enumerate(study.bridge.girders):
+        progress(f"assessing {girder.id}", i, len(study.bridge.girders))
+        model = study.model(girder.id)
+        supports, about = supports_of(study, model, fits, visit)
+        shown, factored = _assess_girder(model, supports)
+        girders.append(shown)
+        said += about
+        said += cautions.uplift(girder.id, shown.reactions, factored)
+        said += cautions.of_sections(girder.id, shown.sections)
+        digests += [
+            f"{s} {one.value!r} {one.sd!r} {one.date}" for s, one in sorted(supports.settlements.items())
+        ]
+    progress("assessed", len(study.bridge.girders), len(study.bridge.girders))
+    sources = [f"{kept.input_digest} {sorted(kept.options.items())}" for _, kept in fits.values()]
+    return AssessmentResult(
+        bridge=study.bridge.id,
+        calibration_visit=latest,
+        version=VERSION,
+        input_digest=study.digest(*sources, *digests),
+        seed=SEED,
+        draws=DRAWS,
+        girders=girders,
+        cautions=[*said, cautions.PERMANENT_STIFFNESS, *cautions.STANDING],
+    )
+
+
+def _of_sources(
+    study: Study, fits: dict[dt.date, tuple[VisitFit, KeptResult]], until: dt.date | None
+) -> list[str]:
+    if not fits:
+        return [cautions.no_calibration(study.bridge.id)]
+    latest = max(fits)
+    said = []
+    kept = fits[latest][1]
+    if kept.revision != study.kept.revision:
+        said.append(cautions.stale(latest, kept.revision, study.kept.revision))
+    newer = [v.date for v in study.until(until) if v.date > latest and test_readings(v)]
+    if newer:
+        said.append(cautions.superseded_visit(latest, newer[-1]))
+    return said
+
+
+def supports_of(
+    study: Study, model: GirderModel, fits: dict[dt.date, tuple[VisitFit, KeptResult]], until: dt.date | None
+) -> tuple[Supports, list[str]]:
+    """What is known of a girder's supports up to a day, and the cautions on it."""
+    name = model.doc.id
+    measured = settlements(study, name, until)
+    own = {date: one.fits[name] for date, (one, _) in fits.items() if _usable(model, one, name)}
+    if not fits:
+        left = [cautions.settlement_without_calibration(name, s, 1e3 * m.value) for s, m in measured.items()]
+        nominal = Supports(
+            log_stiffness=model.nominal,
+            covariance=np.diag(model.prior.sd**2),
+            source=None,
+            fit=None,
+            settlements={},
+        )
+        return nominal, left
+    said = [
+        cautions.settlement_used(name, support, 1e3 * one.value, 1e3 * one.sd, one.date)
+        for support, one in measured.items()
+    ]
+    if not own:
+        if model.pads.size:
+            said.append(cautions.girder_not_calibrated(name))
+        return (
+            Supports(
+                log_stiffness=model.nominal,
+                covariance=np.diag(model.prior.sd**2),
+                source=None,
+                fit=None,
+                settlements=measured,
+            ),
+            said,
+        )
+    date = max(own)
+    if date != max(fits):
+        said.append(cautions.older_girder(name, date, max(fits)))
+    said += _forgotten(model, own, date)
+    return (
+        Supports(
+            log_stiffness=own[date].log_stiffness,
+            covariance=own[date].covariance,
+            source=date,
+            fit=own[date],
+            settlements=measured,
+        ),
+        said,
+    )
+
+
+def _usable(model: GirderModel, one: VisitFit, girder: str) -> bool:
+    return girder in one.fits and one.fits[girder].supports == model.pad_ids
+
+
+def _forgotten(model: GirderModel, own: dict[dt.date, GirderFit], date: dt.date) -> list[str]:
+    said = []
+    for i, support in enumerate(model.pad_ids):
+        if own[date].data_share[i] >= cautions.TOLD:
+            continue
+        telling = [d for d, fit in own.items() if d < date and fit.data_share[i] >= cautions.TOLD]
+        if not telling:
+            continue
+        ratio = float(np.exp(own[max(telling)].log_stiffness[i] - model.nominal[i]))
+        said.append(cautions.forgotten_pad(model.doc.id, support, date, max(telling), ratio))
+    return said
+
+
+def settlements(study: Study, girder: str, until: dt.date | None) -> dict[str, Settlement]:
+    """The last measured seat settlement of each support of a girder; repeats of one visit are pooled by weight."""
+    found: dict[str, Settlement] = {}
+    for visit in study.until(until):
+        values: dict[str, list[tuple[float, float]]] = {}
+        for reading in visit.readings:
+            permanent = visit.state(reading.state).vehicle is None
+            if (
+                reading.girder == girder
+                and reading.quantity == "settlement"
+                and permanent
+                and reading.support
+            ):
+                values.setdefault(reading.support, []).append((reading.value, reading.sd))
+        for support, pairs in values.items():
+            value, sd = np.array(pairs).T
+            weight = sd**-2.0
+            found[support] = Settlement(
+                value=float((weight @ value) / weight.sum()), sd=float(weight.sum() ** -0.5), date=visit.date
+            )
+    return found
+
+
+def _assess_girder(model: GirderModel, supports: Supports) -> tuple[GirderAssessment, list[float]]:
+    drops, none = supports.drops(model), np.zeros(model.n)
+    calibrated = model.compliance(supports.log_stiffness)
+    firm = evaluate(model.effects, model.factors, model.unyielding, none)
+    nominal = evaluate(model.effects, model.factors, model.compliance(model.nominal), none)
+    found = evaluate(model.effects, model.factors, calibrated, drops)
+    draws = evaluate_draws(model.effects, model.factors, *supports.draws(model, DRAWS, SEED))
+    sections = [_section(model, *four) for four in zip(firm, nominal, found, draws, strict=True)]
+    reactions, factored = _reactions(model, calibrated, drops)
+    return GirderAssessment(girder=model.doc.id, sections=sections, reactions=reactions), factored
+
+
+def _section(
+    model: GirderModel, unyielding: Row, nominal: Row, calibrated: Row, drawn: RowDraws
+) -> SectionResult:
+    check = calibrated.check
+    low = high = over = None
+    if np.all(np.isfinite(drawn.utilisation)):
+        low, high = (float(v) for v in np.quantile(drawn.utilisation, [0.025, 0.975]))
+        over = float((drawn.utilisation > 1.0).mean())
+    return SectionResult(
+        effect=check.effect,
+        span=check.span + 1 if check.span >= 0 else None,
+        support=model.doc.supports[check.support].id if check.support >= 0 else None,
+        unyielding=CaseResult(**_case(unyielding.case)),
+        nominal=CaseResult(**_case(nominal.case)),
+        calibrated=CalibratedCase(
+            **_case(calibrated.case), utilisation_low95=low, utilisation_high95=high, probability_over_1=over
+        ),
+    )
+
+
+def _case(case: Case) -> dict[str, float]:
+    values = {
+        "x_m": case.x,
+        "capacity": case.resistance,
+        "permanent": case.permanent,
+        "live": case.live,
+        "factored": case.factored,
+        "utilisation": case.utilisation,
+        "rating_factor": case.rating_factor,
+    }
+    return {key: value if np.isfinite(value) else None for key, value in values.items()}  # type: ignore[misc]
+
+
+def _reactions(
+    model: GirderModel, calibrated: Floats, drops: Floats
+) -> tuple[list[ReactionResult], list[float]]:
+    """Reactions as shown, and the least reaction under factored loads, kN."""
+    effects, condensed = model.effects, model.condensed
+    firm = condensed.solve(model.unyielding, effects.permanent_forces).reaction
+    soft = condensed.solve(calibrated, effects.permanent_forces, drops).reaction
+    highest, lowest = effects.reactions(calibrated)
+    rows = [
+        ReactionResult(
+            support=support.id,
+            unyielding_permanent_kN=float(firm[i]),
+            calibrated_permanent_kN=float(soft[i]),
+            calibrated_live_max_kN=float(highest[i]),
+            calibrated_live_min_kN=float(lowest[i]),
+        )
+        for i, support in enumerate(model.doc.supports)
+    ]
+    factors = model.factors
+    steady = np.where(soft >= 0.0, factors.permanent_relieving, factors.permanent) * soft
+    return rows, [float(v) for v in steady + factors.live * lowest]

@@ -1,0 +1,330 @@
+"""Every caution in words, so that all outputs say the same. None is ever left out because it is inconvenient."""
+
+from __future__ import annotations
+
+import datetime as dt
+from collections.abc import Sequence
+
+from assess.calibrate import SUSPECT, Fit
+from assess.results import GirderCalibration, ReactionResult, SectionResult
+from db.documents import ReadingDoc, VisitDoc
+
+STANDING = (
+    (
+        "These figures support the engineer in charge and never replace a judgement on site: a licensed engineer must review "
+        "them, local codes and the owner's standards govern, and closure on sight of distress needs no calculation."
+    ),
+    "Stiffness seen under a test load may not be there at ultimate load: movements prove stiffness, not strength.",
+)
+
+TOLD = 0.5  # data share below which a pad is told by the assumption
+REFERENCE_TEMPERATURE = 20.0  # degC
+_FAR = 10.0  # K from the reference that calls for a word
+_MISFIT = 0.05
+
+
+def of_fit(girder: str, shown: GirderCalibration, readings: Sequence[ReadingDoc], found: Fit) -> list[str]:
+    """Cautions on one girder's fit."""
+    said = []
+    for pad in shown.pads:
+        if pad.data_share < TOLD:
+            said.append(
+                f'{girder}: the pad at "{pad.support}" is told by the assumption, not by the readings '
+                f"(data share {pad.data_share:.0%}); read its compression under a load near it."
+            )
+        if pad.ratio_to_nominal > 3.0 or pad.ratio_to_nominal < 1.0 / 3.0:
+            way = "stiffer" if pad.ratio_to_nominal > 1.0 else "softer"
+            said.append(
+                f'{girder}: the pad at "{pad.support}" comes out {pad.ratio_to_nominal:.3g} times nominal, more than '
+                f"threefold {way}: check the reading, the nominal value and the pad itself before relying on it."
+            )
+    suspects = [
+        (abs(found.standardised[j]), reading) for j, reading in enumerate(readings) if found.suspect[j]
+    ]
+    if suspects:
+        worst, reading = max(suspects, key=lambda pair: pair[0])
+        others = (
+            f"; {len(suspects) - 1} more pass it too, perhaps because of this one"
+            if len(suspects) > 1
+            else ""
+        )
+        said.append(
+            f"{girder}: suspect reading: {_named(reading)} stands {worst:.1f} standard deviations off "
+            f"(limit {SUSPECT}){others}. It is still in the fit, which it biases: repeat it, or find the slip."
+        )
+    if shown.degrees_of_freedom == 0:
+        said.append(
+            f"{girder}: no reading is left over to check the fit: an error in any of them goes straight into a stiffness."
+        )
+    elif shown.p_value is not None and shown.p_value < _MISFIT:
+        said.append(
+            f"{girder}: misfit: the readings do not agree with this girder within their standard deviations "
+            f"(chi-square {shown.chi_square:.3g} on {shown.degrees_of_freedom} degrees of freedom, p {shown.p_value:.2g}); "
+            "the intervals are then too narrow, and something else may be moving (seats, girder stiffness, temperature)."
+        )
+    unchecked = [reading for j, reading in enumerate(readings) if found.redundancy[j] < 0.05]
+    if unchecked and shown.degrees_of_freedom:
+        names = "; ".join(_named(reading) for reading in unchecked[:3])
+        more = f" and {len(unchecked) - 3} more" if len(unchecked) > 3 else ""
+        said.append(
+            f"{girder}: hardly checked by any other reading, so that a slip would not show: {names}{more}."
+        )
+    return said
+
+
+def of_visit(visit: VisitDoc) -> list[str]:
+    """Cautions on a visit as a whole."""
+    said = []
+    held = [r for r in visit.readings if visit.state(r.state).vehicle is None]
+    other = sorted({r.quantity for r in held if r.quantity != "settlement"})
+    if other:
+        said.append(
+            f"{visit.date}: readings of the permanent state ({', '.join(other)}) are kept but not fitted yet; "
+            "measured seat settlements enter the assessment, the rest of the permanent state does not."
+        )
+    moved = [
+        r for r in visit.readings if r.quantity == "settlement" and visit.state(r.state).vehicle is not None
+    ]
+    for r in moved:
+        said.append(
+            f'{visit.date}: the seat "{r.support}" ({r.girder}) was read to move in test state {r.state}; it is fitted as a '
+            "movement of that state only. If the ground gives under a test load, ask why before testing again."
+        )
+    t = visit.pad_temperature
+    if t is None:
+        said.append(
+            f"{visit.date}: no pad temperature was recorded; cold rubber is stiffer, and this visit cannot be corrected."
+        )
+    elif abs(t - REFERENCE_TEMPERATURE) > _FAR:
+        said.append(
+            f"{visit.date}: pads at {t:.3g} degC; the stiffnesses hold at that temperature and are not brought to "
+            f"{REFERENCE_TEMPERATURE:.0f} degC. Cold pads read stiffer than they are in summer."
+        )
+    return said
+
+
+def _named(reading: ReadingDoc) -> str:
+    where = f'at "{reading.support}"' if reading.support is not None else f"at {reading.at:.4g} m"
+    remark = f" ({reading.remark})" if reading.remark else ""
+    return f"{reading.state} {reading.quantity} {where}, {reading.value_entered}{remark}"
+
+
+def not_read(girder: str, date: dt.date) -> str:
+    """Caution: a girder without readings in test states."""
+    return (
+        f"{girder}: nothing was read under a test load on {date}; its pads are not calibrated by this visit."
+    )
+
+
+def no_pads(girder: str) -> str:
+    """Caution: a girder with no pads."""
+    return f"{girder}: all its supports hold their level; there is no pad to calibrate."
+
+
+def left_out(date: dt.date) -> str:
+    """Caution: a visit without readings in test states."""
+    return f"{date}: nothing was read under a test load; this visit was not calibrated."
+
+
+# assessment --------------------------------------------------------------------------------------
+
+
+def no_calibration(bridge: str) -> str:
+    """Caution: nominal pads."""
+    return (
+        f"No calibration is kept for {bridge}: the calibrated case shows nominal pads, its band the spread assumed for "
+        "them, and no measured settlement."
+    )
+
+
+def stale(date: dt.date, made_on: int, newest: int) -> str:
+    """Caution: a calibration that rests on an older bridge file."""
+    return (
+        f"The calibration of {date} was made on revision {made_on} of the bridge file, the assessment is on revision "
+        f"{newest}: calibrate again."
+    )
+
+
+def superseded_visit(date: dt.date, newer: dt.date) -> str:
+    """Caution: a newer visit is there, uncalibrated."""
+    return f"The visit of {newer} has readings under test loads that are not calibrated yet; the calibration used is of {date}."
+
+
+def girder_not_calibrated(girder: str) -> str:
+    """Caution: a girder with nominal pads beside calibrated ones."""
+    return f"{girder}: no calibration is kept for this girder: its calibrated case shows nominal pads."
+
+
+def older_girder(girder: str, date: dt.date, newest: dt.date) -> str:
+    """Caution: a girder calibrated by an older visit than the others."""
+    return f"{girder}: not calibrated by the visit of {newest}; the calibration of {date} is used."
+
+
+def forgotten_pad(girder: str, support: str, date: dt.date, earlier: dt.date, ratio: float) -> str:
+    """Caution: a pad that the last visit does not tell but an earlier one did."""
+    return (
+        f'{girder}: the pad at "{support}" is not told by the visit of {date} and stands near its nominal value here, but '
+        f"on {earlier} it was found at {ratio:.3g} times nominal: read it again before relying on this case."
+    )
+
+
+def settlement_used(girder: str, support: str, mm: float, sd_mm: float, date: dt.date) -> str:
+    """Caution: a measured settlement in the permanent effects."""
+    return (
+        f'{girder}: the seat "{support}" enters {mm:.3g} mm lower (sd {sd_mm:.2g} mm, measured {date}); the girder\'s full '
+        "stiffness answers it, without relief by creep of the girder."
+    )
+
+
+def settlement_without_calibration(girder: str, support: str, mm: float) -> str:
+    """Caution: a measured settlement that does not enter, because nothing is calibrated."""
+    return f'{girder}: a seat settlement of {mm:.3g} mm at "{support}" is in the record but does not enter nominal pads.'
+
+
+def uplift(girder: str, reactions: Sequence[ReactionResult], factored: Sequence[float]) -> list[str]:
+    """Cautions on supports that lift, or would under factored loads (kN, factored)."""
+    said = []
+    for row, low in zip(reactions, factored, strict=True):
+        plain = row.calibrated_permanent_kN + row.calibrated_live_min_kN
+        if row.calibrated_permanent_kN < 0.0:
+            said.append(
+                f'{girder}: uplift at "{row.support}" under permanent load alone ({row.calibrated_permanent_kN:.3g} kN): the '
+                "pad would leave its seat, and this linear girder no longer holds; its figures are not to be used there."
+            )
+        elif plain < 0.0:
+            said.append(
+                f'{girder}: uplift at "{row.support}" as live load passes ({plain:.3g} kN): the pad would leave its seat, and '
+                "this linear girder no longer holds for those positions."
+            )
+        elif low < 0.0:
+            said.append(
+                f'{girder}: uplift at "{row.support}" under factored loads ({low:.3g} kN); unfactored it keeps {plain:.3g} kN.'
+            )
+    return said
+
+
+def of_sections(girder: str, sections: Sequence[SectionResult]) -> list[str]:
+    """Cautions on rows that are over, may be over, or cannot be judged."""
+    said = []
+    for row in sections:
+        name = f"{girder}: {section_name(row.effect, row.span, row.support)}"
+        case = row.calibrated
+        if case.utilisation is None:
+            said.append(
+                f"{name}: utilisation not determined: no {row.effect} capacity is given for the section at {case.x_m:.4g} m."
+            )
+            continue
+        if case.utilisation > 1.0:
+            said.append(f"{name} is over its factored capacity: utilisation {case.utilisation:.3g}.")
+        elif case.probability_over_1 is not None and case.probability_over_1 >= 0.05:
+            said.append(
+                f"{name} may be over its factored capacity: probability {case.probability_over_1:.0%}."
+            )
+        kinder = row.unyielding.utilisation
+        if kinder is not None and case.utilisation < kinder - 0.05:
+            said.append(
+                f"{name}: the measured supports relieve it (utilisation {case.utilisation:.3g}, {kinder:.3g} on unyielding "
+                "supports); such relief can go when pads stiffen, settle or are replaced: do not bank it."
+            )
+    return said
+
+
+def section_name(effect: str, span: int | None, support: str | None) -> str:
+    """Name a row in words."""
+    if effect == "sagging":
+        return f"sagging in span {span}"
+    if effect == "hogging":
+        return f'hogging at "{support}"'
+    return f'shear in span {span} at "{support}"'
+
+
+def no_live(bridge: str) -> str:
+    """Caution: nothing to assess for."""
+    return f"{bridge}: the bridge file names no live load: utilisations are of permanent load alone."
+
+
+PERMANENT_STIFFNESS = "Permanent effects use the pads' short-term stiffness; creep of the pads under permanent load is not in them."
+
+
+# trend -------------------------------------------------------------------------------------------
+
+
+def one_visit(girder: str) -> str:
+    """Caution: no rate."""
+    return f"{girder}: one calibrated visit gives no rate of change; nothing is carried forward."
+
+
+def two_visits(girder: str) -> str:
+    """Caution: a rate from two visits."""
+    return f"{girder}: the rates rest on two visits only: their intervals are wide, and a slip in either visit shows as a change."
+
+
+def rate_untold(girder: str, support: str) -> str:
+    """Caution: no rate for a pad."""
+    return f'{girder}: rate of the pad at "{support}" not determined: fewer than two visits tell this pad well enough.'
+
+
+def scattered(girder: str, support: str, ratio: float) -> str:
+    """Caution: visits that disagree with a line."""
+    return (
+        f'{girder}: the pad at "{support}" does not follow a straight line within its intervals (they were widened '
+        f"{ratio:.2g} times): think of a step between two visits, a bad reading, or temperature."
+    )
+
+
+def jump(girder: str, support: str, change: float, first: dt.date, second: dt.date) -> str:
+    """Caution: a change between two visits that is larger than their intervals."""
+    way = "stiffer" if change > 0.0 else "softer"
+    return (
+        f'{girder}: between {first} and {second} the pad at "{support}" became {abs(change):.0%} {way}, more than the '
+        "intervals of the two visits allow: look at this pad."
+    )
+
+
+def mixed_temperatures(dates: Sequence[dt.date], supports: Sequence[str]) -> str:
+    """Caution: visits at very different temperatures, uncorrected."""
+    days = ", ".join(date.isoformat() for date in dates)
+    pads = ", ".join(f'"{support}"' for support in supports)
+    return (
+        f"Visits at pad temperatures more than {_FAR:.0f} K from {REFERENCE_TEMPERATURE:.0f} degC or unknown ({days}) are compared without "
+        f"correction for pads that have no temperature_coefficient ({pads}): a cold visit shows as stiffening."
+    )
+
+
+def far_extrapolation(limit: dt.date) -> str:
+    """Caution: dates beyond twice the span of the visits."""
+    return f"Dates after {limit} lie further ahead than twice the span of the visits: read them as a direction, not a date."
+
+
+def settlement_not_forecast(girder: str, support: str) -> str:
+    """Caution: settlements are held at their last value."""
+    return f'{girder}: the seat settlement at "{support}" is held at its last measured value; it is not carried forward.'
+
+
+def overdue(date: dt.date) -> str:
+    """Caution: the next visit is due or overdue."""
+    return (
+        f"The next visit was due by {date}: what is shown is out of date, and its present state is unknown."
+    )
+
+
+def assumed_interval(years: float) -> str:
+    """Caution: no interval given by the owner."""
+    return f"The bridge file gives no visit_interval; {years:g} years between visits are assumed (common practice, no source)."
+
+
+def high_chance(name: str, probability: float) -> str:
+    """Caution: chance of being over although the median is within."""
+    return (
+        f"{name}: the chance of being over 1 already is {probability:.0%}, although the estimate is below it."
+    )
+
+
+def over_now(name: str, utilisation: float) -> str:
+    """Caution: over today."""
+    return f"{name} is over its factored capacity today: utilisation {utilisation:.3g}."
+
+
+def is_far_from_reference(temperature: float | None) -> bool:
+    """Tell whether a visit's temperature is unknown or far from the reference."""
+    return temperature is None or abs(temperature - REFERENCE_TEMPERATURE) > _FAR

@@ -1,0 +1,91 @@
+"""What is asked about one bridge: its file, its visits and its kept calibrations, fetched once."""
+
+from __future__ import annotations
+
+import datetime as dt
+import hashlib
+from collections.abc import Callable
+from dataclasses import dataclass, field
+
+from assess import __version__
+from assess.workflow.building import GirderModel
+from db.documents import BridgeDoc, VisitDoc
+from db.errors import BedstoneError
+from db.records import KeptBridge, KeptResult
+from db.store import Record
+
+Progress = Callable[[str, int, int], None]
+"""Called with what is being done, how much is done, and how much there is in all."""
+
+VERSION = __version__
+SEED = 1
+DRAWS = 4000
+
+
+def quiet(what: str, done: int, total: int) -> None:
+    """Show no progress."""
+
+
+@dataclass(kw_only=True)
+class Study:
+    """One bridge of a record, with its girders built as they are needed."""
+
+    kept: KeptBridge
+    visits: list[VisitDoc]
+    calibrations: list[KeptResult]
+    _models: dict[str, GirderModel] = field(default_factory=dict)
+
+    @classmethod
+    def fetch(cls, record: Record, bridge: str) -> Study:
+        """Fetch a bridge with all that is kept of it."""
+        return cls(
+            kept=record.bridge(bridge),
+            visits=record.visit_docs(bridge),
+            calibrations=record.results(bridge, "calibration"),
+        )
+
+    @property
+    def bridge(self) -> BridgeDoc:
+        """The newest revision of the bridge file."""
+        return self.kept.document
+
+    def model(self, girder: str) -> GirderModel:
+        """A girder line, built once."""
+        if girder not in self._models:
+            self._models[girder] = GirderModel(self.bridge, self.bridge.girder(girder))
+        return self._models[girder]
+
+    def visit(self, date: dt.date) -> VisitDoc:
+        """The visit of a day; BedstoneError that lists the days if there is none."""
+        for visit in self.visits:
+            if visit.date == date:
+                return visit
+        known = ", ".join(v.date.isoformat() for v in self.visits) or "none yet"
+        raise BedstoneError(
+            f"{self.bridge.id} has no visit on {date.isoformat()}", field="--visit", remedy=f"visits: {known}"
+        )
+
+    def until(self, date: dt.date | None) -> list[VisitDoc]:
+        """All visits up to a day, all of them for None."""
+        return [visit for visit in self.visits if date is None or visit.date <= date]
+
+    def digest(self, *parts: str) -> str:
+        """Digest of the bridge file and of whatever else a result rests on."""
+        return digest_of(self.bridge.digest, *parts)
+
+
+def digest_of(*parts: str) -> str:
+    """sha256 over parts, each ended by a newline."""
+    return hashlib.sha256("".join(f"{part}\n" for part in parts).encode()).hexdigest()
+
+
+def is_test(visit: VisitDoc, state: str) -> bool:
+    """Tell whether a load state is a test state: one with a vehicle."""
+    return visit.state(state).vehicle is not None
+
+
+def test_readings(visit: VisitDoc, girder: str | None = None) -> int:
+    """Number of readings in test states, of one girder or of all."""
+    return sum(
+        is_test(visit, reading.state) and girder in (None, reading.girder) for reading in visit.readings
+    )
