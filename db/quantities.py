@@ -229,7 +229,7 @@ def to_unit(value_si: float, unit: str) -> float:
 def _read(value: object, dimension: str, right: str) -> Quantity:
     if not isinstance(value, str):
         kind = "a number without a unit" if isinstance(value, int | float) else "not text"
-        raise BedstoneError(f"{shown(str(value))} is {kind}", remedy=right)
+        raise BedstoneError(f"{shown(value)} is {kind}", remedy=right)
     text = value.translate(_SPACES).strip()
     if not text:
         raise BedstoneError("it is empty", remedy=right)

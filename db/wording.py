@@ -10,8 +10,22 @@ _SHOWN = 60
 
 def shown(text: object) -> str:
     """Return text for an error line: printable, no quotes of its own, at most 60 characters."""
-    tame = "".join(c if c.isprintable() else "?" for c in str(text)[: _SHOWN + 1]).replace('"', "'")
-    return tame if len(tame) <= _SHOWN else tame[: _SHOWN - 1] + "…"
+    try:
+        plain = str(text)
+    except ValueError:  # a number of thousands of digits
+        return "a number too long to show"
+    short = printable(plain[: _SHOWN + 1]).replace('"', "'")
+    return short if len(short) <= _SHOWN else short[: _SHOWN - 1] + "…"
+
+
+def printable(text: str) -> str:
+    """Return text with a question mark for every character that is no mark on paper."""
+    return "".join(c if c.isprintable() else "?" for c in text)
+
+
+def written(value: object) -> str:
+    """Return a value as it stands in a file: text in quotes, anything else bare."""
+    return f'"{shown(value)}"' if isinstance(value, str) else shown(value)
 
 
 def suggestion(word: str, known: Iterable[str]) -> str:

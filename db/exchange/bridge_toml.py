@@ -18,7 +18,7 @@ from db.exchange.fields import Fields, refuse_duplicates
 from db.exchange.files import digest_of, parse_toml, read_text, refuse_controls
 from db.exchange.girder_toml import GIRDER, girder
 from db.quantities import read_quantity
-from db.wording import shown
+from db.wording import printable, shown
 
 WHAT = "bridge file"
 STIFFEST_KN_PER_M2 = 1e9  # 1000 GPa
@@ -41,7 +41,7 @@ def read_bridge(path: Path) -> BridgeDoc:
     BedstoneError
         If the file cannot be read or anything in it is wrong; names file, field and remedy.
     """
-    return parse_bridge(read_text(Path(path), what=WHAT), file=str(path))
+    return parse_bridge(read_text(Path(path), what=WHAT), file=printable(str(path)))
 
 
 def parse_bridge(text: str, *, file: str) -> BridgeDoc:

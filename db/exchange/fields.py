@@ -9,7 +9,7 @@ from typing import Any
 
 from db.errors import BedstoneError
 from db.quantities import PLACEHOLDERS, Quantity, read_quantity
-from db.wording import listed, shown, suggestion
+from db.wording import listed, shown, suggestion, written
 
 LONGEST_ID = 100
 LONGEST_TEXT = 10_000
@@ -32,7 +32,9 @@ class Fields:
         self.file = file
         self.path = path
         if not isinstance(table, dict):
-            raise self.error("", "it is not a table", f"write it as a table with the fields {known.split()}")
+            raise self.error(
+                "", "it is not a table", f"write it as a table with the fields {', '.join(known.split())}"
+            )
         self.table: dict[str, Any] = table
         names = known.split()
         for name in table:
@@ -64,7 +66,7 @@ class Fields:
         """Check that `format = 1` stands there."""
         value = self.need("format", "1")
         if isinstance(value, bool) or value != 1 or not isinstance(value, int):
-            problem = f"{shown(value)} is no format of a {what} that this version reads"
+            problem = f"{written(value)} is no format of a {what} that this version reads"
             raise self.error("format", problem, "write format = 1")
 
     def text(self, name: str, default: str | None = None) -> str:
@@ -73,7 +75,7 @@ class Fields:
             return default
         value = self.need(name, '"text"')
         if not isinstance(value, str):
-            raise self.error(name, f"{shown(value)} is not text", f'write it in quotes: {name} = "..."')
+            raise self.error(name, f"{written(value)} is not text", f'write it in quotes: {name} = "..."')
         if len(value) > LONGEST_TEXT:
             raise self.error(name, f"it has more than {LONGEST_TEXT} characters", "write it shorter")
         if value.strip() in PLACEHOLDERS:
@@ -123,7 +125,7 @@ class Fields:
             return default
         value = self.need(name, "1.0")
         if isinstance(value, bool) or not isinstance(value, int | float):
-            raise self.error(name, f"{shown(repr(value))} is not a number", "write a number without quotes")
+            raise self.error(name, f"{written(value)} is not a number", "write a number without quotes")
         if not abs(value) < 1e300:
             raise self.error(name, f"{shown(value)} is not a finite number", "write a finite number")
         if not value > over:
@@ -137,7 +139,7 @@ class Fields:
         value = self.table.get(name, default)
         if isinstance(value, bool) or not isinstance(value, int) or not least <= value <= most:
             remedy = f"write a whole number from {least} to {most}"
-            raise self.error(name, f"{shown(repr(value))} is not a count", remedy)
+            raise self.error(name, f"{written(value)} is not a count", remedy)
         return value
 
     def date(self, name: str, default: dt.date | None = None) -> dt.date | None:
@@ -146,7 +148,7 @@ class Fields:
             return default
         value = self.table[name]
         if isinstance(value, dt.datetime) or not isinstance(value, dt.date):
-            problem = f"{shown(repr(value) if isinstance(value, str) else value)} is not a date"
+            problem = f"{written(value)} is not a date"
             raise self.error(name, problem, f"write it without quotes and time: {name} = 2024-05-14")
         return value
 

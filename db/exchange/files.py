@@ -3,17 +3,18 @@
 from __future__ import annotations
 
 import hashlib
+import re
 import tomllib
 from pathlib import Path
 from typing import Any
 
 from db.errors import BedstoneError
-from db.wording import shown
+from db.wording import printable
 
 LARGEST = 20_000_000
 """No bridge file, visit file or table of readings is larger, in bytes."""
 
-_ALLOWED_CONTROLS = "\t\n\r"
+_CONTROLS = re.compile("[\x00-\x08\x0b\x0c\x0e-\x1f\x7f\ud800-\udfff]")
 
 
 def read_text(path: Path, *, what: str) -> str:
@@ -31,7 +32,7 @@ def read_text(path: Path, *, what: str) -> str:
     BedstoneError
         If it is missing, no regular file, unreadable, too large or not UTF-8 text.
     """
-    file = str(path)
+    file = printable(str(path))
     try:
         if path.is_dir():
             raise BedstoneError("it is a folder", file=file, remedy=f"name the {what} itself")
@@ -45,7 +46,7 @@ def read_text(path: Path, *, what: str) -> str:
     except (OSError, ValueError) as error:  # ValueError: a NUL in the name
         reason = getattr(error, "strerror", None) or str(error)
         remedy = f"check the name and the permissions of the {what}"
-        raise BedstoneError(f"it cannot be read ({reason})", file=shown(file), remedy=remedy) from error
+        raise BedstoneError(f"it cannot be read ({reason})", file=file, remedy=remedy) from error
     try:
         text = data.decode("utf-8-sig")
     except UnicodeDecodeError as error:
@@ -58,12 +59,11 @@ def read_text(path: Path, *, what: str) -> str:
 
 def refuse_controls(text: str, *, file: str, what: str) -> None:
     """Raise BedstoneError if the text holds a control character that no text file has."""
-    for number, line in enumerate(text.split("\n"), start=1):
-        if not line.isprintable():
-            for c in line:
-                if (ord(c) < 32 and c not in _ALLOWED_CONTROLS) or ord(c) == 127 or 0xD800 <= ord(c) < 0xE000:
-                    problem = f"line {number} holds the control character {ord(c):#04x}"
-                    raise BedstoneError(problem, file=file, remedy=f"save the {what} as plain UTF-8 text")
+    found = _CONTROLS.search(text)
+    if found:
+        line = text.count("\n", 0, found.start()) + 1
+        problem = f"line {line} holds the control character {ord(found.group()):#04x}"
+        raise BedstoneError(problem, file=file, remedy=f"save the {what} as plain UTF-8 text")
 
 
 def parse_toml(text: str, *, file: str, what: str) -> dict[str, Any]:

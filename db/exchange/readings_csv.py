@@ -67,6 +67,9 @@ def _rows(text: str, file: str) -> list[Row]:
 def _cells(text: str, file: str) -> list[list[str]]:
     import pandas as pd
 
+    head = text.partition("\n")[0]
+    if "," not in head and head.count(";") + head.count("\t") > 1:
+        raise BedstoneError("its columns are not parted by commas", file=file, remedy="save it with commas")
     try:
         frame = pd.read_csv(
             io.StringIO(text),
@@ -87,8 +90,6 @@ def _cells(text: str, file: str) -> list[list[str]]:
 
 def _check_names(names: list[str], file: str) -> None:
     known = (*REQUIRED, *OPTIONAL)
-    if len(names) == 1 and names[0].count(";") + names[0].count("\t") > 1:
-        raise BedstoneError("its columns are not parted by commas", file=file, remedy="save it with commas")
     for name in names:
         if name not in known:
             problem = f'unknown column "{shown(name)}"{suggestion(name, known)}'
@@ -137,7 +138,7 @@ def _reading(row: Row, file: str) -> ReadingDoc:
         unit=cells["unit"],
         instrument=_free(cells, "instrument", file, place),
         remark=_free(cells, "remark", file, place),
-        source=f"{file}, {place}",
+        source=f"{shown(file)}, {place}",
     )
     refuse_misplaced(reading, file=file, place=place)
     refuse_absurd(reading, file=file, place=place)

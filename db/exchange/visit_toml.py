@@ -16,7 +16,7 @@ from db.exchange.reading_rules import (
     undefined_state,
 )
 from db.exchange.readings_csv import parse_readings
-from db.wording import shown
+from db.wording import printable, shown
 
 WHAT = "visit file"
 TABLE = "table of readings"
@@ -39,7 +39,7 @@ def read_visit(path: Path) -> VisitDoc:
         If a file cannot be read or anything in it is wrong; names file, field and remedy.
     """
     path = Path(path)
-    file = str(path)
+    file = printable(str(path))
     text = read_text(path, what=WHAT)
     name = _table_name(_top(text, file))
     table = read_text(path.parent / name, what=TABLE) if name else ""
@@ -177,7 +177,7 @@ def _reading(fields: Fields, file: str) -> ReadingDoc:
         unit=value.unit,
         instrument=fields.text("instrument", ""),
         remark=fields.text("remark", ""),
-        source=f"{file}, reading {number}",
+        source=f"{shown(file)}, reading {number}",
     )
     refuse_misplaced(reading, file=fields.file, place=fields.path)
     refuse_absurd(reading, file=fields.file, place=fields.path)

@@ -17,15 +17,16 @@ from db.wording import listed, shown, suggestion
 _FILE = "bridge file"
 
 
-def find_bridge(session: Session, bridge: str) -> BridgeRow:
-    """Return the row of a bridge.
+def find_bridge(session: Session, bridge: str, *, lock: bool = False) -> BridgeRow:
+    """Return the row of a bridge; `lock` lets no other program change it until the transaction ends.
 
     Raises
     ------
     BedstoneError
         If there is none of that id; names those there are.
     """
-    row = session.scalar(select(BridgeRow).where(BridgeRow.key == bridge))
+    query = select(BridgeRow).where(BridgeRow.key == bridge)
+    row = session.scalar(query.with_for_update() if lock else query)
     if row is None:
         known = session.scalars(select(BridgeRow.key).order_by(BridgeRow.key)).all()
         problem = f'there is no bridge "{shown(bridge)}" in the record{suggestion(bridge, known)}'
@@ -83,7 +84,7 @@ def add_revision(session: Session, doc: BridgeDoc) -> Taken:
     BedstoneError
         If kept readings would lose their place.
     """
-    bridge = session.scalar(select(BridgeRow).where(BridgeRow.key == doc.id))
+    bridge = session.scalar(select(BridgeRow).where(BridgeRow.key == doc.id).with_for_update())
     number = 1
     if bridge is None:
         bridge = BridgeRow(key=doc.id)

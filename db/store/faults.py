@@ -25,6 +25,7 @@ _MEANINGS = (
     ("unable to open", "the record cannot be opened", "check the permissions of the file and of its folder"),
     ("is full", "there is no room left on the disk", "make room and do it again; nothing was kept"),
     ("disk i/o error", "the disk could not be read or written", "check the disk; nothing was kept"),
+    ("can't load plugin", "this kind of database is unknown", "write a path, or a URL of a server"),
     ("locked", "another program has held the record too long", "do it again when that program is done"),
     ("busy", "another program has held the record too long", "do it again when that program is done"),
 )
@@ -51,9 +52,6 @@ def told_plainly(file: str) -> Iterator[None]:
         raise _conflict(error, file) from error
     except DBAPIError as error:
         raise _meaning(error.orig or error, file) from error
-    except ModuleNotFoundError as error:
-        problem = f"the driver {error.name} for this kind of database is not installed"
-        raise BedstoneError(problem, file=file, remedy="install it, or keep the record in a file") from error
     except SQLAlchemyError as error:
         raise _meaning(error, file) from error
 

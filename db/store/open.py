@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import contextlib
+import sqlite3
 import time
 from collections.abc import Callable, Iterator
 from pathlib import Path
@@ -46,8 +47,7 @@ def open_record(location: str, *, create: bool = False) -> Iterator[Record]:
     url = _url(location)
     name = url.database or "memory" if _is_sqlite(url) else url.render_as_string(hide_password=True)
     _check_place(url, name, create)
-    with told_plainly(name):
-        engine = _engine(url)
+    engine = _engine_for(url, name)
     try:
         with told_plainly(name):
             created = _ready(engine, name, create)
@@ -101,6 +101,15 @@ def _engine(url: URL) -> Engine:
     event.listen(engine, "connect", _prepare)
     event.listen(engine, "begin", _begin)
     return engine
+
+
+def _engine_for(url: URL, name: str) -> Engine:
+    try:
+        with told_plainly(name):
+            return _engine(url)
+    except ModuleNotFoundError as error:
+        problem = f"the driver {error.name} for this kind of database is not installed"
+        raise BedstoneError(problem, file=name, remedy="install it, or keep the record in a file") from error
 
 
 def _prepare(connection: Any, record: object) -> None:
@@ -185,9 +194,7 @@ def _write_ahead(engine: Engine) -> None:
         cursor = raw.cursor()
         cursor.execute("PRAGMA journal_mode = WAL")
         cursor.close()
-    except Exception as error:
-        if is_busy(error):
-            raise DatabaseError("PRAGMA journal_mode = WAL", None, error) from error
-        raise
+    except sqlite3.Error as error:
+        raise DatabaseError("PRAGMA journal_mode = WAL", None, error) from error
     finally:
         raw.close()

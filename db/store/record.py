@@ -50,8 +50,11 @@ class Record:
     @contextlib.contextmanager
     def reading(self) -> Iterator[Session]:
         """Hand out a session that sees one state of the record and writes nothing."""
-        with told_plainly(self.name), Session(self._readers, autoflush=False) as session:
-            yield session
+        try:
+            with told_plainly(self.name), Session(self._readers, autoflush=False) as session:
+                yield session
+        except (ValueError, TypeError) as error:  # a cell that is not what its column holds
+            raise damaged(self.name, "a row in it cannot be read") from error
 
     def add_bridge(self, doc: BridgeDoc) -> Taken:
         """Keep a bridge file; the newest one again is not kept twice."""
@@ -73,7 +76,7 @@ class Record:
         """Keep a visit whole; the same file again is not kept twice, another one for that day is refused."""
         self.bridge(doc.bridge)  # parsed before the record is held for writing
         with self.transaction() as session:
-            bridge = bridges.find_bridge(session, doc.bridge)
+            bridge = bridges.find_bridge(session, doc.bridge, lock=True)
             revision = bridges.find_revision(session, bridge)
             if visits.kept_already(session, bridge, doc):
                 return Taken(added=False, revision=revision.number)
@@ -104,6 +107,7 @@ class Record:
 
     def results(self, bridge: str, kind: str) -> list[KeptResult]:
         """Return the kept calibrations or assessments of a bridge, newest last."""
+        results.check_kind(kind)
         with self.reading() as session:
             return results.kept_results(session, bridges.find_bridge(session, bridge), kind)
 

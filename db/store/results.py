@@ -19,6 +19,12 @@ _TABLES: dict[str, type[KeptRow]] = {
 }
 
 
+def check_kind(kind: str) -> None:
+    """Raise ValueError if there is no such kind of result."""
+    if kind not in _TABLES:
+        raise ValueError(f"kind is {kind!r}, not one of {sorted(_TABLES)}")
+
+
 def add_result(session: Session, kept: KeptResult) -> bool:
     """Keep a result, unless the newest one of its kind, bridge and visit was made the same way.
 
@@ -29,8 +35,7 @@ def add_result(session: Session, kept: KeptResult) -> bool:
     ValueError
         If the kind is unknown, a calibration has no visit, or a number in it is not finite.
     """
-    if kept.kind not in _TABLES:
-        raise ValueError(f"kind is {kept.kind!r}, not one of {sorted(_TABLES)}")
+    check_kind(kept.kind)
     if kept.kind == "calibration" and kept.visit is None:
         raise ValueError("a calibration is of a visit")
     table = _TABLES[kept.kind]
@@ -57,15 +62,7 @@ def add_result(session: Session, kept: KeptResult) -> bool:
 
 
 def kept_results(session: Session, bridge: BridgeRow, kind: str) -> list[KeptResult]:
-    """Return the kept results of a kind, newest last.
-
-    Raises
-    ------
-    ValueError
-        If the kind is unknown.
-    """
-    if kind not in _TABLES:
-        raise ValueError(f"kind is {kind!r}, not one of {sorted(_TABLES)}")
+    """Return the kept results of a kind, newest last."""
     table = _TABLES[kind]
     query = (
         select(table, RevisionRow.number, VisitRow.date)
