@@ -51,7 +51,7 @@ def section_rows(girder: GirderAssessment, key: str) -> list[SectionRow]:
 def _section_row(section: SectionResult, key: str) -> SectionRow:
     name = words.section(section.effect, section.span, section.support)
     case = section.calibrated
-    unit = "kN" if section.effect == "shear" else "kN m"
+    unit = "kN" if section.effect == "shear" else "kN\N{NO-BREAK SPACE}m"
     return SectionRow(
         name=name,
         cases=[
@@ -84,8 +84,8 @@ def _cell(case: CaseResult, unit: str, told: str) -> CaseCell:
         lines=[
             f"at {words.place(case.x_m)}",
             f"rating factor {words.quantity(case.rating_factor, '', no_factor)}",
-            f"factored {words.number(case.factored)}{of} {unit}",
-            f"permanent {words.number(case.permanent)}, live {words.number(case.live)} {unit}",
+            f"factored {words.number(case.factored)}{of}\N{NO-BREAK SPACE}{unit}",
+            f"permanent {words.number(case.permanent)}, live {words.number(case.live)}\N{NO-BREAK SPACE}{unit}",
         ],
     )
 

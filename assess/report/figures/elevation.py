@@ -250,7 +250,7 @@ def _support_lines(support: SupportView) -> tuple[str, ...]:
     else:
         lines = (f"{words.number(support.ratio)} × nominal", *_interval_lines(support))
         if support.ratio > _DRAWN_MOST:
-            lines += (f"drawn at {words.number(_DRAWN_MOST)} ×",)
+            lines += (f"drawn at {words.entered(_DRAWN_MOST)} ×",)
         if support.data_share is not None and support.data_share < 0.5:
             lines += ("told by the", "assumption")
     if support.seat_drop_mm is not None:
@@ -328,7 +328,8 @@ def _key(axes: Axes, state: ElevationState) -> None:
     axes.text(14.0, y, "measured, bar 1 sd", ha="left", va="baseline")
     axes.plot([122, 142], [y - 3, y - 3], color=svg.ACCENT, lw=1.8)
     told = "fitted"
-    finite = [(abs(v), v, x) for x, v in zip(state.x_m.tolist(), state.fitted_mm.tolist(), strict=True)]
+    pairs = zip(state.x_m.tolist(), state.fitted_mm.tolist(), strict=True)
+    finite = [(abs(v), v, x) for x, v in pairs if math.isfinite(v)]
     if finite:
         _, value, x_m = max(finite)
         told = f"fitted, largest {words.number(value)} mm at {words.place(x_m)}, downward positive"
