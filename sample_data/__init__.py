@@ -1,0 +1,1 @@
+"""An invented bridge with six invented visits, for the demo."""
