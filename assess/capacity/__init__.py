@@ -2,7 +2,7 @@
 
 from assess.capacity.checks import CheckPlan, Factors, Resistance, plan_checks
 from assess.capacity.effects import Effects, GirderLoads
-from assess.capacity.rows import Case, Row, RowDraws, demands_at, evaluate, evaluate_draws
+from assess.capacity.rows import Case, Row, RowDraws, demands_at, evaluate, evaluate_draws, moment_draws
 
 __all__ = [
     "Case",
@@ -16,5 +16,6 @@ __all__ = [
     "demands_at",
     "evaluate",
     "evaluate_draws",
+    "moment_draws",
     "plan_checks",
 ]

@@ -170,6 +170,18 @@ def evaluate_draws(
     return [RowDraws(check=check, utilisation=used[i]) for i, check in enumerate(effects.plan.checks)]
 
 
+def moment_draws(
+    effects: Effects, factors: Factors, compliances: Floats, settlements: Floats
+) -> tuple[Floats, Floats]:
+    """Factored sagging and hogging moments (draws, p) at all stations over draws of the supports (draws, n)."""
+    stations = np.arange(effects.plan.x.size)
+    sample = _spread(compliances, settlements)
+    permanent = effects.permanent("moment", compliances, settlements)
+    maximum, minimum = effects.live_draws("moment", stations, compliances, sample)
+    sagging = demand(factors, permanent, maximum, 1.0).factored
+    return sagging, demand(factors, permanent, minimum, -1.0).factored
+
+
 def _governing_stations(
     effects: Effects, factors: Factors, compliances: Floats, settlements: Floats
 ) -> list[Ints]:

@@ -101,7 +101,8 @@ class Condensed:
         self._by_drop = by_drop
         stiffness = np.einsum("sia,sib->ab", by_drop, self.moments_by_drop)
         self.K: Floats = (stiffness + stiffness.T) / 2.0
-        self._scale = float(np.trace(self.K) / n)
+        # a stiffness of the girder's own size; K itself is nothing where the girder is statically determinate
+        self._scale = float(np.mean(np.trace(k, axis1=1, axis2=2) / lengths**2))
 
     @property
     def n_supports(self) -> int:
@@ -170,7 +171,7 @@ class Condensed:
         """Return the scaled system and the factors that turn its unknown z into R and F R.
 
         R = w z and F R = (f w) z with w = 1 / (1 + c f), so neither f = 0 (unyielding) nor f = inf
-        (no support) is a special case; c is the mean diagonal of K.
+        (no support) is a special case; c is a stiffness of the size of K.
         """
         finite = np.isfinite(compliance)
         held = np.where(finite, compliance, 0.0)

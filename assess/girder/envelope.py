@@ -126,6 +126,18 @@ def grid_step(condensed: Condensed) -> float:
     return float(np.diff(condensed.positions).min() / GRID_PER_SPAN)
 
 
+def leading_grid(condensed: Condensed, train: Train) -> Floats:
+    """Leading-axle positions (m,), ascending: an even grid, and each axle just on and just off either end.
+
+    An end that yields makes a step in every influence line where an axle comes on or goes off.
+    """
+    length = condensed.positions[-1]
+    end = length + train.length
+    even = np.linspace(0.0, end, max(2, int(np.ceil(end / grid_step(condensed))) + 1))
+    on, off = train.offsets, train.offsets + length
+    return np.unique(np.concatenate([even, on - _FACE, on, off, off + _FACE]))
+
+
 def passages(place: Places, train: Train, *, both_ways: bool = True) -> list[Passage]:
     """Let a train pass: one `Passage` on the common grid and one with its axles on each place, each way."""
     ways = [train]
@@ -140,8 +152,7 @@ def passages(place: Places, train: Train, *, both_ways: bool = True) -> list[Pas
 
 def _on_grid(place: Places, train: Train) -> Passage:
     condensed = place.condensed
-    end = condensed.positions[-1] + train.length
-    leading = np.linspace(0.0, end, max(2, int(np.ceil(end / grid_step(condensed))) + 1))
+    leading = leading_grid(condensed, train)
     ends, simple = _train_state(condensed, train, leading)
     forces = condensed.forces_from(ends, simple)
     shared = np.broadcast_to(leading, (place.x.size, leading.size))

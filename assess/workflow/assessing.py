@@ -173,7 +173,7 @@ def supports_of(
     measured = settlements(study, name, until)
     own = {date: one.fits[name] for date, (one, _) in fits.items() if _usable(model, one, name)}
     if not fits:
-        left = [cautions.settlement_without_calibration(name, s, 1e3 * m.value) for s, m in measured.items()]
+        left = cautions.settlements_left_out(name, [(s, 1e3 * one.value) for s, one in measured.items()])
         nominal = Supports(
             log_stiffness=model.nominal,
             covariance=np.diag(model.prior.sd**2),
@@ -182,10 +182,9 @@ def supports_of(
             settlements={},
         )
         return nominal, left
-    said = [
-        cautions.settlement_used(name, support, 1e3 * one.value, 1e3 * one.sd, one.date)
-        for support, one in measured.items()
-    ]
+    said = cautions.settlements_used(
+        name, [(s, 1e3 * one.value, 1e3 * one.sd, one.date) for s, one in measured.items()]
+    )
     if not own:
         if model.pads.size:
             said.append(cautions.girder_not_calibrated(name))

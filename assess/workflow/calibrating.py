@@ -188,7 +188,8 @@ def _what_is_missing(model: GirderModel, missing: NotDetermined, where: str) -> 
             "or calibrate with the prior (leave out --no-prior)"
         )
     else:
-        problem = f"{counts}, but they do not tell the pad at {pads}" if pads else f"{counts}, not told apart"
+        untold = f"but they do not tell the pad at {pads}" if pads else "but they do not tell the pads apart"
+        problem = f"{counts}, {untold}"
         remedy = "read its compression, or place the vehicle over it; or calibrate with the prior (leave out --no-prior)"
     return BedstoneError(problem, field=where, remedy=remedy)
 
@@ -196,7 +197,8 @@ def _what_is_missing(model: GirderModel, missing: NotDetermined, where: str) -> 
 def _shown(model: GirderModel, readings: list[ReadingDoc], found: Fit) -> GirderCalibration:
     sd = found.sd
     low, high = np.exp(found.log_stiffness - Z95 * sd), np.exp(found.log_stiffness + Z95 * sd)
-    estimate, nominal = np.exp(found.log_stiffness), np.exp(model.nominal)
+    estimate = np.exp(found.log_stiffness)
+    nominal = [model.doc.supports[i].stiffness or np.nan for i in model.pads]
     pads = [
         PadResult(
             support=support,

@@ -168,17 +168,23 @@ def forgotten_pad(girder: str, support: str, date: dt.date, earlier: dt.date, ra
     )
 
 
-def settlement_used(girder: str, support: str, mm: float, sd_mm: float, date: dt.date) -> str:
-    """Caution: a measured settlement in the permanent effects."""
-    return (
-        f'{girder}: the seat "{support}" enters {mm:.3g} mm lower (sd {sd_mm:.2g} mm, measured {date}); the girder\'s full '
-        "stiffness answers it, without relief by creep of the girder."
-    )
+def settlements_used(girder: str, drops: Sequence[tuple[str, float, float, dt.date]]) -> list[str]:
+    """Caution: measured seat settlements (support, mm, sd in mm, date) in the permanent effects."""
+    if not drops:
+        return []
+    each = "; ".join(f'"{s}" {mm:.3g} mm (sd {sd:.2g} mm, {date})' for s, mm, sd, date in drops)
+    return [
+        f"{girder}: the permanent effects of the calibrated case include the measured settlements of the seats, downward: "
+        f"{each}. The girder's full stiffness answers them, without relief by creep of the girder."
+    ]
 
 
-def settlement_without_calibration(girder: str, support: str, mm: float) -> str:
-    """Caution: a measured settlement that does not enter, because nothing is calibrated."""
-    return f'{girder}: a seat settlement of {mm:.3g} mm at "{support}" is in the record but does not enter nominal pads.'
+def settlements_left_out(girder: str, drops: Sequence[tuple[str, float]]) -> list[str]:
+    """Caution: measured settlements (support, mm) that do not enter, because nothing is calibrated."""
+    if not drops:
+        return []
+    each = "; ".join(f'"{support}" {mm:.3g} mm' for support, mm in drops)
+    return [f"{girder}: seat settlements are in the record but do not enter nominal pads: {each}."]
 
 
 def uplift(girder: str, reactions: Sequence[ReactionResult], factored: Sequence[float]) -> list[str]:
@@ -296,9 +302,14 @@ def far_extrapolation(limit: dt.date) -> str:
     return f"Dates after {limit} lie further ahead than twice the span of the visits: read them as a direction, not a date."
 
 
-def settlement_not_forecast(girder: str, support: str) -> str:
+def settlements_not_forecast(girder: str, supports: Sequence[str]) -> list[str]:
     """Caution: settlements are held at their last value."""
-    return f'{girder}: the seat settlement at "{support}" is held at its last measured value; it is not carried forward.'
+    if not supports:
+        return []
+    names = ", ".join(f'"{support}"' for support in supports)
+    return [
+        f"{girder}: seat settlements ({names}) are held at their last measured values; they are not carried forward."
+    ]
 
 
 def overdue(date: dt.date) -> str:

@@ -153,7 +153,7 @@ def _girder(
         spans=spans,
     )
     said = _of_laws(model, found, estimates, dates)
-    said += [cautions.settlement_not_forecast(model.doc.id, support) for support in measured]
+    said += cautions.settlements_not_forecast(model.doc.id, list(measured))
     for row in spans:
         name = f"{model.doc.id}: {cautions.section_name(row.effect, row.span, row.support)}"
         chance = row.probability_over_1_now

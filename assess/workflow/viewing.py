@@ -8,7 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.calibrate import Z95
-from assess.capacity import demands_at
+from assess.capacity import demands_at, moment_draws
 from assess.results import (
     AssessmentResult,
     CalibrationResult,
@@ -33,7 +33,7 @@ from db.store import open_record
 
 Floats = NDArray[np.float64]
 
-_BAND_DRAWS = 200  # draws for the bands of the moment lines
+_BAND_DRAWS = 400  # draws for the bands of the moment lines
 
 
 def report_view(url: str, bridge: str, *, progress: Progress | None = None) -> ReportView:
@@ -190,14 +190,8 @@ def _moments(model: GirderModel, supports: Supports) -> MomentLines:
     calibrated = model.compliance(supports.log_stiffness)
     cases = [(model.unyielding, none), (model.compliance(model.nominal), none), (calibrated, drops)]
     lines = [demands_at(effects, factors, *case) for case in cases]
-    drawn = [
-        demands_at(effects, factors, *pair)
-        for pair in zip(*supports.draws(model, _BAND_DRAWS, SEED), strict=True)
-    ]
-    bands = [
-        np.quantile([one["moment", sign].factored for one in drawn], [0.025, 0.975], axis=0)
-        for sign in (1.0, -1.0)
-    ]
+    drawn = moment_draws(effects, factors, *supports.draws(model, _BAND_DRAWS, SEED))
+    bands = [np.quantile(one, [0.025, 0.975], axis=0) for one in drawn]
     sagging, hogging = ([one["moment", sign].factored for one in lines] for sign in (1.0, -1.0))
     permanent = [one["moment", 1.0].permanent for one in lines]
     return MomentLines(
