@@ -1,0 +1,1 @@
+"""Tests of Bedstone; they mirror the rooms they look at."""

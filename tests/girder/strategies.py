@@ -1,0 +1,154 @@
+"""Random girders, supports and loads of believable size, for Hypothesis."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from hypothesis import settings
+from hypothesis import strategies as st
+from numpy.typing import NDArray
+
+from assess.girder import Girder, Piece
+from assess.loads import LoadCase, Train
+
+Floats = NDArray[np.float64]
+
+# the plain run takes the same examples every time; a campaign looks for new ones
+PLAIN = settings(max_examples=100, deadline=None, derandomize=True)
+FEW = settings(max_examples=40, deadline=None, derandomize=True)
+CAMPAIGN = settings(max_examples=4000, deadline=None, print_blob=True)
+
+
+@dataclass(frozen=True, kw_only=True)
+class Case:
+    """A girder on its supports under its loads."""
+
+    girder: Girder
+    compliance: Floats
+    settlement: Floats
+    loads: LoadCase
+
+
+def logs(low: float, high: float) -> st.SearchStrategy[float]:
+    """Values spread evenly over the powers of ten."""
+    return st.floats(np.log10(low), np.log10(high)).map(lambda p: float(10.0**p))
+
+
+@st.composite
+def spans(draw: st.DrawFn, *, shear: bool = False, slivers: bool = False) -> tuple[Piece, ...]:
+    """A span of 3 to 60 m in one to three pieces, some of them a few millimetres long."""
+    length = draw(st.floats(3.0, 60.0))
+    shares = np.array(draw(st.lists(st.floats(0.2, 1.0), min_size=1, max_size=3)))
+    lengths = list(length * shares / shares.sum())
+    if slivers:
+        for _ in range(draw(st.integers(0, 2))):
+            lengths.insert(draw(st.integers(0, len(lengths))), draw(st.floats(0.002, 0.008)))
+    pieces = []
+    for one in lengths:
+        flexural = draw(logs(2e5, 5e7))
+        stiff = flexural * draw(st.floats(0.3, 5.0)) if shear else np.inf
+        pieces.append(Piece(length=float(one), flexural=flexural, shear=stiff))
+    return tuple(pieces)
+
+
+@st.composite
+def girders(
+    draw: st.DrawFn,
+    *,
+    shear: bool = False,
+    slivers: bool = False,
+    restrained: bool = False,
+    least: int = 1,
+    most: int = 8,
+) -> Girder:
+    """A girder of `least` to `most` spans."""
+    row = draw(st.lists(spans(shear=shear, slivers=slivers), min_size=least, max_size=most))
+    rotation = np.zeros(len(row) + 1)
+    if restrained:
+        kinds = st.one_of(st.just(0.0), st.just(0.0), st.just(np.inf), logs(1e4, 1e8))
+        rotation = np.array([draw(kinds) for _ in rotation])
+    return Girder(tuple(row), rotation)
+
+
+pads = logs(1e-7, 1e-4)  # m/kN: stiffness 1e4 to 1e7 kN/m
+
+
+@st.composite
+def compliances(draw: st.DrawFn, n: int, *, rigid: bool = True, absent: bool = False) -> Floats:
+    """Pads, some of them unyielding, and with `absent` some supports that are not there."""
+    kinds = [pads, pads]
+    if rigid:
+        kinds.append(st.just(0.0))
+    values = np.array([draw(st.one_of(kinds)) for _ in range(n)])
+    if absent:
+        for i in range(n - 2):
+            if draw(st.integers(0, 4)) == 0:
+                values[n - 1 - i] = np.inf
+    return values
+
+
+@st.composite
+def load_cases(draw: st.DrawFn, length: float) -> LoadCase:
+    """One to three point loads and up to two uniform loads, somewhere on the girder."""
+    share = st.integers(0, 1000).map(lambda thousandths: thousandths / 1000.0)
+    points = tuple(
+        (draw(share) * length, draw(st.floats(1.0, 900.0))) for _ in range(draw(st.integers(1, 3)))
+    )
+    uniforms = []
+    for _ in range(draw(st.integers(0, 2))):
+        start, end = sorted((draw(share) * length, draw(share) * length))
+        if end - start > 1e-3:
+            uniforms.append((start, end, draw(st.floats(1.0, 60.0))))
+    return LoadCase(points=points, uniforms=tuple(uniforms))
+
+
+@st.composite
+def cases(
+    draw: st.DrawFn,
+    *,
+    shear: bool = False,
+    slivers: bool = False,
+    restrained: bool = False,
+    absent: bool = False,
+    settled: bool = True,
+    least: int = 1,
+    most: int = 8,
+) -> Case:
+    """A whole case; seats drop by up to 50 mm either way."""
+    girder = draw(girders(shear=shear, slivers=slivers, restrained=restrained, least=least, most=most))
+    n = girder.n_supports
+    drop = st.floats(-0.05, 0.05) if settled else st.just(0.0)
+    return Case(
+        girder=girder,
+        compliance=draw(compliances(n, absent=absent)),
+        settlement=np.array([draw(drop) for _ in range(n)]),
+        loads=draw(load_cases(girder.length)),
+    )
+
+
+@st.composite
+def trains(draw: st.DrawFn) -> Train:
+    """One to five axles at whole millimetres.
+
+    Gaps end in 7 mm, so that no axle stands exactly on a station while another comes on at an end: what the
+    shear is then is a matter of which is named first.
+    """
+    gaps = draw(st.lists(st.integers(60, 400).map(lambda cm: 10 * cm + 7), min_size=0, max_size=4))
+    offsets = np.concatenate([[0.0], np.cumsum(gaps)]) / 1000.0
+    return Train(offsets, np.array([draw(st.floats(20.0, 250.0)) for _ in offsets]))
+
+
+def stations(girder: Girder, per_span: int = 5) -> Floats:
+    """Places inside every span, off the supports, and the ends of the pieces inside it."""
+    edges = girder.support_positions
+    inside = edges[:-1, None] + np.diff(edges)[:, None] * np.linspace(0.0, 1.0, per_span + 2)[1:-1]
+    return np.unique(np.concatenate([inside.ravel(), girder.breakpoints]))
+
+
+def apart(value: Floats, reference: Floats, scale: float | None = None) -> float:
+    """Largest difference, relative to the largest reference value."""
+    reference = np.asarray(reference, dtype=np.float64)
+    size = float(np.abs(reference).max()) if scale is None else scale
+    difference = float(np.abs(np.asarray(value) - reference).max())
+    return difference / size if size > 0.0 else difference
