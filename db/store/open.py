@@ -17,6 +17,7 @@ from db.errors import BedstoneError
 from db.schema import SCHEMA_HEAD
 from db.store.faults import is_busy, told_plainly
 from db.store.record import WRITES, Record
+from db.wording import shown
 
 PATIENCE_S = 30.0
 """How long a program waits for another one that writes."""
@@ -57,6 +58,10 @@ def open_record(location: str, *, create: bool = False) -> Iterator[Record]:
 
 
 def _url(location: str) -> URL:
+    if not location.strip() or not location.isprintable():
+        raise BedstoneError(
+            f'"{shown(location)}" is no name of a record', remedy="name a file, such as bedstone.sqlite"
+        )
     if "://" not in location:
         return URL.create("sqlite", database=location)
     try:

@@ -113,9 +113,9 @@ class Record:
 
     def _document(self, row: RevisionRow) -> BridgeDoc:
         """The bridge file of a revision, parsed once."""
+        if digest_of(row.text) != row.digest:
+            raise damaged(self.name, f"revision {row.number} of a bridge is not the file that was kept")
         if row.digest not in self._parsed:
-            if digest_of(row.text) != row.digest:
-                raise damaged(self.name, f"revision {row.number} of a bridge is not the file that was kept")
             self._parsed[row.digest] = parse_bridge(row.text, file=f"kept bridge file, revision {row.number}")
         return self._parsed[row.digest]
 

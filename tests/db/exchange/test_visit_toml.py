@@ -45,7 +45,7 @@ BAD = {
     "sd as angle": ('sd = "0.05 mm"', 'sd = "0.05 mrad"', "reading 1, sd"),
     "compression without support": (SUPPORT, "", "reading 1, support"),
     "compression at a place": (SUPPORT, SUPPORT + '\nat = "12 m"', "reading 1, at"),
-    "settlement at a place": (SUPPORT, 'at = "12 m"', "reading 1, support"),
+    "compression at a place only": (SUPPORT, 'at = "12 m"', "reading 1, support"),
     "deflection nowhere": ('at = "6 m"', "", "reading 2, at"),
     "deflection twice": ('at = "6 m"', 'at = "6 m"\nsupport = "pier 1"', "reading 2, at"),
     "deflection with height": ('at = "6 m"', 'at = "6 m"\nheight = "1 m"', "reading 2, height"),

@@ -1,0 +1,85 @@
+from __future__ import annotations
+
+from pathlib import Path
+
+import pytest
+from alembic import op
+from alembic.autogenerate import compare_metadata
+from alembic.migration import MigrationContext
+from sqlalchemy import Connection, create_engine, inspect
+
+from db.migrations import known_versions, upgrade
+from db.schema import SCHEMA_HEAD, Base
+from db.store import open_record
+
+
+def differences(connection: Connection) -> list[object]:
+    context = MigrationContext.configure(connection, opts={"compare_type": True})
+    return list(compare_metadata(context, Base.metadata))
+
+
+def constraints(connection: Connection) -> dict[str, object]:
+    inspector = inspect(connection)
+    return {
+        table: (
+            sorted((c["name"] or "", c["sqltext"]) for c in inspector.get_check_constraints(table)),
+            sorted((c["name"] or "", c["column_names"]) for c in inspector.get_unique_constraints(table)),
+            sorted((c["name"] or "", c["constrained_columns"]) for c in inspector.get_foreign_keys(table)),
+            sorted((i["name"] or "", i["column_names"]) for i in inspector.get_indexes(table)),
+        )
+        for table in sorted(inspector.get_table_names())
+        if table != "alembic_version"
+    }
+
+
+def test_the_head_is_the_one_the_schema_names() -> None:
+    assert known_versions()[0] == SCHEMA_HEAD
+
+
+def test_a_migrated_record_has_the_tables_of_the_schema() -> None:
+    with create_engine("sqlite://").begin() as connection:
+        upgrade(connection)
+        assert differences(connection) == []
+        migrated = constraints(connection)
+    with create_engine("sqlite://").begin() as connection:
+        Base.metadata.create_all(connection)
+        assert constraints(connection) == migrated
+
+
+def test_the_comparison_can_fail() -> None:
+    with create_engine("sqlite://").begin() as connection:
+        upgrade(connection)
+        connection.exec_driver_sql("ALTER TABLE visits DROP COLUMN remark")
+        assert differences(connection) != []
+
+
+def test_upgrading_twice_is_harmless() -> None:
+    with create_engine("sqlite://").begin() as connection:
+        upgrade(connection)
+        before = constraints(connection)
+        upgrade(connection)
+        assert constraints(connection) == before
+
+
+def test_every_version_has_one_parent_and_a_file() -> None:
+    files = list((Path(__file__).parents[2] / "db" / "migrations" / "versions").glob("r*.py"))
+    assert len(files) == len(known_versions())
+
+
+def test_tables_made_halfway_are_not_kept(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    location = tmp_path / "r.sqlite"
+    create_table = op.create_table
+
+    def fail(name: str, *columns: object, **more: object) -> object:
+        if name == "readings":
+            raise RuntimeError("pulled the plug")
+        return create_table(name, *columns, **more)  # type: ignore[arg-type]
+
+    monkeypatch.setattr(op, "create_table", fail)
+    with pytest.raises(RuntimeError), open_record(str(location), create=True):
+        pass
+    with create_engine(f"sqlite:///{location}").connect() as connection:
+        assert inspect(connection).get_table_names() == []
+    monkeypatch.undo()
+    with open_record(str(location), create=True) as record:
+        assert record.created
