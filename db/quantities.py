@@ -126,7 +126,7 @@ _SUPERSCRIPTS = str.maketrans({"²": "^2", "³": "^3", "⁴": "^4", "¹": "^1", 
 _SPACES = str.maketrans({"\u00a0": " ", "\u202f": " ", "\u2009": " "})
 _NUMBER = re.compile(r"[+-]?(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][+-]?[0-9]+)?")
 _FACTOR = re.compile(r"(?P<name>[A-Za-zµμε°%]+)(?:\^?(?P<power>[1-46])|\^(?P<negative>-[1-46]))?")
-_JOIN = re.compile(r" *([*·⋅/ ]) *")
+_JOIN = re.compile(r" *([*·⋅/ ]|(?<=[A-Za-z])-(?=[A-Za-z])) *")
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -60,9 +60,12 @@ def parse_bridge(text: str, *, file: str) -> BridgeDoc:
         If anything in it is wrong; names file, field and remedy.
     """
     refuse_controls(text, file=file, what=WHAT)
-    top = Fields(parse_toml(text, file=file, what=WHAT), file=file, path="", known=_TOP)
+    tables = parse_toml(text, file=file, what=WHAT)
+    if "visit" in tables and "bridge" not in tables:
+        raise BedstoneError("it is a visit file", file=file, remedy="log it: bedstone visit log FILE")
+    top = Fields(tables, file=file, path="", known=_TOP)
     top.format_1(WHAT)
-    head = Fields(top.need("bridge", "a table [bridge]"), file=file, path="bridge", known=_BRIDGE)
+    head = top.subtable("bridge", _BRIDGE, "id and name")
     name = head.id("id")
     interval = head.optional_positive("visit_interval", "duration")
     sections = _sections(top)
@@ -179,9 +182,7 @@ def _one_live(fields: Fields, vehicles: list[str]) -> LiveDoc:
 
 
 def _factors(top: Fields) -> FactorsDoc:
-    example = 'a table [factors] with name, permanent and live, such as name = "owner\'s standard"'
-    table = top.need("factors", example)
-    fields = Fields(table, file=top.file, path="factors", known=_FACTORS)
+    fields = top.subtable("factors", _FACTORS, "name, permanent and live")
     relieving = (
         fields.number("permanent_relieving", math.nan, over=0.0)
         if fields.has("permanent_relieving")

@@ -37,9 +37,9 @@ def draft_bridge(span_lengths: str) -> str:
         if not metres > 0.0:
             problem = f'"{shown(length)}" is not greater than zero'
             raise BedstoneError(problem, field=f"{_OPTION}, span {i}", remedy=f'write "{right}"')
-    spans = "\n".join(_SPAN.format(number=i, length=x) for i, x in enumerate(lengths, start=1))
+    spans = "".join(_SPAN.format(number=i, length=x) for i, x in enumerate(lengths, start=1))
     names = _support_names(len(lengths) + 1)
-    supports = "\n".join(_SUPPORT.format(name=name) for name in names)
+    supports = "".join(_SUPPORT.format(name=name) for name in names)
     return _template().replace("{spans}", spans.strip("\n")).replace("{supports}", supports.strip("\n"))
 
 

@@ -177,6 +177,12 @@ class Fields:
             return default
         return self.quantity(name, dimension, example=example).si
 
+    def subtable(self, name: str, known: str, example: str) -> Fields:
+        """Return a table inside this one that must be there."""
+        if name not in self.table:
+            raise self.error(name, "it is missing", f"add a table [{name}] with {example}")
+        return Fields(self.table[name], file=self.file, path=self.where(name), known=known)
+
     def tables(self, name: str, kind: str, known: str, *, by_number: bool = False) -> list[Fields]:
         """Return the tables of an array of tables, each with its own path."""
         value = self.table.get(name, [])

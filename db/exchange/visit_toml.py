@@ -5,6 +5,7 @@ from __future__ import annotations
 from pathlib import Path
 
 from db.documents import PERMANENT, QUANTITIES, LoadStateDoc, ReadingDoc, VisitDoc
+from db.errors import BedstoneError
 from db.exchange.fields import Fields, refuse_duplicates
 from db.exchange.files import digest_of, parse_toml, read_text, refuse_controls
 from db.exchange.reading_rules import (
@@ -94,14 +95,16 @@ def parse_visit(text: str, *, file: str, table_text: str = "") -> VisitDoc:
 
 def _top(text: str, file: str) -> Fields:
     refuse_controls(text, file=file, what=WHAT)
-    top = Fields(parse_toml(text, file=file, what=WHAT), file=file, path="", known=_TOP)
+    tables = parse_toml(text, file=file, what=WHAT)
+    if "bridge" in tables and "visit" not in tables:
+        raise BedstoneError("it is a bridge file", file=file, remedy="add it: bedstone bridge add FILE")
+    top = Fields(tables, file=file, path="", known=_TOP)
     top.format_1(WHAT)
     return top
 
 
 def _visit_fields(top: Fields) -> Fields:
-    table = top.need("visit", "a table [visit] with bridge and date, such as 2024-05-14")
-    return Fields(table, file=top.file, path="visit", known=_VISIT)
+    return top.subtable("visit", _VISIT, "bridge and date")
 
 
 def _table_name(top: Fields) -> str:

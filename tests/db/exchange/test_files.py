@@ -7,7 +7,7 @@ import pytest
 
 from db.exchange import read_bridge, read_visit
 from db.exchange.files import LARGEST
-from tests.db.conftest import line_of
+from tests.db.conftest import DATA, line_of
 
 READERS = pytest.mark.parametrize("read", [read_bridge, read_visit])
 JUNK = {
@@ -30,6 +30,11 @@ def test_junk_is_refused_in_one_line(read: object, what: str, tmp_path: Path) ->
     path = tmp_path / "file.toml"
     path.write_bytes(JUNK[what])
     assert line_of(lambda: read(path)).startswith(str(path))  # type: ignore[operator]
+
+
+def test_the_other_kind_of_file_is_recognised() -> None:
+    assert "bedstone visit log" in line_of(lambda: read_bridge(DATA / "visit-example.toml"))
+    assert "bedstone bridge add" in line_of(lambda: read_visit(DATA / "bridge-example.toml"))
 
 
 @READERS

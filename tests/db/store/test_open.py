@@ -12,6 +12,7 @@ from sqlalchemy import event
 
 from db.documents import BridgeDoc, VisitDoc
 from db.errors import BedstoneError
+from db.exchange import parse_bridge, parse_visit
 from db.store import open as opening
 from db.store import open_record
 from tests.db.conftest import line_of
@@ -203,13 +204,17 @@ def test_a_record_that_cannot_be_written_is_said(
     shared_folder.chmod(0o755)
 
 
-def test_damage_anywhere_is_said_in_one_line(path: str, visit: VisitDoc, tmp_path: Path) -> None:
+def test_damage_anywhere_is_said_in_one_line(
+    path: str, bridge: BridgeDoc, visit: VisitDoc, tmp_path: Path
+) -> None:
     """Overwrite each page in turn: a clear error or an unharmed answer, nothing else."""
     with open_record(path) as record:
         record.log_visit(visit)
         with record._readers.connect() as connection:
             connection.exec_driver_sql("COMMIT")
             connection.exec_driver_sql("PRAGMA wal_checkpoint(TRUNCATE)")
+    later = parse_visit(visit.text.replace("2024-05-14", "2024-05-15"), file="v.toml")
+    stiffer = parse_bridge(bridge.text.replace("150 kN/mm", "160 kN/mm"), file="b.toml")
     data = Path(path).read_bytes()
     size = 4096
     failed = 0
@@ -227,6 +232,8 @@ def test_damage_anywhere_is_said_in_one_line(path: str, visit: VisitDoc, tmp_pat
                     record.visits("quillmere")
                     record.visit_docs("quillmere")
                     record.results("quillmere", "calibration")
+                    record.log_visit(later)
+                    record.add_bridge(stiffer)
             except BedstoneError as error:
                 failed += 1
                 assert "\n" not in str(error)
