@@ -32,13 +32,17 @@ class NotDetermined(ValueError):
     ----------
     pads : positions (in the model's list of pads) that are not told
     readings, unknowns : counts
+    unbounded : the pads are read, but no finite stiffness fits best (a pad read to lengthen under load)
     """
 
-    def __init__(self, reason: str, *, pads: list[int], readings: int, unknowns: int) -> None:
+    def __init__(
+        self, reason: str, *, pads: list[int], readings: int, unknowns: int, unbounded: bool = False
+    ) -> None:
         super().__init__(reason)
         self.pads = pads
         self.readings = readings
         self.unknowns = unknowns
+        self.unbounded = unbounded
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -157,12 +161,13 @@ def _summarise(
     q = start.size
     data = model.jacobian(theta) / model.sd[:, None]
     if prior is None:
+        _require_bounds(np.abs(theta[:q] - start), model)  # a pad that ran away no longer changes any reading
         _require_rank(data, q)
     full = data.T @ data + prior_rows.T @ prior_rows
     scale = 1.0 / np.sqrt(np.diag(full))
     covariance = scale[:, None] * np.linalg.inv(scale[:, None] * full * scale) * scale
     if prior is None:
-        _require_bounds(theta[:q], np.sqrt(np.diag(covariance)[:q]), start, model)
+        _require_bounds(np.sqrt(np.diag(covariance)[:q]), model)
     residual = (model.value - model.predict(theta)) / model.sd
     hat = np.einsum("mi,ij,mj->m", data, covariance, data)
     redundancy = np.clip(1.0 - hat, 0.0, 1.0)
@@ -218,12 +223,14 @@ def _require_rank(whitened: Floats, q: int) -> None:
     raise NotDetermined(reason, pads=silent, readings=readings, unknowns=unknowns)
 
 
-def _require_bounds(theta: Floats, sd: Floats, start: Floats, model: ObservationModel) -> None:
-    loose = np.flatnonzero((np.abs(theta - start) > _UNBOUNDED) | (sd > _UNBOUNDED))
+def _require_bounds(reach: Floats, model: ObservationModel) -> None:
+    """Refuse pads whose ln k went, or may lie, further than any believable stiffness; reach (q,)."""
+    loose = np.flatnonzero(reach > _UNBOUNDED)
     if loose.size:
         raise NotDetermined(
             "the readings do not bound the stiffness",
             pads=[int(i) for i in loose],
             readings=model.value.size,
             unknowns=model.size,
+            unbounded=True,
         )

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import datetime as dt
+
 from dataclasses import dataclass
 
 from markupsafe import Markup
@@ -181,7 +183,7 @@ def pad_trend_rows(trend: TrendResult, girder: str) -> list[list[str]]:
     for p in trend.pads:
         if p.girder != girder:
             continue
-        why = "one visit gives no rate" if p.visits < 2 else "the law has no steady rate"
+        why = "one visit gives no rate" if p.visits < 2 else "fewer than two visits tell this pad"
         step = "no step told"
         if p.step_between is not None:
             step = f"between {words.date(p.step_between[0])} and {words.date(p.step_between[1])}"
@@ -198,18 +200,18 @@ def span_trend_rows(trend: TrendResult, girder: str) -> list[list[str]]:
             s.status,
             words.quantity(s.utilisation_now, "", NO_CAPACITY),
             words.probability(s.probability_over_1_now, NO_CAPACITY),
-            words.date(s.median_crossing, _no_date(s)),
-            words.date(s.earliest_5_percent, _no_date(s)),
+            _crossing(s, s.median_crossing),
+            _crossing(s, s.earliest_5_percent),
         ]
         for s in trend.spans
         if s.girder == girder
     ]
 
 
-def _no_date(span: SpanTrend) -> str:
-    if span.utilisation_now is None:
-        return NO_CAPACITY
-    return "no crossing within the forecast"
+def _crossing(span: SpanTrend, date: dt.date | None) -> str:
+    if date is None and span.utilisation_now is not None:
+        return "none foreseen within the forecast"
+    return words.date(date, NO_CAPACITY)
 
 
 def reading_rows(readings: list[ReadingResult]) -> list[list[str]]:

@@ -23,6 +23,8 @@ Z95 = float(stats.norm.ppf(0.975))
 RATE_PRIOR_SD = 0.5
 """Per year on ln k: only keeps a pad that no two visits tell from being singular; wide against any real rate."""
 
+_HELD_RATE_SD = 1e-7  # a rate held at 0
+
 UNTOLD_RATE_SD = 0.35
 """A rate less certain than this (per year, on ln k) is not determined."""
 
@@ -86,8 +88,9 @@ class Trend:
     Attributes
     ----------
     laws : one PadLaw a pad
-    level : (q,) fitted ln k at the last visit; rate : (q,) per year
+    level : (q,) fitted ln k at the last visit; rate : (q,) per year, with all pads left to drift
     covariance : (2 q, 2 q) of level and rate, scatter included
+    law_level, law_rate, law_covariance : the same with the rate of every steady pad held at 0: the line of its law
     now, now_covariance : (q,), (q, q) ln k at the last visit for what is assessed today
     """
 
@@ -95,6 +98,9 @@ class Trend:
     level: Floats
     rate: Floats
     covariance: Floats
+    law_level: Floats
+    law_rate: Floats
+    law_covariance: Floats
     now: Floats
     now_covariance: Floats
 
@@ -128,24 +134,38 @@ def fit_trend(visits: Sequence[VisitEstimate], prior_mean: Floats, prior_sd: Flo
             level=now,
             rate=np.zeros(q),
             covariance=covariance,
+            law_level=now,
+            law_rate=np.zeros(q),
+            law_covariance=covariance,
             now=now,
             now_covariance=now_covariance,
         )
-    level, rate, covariance = _drift(visits, times, prior_mean, prior_sd)
+    free = np.full(q, RATE_PRIOR_SD)
+    level, rate, covariance = _drift(visits, times, prior_mean, prior_sd, free)
     scatter = _scatter(visits, times, level, rate)
     widen = np.concatenate([np.ones(q), scatter])
     covariance = covariance * widen[:, None] * widen
     rate_sd = np.sqrt(np.diag(covariance)[q:])
     laws = tuple(_law(rate[i], rate_sd[i], scatter[i], visits, i) for i in range(q))
+    held = np.where([law.law == "steady" for law in laws], _HELD_RATE_SD, free)
+    law_level, law_rate, law_covariance = _drift(visits, times, prior_mean, prior_sd, held)
     return Trend(
-        laws=laws, level=level, rate=rate, covariance=covariance, now=now, now_covariance=now_covariance
+        laws=laws,
+        level=level,
+        rate=rate,
+        covariance=covariance,
+        law_level=law_level,
+        law_rate=law_rate,
+        law_covariance=law_covariance,
+        now=now,
+        now_covariance=now_covariance,
     )
 
 
 def _drift(
-    visits: Sequence[VisitEstimate], times: Floats, prior_mean: Floats, prior_sd: Floats
+    visits: Sequence[VisitEstimate], times: Floats, prior_mean: Floats, prior_sd: Floats, rate_sd: Floats
 ) -> tuple[Floats, Floats, Floats]:
-    """Level at the last visit, rate, and their covariance (2 q, 2 q)."""
+    """Level at the last visit, rate, and their covariance (2 q, 2 q); rates are kept to N(0, rate_sd) (q,)."""
     q = prior_mean.size
     normal, right = np.zeros((2 * q, 2 * q)), np.zeros(2 * q)
     for visit, t in zip(visits, times, strict=True):
@@ -156,7 +176,7 @@ def _drift(
     held = np.where(np.isfinite(prior_sd), 1.0 / prior_sd**2, 1e-8)
     normal += np.kron(np.array([[1.0, middle], [middle, middle * middle]]), np.diag(held))
     right += np.concatenate([held * prior_mean, middle * held * prior_mean])
-    normal[q:, q:] += np.eye(q) / RATE_PRIOR_SD**2
+    normal[q:, q:] += np.diag(rate_sd**-2.0)
     scale = 1.0 / np.sqrt(np.diag(normal))
     covariance = scale[:, None] * np.linalg.inv(scale[:, None] * normal * scale) * scale
     both = covariance @ right

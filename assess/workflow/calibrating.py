@@ -187,6 +187,12 @@ def _what_is_missing(model: GirderModel, missing: NotDetermined, where: str) -> 
             f"at least {missing.unknowns - missing.readings} more are needed, best a compression at each pad; "
             "or calibrate with the prior (leave out --no-prior)"
         )
+    elif missing.unbounded:
+        problem = f"{counts}, but they do not bound the stiffness of the pad at {pads}"
+        remedy = (
+            "look for a slip of sign, unit or load state in its readings, or read it under more load; "
+            "or calibrate with the prior (leave out --no-prior)"
+        )
     else:
         untold = f"but they do not tell the pad at {pads}" if pads else "but they do not tell the pads apart"
         problem = f"{counts}, {untold}"

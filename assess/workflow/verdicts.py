@@ -57,8 +57,8 @@ def verdict(
     if changed is not None:
         rate = changed.change_per_year_percent or 0.0
         sentence += (
-            f'; look first at the pad at "{changed.support}", whose stiffness changes by {rate:+.2g} % a year '
-            f"({changed.low95:+.2g} to {changed.high95:+.2g})"
+            f'; look first at the pad at "{changed.support}", whose stiffness changes by {rate:+.3g} % a year '
+            f"({changed.low95:+.3g} to {changed.high95:+.3g})"
         )
     found = _softest(calibration, girder)
     if found and changed is None:

@@ -250,13 +250,13 @@ def _histories(model: GirderModel, part: GirderTrend) -> list[PadHistory]:
 
 def _past(part: GirderTrend, pad: int, back: Floats) -> tuple[Floats, Floats]:
     """The fitted law before the last visit and its standard deviation, both (times,): ln k."""
-    q = part.trend.level.size
-    rate = part.trend.rate[pad]
+    q = part.trend.law_level.size
+    rate = part.trend.law_rate[pad]
     pick = np.array([pad, q + pad])
-    covariance = part.trend.covariance[np.ix_(pick, pick)]
+    covariance = part.trend.law_covariance[np.ix_(pick, pick)]
     basis = np.stack([np.ones_like(back), back], axis=-1)
     spread = np.sqrt(np.clip(np.einsum("ti,ij,tj->t", basis, covariance, basis), 0.0, None))
-    return np.asarray(part.trend.level[pad] + back * rate), spread
+    return np.asarray(part.trend.law_level[pad] + back * rate), spread
 
 
 def _day(last: dt.date, years: float) -> dt.date:
