@@ -196,7 +196,7 @@ def _what_is_missing(model: GirderModel, missing: NotDetermined, where: str) -> 
     else:
         untold = f"but they do not tell the pad at {pads}" if pads else "but they do not tell the pads apart"
         problem = f"{counts}, {untold}"
-        remedy = "read its compression, or place the vehicle over it; or calibrate with the prior (leave out --no-prior)"
+        remedy = "read its compression with the vehicle near it, or calibrate with the prior (leave out --no-prior)"
     return BedstoneError(problem, field=where, remedy=remedy)
 
 
