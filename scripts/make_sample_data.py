@@ -1,4 +1,4 @@
-"""Make the demo's files in sample_data: invented readings of an invented bridge, simulated and rounded as a crew would write them.
+"""Make the demo's files in sample_data: readings of an invented bridge, simulated and rounded.
 
 Run it only to change the story; the files are kept. The same seed gives the same files.
 """
@@ -70,7 +70,9 @@ def _tests(
     log_k = model.nominal + [np.log(ratio) + growth * years for ratio, growth in truth]
     log_k = log_k + COLDER * (20.0 - temperature)
     states = [LoadStateDoc(id=s, vehicle="works locomotive", leading_axle_at=x) for s, x in STATES]
-    places = [("compression", i, 0.0) for i in range(model.n)] + [("deflection", -1, x) for x in (7.0, 24.0, 41.0)]
+    places = [("compression", i, 0.0) for i in range(model.n)] + [
+        ("deflection", -1, x) for x in (7.0, 24.0, 41.0)
+    ]
     observations = [
         Observation(quantity=q, state=j, value=0.0, sd=1.0, support=i, x=x)
         for j in range(len(states))
@@ -106,12 +108,14 @@ def _levels(name: str, settled: float, rng: np.random.Generator) -> list[str]:
 
 def _visit(date: dt.date, party: str, temperature: float, table: str) -> str:
     states = "".join(
-        f'\n[[load_state]]\nid = "{s}"\nvehicle = "works locomotive"\nleading_axle_at = "{x:g} m"\n' for s, x in STATES
+        f'\n[[load_state]]\nid = "{s}"\nvehicle = "works locomotive"\nleading_axle_at = "{x:g} m"\n'
+        for s, x in STATES
     )
     return (
         "# Invented data: no such bridge, no such visit.\nformat = 1\n\n[visit]\n"
         f'bridge = "hollin-water"\ndate = {date.isoformat()}\nparty = "{party}"\n'
-        f'pad_temperature = "{temperature:g} degC"\ndatum = "levels of 2018, three marks on rock"\nreadings = "{table}"\n'
+        f'pad_temperature = "{temperature:g} degC"\ndatum = "levels of 2018, three marks on rock"\n'
+        f'readings = "{table}"\n'
         f'\n[[load_state]]\nid = "permanent"\n{states}'
     )
 

@@ -173,9 +173,9 @@ def settlements_used(girder: str, drops: Sequence[tuple[str, float, float, dt.da
     if not drops:
         return []
     each = "; ".join(f'"{s}" {mm:.3g} mm (sd {sd:.2g} mm, {date})' for s, mm, sd, date in drops)
+    said = f"{girder}: the permanent effects of the calibrated case include the measured settlements of the seats"
     return [
-        f"{girder}: the permanent effects of the calibrated case include the measured settlements of the seats, downward: "
-        f"{each}. The girder's full stiffness answers them, without relief by creep of the girder."
+        f"{said}, downward: {each}. The girder's full stiffness answers them, without relief by creep of the girder."
     ]
 
 
