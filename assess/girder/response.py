@@ -115,7 +115,7 @@ def _gauss(breaks: Floats, start: float, end: float) -> tuple[Floats, Floats]:
     half, middle = np.diff(edges) / 2.0, (edges[..., 1:] + edges[..., :-1]) / 2.0
     nodes = middle[..., None] + half[..., None] * _GAUSS[0]
     weights = half[..., None] * _GAUSS[1]
-    shape = (*edges.shape[:-1], -1)
+    shape = (*edges.shape[:-1], 2 * half.shape[-1])
     return nodes.reshape(shape), weights.reshape(shape)
 
 

@@ -24,12 +24,12 @@ class Train:
     loads: Floats
 
     def __post_init__(self) -> None:
-        order = np.argsort(np.asarray(self.offsets, dtype=np.float64), kind="stable")
-        offsets = np.asarray(self.offsets, dtype=np.float64)[order]
-        loads = np.asarray(self.loads, dtype=np.float64)[order]
+        offsets = np.asarray(self.offsets, dtype=np.float64)
+        loads = np.asarray(self.loads, dtype=np.float64)
         if offsets.ndim != 1 or offsets.shape != loads.shape or offsets.size == 0:
             raise ValueError("a train needs one load for every axle and at least one axle")
-        offsets = offsets - offsets[0]
+        order = np.argsort(offsets, kind="stable")
+        offsets, loads = offsets[order] - offsets[order[0]], loads[order]
         offsets.setflags(write=False)
         loads.setflags(write=False)
         object.__setattr__(self, "offsets", offsets)
