@@ -15,9 +15,9 @@ from assess.loads import LoadCase, Train
 Floats = NDArray[np.float64]
 
 # the plain run takes the same examples every time; a campaign looks for new ones
-PLAIN = settings(max_examples=100, deadline=None, derandomize=True)
-FEW = settings(max_examples=40, deadline=None, derandomize=True)
-CAMPAIGN = settings(max_examples=4000, deadline=None, print_blob=True)
+PLAIN = settings(max_examples=60, deadline=None, derandomize=True)
+FEW = settings(max_examples=25, deadline=None, derandomize=True)
+CAMPAIGN = settings(max_examples=1500, deadline=None, print_blob=True)
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -60,7 +60,8 @@ def test_the_condensed_stiffness_is_symmetric_and_never_negative(girder: Girder)
     stiffness = Condensed(girder).K
     assert np.array_equal(stiffness, stiffness.T)
     values = np.linalg.eigvalsh(stiffness)
-    assert values.min() > -1e-12 * max(values.max(), 1e-3)
+    largest = max(piece.flexural for span in girder.spans for piece in span)
+    assert values.min() >= -1e-12 * max(values.max(), largest / girder.span_lengths.min() ** 3)
 
 
 @PLAIN
@@ -87,10 +88,10 @@ def test_stiff_pads_become_unyielding_supports(case: Case) -> None:
     assert apart(rigid.reaction, forces, case.loads.total) < 1e-12
     assert not rigid.displacement.any()
     stiffness = np.abs(condensed.K).max() + 1e3
-    gaps = [
-        np.abs(condensed.solve(np.full(condensed.n_supports, 1.0 / (stiffness * factor)), forces).reaction - forces).max()
-        for factor in (1e6, 1e7)
-    ]  # fmt: skip
+    gaps = []
+    for factor in (1e6, 1e7):
+        f = np.full(condensed.n_supports, 1.0 / (stiffness * factor))
+        gaps.append(np.abs(condensed.solve(f, forces).reaction - forces).max())
     assert gaps[0] <= 2e-5 * case.loads.total * condensed.n_supports
     assert gaps[1] <= 0.11 * gaps[0] + 1e-9 * case.loads.total
 

@@ -121,7 +121,9 @@ def test_an_axle_over_the_end_support_gives_it_its_whole_load() -> None:
     condensed = Condensed(THREE)
     single = Train(np.array([0.0]), np.array([100.0]))
     found = envelope(passages(support_places(condensed), single), np.zeros(4))
-    assert found.maximum == pytest.approx([100.0] * 4, rel=1e-12)
+    assert found.maximum[[0, -1]] == pytest.approx([100.0, 100.0], rel=1e-12)
+    # beside an interior support of unequal spans the reaction may be a little more than the load
+    assert (found.maximum[1:-1] >= 100.0 - 1e-9).all()
     assert (found.minimum[[0, -1]] < -1.0).all()
 
 

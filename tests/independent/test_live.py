@@ -67,7 +67,7 @@ def compare(girder: Girder, f: Floats, train: Train) -> None:
     within(found.minimum, low, high.max())
 
 
-@settings(PLAIN, max_examples=40)
+@settings(PLAIN, max_examples=25)
 @given(short_girders(), trains())
 def test_envelopes_on_yielding_supports_agree_with_every_millimetre(made, train) -> None:  # type: ignore[no-untyped-def]
     compare(*made, train)
