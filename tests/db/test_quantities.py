@@ -6,7 +6,7 @@ from collections.abc import Callable
 from pathlib import Path
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from db.errors import BedstoneError
@@ -182,6 +182,7 @@ def test_a_near_spelling_is_suggested() -> None:
 finite = st.floats(allow_nan=False, allow_infinity=False, min_value=-1e200, max_value=1e200)
 
 
+@settings(deadline=None)
 @given(value=finite, case=st.sampled_from(GOOD))
 def test_any_float_and_unit_comes_back(value: float, case: tuple[str, str, float]) -> None:
     text, dimension, _ = case
@@ -192,6 +193,7 @@ def test_any_float_and_unit_comes_back(value: float, case: tuple[str, str, float
     assert back == pytest.approx(value, rel=1e-14, abs=1e-12 if dimension == "temperature" else 0.0)
 
 
+@settings(deadline=None)
 @given(value=finite, dimension=st.sampled_from(sorted(DIMENSIONS)))
 def test_a_number_as_written_is_read_exactly(value: float, dimension: str) -> None:
     if 0.0 < abs(value) < 1e-200:
@@ -200,6 +202,7 @@ def test_a_number_as_written_is_read_exactly(value: float, dimension: str) -> No
     assert read_quantity(text, dimension).si == pytest.approx(value, rel=1e-14)
 
 
+@settings(deadline=None)
 @given(
     left=st.integers(-99, 99),
     operator=st.sampled_from(["+", "-", "*", "/", "**", "^", "%", "//", " ", ",", "e", "(", ";"]),
@@ -219,6 +222,7 @@ def test_an_operator_between_two_numbers_is_refused(
         read_quantity(f"{first} {operator} {right} {unit}", "length")
 
 
+@settings(deadline=None)
 @given(st.text(max_size=80))
 def test_no_text_does_anything_but_read_or_be_refused(text: str) -> None:
     for dimension in ("length", "temperature coefficient"):
@@ -228,6 +232,7 @@ def test_no_text_does_anything_but_read_or_be_refused(text: str) -> None:
             assert "\n" not in str(error)
 
 
+@settings(deadline=None)
 @given(st.text(alphabet="mkNin/·* 12^-%°CKradeg", max_size=20))
 def test_no_unit_text_evaluates(text: str) -> None:
     with contextlib.suppress(BedstoneError):

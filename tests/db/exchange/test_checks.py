@@ -39,6 +39,15 @@ def test_what_does_not_fit_the_bridge_is_refused(case: str, visit_text: str, bri
     assert says in line
 
 
+def test_a_reading_in_a_state_that_is_gone_is_refused(visit: VisitDoc, bridge: BridgeDoc) -> None:
+    less = VisitDoc(**(vars(visit) | {"states": visit.states[:1]}))
+    assert 'no load state "T1"' in line_of(lambda: check_visit(less, bridge, today=TODAY, file="v.toml"))
+
+
+def test_no_axle_stands_in_the_permanent_state(visit: VisitDoc, bridge: BridgeDoc) -> None:
+    assert axle_positions(visit.states[0], bridge) == ()
+
+
 def test_every_reading_without_a_place_is_counted(visit_text: str, bridge: BridgeDoc) -> None:
     text = changed(visit_text, '"pier 1"', '"pier 9"', 'at = "6 m"', 'at = "60 m"')
     visit = parse_visit(text, file="visit.toml")
