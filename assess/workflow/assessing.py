@@ -201,6 +201,7 @@ def supports_of(
     date = max(own)
     if date != max(fits):
         said.append(cautions.older_girder(name, date, max(fits)))
+    said += [one for one in fits[date][0].result.cautions if one.startswith(f"{name}: ")]
     said += _forgotten(model, own, date)
     return (
         Supports(

@@ -20,7 +20,7 @@ STANDING = (
 TOLD = 0.5  # data share below which a pad is told by the assumption
 REFERENCE_TEMPERATURE = 20.0  # degC
 _FAR = 10.0  # K from the reference that calls for a word
-_MISFIT = 0.05
+MISFIT = 0.05
 
 
 def of_fit(girder: str, shown: GirderCalibration, readings: Sequence[ReadingDoc], found: Fit) -> list[str]:
@@ -56,7 +56,7 @@ def of_fit(girder: str, shown: GirderCalibration, readings: Sequence[ReadingDoc]
         said.append(
             f"{girder}: no reading is left over to check the fit: an error in any of them goes straight into a stiffness."
         )
-    elif shown.p_value is not None and shown.p_value < _MISFIT:
+    elif shown.p_value is not None and shown.p_value < MISFIT:
         said.append(
             f"{girder}: misfit: the readings do not agree with this girder within their standard deviations "
             f"(chi-square {shown.chi_square:.3g} on {shown.degrees_of_freedom} degrees of freedom, p {shown.p_value:.2g}); "
@@ -79,25 +79,25 @@ def of_visit(visit: VisitDoc) -> list[str]:
     other = sorted({r.quantity for r in held if r.quantity != "settlement"})
     if other:
         said.append(
-            f"{visit.date}: readings of the permanent state ({', '.join(other)}) are kept but not fitted yet; "
-            "measured seat settlements enter the assessment, the rest of the permanent state does not."
+            f"Readings of the permanent state ({', '.join(other)}) are kept but not fitted yet; measured seat settlements "
+            "enter the assessment, the rest of the permanent state does not."
         )
     moved = [
         r for r in visit.readings if r.quantity == "settlement" and visit.state(r.state).vehicle is not None
     ]
     for r in moved:
         said.append(
-            f'{visit.date}: the seat "{r.support}" ({r.girder}) was read to move in test state {r.state}; it is fitted as a '
-            "movement of that state only. If the ground gives under a test load, ask why before testing again."
+            f'{r.girder}: the seat "{r.support}" was read to move in test state {r.state}; it is fitted as a movement of '
+            "that state only. If the ground gives under a test load, ask why before testing again."
         )
     t = visit.pad_temperature
     if t is None:
         said.append(
-            f"{visit.date}: no pad temperature was recorded; cold rubber is stiffer, and this visit cannot be corrected."
+            "No pad temperature was recorded; cold rubber is stiffer, and this visit cannot be corrected for it."
         )
     elif abs(t - REFERENCE_TEMPERATURE) > _FAR:
         said.append(
-            f"{visit.date}: pads at {t:.3g} degC; the stiffnesses hold at that temperature and are not brought to "
+            f"The pads were at {t:.3g} degC; the stiffnesses hold at that temperature and are not brought to "
             f"{REFERENCE_TEMPERATURE:.0f} degC. Cold pads read stiffer than they are in summer."
         )
     return said
@@ -253,6 +253,13 @@ PERMANENT_STIFFNESS = "Permanent effects use the pads' short-term stiffness; cre
 
 
 # trend -------------------------------------------------------------------------------------------
+
+
+def doubtful(girder: str, date: dt.date, suspects: int, misfit: bool) -> str:
+    """Caution: a visit whose fit is in doubt is among the points."""
+    why = f"{suspects} suspect reading{'s' if suspects > 1 else ''}" if suspects else ""
+    why = " and ".join(part for part in (why, "a misfit" if misfit else "") if part)
+    return f"{girder}: the visit of {date} has {why} still in its fit; its stiffnesses may be off, and the rates with them."
 
 
 def one_visit(girder: str) -> str:

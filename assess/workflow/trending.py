@@ -82,6 +82,7 @@ def trend_study(study: Study, *, progress: Progress) -> tuple[TrendResult, list[
         parts.append(part)
         said += about
     progress("carried forward", len(study.bridge.girders), len(study.bridge.girders))
+    said += _doubts(fits)
     said += _temperatures(study, fits)
     due, reason, about = _next_visit(study, as_of, parts)
     said += about
@@ -324,6 +325,18 @@ def _next_visit(study: Study, as_of: dt.date, parts: list[GirderTrend]) -> tuple
     if due < dt.date.today():
         said.append(cautions.overdue(due))
     return due, reason, said
+
+
+def _doubts(fits: dict[dt.date, VisitFit]) -> list[str]:
+    """Word on visits whose own fit is in doubt."""
+    said = []
+    for date, one in fits.items():
+        for girder in one.result.girders:
+            suspects = sum(reading.suspect for reading in girder.readings)
+            misfit = girder.p_value is not None and girder.p_value < cautions.MISFIT
+            if suspects or misfit:
+                said.append(cautions.doubtful(girder.girder, date, suspects, misfit))
+    return said
 
 
 def _temperatures(study: Study, fits: dict[dt.date, VisitFit]) -> list[str]:

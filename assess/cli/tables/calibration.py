@@ -72,9 +72,8 @@ def gathered_cautions(by_visit: Iterable[tuple[str, Sequence[str]]]) -> list[str
         visits.append(visit)
         for caution in dict.fromkeys(cautions):
             places.setdefault(caution, []).append(visit)
-    return [
-        caution if where == visits else f"{', '.join(where)}: {caution}" for caution, where in places.items()
-    ]
+    own = [f"{', '.join(where)}: {caution}" for caution, where in places.items() if where != visits]
+    return own + [caution for caution, where in places.items() if where == visits]
 
 
 def _show_history(fits: Sequence[tuple[str, GirderCalibration]]) -> None:

@@ -338,7 +338,7 @@ def _key(axes: Axes, state: ElevationState) -> None:
 
 def _notes(axes: Axes, factor: float | None, *, foot: float, zero: str) -> None:
     told = "no movement to draw" if factor is None else f"movements × {words.number(factor)}"
-    first = f"{told}; lengths to scale; girder depth and pad height not to scale"
+    first = f"{told}, seats that dropped since the datum too; girder depth and pad height not to scale"
     second = fitted(f"pad width = stiffness, dashed outline = as designed; x from {zero}", svg.FULL_WIDTH - 4)
     axes.text(2.0, foot + LINE_PT, first, ha="left", va="baseline")
     axes.text(2.0, foot + 2 * LINE_PT, second, ha="left", va="baseline")
