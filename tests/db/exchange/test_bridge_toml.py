@@ -118,7 +118,7 @@ BAD = {
     "no such date": ("built = 1989-06-01", "built = 1989-02-30", "not TOML"),
     "field twice": ("count = 3", "count = 3\ncount = 3", "not TOML"),
     "one table for many": ("[[live]]", "[live]", "start each one with [[live]]"),
-    "a field that is no table here": ("format = 1", "format = 1\\nlive2 = 1", 'did you mean "live"'),
+    "a field that is no table here": ("format = 1", "format = 1\nlive2 = 1", 'did you mean "live"'),
     "an endless name": ("Quillmere viaduct", "q" * 10_001, "bridge, name"),
     "coefficient without percent": (
         '"150 kN/mm"',
