@@ -15,7 +15,13 @@ from assess.loads import LoadCase
 Floats = NDArray[np.float64]
 
 MM = 1e-3
-SD = {"compression": 0.03 * MM, "deflection": 0.1 * MM, "rotation": 2e-5, "strain": 2e-6, "settlement": 0.1 * MM}
+SD = {
+    "compression": 0.03 * MM,
+    "deflection": 0.1 * MM,
+    "rotation": 2e-5,
+    "strain": 2e-6,
+    "settlement": 0.1 * MM,
+}
 HEIGHT = -0.6  # m, bottom flange
 AXLES = ((0.0, 100.0), (1.8, 100.0), (9.2, 100.0), (11.0, 100.0))
 

@@ -37,7 +37,9 @@ def exact_values(
     """True values (m,) of readings; seats drop by `drops` (states, n)."""
     drops = np.zeros((len(states), girder.n_supports)) if drops is None else drops
     x = np.unique([o.x for o in observations])
-    solved = [frame.solve(girder, compliance, drop, case, x) for case, drop in zip(states, drops, strict=True)]
+    solved = [
+        frame.solve(girder, compliance, drop, case, x) for case, drop in zip(states, drops, strict=True)
+    ]
     values = []
     for o in observations:
         one, at = solved[o.state], int(np.searchsorted(x, o.x))

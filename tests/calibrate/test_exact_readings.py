@@ -123,6 +123,10 @@ def test_a_reading_that_pins_the_prior_away_keeps_a_number() -> None:
     from assess.calibrate import PadPrior
 
     start = np.log([1e5, 1e5])
-    found = fit(with_values(model, np.array([-0.2e-3, 0.5e-3])), start=start, prior=PadPrior(mean=start, sd=np.full(2, 0.3)))
+    found = fit(
+        with_values(model, np.array([-0.2e-3, 0.5e-3])),
+        start=start,
+        prior=PadPrior(mean=start, sd=np.full(2, 0.3)),
+    )
     assert np.all(np.abs(found.log_stiffness - start) < 3.0)
     assert found.suspect.tolist() == [True, False]

@@ -34,7 +34,8 @@ def differences(model: ObservationModel, theta: Floats) -> Floats:
         unit = np.zeros(theta.size)
         unit[i] = 1e-3
         coarse, fine = (
-            (model.predict(theta + h * unit) - model.predict(theta - h * unit)) / (2e-3 * h) for h in (2.0, 1.0)
+            (model.predict(theta + h * unit) - model.predict(theta - h * unit)) / (2e-3 * h)
+            for h in (2.0, 1.0)
         )
         columns.append((4.0 * fine - coarse) / 3.0)
     return np.stack(columns, axis=1)
