@@ -17,6 +17,7 @@ Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
 
 _STEEL_SHEAR_RATIO = 2.6  # E / G where G is not given: 2 (1 + nu) with nu 0.3
+_END_SLACK_M = 1e-6  # an axle this close to an end of the girder stands on it
 
 
 class GirderModel:
@@ -92,9 +93,11 @@ class GirderModel:
         train = _train(self.bridge, state.vehicle)
         way = -1.0 if state.towards == "larger x" else 1.0
         x = state.leading_axle_at + way * train.offsets
-        on = (x >= 0.0) & (x <= self.doc.length)
-        loads = train.loads * self.doc.live_share
-        return LoadCase(points=tuple((float(a), float(p)) for a, p in zip(x[on], loads[on], strict=True)))
+        length = self.doc.length  # rounding of converted units takes no axle off an end support
+        on = (x >= -_END_SLACK_M) & (x <= length + _END_SLACK_M)
+        x = np.clip(x[on], 0.0, length)
+        loads = train.loads[on] * self.doc.live_share
+        return LoadCase(points=tuple((float(a), float(p)) for a, p in zip(x, loads, strict=True)))
 
     # resistance ------------------------------------------------------------------------------
 
