@@ -134,7 +134,7 @@ def test_all_visits_stand_one_below_the_other_with_marks_for_what_is_assumed(bed
 
 def test_a_caution_of_every_visit_is_said_once_and_another_names_its_visits():
     cautions = gathered_cautions([("2016", ["a", "b"]), ("2018", ["a", "c"]), ("2020", ["a", "c"])])
-    assert cautions == ["a", "2016: b", "2018, 2020: c"]
+    assert cautions == ["2016: b", "2018, 2020: c", "a"]
 
 
 def test_no_id_is_cut_when_stdout_is_no_terminal(bedstone, workflow):

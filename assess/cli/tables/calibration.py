@@ -65,7 +65,7 @@ def show_calibrations(results: Sequence[CalibrationResult], *, all_readings: boo
 
 
 def gathered_cautions(by_visit: Iterable[tuple[str, Sequence[str]]]) -> list[str]:
-    """Return each caution once, behind the visits it belongs to; one of every visit stands alone."""
+    """Return each caution once, behind the visits it belongs to; those of every visit stand alone, last."""
     visits: list[str] = []
     places: dict[str, list[str]] = {}
     for visit, cautions in by_visit:
