@@ -323,7 +323,7 @@ def test_the_order_of_the_readings_does_not_matter() -> None:
 
 
 def test_the_start_does_not_matter() -> None:
-    model = noisy(well_read(), NOMINAL + [0.3, -0.9, 0.2, 0.5], np.random.default_rng(13))
+    model = noisy(well_read(), NOMINAL + np.array([0.3, -0.9, 0.2, 0.5]), np.random.default_rng(13))
     ends = [
         fit(model, start=NOMINAL + shift, prior=None).log_stiffness for shift in (-1.5, -0.4, 0.0, 0.8, 1.5)
     ]

@@ -157,7 +157,7 @@ def gum_h3() -> Solved:
 
 
 def test_the_calibration_line_of_gum_h3_is_met_in_its_published_digits() -> None:
-    """JCGM 100:2008, annex H.3: intercept, slope, their correlation and the sum of squares; half a unit of the last digit."""
+    """JCGM 100:2008, annex H.3: intercept, slope, their correlation sum of squares; half a unit of the last digit."""
     found = gum_h3()
     assert found.b[0] == pytest.approx(-0.1712, abs=5e-5)
     assert found.sd[0] == pytest.approx(0.0029, abs=5e-5)
@@ -184,7 +184,7 @@ def test_gum_h3_is_met_in_the_recomputed_digits() -> None:
 
 def test_a_perturbed_jacobian_would_miss_the_certified_deviations() -> None:
     """The check bites: one per cent on a derivative shows in the standard deviation."""
-    make, starts, b, sd, _, _ = NIST["Misra1a"]
+    make, _, b, sd, _, _ = NIST["Misra1a"]
     curve = make(*table("nist_Misra1a.csv"))
     exact = curve.gradient
     curve.gradient = lambda x, b: exact(x, b) * np.array([1.01, 1.0])
