@@ -49,6 +49,11 @@ class VisitFit:
     result: CalibrationResult
     fits: dict[str, GirderFit]
 
+    def of(self, model: GirderModel) -> GirderFit | None:
+        """The fit of a girder, if this visit calibrated it with the pads it has today."""
+        found = self.fits.get(model.doc.id)
+        return found if found is not None and found.supports == model.pad_ids else None
+
 
 def calibrate(
     url: str,
@@ -184,7 +189,7 @@ def _what_is_missing(model: GirderModel, missing: NotDetermined, where: str) -> 
         untold = f"; nothing tells the pad at {pads}" if pads else ""
         problem = f"{counts}: without the prior the stiffnesses are not determined{untold}"
         remedy = (
-            f"at least {missing.unknowns - missing.readings} more are needed, best a compression at each pad; "
+            f"add at least {missing.unknowns - missing.readings} more, best a compression at each pad; "
             "or calibrate with the prior (leave out --no-prior)"
         )
     elif missing.unbounded:
