@@ -1,0 +1,111 @@
+"""The sample data tell their story, and are what their script writes."""
+
+from __future__ import annotations
+
+import datetime as dt
+import math
+import shutil
+from types import ModuleType
+
+import pytest
+
+from tests.workflow.conftest import ROOT, Demo
+
+SAMPLE = ROOT / "sample_data"
+SOFTENING = ("north", "pier 2")
+
+
+def true_ratio(story: ModuleType, pad: tuple[str, str], date: dt.date, temperature: float) -> float:
+    ratio, growth = story.TRUTH[pad]
+    years = (date - story.VISITS[0][0]).days / 365.25
+    return float(ratio * math.exp(growth * years + story.COLDER * (20.0 - temperature)))
+
+
+def test_the_files_are_what_the_script_writes(story: ModuleType, tmp_path, monkeypatch) -> None:  # type: ignore[no-untyped-def]
+    shutil.copy(SAMPLE / "hollin-water.toml", tmp_path)
+    monkeypatch.setattr(story, "FOLDER", tmp_path)
+    story.main()
+    made = {path.name: path.read_bytes() for path in tmp_path.iterdir()}
+    kept = {path.name: path.read_bytes() for path in SAMPLE.iterdir() if path.suffix in {".toml", ".csv"}}
+    assert sorted(made) == sorted(kept)
+    assert [name for name in made if made[name] != kept[name]] == []
+
+
+def test_the_softening_pad_is_found_within_10_percent_at_every_visit(demo: Demo, story: ModuleType) -> None:
+    for result, (date, _, temperature, _) in zip(demo.visits, story.VISITS, strict=True):
+        assert result.visit == date
+        girder = next(g for g in result.girders if g.girder == SOFTENING[0])
+        pad = next(p for p in girder.pads if p.support == SOFTENING[1])
+        assert pad.ratio_to_nominal == pytest.approx(
+            true_ratio(story, SOFTENING, date, temperature), rel=0.10
+        )
+        assert pad.data_share > 0.9
+
+
+def test_the_softening_pad_drifts_and_its_interval_holds_the_truth(demo: Demo, story: ModuleType) -> None:
+    pad = next(p for p in demo.trend.pads if (p.girder, p.support) == SOFTENING)
+    true = 100.0 * math.expm1(story.TRUTH[SOFTENING][1])
+    assert pad.law == "drift"
+    assert pad.visits == len(story.VISITS)
+    assert pad.low95 <= true <= pad.high95 < 0.0
+
+
+def test_all_other_pads_stay_steady(demo: Demo) -> None:
+    moving = [(p.girder, p.support) for p in demo.trend.pads if p.law != "steady"]
+    assert moving == [SOFTENING]
+    assert len(demo.trend.pads) == 8
+
+
+def test_most_intervals_hold_the_true_stiffness(demo: Demo, story: ModuleType) -> None:
+    inside = [
+        pad.low95_kN_per_m / pad.nominal_kN_per_m
+        <= true_ratio(story, (girder.girder, pad.support), date, temperature)
+        <= pad.high95_kN_per_m / pad.nominal_kN_per_m
+        for result, (date, _, temperature, _) in zip(demo.visits, story.VISITS, strict=True)
+        for girder in result.girders
+        for pad in girder.pads
+    ]
+    assert len(inside) == 48
+    assert sum(inside) >= 42
+
+
+def test_the_one_bad_reading_is_flagged_and_no_other(demo: Demo, story: ModuleType) -> None:
+    date, girder, state, place, _ = story.KNOCKED
+    suspects = [
+        (result.visit, one.girder, r.state, r.quantity, r.at_m)
+        for result in demo.visits
+        for one in result.girders
+        for r in one.readings
+        if r.suspect
+    ]
+    assert suspects == [(date, girder, state, "deflection", place)]
+    said = next(r for r in demo.visits if r.visit == date).cautions
+    assert any("suspect reading" in one and state in one and f"{place:g} m" in one for one in said)
+
+
+def test_the_winter_visit_is_cautioned_and_no_other(demo: Demo, story: ModuleType) -> None:
+    cold = [
+        result.visit
+        for result in demo.visits
+        if any("Cold pads read stiffer" in one for one in result.cautions)
+    ]
+    assert cold == [date for date, _, temperature, _ in story.VISITS if temperature < 5.0]
+    assert len(cold) == 1
+
+
+def test_the_settling_pier_is_in_the_permanent_effects(demo: Demo, story: ModuleType) -> None:
+    said = " ".join(demo.assessment.cautions)
+    assert '"pier 2"' in said
+    settled = story.VISITS[-1][3]
+    assert settled > 3.0
+    for girder in demo.assessment.girders:
+        row = next(s for s in girder.sections if s.support == "pier 2" and s.effect == "hogging")
+        assert row.calibrated.permanent > row.nominal.permanent + 50.0  # a lowered support is relieved
+        other = next(s for s in girder.sections if s.support == "pier 1" and s.effect == "hogging")
+        assert other.calibrated.permanent < other.nominal.permanent
+
+
+def test_the_assessment_rests_on_the_last_visit(demo: Demo, story: ModuleType) -> None:
+    assert demo.assessment.calibration_visit == story.VISITS[-1][0]
+    assert demo.trend.as_of == story.VISITS[-1][0]
+    assert demo.trend.next_visit_by is not None
