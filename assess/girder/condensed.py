@@ -19,6 +19,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from assess.girder.batch import WORTHWHILE, solve_many
 from assess.girder.model import Girder
 from assess.girder.span import REACH, SimpleSpan
 
@@ -99,6 +100,9 @@ class Condensed:
         moments[s, :, s, :] -= k
         self.moments_by_load: Floats = moments
         self._by_drop = by_drop
+        self._pieces = np.repeat(s, [len(pieces) for pieces in girder.spans])
+        cubics = np.concatenate([span.end_cubics for span in self.spans])
+        self._cubics = np.ascontiguousarray(np.moveaxis(cubics, 0, -1))  # (2, 4, pieces)
         stiffness = np.einsum("sia,sib->ab", by_drop, self.moments_by_drop)
         self.K: Floats = (stiffness + stiffness.T) / 2.0
         # a stiffness of the girder's own size; K itself is nothing where the girder is statically determinate
@@ -159,6 +163,34 @@ class Condensed:
         np.put_along_axis(forces, span[..., None] + 1, share[..., None], axis=-1)
         return forces
 
+    def row_state(self, axles: Floats, loads: Floats) -> tuple[Floats, Floats]:
+        """Span-end moments (rows, spans, 2) and lever-rule forces (rows, n) under rows of axles.
+
+        Parameters
+        ----------
+        axles : (rows, axles) x of every axle; those off the girder do nothing
+        loads : (axles,) kN
+        """
+        rows, spans = axles.shape[0], len(self.spans)
+        span, local = self.locate(axles)
+        weight = np.where(self.carries(axles), loads, 0.0)
+        breaks = self.girder.breakpoints
+        piece = np.clip(np.searchsorted(breaks, axles, side="right") - 1, 0, self._pieces.size - 1)
+        t = self.positions[span] + local - breaks[piece]
+        where = (np.arange(rows)[:, None] * spans + span).ravel()
+        turned = []
+        for c in self._cubics:
+            rotation = ((c[3][piece] * t + c[2][piece]) * t + c[1][piece]) * t + c[0][piece]
+            turned.append(np.bincount(where, (weight * rotation).ravel(), rows * spans))
+        ends = np.stack(turned, axis=-1).reshape(rows, -1) @ self.moments_by_load.reshape(2 * spans, -1).T
+        about = np.bincount(where, (weight * local).ravel(), rows * spans).reshape(rows, spans)
+        right = about / np.diff(self.positions)
+        left = np.bincount(where, weight.ravel(), rows * spans).reshape(rows, spans) - right
+        simple = np.zeros((rows, self.n_supports))
+        simple[:, :-1] += left
+        simple[:, 1:] += right
+        return ends.reshape(rows, spans, 2), simple
+
     def forces_from(self, end_moments: Floats, simple: Floats) -> Floats:
         """Support forces (..., n) from span-end moments (..., spans, 2) and lever-rule forces (..., n)."""
         flat = end_moments.reshape(*end_moments.shape[:-2], -1)
@@ -167,20 +199,24 @@ class Condensed:
 
     # yielding supports -----------------------------------------------------------------------
 
-    def _system(self, compliance: Floats) -> tuple[Floats, Floats, Floats]:
-        """Return the scaled system and the factors that turn its unknown z into R and F R.
+    def _weights(self, compliance: Floats) -> tuple[Floats, Floats]:
+        """Return the factors (..., n) that turn the scaled unknown z into R and F R.
 
         R = w z and F R = (f w) z with w = 1 / (1 + c f), so neither f = 0 (unyielding) nor f = inf
         (no support) is a special case; c is a stiffness of the size of K.
         """
-        finite = np.isfinite(compliance)
-        held = np.where(finite, compliance, 0.0)
-        w = np.where(finite, 1.0 / (1.0 + self._scale * held), 0.0)
-        fw = np.where(finite, held * w, 1.0 / self._scale)
+        w = 1.0 / (1.0 + self._scale * compliance)
+        absent = np.isinf(compliance)
+        if not absent.any():
+            return w, np.asarray(compliance * w)
+        return w, np.where(absent, 1.0 / self._scale, np.where(absent, 0.0, compliance) * w)
+
+    def _system(self, w: Floats, fw: Floats) -> Floats:
+        """Return the scaled system (..., n, n) of z: diag(w) + K diag(fw)."""
         system = self.K * fw[..., None, :]
         diagonal = np.arange(self.n_supports)
         system[..., diagonal, diagonal] += w
-        return system, w, fw
+        return np.asarray(system)
 
     def solve(self, compliance: Floats, forces: Floats, settlement: Floats | None = None) -> SupportState:
         """Solve for the supports.
@@ -195,24 +231,27 @@ class Condensed:
         -------
         SupportState with (..., n) arrays, the leading dimensions broadcast
         """
-        system, w, fw = self._system(np.asarray(compliance, dtype=np.float64))
+        w, fw = self._weights(np.asarray(compliance, dtype=np.float64))
         right = np.asarray(forces, dtype=np.float64)
         drop = 0.0 if settlement is None else np.asarray(settlement, dtype=np.float64)
         if settlement is not None:
             right = right - drop @ self.K
-        z = np.linalg.solve(system, right[..., None])[..., 0]
+        if w.ndim == 2 and len(w) >= WORTHWHILE and right.shape in {w.shape, w.shape[1:]}:
+            z: Floats = solve_many(self.K, w, fw, right)
+        else:
+            z = np.asarray(np.linalg.solve(self._system(w, fw), right[..., None])[..., 0])
         return SupportState(reaction=w * z, displacement=drop + fw * z)
 
     def displacement_operator(self, compliance: Floats) -> Floats:
         """Matrix (..., n, n) that turns held support forces into support displacements, m/kN."""
-        system, _, fw = self._system(np.asarray(compliance, dtype=np.float64))
-        return np.asarray(fw[..., :, None] * np.linalg.inv(system))
+        w, fw = self._weights(np.asarray(compliance, dtype=np.float64))
+        return np.asarray(fw[..., :, None] * np.linalg.inv(self._system(w, fw)))
 
     def derivatives(self, compliance: Floats, state: SupportState) -> SupportDerivatives:
         """Exact derivatives of a support state (METHODS: dR/df_i = -(I + K F)^-1 K e_i R_i)."""
         f = np.asarray(compliance, dtype=np.float64)
-        system, w, fw = self._system(f)
-        solved = np.linalg.solve(system, np.broadcast_to(self.K, system.shape))
+        w, fw = self._weights(f)
+        solved = np.linalg.solve(self._system(w, fw), self.K)
         by_settlement = -w[..., :, None] * solved
         f_by_settlement = -fw[..., :, None] * solved
         n = np.arange(self.n_supports)

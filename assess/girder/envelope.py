@@ -20,6 +20,7 @@ Floats = NDArray[np.float64]
 
 GRID_PER_SPAN = 200
 _BLOCK = 4_000_000  # responses held at once, 32 MB
+_AT_ONCE = 200_000  # axles placed at once, to bound the memory a long train takes
 _FACE = 1e-7  # m; how far past a place an axle stands to be on its other face
 
 
@@ -54,12 +55,15 @@ def train_forces(condensed: Condensed, train: Train, leading: Floats) -> Floats:
 
 def _train_state(condensed: Condensed, train: Train, leading: Floats) -> tuple[Floats, Floats]:
     """Span-end moments (..., spans, 2) and lever-rule forces (..., n) of the whole train."""
-    ends = np.zeros((*leading.shape, len(condensed.spans), 2))
-    simple = np.zeros((*leading.shape, condensed.n_supports))
-    for offset, load in zip(train.offsets, train.loads, strict=True):
-        ends += load * condensed.unit_end_moments(leading - offset)
-        simple += load * condensed.unit_simple_forces(leading - offset)
-    return ends, simple
+    rows = leading.reshape(-1)
+    step = max(1, _AT_ONCE // train.loads.size)
+    blocks = [
+        condensed.row_state(train.axle_positions(rows[start : start + step]), train.loads)
+        for start in range(0, rows.size, step)
+    ]
+    ends = np.concatenate([block[0] for block in blocks])
+    simple = np.concatenate([block[1] for block in blocks])
+    return ends.reshape(*leading.shape, *ends.shape[1:]), simple.reshape(*leading.shape, -1)
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -125,6 +125,17 @@ class SimpleSpan:
         right = ((length - x) * self._square(x) + x * (total - hat)) / length**2 + shear
         return np.stack([left, right], axis=-1)
 
+    @property
+    def end_cubics(self) -> Floats:
+        """`end_deflection` as cubics: (pieces, 2, 4), ascending powers of the distance into each piece."""
+        at, length = self.breaks[:-1], self.length
+        value = self.end_deflection(at)
+        rate = self.end_slope(at) + self._g[:, None] * np.array([-1.0, 1.0]) / length
+        moment = np.stack([1.0 - at / length, at / length], axis=-1)
+        curvature = -self._c[:, None] * moment
+        change = self._c[:, None] * np.array([1.0, -1.0]) / length
+        return np.stack([value, rate, curvature / 2.0, change / 6.0], axis=-1)
+
     def end_slope(self, x: Floats) -> Floats:
         """Slope at x per unit moment at the left and at the right end, (..., 2), rad/(kN m)."""
         hat, total = self._hat(x), self._hat(np.array(self.length))
@@ -162,7 +173,7 @@ class SimpleSpan:
 
     def load_moment(self, x: Floats, a: Floats) -> Floats:
         """Moment at x under a unit load at a (broadcast), m."""
-        return np.asarray(np.minimum(x, a) * (self.length - np.maximum(x, a)) / self.length)
+        return np.asarray(np.minimum((1.0 - x / self.length) * a, x * (1.0 - a / self.length)))
 
     def load_shear(self, x: Floats, a: Floats, side: NDArray[np.intp] | int) -> Floats:
         """Shear at x under a unit load at a (broadcast); `side` says which face of a load standing at x."""

@@ -1,0 +1,137 @@
+"""Ratios of times measured in one run on one machine: `pytest -m bench -s`.
+
+Each compares the same result from the condensed girder and from the whole girder solved by numpy, asserts
+that they agree, prints the ratio, and asks for the target.
+"""
+
+from __future__ import annotations
+
+import numpy as np
+import pytest
+from scipy.optimize import least_squares
+
+from assess.calibrate.fit import PadPrior, fit
+from assess.calibrate.observations import Observation, ObservationModel
+from assess.girder import Condensed, Girder, Piece, envelope, forces_of, passages, places
+from assess.loads import LoadCase, Train
+from tests.bench.dense import DenseGirder, seconds
+
+pytestmark = pytest.mark.bench
+
+GIRDER = Girder((
+    (Piece(length=18.0, flexural=5.0e6), Piece(length=6.0, flexural=8.0e6)),
+    (Piece(length=6.0, flexural=8.0e6), Piece(length=18.0, flexural=5.0e6), Piece(length=6.0, flexural=8.0e6)),
+    (Piece(length=6.0, flexural=8.0e6), Piece(length=18.0, flexural=5.0e6)),
+))  # fmt: skip
+K = np.array([3.5e5, 5e5, 5e5, 3.5e5])
+WAGON = Train(np.array([0.0, 1.8, 9.0, 10.8]), np.array([225.0, 225.0, 225.0, 225.0]))
+
+
+def test_ten_thousand_stiffness_sets() -> None:
+    condensed, dense = Condensed(GIRDER), DenseGirder(GIRDER, 1.5)
+    rng = np.random.default_rng(11)
+    sets = np.exp(-np.log(K) + rng.normal(0.0, 0.4, (10_000, 4)))
+    x, weight = np.array([10.0, 36.0, 60.0]), np.array([300.0, 500.0, 200.0])
+    loads = LoadCase(points=tuple(zip(x, weight, strict=True)))
+    forces, vector = forces_of(condensed, loads), dense.point_loads(x, weight)
+
+    batch = condensed.solve(sets, forces)
+    some = sets[:200]
+    plain = np.array([dense.solve(f, vector)[dense.at] for f in some])
+    assert np.abs(batch.displacement[:200] - plain).max() < 1e-8 * np.abs(plain).max()
+
+    ours = seconds(lambda: condensed.solve(sets, forces), 15)
+    whole = seconds(lambda: [dense.solve(f, vector) for f in sets], 2)
+    built = seconds(lambda: [dense.solve(f, vector, assemble=True) for f in some], 3) * len(sets) / len(some)
+    system = np.eye(4) + condensed.K * sets[:, None, :]
+    right = np.broadcast_to(forces[:, None], (10_000, 4, 1)).copy()
+    bare = seconds(lambda: np.linalg.solve(system, right), 15)
+    print(
+        f"\n10,000 stiffness sets: {ours * 1e3:.1f} ms;"
+        f" whole girder of {dense.h.size} elements {whole / ours:.0f} times"
+        f" as long, {built / ours:.0f} times with its assembly; {ours / bare:.2f} of the bare batched solve"
+    )
+    assert built / ours >= 500.0
+    assert ours / bare <= 1.3
+
+
+def test_one_calibration() -> None:
+    condensed, dense = Condensed(GIRDER), DenseGirder(GIRDER, 1.5)
+    states, vectors = [], []
+    for leading in (14.0, 32.0, 42.0, 70.0):
+        x = WAGON.axle_positions(np.array(leading))
+        states.append(LoadCase(points=tuple(zip(x, WAGON.loads, strict=True))))
+        vectors.append(dense.point_loads(x, WAGON.loads))
+    spots = np.array([12.0, 39.0, 66.0])
+    readings = []
+    for state in range(4):
+        readings += [("compression", state, i, 0.0, 2e-5) for i in range(4)]
+        readings += [("deflection", state, -1, float(x), 2e-4) for x in spots]
+    true = np.log(K * np.array([0.8, 0.6, 1.2, 1.0]))
+    load = np.array(vectors).T
+    rows = [int(np.argmin(np.abs(dense.nodes - x))) * 2 for x in spots]
+
+    def plain(theta: np.ndarray) -> np.ndarray:
+        u = dense.solve(np.exp(-theta), load)
+        return np.concatenate([u[dense.at], u[rows]]).T.ravel()
+
+    sd = np.array([reading[4] for reading in readings])
+    value = plain(true) + np.random.default_rng(5).normal(0.0, sd)
+    observations = [
+        Observation(quantity=q, state=s, support=i, x=x, value=v, sd=e)
+        for (q, s, i, x, e), v in zip(readings, value, strict=True)
+    ]
+    start, tau = np.log(K), np.full(4, 0.5)
+    prior = PadPrior(mean=start, sd=tau)
+    model = ObservationModel(condensed, np.arange(4), states, observations)
+
+    def differences() -> np.ndarray:
+        return least_squares(
+            lambda t: np.concatenate([(plain(t) - value) / sd, (t - start) / tau]),
+            start, xtol=1e-12, ftol=1e-12, gtol=1e-12, x_scale="jac",
+        ).x  # fmt: skip
+
+    found = fit(model, start=start, prior=prior)
+    assert np.abs(found.log_stiffness - differences()).max() < 1e-4
+    ours = seconds(lambda: fit(model, start=start, prior=prior), 9)
+    theirs = seconds(differences, 3)
+    print(
+        f"\none calibration: {ours * 1e3:.1f} ms; finite differences on the whole girder {theirs / ours:.1f} times"
+    )
+    assert theirs / ours >= 16.0
+
+
+def test_a_train_envelope() -> None:
+    condensed, x, f = Condensed(GIRDER), np.linspace(0.2, 77.8, 200), 1.0 / K
+    place = places(condensed, "moment", x)
+    # the plain way reads moments at nodes, so the stations are nodes
+    dense = DenseGirder(GIRDER, 1.5, x)
+    where = np.searchsorted(dense.nodes, x - 1e-9)
+    coarse = DenseGirder(GIRDER, 1.5)
+    for train in (WAGON, WAGON.coupled(5, 13.0)):
+        end = GIRDER.length + train.length
+        leading = np.linspace(0.0, end, 1200)
+
+        def one(position: float) -> np.ndarray:
+            fixed = dense.element_loads(position - train.offsets, train.loads)  # noqa: B023
+            return dense.moments(dense.solve(f, dense.vector(fixed)), fixed)[where]
+
+        def every() -> np.ndarray:
+            return np.array([one(position) for position in leading]).max(axis=0)  # noqa: B023
+
+        def condensed_way() -> np.ndarray:
+            return envelope(passages(place, train, both_ways=False), f).maximum  # noqa: B023
+
+        ours, theirs = seconds(condensed_way, 7), seconds(lambda: [one(p) for p in leading[::20]], 2) * 20.0  # noqa: B023
+        vectors = [coarse.point_loads(p - train.offsets, train.loads) for p in leading]
+        bare = seconds(lambda: [coarse.solve(f, vector) for vector in vectors], 2)  # noqa: B023
+        found, plain = condensed_way(), every()
+        # a plain grid of positions misses peaks, and exceeds ours by no more than an envelope may miss
+        assert (plain <= found * (1.0 + 1e-3)).all()
+        assert np.abs(found - plain).max() < 0.02 * found.max()
+        print(
+            f"\nenvelope at {x.size} stations, 1,200 positions, {train.offsets.size} axles: {ours * 1e3:.1f} ms;"
+            f"\n a solve per position with the stations as nodes {theirs / ours:.0f} times as long;"
+            f" bare solves of {coarse.h.size} elements, no moments read, {bare / ours:.0f} times"
+        )
+        assert theirs / ours >= 270.0
