@@ -171,7 +171,7 @@ def supports_of(
     """What is known of a girder's supports up to a day, and the cautions on it."""
     name = model.doc.id
     measured = settlements(study, name, until)
-    own = {date: one.fits[name] for date, (one, _) in fits.items() if _usable(model, one, name)}
+    own = {date: found for date, (one, _) in fits.items() if (found := one.of(model)) is not None}
     if not fits:
         left = cautions.settlements_left_out(name, [(s, 1e3 * one.value) for s, one in measured.items()])
         nominal = Supports(
@@ -213,10 +213,6 @@ def supports_of(
         ),
         said,
     )
-
-
-def _usable(model: GirderModel, one: VisitFit, girder: str) -> bool:
-    return girder in one.fits and one.fits[girder].supports == model.pad_ids
 
 
 def _forgotten(model: GirderModel, own: dict[dt.date, GirderFit], date: dt.date) -> list[str]:

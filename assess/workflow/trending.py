@@ -74,7 +74,7 @@ def trend_study(study: Study, *, progress: Progress) -> tuple[TrendResult, list[
     for i, girder in enumerate(study.bridge.girders):
         progress(f"carrying {girder.id} forward", i, len(study.bridge.girders))
         model = study.model(girder.id)
-        own = [(study.visit(d), one.fits[girder.id]) for d, one in fits.items() if _usable(one, model)]
+        own = [(study.visit(d), found) for d, one in fits.items() if (found := one.of(model)) is not None]
         if not own:
             said.append(cautions.girder_not_calibrated(girder.id))
             continue
@@ -116,11 +116,6 @@ def _all_fits(study: Study, progress: Progress) -> dict[dt.date, VisitFit]:
         progress(f"reading {visit.date.isoformat()}", i, len(chosen))
         fits[visit.date] = kept.get(visit.date) or calibrate_visit(study, visit, prior=True)
     return fits
-
-
-def _usable(one: VisitFit, model: GirderModel) -> bool:
-    name = model.doc.id
-    return name in one.fits and one.fits[name].supports == model.pad_ids
 
 
 def _years(first: dt.date, second: dt.date) -> float:

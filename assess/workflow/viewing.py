@@ -159,10 +159,8 @@ def _supports(model: GirderModel, supports: Supports) -> list[SupportView]:
 
 def _states(study: Study, model: GirderModel, calibration: VisitFit | None) -> list[ElevationState]:
     name = model.doc.id
-    if calibration is None or name not in calibration.fits:
-        return []
-    fit = calibration.fits[name]
-    if fit.supports != model.pad_ids:
+    fit = calibration.of(model) if calibration is not None else None
+    if calibration is None or fit is None:
         return []
     shown = next(g for g in calibration.result.girders if g.girder == name)
     visit: VisitDoc = study.visit(calibration.visit)
