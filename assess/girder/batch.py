@@ -44,10 +44,11 @@ def solve_many(stiffness: Floats, w: Floats, g: Floats, right: Floats) -> Floats
         a = stiffness[:, :, None] * np.ascontiguousarray(g[block].T)
         a[diagonal, diagonal] += w[block].T
         b = right[block].T.copy()
-        for i in range(n - 1):
-            factor = a[i + 1 :, i] / a[i, i]
-            a[i + 1 :, i + 1 :] -= factor[:, None] * a[i, i + 1 :]
-            b[i + 1 :] -= factor * b[i]
+        with np.errstate(divide="ignore", invalid="ignore", over="ignore"):  # told by the pivots below
+            for i in range(n - 1):
+                factor = a[i + 1 :, i] / a[i, i]
+                a[i + 1 :, i + 1 :] -= factor[:, None] * a[i, i + 1 :]
+                b[i + 1 :] -= factor * b[i]
         if not (a[diagonal, diagonal] > 0.0).all():
             raise np.linalg.LinAlgError("Singular matrix")
         for i in reversed(range(n)):

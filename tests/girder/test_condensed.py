@@ -201,6 +201,22 @@ def test_a_batch_is_the_same_as_one_by_one(case: Case, seed: int) -> None:
         assert np.abs(single - derivatives.reaction_by_log_stiffness[i]).max() < 1e-10 * size
 
 
+@FEW
+@given(cases(absent=True, shear=True), st.integers(0, 2**31 - 1))
+def test_a_long_batch_is_the_same_as_one_by_one(case: Case, seed: int) -> None:
+    condensed = Condensed(case.girder)
+    rng = np.random.default_rng(seed)
+    sets = case.compliance * np.exp(rng.normal(0.0, 1.0, (70, condensed.n_supports)))
+    forces = forces_of(condensed, case.loads)
+    size = size_of(condensed, case)
+    for right in (forces, forces * rng.uniform(0.5, 1.0, (70, 1))):
+        batch = condensed.solve(sets, right, case.settlement)
+        for i in (0, 33, 69):
+            one = condensed.solve(sets[i], np.broadcast_to(right, sets.shape)[i], case.settlement)
+            assert np.abs(one.reaction - batch.reaction[i]).max() < 1e-10 * size
+            assert apart(batch.displacement[i], one.displacement) < 1e-9
+
+
 def flipped(case: Case) -> Case:
     length = case.girder.length
     return Case(
@@ -251,6 +267,8 @@ def test_an_unsupported_girder_is_refused_by_the_solver() -> None:
     condensed = Condensed(Girder(((Piece(length=10.0, flexural=1e5),),)))
     with pytest.raises(np.linalg.LinAlgError):
         condensed.solve(np.array([np.inf, np.inf]), np.array([1.0, 1.0]))
+    with pytest.raises(np.linalg.LinAlgError):
+        condensed.solve(np.full((100, 2), np.inf), np.array([1.0, 1.0]))
 
 
 def test_sums_of_lengths_move_no_load_off_the_girder() -> None:

@@ -144,8 +144,8 @@ def test_hs20_truck_tandem_and_lane_at_65_ft() -> None:
     assert lane.at("moment", 32.5)[0] == pytest.approx(338.0, abs=1e-9)
 
 
-def test_reactions_of_the_truck_at_a_pier_of_two_simple_spans_bound_its_weight() -> None:
-    # derived: a support of one simple span takes at most its end shear
+def test_an_end_support_takes_the_end_shear_of_the_truck() -> None:
+    # the HS20 end shear at 40 ft, 55.2 k (from memory), found as a reaction
     condensed = simple(40.0)
     found = envelope(passages(support_places(condensed), TRUCK), np.zeros(2))
     assert found.maximum == pytest.approx([55.2, 55.2], abs=1e-3)
