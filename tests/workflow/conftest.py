@@ -1,6 +1,9 @@
 from __future__ import annotations
 
+import contextlib
+import functools
 import importlib.util
+import io
 import json
 from collections.abc import Callable
 from dataclasses import dataclass
@@ -11,8 +14,10 @@ from typing import Any
 import pytest
 
 from assess import workflow
+from assess.capacity import rows
 from assess.cli.main import run
 from assess.results import AssessmentResult, CalibrationResult, TrendResult
+from assess.workflow import trending
 from tests.workflow.invented import BRIDGE
 
 ROOT = Path(__file__).resolve().parent.parent.parent
@@ -33,26 +38,31 @@ class Said:
         return json.loads(self.out)
 
 
-@pytest.fixture
-def record(tmp_path: Path) -> str:
-    """A record on disk with the contract's bridge in it."""
-    url = str(tmp_path / "record.sqlite")
+def call(record: str, *words: str) -> Said:
+    """Run the command line on a record."""
+    out, err = io.StringIO(), io.StringIO()
+    with contextlib.redirect_stdout(out), contextlib.redirect_stderr(err):
+        code = run(["--record", record, *words])
+    return Said(code, out.getvalue(), err.getvalue())
+
+
+def new_record(folder: Path, name: str = "record.sqlite") -> str:
+    """Make a record on disk with the contract's bridge in it."""
+    url = str(folder / name)
     workflow.init_record(url)
     workflow.add_bridge(url, BRIDGE)
     return url
 
 
 @pytest.fixture
-def bedstone(record: str, capsys: pytest.CaptureFixture[str]) -> Callable[..., Said]:
-    """Call the command line on that record."""
+def record(tmp_path: Path) -> str:
+    return new_record(tmp_path)
 
-    def call(*words: str) -> Said:
-        capsys.readouterr()
-        code = run(["--record", record, *words])
-        out, err = capsys.readouterr()
-        return Said(code, out, err)
 
-    return call
+@pytest.fixture
+def bedstone(record: str) -> Callable[..., Said]:
+    """Call the command line on the test's record."""
+    return functools.partial(call, record)
 
 
 @pytest.fixture(scope="session")
@@ -80,6 +90,15 @@ class Demo:
 
 @pytest.fixture(scope="session")
 def demo(tmp_path_factory: pytest.TempPathFactory) -> Demo:
+    """The sample bridge, forecast with fewer draws than usual: its story hangs on none of them."""
+    with pytest.MonkeyPatch.context() as patch:
+        patch.setattr(trending, "FORECAST_DRAWS", 300)
+        patch.setattr(rows, "_SAMPLE", 6)
+        made = _run_demo(tmp_path_factory)
+    return made
+
+
+def _run_demo(tmp_path_factory: pytest.TempPathFactory) -> Demo:
     url = str(tmp_path_factory.mktemp("demo") / "demo.sqlite")
     sample = ROOT / "sample_data"
     workflow.init_record(url)
