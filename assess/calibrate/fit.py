@@ -1,7 +1,7 @@
 """Back-analysis: weighted least squares on ln k, with what the readings can and cannot tell.
 
 Minimises sum ((y - h(theta)) / sigma)^2 + sum ((ln k - ln k_nominal) / tau)^2 with the exact Jacobian
-(trust-region reflective algorithm of scipy.optimize.least_squares). The covariance is (J'J)^-1 at the
+(`minimise.py`). The covariance is (J'J)^-1 at the
 solution, prior rows included. Redundancy numbers and standardised residuals follow Baarda (1968):
 r = 1 - diag(J C J'), w = v / (sigma sqrt r); a reading is suspect past 3.29 (alpha 0.001).
 """
@@ -12,9 +12,9 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy import stats
-from scipy.optimize import least_squares
+from scipy import special, stats
 
+from assess.calibrate.minimise import minimise
 from assess.calibrate.observations import ObservationModel
 
 Floats = NDArray[np.float64]
@@ -129,25 +129,19 @@ def fit(model: ObservationModel, *, start: Floats, prior: PadPrior | None) -> Fi
     begin = np.concatenate([start, np.zeros(len(model.seats))])
     if prior is None:
         _require_rank(model.jacobian(begin) * weight[:, None], q)
-
-    def residuals(theta: Floats) -> Floats:
-        data = (model.predict(theta) - model.value) * weight
-        return data if prior is None else np.concatenate([data, (theta[:q] - prior.mean) / prior.sd])
-
     prior_rows = np.zeros((0, model.size))
     if prior is not None:
         prior_rows = np.eye(q, model.size) / prior.sd[:, None]
 
-    def jacobian(theta: Floats) -> Floats:
-        return np.concatenate([model.jacobian(theta) * weight[:, None], prior_rows])
+    def linearise(theta: Floats) -> tuple[Floats, Floats]:
+        predicted, jacobian = model.linearise(theta)
+        residual = (predicted - model.value) * weight
+        if prior is not None:
+            residual = np.concatenate([residual, (theta[:q] - prior.mean) / prior.sd])
+        return residual, np.concatenate([jacobian * weight[:, None], prior_rows])
 
-    found = least_squares(
-        residuals, begin, jac=jacobian, method="trf", x_scale="jac", xtol=1e-12, ftol=1e-12, gtol=1e-12,
-        max_nfev=400,
-    )  # fmt: skip
-    if not found.success:
-        raise RuntimeError(f"the fit did not converge in {found.nfev} evaluations")
-    return _summarise(model, found.x, start, prior, prior_rows, int(found.nfev))
+    found = minimise(linearise, begin)
+    return _summarise(model, found.theta, start, prior, prior_rows, found.evaluations)
 
 
 def _summarise(
@@ -159,7 +153,8 @@ def _summarise(
     evaluations: int,
 ) -> Fit:
     q = start.size
-    data = model.jacobian(theta) / model.sd[:, None]
+    predicted, data = model.linearise(theta)
+    data = data / model.sd[:, None]
     if prior is None:
         _require_bounds(np.abs(theta[:q] - start), model)  # a pad that ran away no longer changes any reading
         _require_rank(data, q)
@@ -168,8 +163,8 @@ def _summarise(
     covariance = scale[:, None] * np.linalg.inv(scale[:, None] * full * scale) * scale
     if prior is None:
         _require_bounds(np.sqrt(np.diag(covariance)[:q]), model)
-    residual = (model.value - model.predict(theta)) / model.sd
-    hat = np.einsum("mi,ij,mj->m", data, covariance, data)
+    residual = (model.value - predicted) / model.sd
+    hat = ((data @ covariance) * data).sum(axis=1)
     redundancy = np.clip(1.0 - hat, 0.0, 1.0)
     checked = redundancy > 1e-6
     standardised = np.full(residual.shape, np.nan)
@@ -189,13 +184,13 @@ def _summarise(
         information=information,
         information_vector=vector,
         seat_drops=theta[q:],
-        predicted=model.predict(theta),
+        predicted=predicted,
         redundancy=redundancy,
         standardised=standardised,
         suspect=np.abs(np.nan_to_num(standardised)) > SUSPECT,
         chi_square=chi_square,
         degrees_of_freedom=freedom,
-        p_value=float(stats.chi2.sf(chi_square, freedom)) if freedom else np.nan,
+        p_value=float(special.chdtrc(freedom, chi_square)) if freedom else np.nan,
         data_share=np.clip(share, 0.0, 1.0),
         evaluations=evaluations,
     )
@@ -205,8 +200,7 @@ def _information(data: Floats, q: int) -> Floats:
     """Inverse variance of the pads from the readings alone, the seat drops eliminated."""
     pads, seats = data[:, :q], data[:, q:]
     if seats.shape[1]:
-        projector = seats @ np.linalg.pinv(seats)
-        pads = pads - projector @ pads
+        pads = pads - seats @ (np.linalg.pinv(seats) @ pads)
     return np.asarray(pads.T @ pads)
 
 

@@ -99,24 +99,31 @@ class ObservationModel:
         level = self.condensed.solve(compliance, self._forces, drops).displacement
         return self._combine(level, drops)
 
-    def _combine(self, level: Floats, drops: Floats) -> Floats:
-        by_level = np.einsum("mn,mn->m", self._by_level, level[self.state])
-        by_seat = np.einsum("mn,mn->m", self._by_seat, drops[self.state])
-        return np.asarray(self._held + by_level + by_seat)
-
     def jacobian(self, theta: Floats) -> Floats:
         """Exact derivatives (m, size) of `predict`."""
+        return self.linearise(theta)[1]
+
+    def linearise(self, theta: Floats) -> tuple[Floats, Floats]:
+        """Predicted readings (m,) and their exact derivatives (m, size), by one solve.
+
+        ln k up by one takes f R off a pad's shortening, as a seat rising by f R would: so all derivatives are those of
+        the levels by the seats (n, n), which no load state changes.
+        """
         compliance, drops = self._unpack(theta)
-        state = self.condensed.solve(compliance, self._forces, drops)
-        by = self.condensed.derivatives(compliance, state)
-        level = by.displacement_by_log_stiffness[self.state][:, :, self.pads]
-        columns = [np.einsum("mn,mnq->mq", self._by_level, level)]
-        for which, support in self.seats:
-            here = self.state == which
-            moved = by.displacement_by_settlement[:, support]
-            column = self._by_level @ moved + self._by_seat[:, support]
-            columns.append((here * column)[:, None])
-        return np.concatenate(columns, axis=1)
+        level, reaction, by_seat = self.condensed.sensitivity(compliance, self._forces, drops)
+        moved = self._by_level @ by_seat  # (m, n): readings by seats, what the girder hands on
+        shortening = (compliance * reaction)[self.state]
+        jacobian = np.empty((self.value.size, self.size))
+        q = self.pads.size
+        jacobian[:, :q] = -(moved * shortening)[:, self.pads]
+        for j, (which, support) in enumerate(self.seats):
+            column = moved[:, support] + self._by_seat[:, support]
+            jacobian[:, q + j] = np.where(self.state == which, column, 0.0)
+        return self._combine(level, drops), jacobian
+
+    def _combine(self, level: Floats, drops: Floats) -> Floats:
+        held = self._held + (self._by_level * level[self.state]).sum(axis=1)
+        return np.asarray(held + (self._by_seat * drops[self.state]).sum(axis=1))
 
 
 def _equations(

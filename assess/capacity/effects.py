@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
@@ -17,7 +18,7 @@ from assess.girder import (
     forces_of,
     passages,
     places,
-    train_forces,
+    support_places,
 )
 from assess.loads import LoadCase, Train
 
@@ -86,23 +87,14 @@ class Effects:
             return zero, zero
         return extremes(parts, compliances)
 
+    @cached_property
+    def _reaction_passages(self) -> list[Passage]:
+        supports = support_places(self.condensed)
+        return [part for train in self.loads.trains for part in passages(supports, train)]
+
     def reactions(self, compliance: Floats) -> tuple[Floats, Floats]:
         """Largest and smallest live reaction of every support (n,), kN; 0 where no train is better."""
-        highest, lowest = np.zeros(self.condensed.n_supports), np.zeros(self.condensed.n_supports)
-        for train in self.loads.trains:
-            for way in (train, train.reversed()):
-                forces = _over_supports(self.condensed, way)
-                reaction = self.condensed.solve(compliance, forces).reaction
-                highest = np.maximum(highest, reaction.max(axis=0))
-                lowest = np.minimum(lowest, reaction.min(axis=0))
-        return highest, lowest
-
-
-def _over_supports(condensed: Condensed, train: Train) -> Floats:
-    """Held support forces (m, n) for a grid of positions and every axle over every support."""
-    supports = condensed.positions
-    end = supports[-1] + train.length
-    step = float(np.diff(supports).min()) / 200.0
-    grid = np.linspace(0.0, end, int(np.ceil(end / step)) + 1)
-    over = (supports[:, None] + train.offsets).ravel()
-    return train_forces(condensed, train, np.concatenate([grid, over]))
+        if not self._reaction_passages:
+            return np.zeros(self.condensed.n_supports), np.zeros(self.condensed.n_supports)
+        live = envelope(self._reaction_passages, compliance)
+        return live.maximum, live.minimum

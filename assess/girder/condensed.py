@@ -242,6 +242,29 @@ class Condensed:
             z = np.asarray(np.linalg.solve(self._system(w, fw), right[..., None])[..., 0])
         return SupportState(reaction=w * z, displacement=drop + fw * z)
 
+    def sensitivity(
+        self, compliance: Floats, forces: Floats, settlement: Floats
+    ) -> tuple[Floats, Floats, Floats]:
+        """Levels and reactions under load cases, and the levels' derivatives by the seats, in one solve.
+
+        Parameters
+        ----------
+        compliance : (n,) m/kN
+        forces, settlement : (cases, n)
+
+        Returns
+        -------
+        level (cases, n) m, reaction (cases, n) kN, level by seat (n, n)
+        """
+        w, fw = self._weights(compliance)
+        right = np.concatenate([(forces - settlement @ self.K).T, self.K], axis=1)
+        z = np.linalg.solve(self._system(w, fw), right)
+        cases = forces.shape[0]
+        by_seat = -fw[:, None] * z[:, cases:]
+        by_seat.ravel()[:: self.n_supports + 1] += 1.0
+        solved = z[:, :cases].T
+        return settlement + fw * solved, w * solved, by_seat
+
     def displacement_operator(self, compliance: Floats) -> Floats:
         """Matrix (..., n, n) that turns held support forces into support displacements, m/kN."""
         w, fw = self._weights(np.asarray(compliance, dtype=np.float64))

@@ -106,7 +106,7 @@ def test_one_calibration() -> None:
             f"\none calibration of {k.size} pads: {ours * 1e3:.1f} ms; finite differences on the whole girder"
             f" {hand / ours:.1f} times as long, {built / ours:.1f} times with its assembly"
         )
-    assert built / ours >= 16.0
+        assert built / ours >= 16.0
 
 
 def test_a_train_envelope() -> None:

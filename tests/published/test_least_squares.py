@@ -55,6 +55,9 @@ class Curve:
         b = self.b(theta)
         return self.gradient(self.x, b) * (b if self.logarithmic else 1.0)
 
+    def linearise(self, theta: Floats) -> tuple[Floats, Floats]:
+        return self.predict(theta), self.jacobian(theta)
+
 
 @dataclass(frozen=True, kw_only=True)
 class Solved:
