@@ -19,6 +19,7 @@ Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
 
 _SAMPLE = 32  # draws that choose the stations and train positions kept for all draws
+_NO_LIVE = 1e-9  # of the resistance: a live effect below it is rounding, and no load to rate
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -129,7 +130,7 @@ def _govern(plan: CheckPlan, check: Check, demands: list[Demand], factors: Facto
         live=live,
         factored=factored,
         utilisation=max(0.0, sign * factored) / capacity,
-        rating_factor=(capacity - steady) / adverse if adverse > 0.0 else np.nan,
+        rating_factor=(capacity - steady) / adverse if adverse > _NO_LIVE * capacity else np.nan,
     )
 
 

@@ -3,12 +3,16 @@
 from __future__ import annotations
 
 import datetime as dt
+from collections.abc import Iterator
+from contextlib import contextmanager
 from pathlib import Path
 
 from db.documents import BridgeDoc, VisitDoc
+from db.errors import BedstoneError
 from db.exchange import check_visit, draft_bridge, read_bridge, read_visit
 from db.records import BridgeSummary, Taken, VisitSummary
-from db.store import open_record
+from db.store import Record, open_record
+from db.wording import printable
 
 __all__ = ["add_bridge", "draft_bridge", "init_record", "list_bridges", "list_visits", "log_visit"]
 
@@ -22,7 +26,7 @@ def init_record(url: str) -> bool:
 def add_bridge(url: str, path: Path) -> tuple[BridgeDoc, Taken]:
     """Take in a bridge file: a new bridge, or a new revision of one."""
     document = read_bridge(path)
-    with open_record(url) as record:
+    with open_record(url) as record, _naming(path):
         return document, record.add_bridge(document)
 
 
@@ -35,10 +39,30 @@ def list_bridges(url: str) -> list[BridgeSummary]:
 def log_visit(url: str, path: Path) -> tuple[VisitDoc, Taken]:
     """Take in a visit file, whole or not at all."""
     document = read_visit(path)
-    with open_record(url) as record:
-        bridge = record.bridge(document.bridge).document
-        check_visit(document, bridge, today=dt.date.today(), file=str(path))
+    with open_record(url) as record, _naming(path):
+        bridge = _bridge_of(record, document.bridge)
+        check_visit(document, bridge, today=dt.date.today(), file=printable(str(path)))
         return document, record.log_visit(document)
+
+
+def _bridge_of(record: Record, bridge: str) -> BridgeDoc:
+    """The bridge a visit file names; if there is none, the error says where that stands."""
+    try:
+        return record.bridge(bridge).document
+    except BedstoneError as error:
+        raise error.at(file="visit file", field="visit, bridge") from error
+
+
+@contextmanager
+def _naming(path: Path) -> Iterator[None]:
+    """The record knows what a file says and not its name: put the name into its refusals."""
+    try:
+        yield
+    except BedstoneError as error:
+        if error.file not in ("bridge file", "visit file"):
+            raise
+        file = printable(str(path))
+        raise BedstoneError(error.problem, file=file, field=error.field, remedy=error.remedy) from error
 
 
 def list_visits(url: str, bridge: str) -> list[VisitSummary]:
