@@ -1,8 +1,8 @@
 """Back-analysis: weighted least squares on ln k, with what the readings can and cannot tell.
 
 Minimises sum ((y - h(theta)) / sigma)^2 + sum ((ln k - ln k_nominal) / tau)^2 with the exact Jacobian
-(`minimise.py`). The covariance is (J'J)^-1 at the
-solution, prior rows included. Redundancy numbers and standardised residuals follow Baarda (1968):
+(`minimise.py`); a prior that correlates pads is whitened with its Cholesky factor (`prior.py`). The covariance is
+(J'J)^-1 at the solution, prior rows included. Redundancy numbers and standardised residuals follow Baarda (1968):
 r = 1 - diag(J C J'), w = v / (sigma sqrt r); a reading is suspect past 3.29 (alpha 0.001).
 """
 
@@ -16,6 +16,7 @@ from scipy import special, stats
 
 from assess.calibrate.minimise import minimise
 from assess.calibrate.observations import ObservationModel
+from assess.calibrate.prior import PadPrior
 
 Floats = NDArray[np.float64]
 
@@ -46,14 +47,6 @@ class NotDetermined(ValueError):
 
 
 @dataclass(frozen=True, kw_only=True)
-class PadPrior:
-    """Prior of the pads: ln k ~ N(mean, sd), both (q,)."""
-
-    mean: Floats
-    sd: Floats
-
-
-@dataclass(frozen=True, kw_only=True)
 class Fit:
     """A calibrated girder line.
 
@@ -71,7 +64,8 @@ class Fit:
     chi_square, degrees_of_freedom, p_value : global test of the readings; p NaN without a degree of freedom.
         With a prior the unknowns count as far as the readings tell them: readings less the trace of the hat
         matrix, rounded.
-    data_share : (q,) 1 - posterior variance / prior variance; 1 without a prior
+    data_share : (q,) 1 - posterior variance / prior variance; 1 without a prior. Where the prior correlates pads, what
+        the readings would tell without that correlation: a pad told by its sisters is told by an assumption.
     evaluations : function evaluations used
     """
 
@@ -131,13 +125,13 @@ def fit(model: ObservationModel, *, start: Floats, prior: PadPrior | None) -> Fi
         _require_rank(model.jacobian(begin) * weight[:, None], q)
     prior_rows = np.zeros((0, model.size))
     if prior is not None:
-        prior_rows = np.eye(q, model.size) / prior.sd[:, None]
+        prior_rows = prior.rows(model.size)
 
     def linearise(theta: Floats) -> tuple[Floats, Floats]:
         predicted, jacobian = model.linearise(theta)
         residual = (predicted - model.value) * weight
         if prior is not None:
-            residual = np.concatenate([residual, (theta[:q] - prior.mean) / prior.sd])
+            residual = np.concatenate([residual, prior.residual(theta[:q])])
         return residual, np.concatenate([jacobian * weight[:, None], prior_rows])
 
     found = minimise(linearise, begin)
@@ -176,8 +170,8 @@ def _summarise(
     information = _information(data, q)
     vector = information @ theta[:q]
     if prior is not None:  # at the optimum the readings pull as hard as the prior holds
-        vector = vector + (theta[:q] - prior.mean) / prior.sd**2
-    share = np.ones(q) if prior is None else 1.0 - np.diag(pads) / prior.sd**2
+        vector = vector + prior.pull(theta[:q])
+    share = np.ones(q) if prior is None else prior.share(pads, information)
     return Fit(
         log_stiffness=theta[:q],
         covariance=pads,

@@ -105,13 +105,19 @@ class Trend:
     now_covariance: Floats
 
 
-def fit_trend(visits: Sequence[VisitEstimate], prior_mean: Floats, prior_sd: Floats) -> Trend:
+def fit_trend(
+    visits: Sequence[VisitEstimate],
+    prior_mean: Floats,
+    prior_sd: Floats,
+    prior_correlation: Floats | None = None,
+) -> Trend:
     """Fit the laws.
 
     Parameters
     ----------
     visits : by time, at least one
     prior_mean, prior_sd : (q,) of ln k; an infinite sd means no prior
+    prior_correlation : (q, q) between the pads, all sd finite; None where they are believed independent
 
     Raises
     ------
@@ -122,7 +128,8 @@ def fit_trend(visits: Sequence[VisitEstimate], prior_mean: Floats, prior_sd: Flo
         raise ValueError("a trend needs at least one calibrated visit")
     q = prior_mean.size
     times = np.array([visit.time for visit in visits]) - visits[-1].time
-    now, now_covariance = _now(visits, prior_mean, prior_sd)
+    held = _held(prior_sd, prior_correlation)
+    now, now_covariance = _now(visits, prior_mean, held)
     if len(visits) < 2 or times[0] == 0.0:
         law = PadLaw(
             law="steady", rate=np.nan, rate_sd=np.nan, drift_weight=0.0, determined=False, scatter=1.0
@@ -141,14 +148,14 @@ def fit_trend(visits: Sequence[VisitEstimate], prior_mean: Floats, prior_sd: Flo
             now_covariance=now_covariance,
         )
     free = np.full(q, RATE_PRIOR_SD)
-    level, rate, covariance = _drift(visits, times, prior_mean, prior_sd, free)
+    level, rate, covariance = _drift(visits, times, prior_mean, held, free)
     scatter = _scatter(visits, times, level, rate)
     widen = np.concatenate([np.ones(q), scatter])
     covariance = covariance * widen[:, None] * widen
     rate_sd = np.sqrt(np.diag(covariance)[q:])
     laws = tuple(_law(rate[i], rate_sd[i], scatter[i], visits, i) for i in range(q))
-    held = np.where([law.law == "steady" for law in laws], _HELD_RATE_SD, free)
-    law_level, law_rate, law_covariance = _drift(visits, times, prior_mean, prior_sd, held)
+    rate_sd = np.where([law.law == "steady" for law in laws], _HELD_RATE_SD, free)
+    law_level, law_rate, law_covariance = _drift(visits, times, prior_mean, held, rate_sd)
     return Trend(
         laws=laws,
         level=level,
@@ -162,8 +169,15 @@ def fit_trend(visits: Sequence[VisitEstimate], prior_mean: Floats, prior_sd: Flo
     )
 
 
+def _held(prior_sd: Floats, correlation: Floats | None) -> Floats:
+    """Inverse covariance of the prior of the level, (q, q)."""
+    if correlation is None:
+        return np.diag(np.where(np.isfinite(prior_sd), 1.0 / prior_sd**2, 1e-8))
+    return np.asarray(np.linalg.inv(correlation) / np.outer(prior_sd, prior_sd))
+
+
 def _drift(
-    visits: Sequence[VisitEstimate], times: Floats, prior_mean: Floats, prior_sd: Floats, rate_sd: Floats
+    visits: Sequence[VisitEstimate], times: Floats, prior_mean: Floats, held: Floats, rate_sd: Floats
 ) -> tuple[Floats, Floats, Floats]:
     """Level at the last visit, rate, and their covariance (2 q, 2 q); rates are kept to N(0, rate_sd) (q,)."""
     q = prior_mean.size
@@ -173,9 +187,9 @@ def _drift(
         right += np.concatenate([visit.information_vector, t * visit.information_vector])
     # the prior speaks of the level in the middle of the visits, so that it does not lean on the rate
     middle = float(times.mean())
-    held = np.where(np.isfinite(prior_sd), 1.0 / prior_sd**2, 1e-8)
-    normal += np.kron(np.array([[1.0, middle], [middle, middle * middle]]), np.diag(held))
-    right += np.concatenate([held * prior_mean, middle * held * prior_mean])
+    normal += np.kron(np.array([[1.0, middle], [middle, middle * middle]]), held)
+    pull = held @ prior_mean
+    right += np.concatenate([pull, middle * pull])
     normal[q:, q:] += np.diag(rate_sd**-2.0)
     scale = 1.0 / np.sqrt(np.diag(normal))
     covariance = scale[:, None] * np.linalg.inv(scale[:, None] * normal * scale) * scale
@@ -212,7 +226,7 @@ def _law(rate: float, rate_sd: float, scatter: float, visits: Sequence[VisitEsti
     )
 
 
-def _now(visits: Sequence[VisitEstimate], prior_mean: Floats, prior_sd: Floats) -> tuple[Floats, Floats]:
+def _now(visits: Sequence[VisitEstimate], prior_mean: Floats, held: Floats) -> tuple[Floats, Floats]:
     """ln k today: the last visit's, or for pads it does not tell, carried from the visits before.
 
     Carrying uses a random walk (Kalman filter in information form) with a standard deviation of 10 % in a year:
@@ -221,15 +235,15 @@ def _now(visits: Sequence[VisitEstimate], prior_mean: Floats, prior_sd: Floats) 
     last = visits[-1]
     if len(visits) == 1 or np.all(last.data_share >= 0.5):
         return last.log_stiffness, last.covariance
-    held = np.where(np.isfinite(prior_sd), 1.0 / prior_sd**2, 1e-8)
-    precision, vector = np.diag(held), held * prior_mean
+    precision: Floats = held
+    vector: Floats = held @ prior_mean
     time = visits[0].time
     for visit in visits:
         walked = np.linalg.inv(precision) + np.eye(prior_mean.size) * 0.1**2 * (visit.time - time)
         mean = np.linalg.solve(precision, vector)
-        precision = np.linalg.inv(walked)
+        precision = np.asarray(np.linalg.inv(walked), dtype=np.float64)
         vector = precision @ mean + visit.information_vector
         precision = precision + visit.information
         time = visit.time
-    covariance = np.linalg.inv(precision)
+    covariance: Floats = np.asarray(np.linalg.inv(precision), dtype=np.float64)
     return covariance @ vector, covariance
