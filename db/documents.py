@@ -10,6 +10,8 @@ from __future__ import annotations
 import datetime as dt
 from dataclasses import dataclass, field
 
+from db.pad_doc import PadDoc
+
 PERMANENT = "permanent"
 """The id of the load state measured from the as-built datum under permanent load."""
 
@@ -17,17 +19,66 @@ QUANTITIES = ("compression", "deflection", "settlement", "rotation", "strain")
 
 
 @dataclass(frozen=True, kw_only=True)
+class PlateDoc:
+    """A plate of a section as built; a `bottom` is resolved from the stack, above the underside of the stack."""
+
+    name: str
+    width: float  # m, across
+    height: float  # m, along the depth
+    bottom: float  # m, lower edge
+    yield_strength: float | None = None  # kN/m2, its own or the section's
+    web: bool | None = None  # carries shear; None: if its height exceeds its width
+
+
+@dataclass(frozen=True, kw_only=True)
+class HoleDoc:
+    """Holes through a plate in one cross-section."""
+
+    plate: str
+    diameter: float  # m
+    count: int = 1  # side by side across a flat plate
+    level: float | None = None  # m, of its middle above the underside of the stack; in an upright plate
+
+
+@dataclass(frozen=True, kw_only=True)
+class LossDoc:
+    """Thickness that a plate has lost since it was built, as measured on a day."""
+
+    plate: str
+    faces: int  # 1 or 2
+    depth: float  # m, of each face
+    visit: dt.date
+
+
+@dataclass(frozen=True, kw_only=True)
+class DeckDoc:
+    """A concrete deck on a section: the part that acts with this girder."""
+
+    width: float  # m
+    thickness: float  # m
+    modular_ratio: float  # E of the section over E of the concrete, short load
+    modular_ratio_long: float  # the same for lasting load
+    gap: float = 0.0  # m, between the highest plate and the deck
+    strength: float | None = None  # kN/m2, stress it may carry at the limit; None: not checked
+
+
+@dataclass(frozen=True, kw_only=True)
 class SectionDoc:
-    """A girder cross-section: stiffness and factored resistance as new."""
+    """A girder cross-section: stiffness and factored resistance as new, given or from plates."""
 
     id: str
     youngs_modulus: float  # kN/m2
-    second_moment: float  # m4
-    shear_area: float | None = None  # m2; None leaves shear flexibility out
+    second_moment: float | None = None  # m4; None: from the plates
+    shear_area: float | None = None  # m2; None: from the plates; without plates it leaves shear flexibility out
     shear_modulus: float | None = None  # kN/m2; None means E / 2.6
     sagging_capacity: float | None = None  # kN m; None: not given, utilisation not determined
     hogging_capacity: float | None = None  # kN m
     shear_capacity: float | None = None  # kN
+    plates: tuple[PlateDoc, ...] = ()
+    holes: tuple[HoleDoc, ...] = ()
+    losses: tuple[LossDoc, ...] = ()
+    deck: DeckDoc | None = None
+    moment_resistance: str = "elastic"  # "elastic" | "plastic": how plates and yield strength give a moment
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -54,8 +105,9 @@ class SupportDoc:
 
     id: str
     kind: str  # "pad" | "pin"
-    stiffness: float | None = None  # kN/m, nominal; None for a pin
-    stiffness_cv: float | None = None  # coefficient of variation of the nominal stiffness
+    stiffness: float | None = None  # kN/m, nominal; None for a pin, and for a pad that gives its geometry alone
+    stiffness_cv: float | None = None  # coefficient of variation of the nominal stiffness; None: from the geometry
+    pad: PadDoc | None = None  # geometry; where a stiffness is given too, that is the nominal one
     rotation: float = 0.0  # kN m/rad; 0 free, inf fixed
     temperature_coefficient: float | None = None  # 1/K, growth of ln k per kelvin colder than 20 degC
 

@@ -18,9 +18,10 @@ from assess.results import (
     ReactionResult,
     SectionResult,
 )
-from assess.workflow import cautions
+from assess.workflow import cautions, section_cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import GirderFit, VisitFit, from_kept
+from assess.workflow.sections import last_loss
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
 from db.records import KeptResult
 from db.store import open_record
@@ -125,7 +126,7 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
     digests = []
     for i, girder in enumerate(study.bridge.girders):
         progress(f"assessing {girder.id}", i, len(study.bridge.girders))
-        model = study.model(girder.id)
+        model = study.model(girder.id, visit)
         supports, about = supports_of(study, model, fits, visit)
         shown, factored = _assess_girder(model, supports)
         girders.append(shown)
@@ -135,6 +136,9 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
         digests += [
             f"{s} {one.value!r} {one.sd!r} {one.date}" for s, one in sorted(supports.settlements.items())
         ]
+    said += section_cautions.of_bridge(study.bridge, visit)
+    worn = last_loss(study.bridge, visit)
+    digests += [] if worn is None else [f"losses up to {worn}"]
     progress("assessed", len(study.bridge.girders), len(study.bridge.girders))
     sources = [f"{kept.input_digest} {sorted(kept.options.items())}" for _, kept in fits.values()]
     return AssessmentResult(

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import datetime as dt
 from functools import cached_property
 
 import numpy as np
@@ -11,21 +12,25 @@ from assess.calibrate import PadPrior
 from assess.capacity import CheckPlan, Effects, Factors, GirderLoads, Resistance, plan_checks
 from assess.girder import Condensed, Girder, Piece
 from assess.loads import LoadCase, Train
+from assess.workflow.sections import EFFECTS, SectionState, section_on
 from db.documents import BridgeDoc, GirderDoc, LoadStateDoc, SectionDoc, SpanDoc
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
 
-_STEEL_SHEAR_RATIO = 2.6  # E / G where G is not given: 2 (1 + nu) with nu 0.3
 _END_SLACK_M = 1e-6  # an axle this close to an end of the girder stands on it
 
 
 class GirderModel:
-    """One girder line of a bridge file, ready to compute with; everything costly is made once, when first asked for."""
+    """One girder line of a bridge file, ready to compute with; everything costly is made once, when first asked for.
 
-    def __init__(self, bridge: BridgeDoc, girder: GirderDoc) -> None:
+    Its sections have the losses measured up to `as_of`; None: all of them.
+    """
+
+    def __init__(self, bridge: BridgeDoc, girder: GirderDoc, as_of: dt.date | None = None) -> None:
         self.bridge = bridge
         self.doc = girder
+        self.as_of = as_of
         self.sections: list[list[tuple[float, SectionDoc]]] = [_split(bridge, span) for span in girder.spans]
         self.pads: Ints = np.array(
             [i for i, support in enumerate(girder.supports) if support.kind == "pad"], dtype=np.intp
@@ -34,9 +39,16 @@ class GirderModel:
         self.n = len(girder.supports)
 
     @cached_property
+    def section_states(self) -> dict[str, SectionState]:
+        """The sections of this girder by id, with their losses."""
+        used = {section.id: section for span in self.sections for _, section in span}
+        return {name: section_on(section, self.as_of) for name, section in used.items()}
+
+    @cached_property
     def girder(self) -> Girder:
         """The girder as the mechanics know it."""
-        spans = tuple(tuple(_piece(length, section) for length, section in span) for span in self.sections)
+        states = self.section_states
+        spans = tuple(tuple(_piece(length, states[s.id]) for length, s in span) for span in self.sections)
         return Girder(spans, np.array([support.rotation for support in self.doc.supports]))
 
     @cached_property
@@ -116,7 +128,8 @@ class GirderModel:
     @cached_property
     def plan(self) -> CheckPlan:
         """Stations and rows."""
-        resistances = [[_resistance(section) for _, section in span] for span in self.sections]
+        states = self.section_states
+        resistances = [[_resistance(states[s.id]) for _, s in span] for span in self.sections]
         return plan_checks(self.girder, resistances, self.factors)
 
     @cached_property
@@ -149,17 +162,13 @@ def _split(bridge: BridgeDoc, span: SpanDoc) -> list[tuple[float, SectionDoc]]:
     return parts
 
 
-def _piece(length: float, section: SectionDoc) -> Piece:
-    shear = np.inf
-    if section.shear_area is not None:
-        modulus = section.shear_modulus or section.youngs_modulus / _STEEL_SHEAR_RATIO
-        shear = modulus * section.shear_area
-    return Piece(length=length, flexural=section.youngs_modulus * section.second_moment, shear=shear)
+def _piece(length: float, section: SectionState) -> Piece:
+    return Piece(length=length, flexural=section.flexural, shear=section.shear)
 
 
-def _resistance(section: SectionDoc) -> Resistance:
-    given = (section.sagging_capacity, section.hogging_capacity, section.shear_capacity)
-    sagging, hogging, shear = (np.nan if value is None else value for value in given)
+def _resistance(section: SectionState) -> Resistance:
+    values = (section.capacities[effect].value for effect in EFFECTS)
+    sagging, hogging, shear = (np.nan if value is None else value for value in values)
     return Resistance(sagging=sagging, hogging=hogging, shear=shear)
 
 

@@ -112,7 +112,7 @@ def calibrate_visit(
         if not test_readings(visit, girder.id):
             said.append(cautions.not_read(girder.id, visit.date))
             continue
-        model = study.model(girder.id)
+        model = study.model(girder.id, visit.date)
         if not model.pads.size:
             said.append(cautions.no_pads(girder.id))
             continue

@@ -9,7 +9,7 @@ from pathlib import Path
 
 from db.documents import BridgeDoc, VisitDoc
 from db.errors import BedstoneError
-from db.exchange import check_visit, draft_bridge, read_bridge, read_visit
+from db.exchange import check_losses, check_visit, draft_bridge, read_bridge, read_visit
 from db.records import BridgeSummary, Taken, VisitSummary
 from db.store import Record, open_record
 from db.wording import printable
@@ -26,6 +26,7 @@ def init_record(url: str) -> bool:
 def add_bridge(url: str, path: Path) -> tuple[BridgeDoc, Taken]:
     """Take in a bridge file: a new bridge, or a new revision of one."""
     document = read_bridge(path)
+    check_losses(document, today=dt.date.today(), file=printable(str(path)))
     with open_record(url) as record, _naming(path):
         return document, record.add_bridge(document)
 

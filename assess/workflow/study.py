@@ -9,6 +9,7 @@ from dataclasses import dataclass, field
 
 from assess import __version__
 from assess.workflow.building import GirderModel
+from assess.workflow.sections import last_loss
 from db.documents import BridgeDoc, VisitDoc
 from db.errors import BedstoneError
 from db.records import KeptBridge, KeptResult
@@ -33,7 +34,7 @@ class Study:
     kept: KeptBridge
     visits: list[VisitDoc]
     calibrations: list[KeptResult]
-    _models: dict[str, GirderModel] = field(default_factory=dict)
+    _models: dict[tuple[str, dt.date], GirderModel] = field(default_factory=dict)
 
     @classmethod
     def fetch(cls, record: Record, bridge: str) -> Study:
@@ -49,11 +50,12 @@ class Study:
         """The newest revision of the bridge file."""
         return self.kept.document
 
-    def model(self, girder: str) -> GirderModel:
-        """A girder line, built once."""
-        if girder not in self._models:
-            self._models[girder] = GirderModel(self.bridge, self.bridge.girder(girder))
-        return self._models[girder]
+    def model(self, girder: str, as_of: dt.date | None = None) -> GirderModel:
+        """A girder line with the losses measured up to a day (all for None), built once for each state of them."""
+        key = girder, last_loss(self.bridge, as_of) or dt.date.min
+        if key not in self._models:
+            self._models[key] = GirderModel(self.bridge, self.bridge.girder(girder), key[1])
+        return self._models[key]
 
     def visit(self, date: dt.date) -> VisitDoc:
         """The visit of a day; BedstoneError that lists the days if there is none."""

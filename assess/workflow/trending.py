@@ -13,7 +13,7 @@ from assess.calibrate import SUSPECT
 from assess.capacity import evaluate, evaluate_draws
 from assess.results import PadTrend, SpanTrend, TrendResult
 from assess.trend import PadLaw, Trend, VisitEstimate, crossing, fit_trend, pad_future
-from assess.workflow import cautions
+from assess.workflow import cautions, section_cautions
 from assess.workflow.assessing import Settlement, Supports, kept_fits, settlements
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import GirderFit, VisitFit, calibrate_visit
@@ -84,6 +84,7 @@ def trend_study(study: Study, *, progress: Progress) -> tuple[TrendResult, list[
     progress("carried forward", len(study.bridge.girders), len(study.bridge.girders))
     said += _doubts(fits)
     said += _temperatures(study, fits)
+    said += section_cautions.of_trend(study.bridge)
     due, reason, about = _next_visit(study, as_of, parts)
     said += about
     limit = _reach(as_of, 2.0 * _years(min(fits), as_of))

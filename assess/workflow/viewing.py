@@ -162,6 +162,7 @@ def _states(study: Study, model: GirderModel, calibration: VisitFit | None) -> l
     fit = calibration.of(model) if calibration is not None else None
     if calibration is None or fit is None:
         return []
+    model = study.model(name, calibration.visit)
     shown = next(g for g in calibration.result.girders if g.girder == name)
     visit: VisitDoc = study.visit(calibration.visit)
     states = []

@@ -17,6 +17,7 @@ from db.errors import BedstoneError
 from db.exchange.fields import Fields, refuse_duplicates
 from db.exchange.files import digest_of, parse_toml, read_text, refuse_controls
 from db.exchange.girder_toml import GIRDER, girder
+from db.exchange.plates_toml import PLATES, with_plates
 from db.quantities import read_quantity
 from db.wording import printable, shown
 
@@ -27,7 +28,7 @@ MOST_VEHICLES = 1000
 
 _TOP = "format bridge section girder vehicle live factors"
 _BRIDGE = "id name carries built zero visit_interval"
-_SECTION = "id E I shear_area G sagging_capacity hogging_capacity shear_capacity"
+_SECTION = f"id E I shear_area G sagging_capacity hogging_capacity shear_capacity {PLATES}"
 _VEHICLE = "id axles"
 _LIVE = "id vehicle count pitch dynamic"
 _FACTORS = "name permanent live resistance permanent_relieving"
@@ -101,16 +102,19 @@ def _section(fields: Fields) -> SectionDoc:
     if not SOFTEST_KN_PER_M2 <= modulus <= STIFFEST_KN_PER_M2:
         problem = f'"{shown(fields.table["E"])}" is no Young\'s modulus of a girder'
         raise fields.error("E", problem, 'check the unit (1 to 1000 GPa), for example "205 GPa"')
-    return SectionDoc(
+    section = SectionDoc(
         id=fields.id("id"),
         youngs_modulus=modulus,
-        second_moment=fields.positive("I", "second moment"),
+        second_moment=(fields.optional_positive if fields.has("plate") else fields.positive)(
+            "I", "second moment"
+        ),
         shear_area=fields.optional_positive("shear_area", "area"),
         shear_modulus=fields.optional_positive("G", "stress", example="79 GPa"),
         sagging_capacity=fields.optional_positive("sagging_capacity", "moment"),
         hogging_capacity=fields.optional_positive("hogging_capacity", "moment", example="4700 kN m"),
         shear_capacity=fields.optional_positive("shear_capacity", "force", example="1900 kN"),
     )
+    return with_plates(section, fields)
 
 
 def _girders(top: Fields, sections: list[str]) -> tuple[GirderDoc, ...]:
