@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
 
+from assess.workflow.live_loads import check_live
 from db.documents import BridgeDoc, VisitDoc
 from db.errors import BedstoneError
 from db.exchange import check_losses, check_visit, draft_bridge, read_bridge, read_visit
@@ -27,6 +28,7 @@ def add_bridge(url: str, path: Path) -> tuple[BridgeDoc, Taken]:
     """Take in a bridge file: a new bridge, or a new revision of one."""
     document = read_bridge(path)
     check_losses(document, today=dt.date.today(), file=printable(str(path)))
+    check_live(document, file=printable(str(path)))
     with open_record(url) as record, _naming(path):
         return document, record.add_bridge(document)
 
