@@ -16,8 +16,8 @@ if TYPE_CHECKING:
     from db.records import BridgeSummary, Taken, VisitSummary
 
 
-def show_bridge_taken(bridge: BridgeDoc, taken: Taken) -> None:
-    """Say what became of a bridge file."""
+def show_bridge_taken(bridge: BridgeDoc, taken: Taken, models: Sequence[str] = ()) -> None:
+    """Say what became of a bridge file, and which published live loads it names, in words."""
     revision = "" if taken.revision is None else f" as revision {taken.revision}"
     if not taken.added:
         click.echo(f"Bridge {bridge.id} ({bridge.name}): this file is in the record already{revision}.")
@@ -37,6 +37,9 @@ def show_bridge_taken(bridge: BridgeDoc, taken: Taken) -> None:
         ],
         words=2,
     )
+    for model in models:
+        click.echo()
+        click.echo(f"Live load {model}")
 
 
 def show_bridges(bridges: Sequence[BridgeSummary]) -> None:
