@@ -11,6 +11,8 @@ from dataclasses import dataclass, field
 import numpy as np
 from numpy.typing import NDArray
 
+from assess.shown import SectionView
+
 Floats = NDArray[np.float64]
 
 
@@ -113,12 +115,58 @@ class ReactionResult:
 
 
 @dataclass(frozen=True, kw_only=True)
+class PadLimit:
+    """A value of a pad beside its limit, both in `unit` (empty for a plain number)."""
+
+    name: str
+    load: str  # what it is taken under: "permanent" | "total" | "live" | "factored"
+    value: float
+    limit: float
+    unit: str
+    utilisation: float
+    status: str  # "within" | "watch" | "over"
+    source: str
+
+
+@dataclass(frozen=True, kw_only=True)
+class PadCheck:
+    """A pad that gives its geometry, under the calibrated reactions (unfactored, live with its allowance).
+
+    Strains are those of an inner layer by the formula, times the stiffness by geometry over the calibrated one.
+    """
+
+    support: str
+    formula: str
+    limits_from: str
+    shape_factor: float
+    geometry_kN_per_m: float
+    nominal_kN_per_m: float
+    nominal_from: str  # "geometry" | "stiffness"
+    cv: float
+    batch: str | None
+    permanent_kN: float
+    total_kN: float
+    minimum_kN: float
+    permanent_pressure_MPa: float
+    total_pressure_MPa: float
+    minimum_pressure_MPa: float
+    permanent_strain: float
+    total_strain: float
+    permanent_compression_mm: float
+    creep_share_25_years: float | None
+    creep_compression_25_years_mm: float | None
+    limits: list[PadLimit]
+    status: str  # of the worst limit; "unknown" without one
+
+
+@dataclass(frozen=True, kw_only=True)
 class GirderAssessment:
     """The assessment of one girder line."""
 
     girder: str
     sections: list[SectionResult]
     reactions: list[ReactionResult]
+    pads: list[PadCheck] = field(default_factory=list)  # of the pads that give their geometry
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -311,3 +359,4 @@ class ReportView:
     girders: list[GirderView]
     options: dict[str, str]  # provenance: option -> value in words
     cautions: list[str] = field(default_factory=list)
+    sections: list[SectionView] = field(default_factory=list)  # those built from plates are drawn

@@ -1,25 +1,27 @@
-"""`bedstone bridge add | list | draft`."""
+"""`bedstone bridge add | list | show | draft`."""
 
 from __future__ import annotations
 
+import datetime as dt
 from pathlib import Path
 
 import click
 
 from assess.cli.failures import cannot_write, wrong
 from assess.cli.json_out import print_json
-from assess.cli.params import file_argument, json_option
+from assess.cli.params import bridge_argument, file_argument, json_option, read_date
 
 
-@click.group("bridge", short_help="Draft, add and list bridge files.", no_args_is_help=False)
+@click.group("bridge", short_help="Draft, add, list and show bridge files.", no_args_is_help=False)
 def command() -> None:
-    """Bridge files: draft one, add one to the record, list them.
+    """Bridge files: draft one, add one to the record, list them, show what one comes to.
 
     \b
     Example:
       bedstone bridge draft --spans "12 m, 15 m, 12 m" -o my-bridge.toml
       bedstone bridge add my-bridge.toml
       bedstone bridge list
+      bedstone bridge show quillmere
     """
 
 
@@ -59,6 +61,37 @@ def list_(record: str, as_json: bool) -> None:
         print_json({"bridges": bridges})
     else:
         show_bridges(bridges)
+
+
+@command.command("show")
+@bridge_argument
+@click.option(
+    "--visit",
+    metavar="DATE",
+    callback=read_date,
+    help="Losses measured up to this day, as YYYY-MM-DD; all of them if left out.",
+)
+@json_option
+@click.pass_obj
+def show(record: str, bridge: str, visit: dt.date | None, as_json: bool) -> None:
+    """Show what a bridge file comes to: sections, capacities, what is lost, and pads as designed.
+
+    Capacities are before the factor on resistance; where the file gives one and the plates give
+    one, the lower governs.
+
+    \b
+    Example:
+      bedstone bridge show quillmere
+      bedstone bridge show quillmere --visit 2024-05-14 --json
+    """
+    from assess import workflow
+    from assess.cli.tables.sections import show_bridge
+
+    view = workflow.show_bridge(record, bridge, visit=visit)
+    if as_json:
+        print_json(view.shown)
+    else:
+        show_bridge(view)
 
 
 @command.command("draft")

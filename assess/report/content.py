@@ -7,7 +7,7 @@ from dataclasses import dataclass, field
 
 from markupsafe import Markup
 
-from assess.report import tables, words
+from assess.report import sections, tables, words
 from assess.report.figures import elevation, history, moments, residuals, utilisation
 from assess.results import GirderAssessment, GirderCalibration, GirderView, ReportView, TrendResult
 
@@ -52,6 +52,8 @@ def build(view: ReportView) -> dict[str, object]:
         "facts": _facts(view),
         "next_visit": _next_visit(view.trend),
         "girders": [_girder(view, name, f"g{i + 1}") for i, name in enumerate(_names(view))],
+        "sections": sections.pages(view.sections),
+        "section_heads": list(sections.HEADS),
         "visits": [
             [
                 words.date(day),

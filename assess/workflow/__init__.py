@@ -11,6 +11,7 @@ from assess.workflow.records import (
     list_visits,
     log_visit,
 )
+from assess.workflow.showing import show_bridge
 from assess.workflow.study import Progress
 from assess.workflow.trending import trend
 from assess.workflow.viewing import report_view
@@ -27,5 +28,6 @@ __all__ = [
     "log_visit",
     "models_in_words",
     "report_view",
+    "show_bridge",
     "trend",
 ]

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
-from dataclasses import asdict, dataclass
+from dataclasses import asdict, dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -18,9 +18,10 @@ from assess.results import (
     ReactionResult,
     SectionResult,
 )
-from assess.workflow import cautions, section_cautions
+from assess.workflow import cautions, pad_cautions, section_cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import GirderFit, VisitFit, from_kept
+from assess.workflow.pad_checks import check_pads
 from assess.workflow.sections import last_loss
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
 from db.records import KeptResult
@@ -129,13 +130,16 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
         model = study.model(girder.id, visit)
         supports, about = supports_of(study, model, fits, visit)
         shown, factored = _assess_girder(model, supports)
-        girders.append(shown)
+        pads, about_pads = check_pads(model, supports.log_stiffness, shown.reactions)
+        girders.append(replace(shown, pads=pads))
         said += about
+        said += pad_cautions.of_prior(model) + about_pads
         said += cautions.uplift(girder.id, shown.reactions, factored)
         said += cautions.of_sections(girder.id, shown.sections)
         digests += [
             f"{s} {one.value!r} {one.sd!r} {one.date}" for s, one in sorted(supports.settlements.items())
         ]
+    said += [pad_cautions.FROM_MEMORY] if any(girder.pads for girder in girders) else []
     said += section_cautions.of_bridge(study.bridge, visit)
     worn = last_loss(study.bridge, visit)
     digests += [] if worn is None else [f"losses up to {worn}"]
@@ -180,7 +184,7 @@ def supports_of(
         left = cautions.settlements_left_out(name, [(s, 1e3 * one.value) for s, one in measured.items()])
         nominal = Supports(
             log_stiffness=model.nominal,
-            covariance=np.diag(model.prior.sd**2),
+            covariance=model.prior.covariance,
             source=None,
             fit=None,
             settlements={},
@@ -195,7 +199,7 @@ def supports_of(
         return (
             Supports(
                 log_stiffness=model.nominal,
-                covariance=np.diag(model.prior.sd**2),
+                covariance=model.prior.covariance,
                 source=None,
                 fit=None,
                 settlements=measured,

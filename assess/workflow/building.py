@@ -12,6 +12,8 @@ from assess.calibrate import PadPrior
 from assess.capacity import CheckPlan, Effects, Factors, GirderLoads, Resistance, plan_checks
 from assess.girder import Condensed, Girder, Piece
 from assess.loads import LoadCase, ModelLoad, Train
+from assess.pad import Pad
+from assess.workflow import pads
 from assess.workflow.live_loads import model_loads
 from assess.workflow.sections import EFFECTS, SectionState, section_on
 from db.documents import BridgeDoc, GirderDoc, LoadStateDoc, SectionDoc, SpanDoc
@@ -60,13 +62,32 @@ class GirderModel:
     @cached_property
     def nominal(self) -> Floats:
         """Nominal ln k of the pads, (q,)."""
-        return np.log(np.array([self.doc.supports[i].stiffness for i in self.pads], dtype=np.float64))
+        return np.log(self.nominal_stiffness)
+
+    @cached_property
+    def nominal_stiffness(self) -> Floats:
+        """Nominal stiffness of the pads, (q,), kN/m: given, else from the geometry."""
+        pairs = zip(self.pads, self.pad_models, strict=True)
+        return np.array([pads.nominal_of(self.doc.supports[i], pad) for i, pad in pairs], dtype=np.float64)
+
+    @cached_property
+    def pad_models(self) -> list[Pad | None]:
+        """The pads from their geometry, in the order of `pads`; None where the file gives none."""
+        return [pads.pad_of(self.doc.id, self.doc.supports[i]) for i in self.pads]
+
+    @cached_property
+    def stiffness_cv(self) -> Floats:
+        """Coefficient of variation of the nominal stiffnesses, (q,): given, else from the geometry's tolerances."""
+        pairs = zip(self.pads, self.pad_models, strict=True)
+        return np.array([pads.variation_of(self.doc.supports[i], pad) for i, pad in pairs], dtype=np.float64)
 
     @cached_property
     def prior(self) -> PadPrior:
-        """ln k ~ N(ln k_nominal, tau) with tau^2 = ln(1 + cv^2), the lognormal with that coefficient of variation."""
-        cv = np.array([self.doc.supports[i].stiffness_cv for i in self.pads], dtype=np.float64)
-        return PadPrior(mean=self.nominal, sd=np.sqrt(np.log1p(cv**2)))
+        """ln k ~ N(ln k_nominal, tau) with tau^2 = ln(1 + cv^2), the lognormal with that coefficient of variation.
+
+        Pads of one batch are correlated.
+        """
+        return pads.prior_of([self.doc.supports[i] for i in self.pads], self.pad_models)
 
     def compliance(self, log_stiffness: Floats) -> Floats:
         """Support compliances (..., n) from ln k of the pads (..., q); the other supports hold their level."""

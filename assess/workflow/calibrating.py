@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 
 from assess.calibrate import Z95, Fit, NotDetermined, Observation, ObservationModel, fit
 from assess.results import CalibrationResult, GirderCalibration, PadResult, ReadingResult
-from assess.workflow import cautions
+from assess.workflow import cautions, pad_cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.study import VERSION, Progress, Study, is_test, quiet, test_readings
 from db.documents import ReadingDoc, VisitDoc
@@ -129,6 +129,7 @@ def calibrate_visit(
             data_share=found.data_share,
         )
         said += cautions.of_fit(girder.id, shown[-1], readings, found)
+        said += pad_cautions.of_prior(model) if prior else []
     said += cautions.of_visit(visit)
     said += [cautions.left_out(one.date) for one in left_out or []]
     result = CalibrationResult(
@@ -209,7 +210,7 @@ def _shown(model: GirderModel, readings: list[ReadingDoc], found: Fit) -> Girder
     sd = found.sd
     low, high = np.exp(found.log_stiffness - Z95 * sd), np.exp(found.log_stiffness + Z95 * sd)
     estimate = np.exp(found.log_stiffness)
-    nominal = [model.doc.supports[i].stiffness or np.nan for i in model.pads]
+    nominal = model.nominal_stiffness
     pads = [
         PadResult(
             support=support,

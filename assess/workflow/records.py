@@ -7,6 +7,7 @@ from collections.abc import Iterator
 from contextlib import contextmanager
 from pathlib import Path
 
+from assess.workflow.pads import refuse_pads
 from assess.workflow.live_loads import check_live
 from db.documents import BridgeDoc, VisitDoc
 from db.errors import BedstoneError
@@ -29,6 +30,7 @@ def add_bridge(url: str, path: Path) -> tuple[BridgeDoc, Taken]:
     document = read_bridge(path)
     check_losses(document, today=dt.date.today(), file=printable(str(path)))
     check_live(document, file=printable(str(path)))
+    refuse_pads(document, printable(str(path)))
     with open_record(url) as record, _naming(path):
         return document, record.add_bridge(document)
 

@@ -13,10 +13,12 @@ from assess.calibrate import SUSPECT
 from assess.capacity import evaluate, evaluate_draws
 from assess.results import PadTrend, SpanTrend, TrendResult
 from assess.trend import PadLaw, Trend, VisitEstimate, crossing, fit_trend, pad_future
-from assess.workflow import cautions, section_cautions
+from assess.workflow import cautions, pad_cautions, section_cautions
 from assess.workflow.assessing import Settlement, Supports, kept_fits, settlements
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import GirderFit, VisitFit, calibrate_visit
+from assess.workflow.pads import cold_shift, corrected
+from assess.workflow.status import LIMIT, status_of
 from assess.workflow.study import SEED, Progress, Study, quiet, test_readings
 from db.documents import VisitDoc
 from db.errors import BedstoneError
@@ -24,7 +26,6 @@ from db.store import open_record
 
 Floats = NDArray[np.float64]
 
-WATCH, LIMIT = 0.9, 1.0
 DAYS_PER_YEAR = 365.25
 DEFAULT_INTERVAL_YEARS = 2.0
 FORECAST_DRAWS = 2000
@@ -84,6 +85,7 @@ def trend_study(study: Study, *, progress: Progress) -> tuple[TrendResult, list[
     progress("carried forward", len(study.bridge.girders), len(study.bridge.girders))
     said += _doubts(fits)
     said += _temperatures(study, fits)
+    said += pad_cautions.of_cold(study.bridge, {d: study.visit(d).pad_temperature for d in fits})
     said += section_cautions.of_trend(study.bridge)
     due, reason, about = _next_visit(study, as_of, parts)
     said += about
@@ -135,7 +137,7 @@ def _girder(
 ) -> tuple[GirderTrend, list[str]]:
     first, last = own[0][0].date, own[-1][0].date
     estimates = [_estimate(model, visit, fit, first) for visit, fit in own]
-    found = fit_trend(estimates, model.prior.mean, model.prior.sd)
+    found = fit_trend(estimates, model.prior.mean, model.prior.sd, model.prior.correlation)
     measured = settlements(study, model.doc.id, None)
     spans = _spans(model, found, measured, _years(first, last), last)
     dates = [visit.date for visit, _ in own]
@@ -167,12 +169,8 @@ def _girder(
 
 
 def _estimate(model: GirderModel, visit: VisitDoc, fit: GirderFit, first: dt.date) -> VisitEstimate:
-    """A visit's fit, brought to the reference temperature for pads that have a coefficient."""
-    shift = np.zeros(len(fit.supports))
-    if visit.pad_temperature is not None:
-        colder = cautions.REFERENCE_TEMPERATURE - visit.pad_temperature
-        given = [model.doc.supports[i].temperature_coefficient or 0.0 for i in model.pads]
-        shift = np.array(given) * colder
+    """A visit's fit, brought to the reference temperature for pads that have a coefficient or a compound."""
+    shift = cold_shift(model.doc, list(model.pads), visit.pad_temperature).shift
     return VisitEstimate(
         time=_years(first, visit.date),
         log_stiffness=fit.log_stiffness - shift,
@@ -292,13 +290,6 @@ def _outlook(now: float, utilisation: Floats, years: Floats, last: dt.date) -> d
     }
 
 
-def status_of(utilisation: float | None) -> str:
-    """Status word: within, watch from 0.9, over from 1.0; unknown where there is no utilisation."""
-    if utilisation is None:
-        return "unknown"
-    return "over" if utilisation >= LIMIT else "watch" if utilisation >= WATCH else "within"
-
-
 # next visit --------------------------------------------------------------------------------------
 
 
@@ -345,7 +336,7 @@ def _temperatures(study: Study, fits: dict[dt.date, VisitFit]) -> list[str]:
             s.id
             for girder in study.bridge.girders
             for s in girder.supports
-            if s.kind == "pad" and s.temperature_coefficient is None
+            if s.kind == "pad" and not corrected(s)
         }
     )
     unknown = [d for d in fits if study.visit(d).pad_temperature is None]

@@ -26,6 +26,7 @@ from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import VisitFit, calibrate_visit
 from assess.workflow.live_loads import live_in_words
 from assess.workflow.movements import line_of, points_of
+from assess.workflow.showing import section_views
 from assess.workflow.stands import governing_stands
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
 from assess.workflow.trending import DAYS_PER_YEAR, GirderTrend, trend_study, with_future
@@ -93,6 +94,7 @@ def _view(
             "data share that counts as told": f"{cautions.TOLD:.0%}",
         },
         cautions=said,
+        sections=section_views(bridge, None),
     )
 
 

@@ -7,6 +7,7 @@ import math
 from db.documents import GirderDoc, PermanentDoc, PieceDoc, SpanDoc, SupportDoc
 from db.errors import BedstoneError
 from db.exchange.fields import Fields, refuse_duplicates
+from db.exchange.pad_toml import PAD, pad
 from db.wording import shown
 
 GIRDER = "id live_share span support permanent"
@@ -101,26 +102,30 @@ def _support(fields: Fields) -> SupportDoc:
     name = fields.id("id")
     kind = fields.one_of("kind", ("pad", "pin"))
     rotation = _rotation(fields)
-    if fields.has("pad"):
-        problem = "this version does not read the geometry of a pad"
-        raise fields.error("pad", problem, 'give its nominal stiffness instead: stiffness = "150 kN/mm"')
     if kind == "pin":
-        for field in ("stiffness", "stiffness_cv", "temperature_coefficient"):
+        for field in ("stiffness", "stiffness_cv", "temperature_coefficient", "pad"):
             if fields.has(field):
                 remedy = 'leave it out, or write kind = "pad"'
                 raise fields.error(field, "a pin holds its level and has none", remedy)
         return SupportDoc(id=name, kind=kind, rotation=rotation)
-    cv = fields.number("stiffness_cv", DEFAULT_CV, over=0.0)
-    if cv > LARGEST_CV:
-        raise fields.error("stiffness_cv", f"{cv:g} is no coefficient of variation", "write for example 0.3")
+    geometry = pad(fields.subtable("pad", PAD, "its geometry")) if fields.has("pad") else None
+    by_geometry = geometry is not None and not fields.has("stiffness")
     return SupportDoc(
         id=name,
         kind=kind,
-        stiffness=fields.positive("stiffness", "stiffness"),
-        stiffness_cv=cv,
+        stiffness=None if by_geometry else fields.positive("stiffness", "stiffness"),
+        stiffness_cv=None if by_geometry and not fields.has("stiffness_cv") else _variation(fields),
+        pad=geometry,
         rotation=rotation,
         temperature_coefficient=_coefficient(fields),
     )
+
+
+def _variation(fields: Fields) -> float:
+    cv = fields.number("stiffness_cv", DEFAULT_CV, over=0.0)
+    if cv > LARGEST_CV:
+        raise fields.error("stiffness_cv", f"{cv:g} is no coefficient of variation", "write for example 0.3")
+    return cv
 
 
 def _rotation(fields: Fields) -> float:

@@ -138,6 +138,7 @@ TREND = {
     "cautions": [TEXT],
 }
 # said beside the contract's own keys
+BESIDE_GIRDER = {"pads"}
 BESIDE = {"assess": {"version", "input_digest", "seed", "draws"}, "trend": {"next_visit_reason"}}
 
 
@@ -169,7 +170,13 @@ def check(value: Any, shape: Any, where: str = "") -> None:
 
 def trimmed(document: dict[str, Any], command: str) -> dict[str, Any]:
     assert set(document) >= BESIDE[command]
-    return {key: value for key, value in document.items() if key not in BESIDE[command]}
+    plain = {key: value for key, value in document.items() if key not in BESIDE[command]}
+    if command == "assess":
+        plain["girders"] = [
+            {key: value for key, value in girder.items() if key not in BESIDE_GIRDER}
+            for girder in plain["girders"]
+        ]
+    return plain
 
 
 @pytest.fixture
