@@ -24,10 +24,11 @@ from assess.workflow import cautions
 from assess.workflow.assessing import Supports, assess_study, kept_fits, supports_of
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import VisitFit, calibrate_visit
+from assess.workflow.drivers import Driver, drivers
 from assess.workflow.movements import line_of, points_of
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
 from assess.workflow.trending import DAYS_PER_YEAR, GirderTrend, trend_study, with_future
-from assess.workflow.verdicts import cautions_beside, verdict
+from assess.workflow.verdicts import cautions_beside, head_row, verdict
 from db.documents import VisitDoc
 from db.store import open_record
 
@@ -82,7 +83,7 @@ def _view(
             + f", dynamic allowance {live.dynamic:g}, both running directions"
             for live in bridge.live
         ],
-        verdicts={g.id: verdict(g.id, assessment, trend, calibration) for g in bridge.girders},
+        verdicts={g.id: _verdict(study, g.id, assessment, trend, calibration) for g in bridge.girders},
         verdict_cautions={g.id: cautions_beside(g.id, said) for g in bridge.girders},
         calibration=calibration,
         assessment=assessment,
@@ -97,6 +98,22 @@ def _view(
         },
         cautions=said,
     )
+
+
+def _verdict(
+    study: Study,
+    girder: str,
+    assessment: AssessmentResult,
+    trend: TrendResult | None,
+    calibration: CalibrationResult | None,
+) -> str:
+    row = head_row(trend, girder)
+    found: list[Driver] = []
+    if row is not None:
+        model = study.model(girder)
+        supports, _ = supports_of(study, model, kept_fits(study, None), None)
+        found = drivers(model, supports, row)
+    return verdict(girder, assessment, trend, calibration, found)
 
 
 def _factors(study: Study) -> str:
