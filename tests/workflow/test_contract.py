@@ -138,7 +138,7 @@ TREND = {
     "cautions": [TEXT],
 }
 # said beside the contract's own keys
-BESIDE = {"assess": {"version", "input_digest", "seed", "draws"}, "trend": {"next_visit_reason"}}
+BESIDE = {"assess": {"version", "input_digest", "seed", "draws"}, "trend": {"next_visit_reason", "seats"}}
 
 
 def check(value: Any, shape: Any, where: str = "") -> None:
