@@ -8,9 +8,9 @@ import numpy as np
 import pytest
 from scipy.optimize import least_squares
 
-from tests.black_box.cases import key_of, recorded, thinned
+from tests.black_box.cases import Case, key_of, recorded, thinned
 from tests.black_box.describe import Reading
-from tests.black_box.rating import Rating
+from tests.black_box.rating import Check, Rating
 from tests.black_box.test_random_bridges import random_case
 
 DRAWS_SAID = 4000
@@ -51,7 +51,7 @@ def test_chance_and_band_agree_with_plain_draws(seed: int, draws: int, tmp_path:
     ratings = [Rating(case.bridge, case.girder, case.supports(ln_k), seats) for ln_k, seats in drawn]
     for section in said:
         row, effect = section["calibrated"], section["effect"]
-        at = [max(r.at(effect, row["x_m"], step=0.2), key=lambda c: c.utilisation) for r in ratings]
+        at = [max(_own_span(case, section, r.at(effect, row["x_m"], step=0.2)), key=_used) for r in ratings]
         own = np.array([max(c.utilisation, 0.0) for c in at])
         p = row["probability_over_1"]
         spread = 4 * np.sqrt(max(p * (1 - p), 0.25 / draws) * (1 / draws + 1 / DRAWS_SAID))
@@ -76,7 +76,20 @@ def test_chance_and_band_agree_with_plain_draws(seed: int, draws: int, tmp_path:
             )
 
 
-def _capacities_at_the_middle(case, ln_k: np.ndarray, drop: np.ndarray) -> None:
+def _used(check: Check) -> float:
+    return check.utilisation or 0.0
+
+
+def _own_span(case: Case, section: dict, faces: list[Check]) -> list[Check]:
+    """The face of a place that lies in the row's own span; both where the row has no span."""
+    if section["span"] is None or len(faces) == 1:
+        return faces
+    first, last = case.girder.at[section["span"] - 1 : section["span"] + 1]
+    x = section["calibrated"]["x_m"]
+    return faces[1:] if abs(x - first) < 1e-6 else faces[:1] if abs(x - last) < 1e-6 else faces
+
+
+def _capacities_at_the_middle(case: Case, ln_k: np.ndarray, drop: np.ndarray) -> None:
     """Scale the capacities so that a row of each effect is used to 1."""
     worst = Rating(case.bridge, case.girder, case.supports(ln_k), drop).search()
     for effect in ("sagging", "hogging", "shear"):

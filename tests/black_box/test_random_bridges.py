@@ -83,15 +83,19 @@ def test_noisy_readings_give_the_fit_of_plain_least_squares(seed: int, tmp_path:
         own = (theta - case.mean) / case.tau if prior else []
         return np.concatenate(((value - case.reader(theta)) / case.sd, own))
 
-    fit = least_squares(residual, case.mean, jac="3-point", xtol=1e-13, ftol=1e-13, gtol=1e-13)
+    # steps of 1e-3: smaller ones drown in the rounding of the assembled elements
+    fit = least_squares(
+        residual, case.mean, jac="3-point", diff_step=1e-3, xtol=1e-13, ftol=1e-13, gtol=1e-13
+    )
     covariance = np.linalg.inv(fit.jac.T @ fit.jac)
     se = np.sqrt(np.diag(covariance))
     record = recorded(tmp_path, case, rng, table=bool(seed % 2))
     said = record.json("calibrate", case.bridge.id, *([] if prior else ["--no-prior"]))["girders"][0]
     pads = said["pads"]
-    assert np.log([p["stiffness_kN_per_m"] for p in pads]) == pytest.approx(
-        fit.x, abs=1e-3 * float(se.min()) + 1e-6
-    )
+    found = np.log([p["stiffness_kN_per_m"] for p in pads])
+    assert (found - fit.x) / se == pytest.approx(0.0, abs=5e-3)
+    cost = [float(np.sum(residual(theta) ** 2)) for theta in (found, fit.x)]
+    assert cost[0] <= cost[1] * (1 + 1e-5) + 1e-3, "the program's answer explains the readings no worse"
     for sign, name in ((-1, "low95_kN_per_m"), (1, "high95_kN_per_m")):
         assert (np.log([p[name] for p in pads]) - fit.x) / se == pytest.approx(sign * 1.96, abs=0.01)
     share = 1 - np.diag(covariance) / case.tau**2 if prior else np.ones(len(pads))
