@@ -3,6 +3,16 @@
 from db.exchange.bridge_toml import parse_bridge, read_bridge
 from db.exchange.checks import check_visit
 from db.exchange.draft import draft_bridge
+from db.exchange.plausibility import bridge_queries, visit_queries
 from db.exchange.visit_toml import parse_visit, read_visit
 
-__all__ = ["check_visit", "draft_bridge", "parse_bridge", "parse_visit", "read_bridge", "read_visit"]
+__all__ = [
+    "bridge_queries",
+    "check_visit",
+    "draft_bridge",
+    "parse_bridge",
+    "parse_visit",
+    "read_bridge",
+    "read_visit",
+    "visit_queries",
+]

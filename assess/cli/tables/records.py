@@ -2,14 +2,13 @@
 
 from __future__ import annotations
 
-from collections import Counter
 from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 import click
 
-from assess.cli.tables.screen import print_table
-from assess.cli.tables.words import counted, listed
+from assess.cli.tables.screen import print_heading, print_table, print_wrapped
+from assess.cli.tables.words import counted, listed, number
 
 if TYPE_CHECKING:
     from db.documents import BridgeDoc, ReadingDoc, VisitDoc
@@ -21,6 +20,7 @@ def show_bridge_taken(bridge: BridgeDoc, taken: Taken) -> None:
     revision = "" if taken.revision is None else f" as revision {taken.revision}"
     if not taken.added:
         click.echo(f"Bridge {bridge.id} ({bridge.name}): this file is in the record already{revision}.")
+        _look_again(taken)
         return
     click.echo(f"Bridge {bridge.id} ({bridge.name}): added{revision}.")
     print_table(
@@ -37,6 +37,70 @@ def show_bridge_taken(bridge: BridgeDoc, taken: Taken) -> None:
         ],
         words=2,
     )
+    click.echo()
+    _show_pads(bridge)
+    click.echo()
+    _show_sections(bridge)
+    if bridge.vehicles:
+        click.echo()
+        _show_vehicles(bridge)
+    factors = bridge.factors
+    click.echo()
+    effects = f"permanent {factors.permanent:g}, live {factors.live:g} on the effects"
+    click.echo(f"Factors: {effects}; capacity x {factors.resistance:g}.")
+    _look_again(taken)
+
+
+def _show_pads(bridge: BridgeDoc) -> None:
+    print_table(
+        ["girder", "pad", "nominal, kN/mm", "coefficient\nof variation"],
+        [
+            [girder.id, support.id, f"{support.stiffness / 1e3:g}", f"{support.stiffness_cv:g}"]
+            for girder in bridge.girders
+            for support in girder.supports
+            if support.stiffness is not None and support.stiffness_cv is not None
+        ],
+        words=2,
+    )
+
+
+def _show_sections(bridge: BridgeDoc) -> None:
+    print_table(
+        ["section", "EI, kN m2", "sagging\ncapacity, kN m", "hogging\ncapacity, kN m", "shear\ncapacity, kN"],
+        [
+            [
+                section.id,
+                number(section.youngs_modulus * section.second_moment),
+                number(section.sagging_capacity, none="not given"),
+                number(section.hogging_capacity, none="not given"),
+                number(section.shear_capacity, none="not given"),
+            ]
+            for section in bridge.sections
+        ],
+    )
+
+
+def _show_vehicles(bridge: BridgeDoc) -> None:
+    print_table(
+        ["vehicle", "axles", "weight, kN", "first to last\naxle, m"],
+        [
+            [
+                vehicle.id,
+                str(len(vehicle.axles)),
+                f"{sum(load for _, load in vehicle.axles):g}",
+                f"{max(at for at, _ in vehicle.axles):g}",
+            ]
+            for vehicle in bridge.vehicles
+        ],
+    )
+
+
+def _look_again(taken: Taken) -> None:
+    if not taken.queries:
+        return
+    print_heading("Look again at")
+    for query in taken.queries:
+        print_wrapped(query, first="- ", then="  ")
 
 
 def show_bridges(bridges: Sequence[BridgeSummary]) -> None:
@@ -53,24 +117,36 @@ def show_bridges(bridges: Sequence[BridgeSummary]) -> None:
 
 def show_visit_taken(visit: VisitDoc, taken: Taken) -> None:
     """Say what became of a visit file: readings by state and quantity, and the settlements kept."""
-    if not taken.added:
+    if not taken.added and not taken.tried:
         click.echo(
             f"Bridge {visit.bridge}, visit {visit.date}: this file is in the record already; nothing changed."
         )
         return
     count = counted(len(visit.readings), "reading")
-    click.echo(f"Bridge {visit.bridge}, visit {visit.date}: {count} taken in.")
+    became = "would be taken in; nothing was kept (--dry-run)" if taken.tried else "taken in"
+    click.echo(f"Bridge {visit.bridge}, visit {visit.date}: {count} {became}.")
     if visit.readings:
-        print_table(["state", "quantity", "readings"], _by_state(visit.readings), words=2)
-    settlements = [reading for reading in visit.readings if reading.quantity == "settlement"]
+        print_table(
+            ["state", "quantity", "readings", "values", "standard deviations"],
+            _by_state(visit.readings),
+            words=2,
+        )
+    settlements = [
+        r for r in visit.readings if r.quantity == "settlement" and visit.state(r.state).vehicle is None
+    ]
     if settlements:
         click.echo()
         click.echo("Seat settlements kept for the assessment")
         print_table(
-            ["girder", "support", "settlement", "sd"],
-            [[r.girder, r.support or f"x = {r.at} m", r.value_entered, r.sd_entered] for r in settlements],
+            ["girder", "support", "since the datum", "sd"],
+            [[r.girder, str(r.support), _settlement(r), r.sd_entered] for r in settlements],
             words=2,
         )
+    _look_again(taken)
+
+
+def _settlement(reading: ReadingDoc) -> str:
+    return f"{'up' if reading.value < 0.0 else 'down'} {reading.value_entered.lstrip('+-−')}"
 
 
 def show_visits(bridge: str, visits: Sequence[VisitSummary]) -> None:
@@ -85,5 +161,17 @@ def show_visits(bridge: str, visits: Sequence[VisitSummary]) -> None:
 
 
 def _by_state(readings: Sequence[ReadingDoc]) -> list[list[str]]:
-    counts = Counter((reading.state, reading.quantity) for reading in readings)
-    return [[state, quantity, str(count)] for (state, quantity), count in counts.items()]
+    groups: dict[tuple[str, str], list[ReadingDoc]] = {}
+    for reading in readings:
+        groups.setdefault((reading.state, reading.quantity), []).append(reading)
+    return [
+        [state, quantity, str(len(some)), _range(some, "value"), _range(some, "sd")]
+        for (state, quantity), some in groups.items()
+    ]
+
+
+def _range(readings: Sequence[ReadingDoc], what: str) -> str:
+    """Smallest to largest, as they were written."""
+    ordered = sorted(readings, key=lambda reading: float(getattr(reading, what)))
+    least, most = (str(getattr(reading, f"{what}_entered")) for reading in (ordered[0], ordered[-1]))
+    return least if least == most else f"{least} to {most}"
