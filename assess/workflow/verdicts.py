@@ -9,6 +9,7 @@ from assess.results import (
     CalibrationResult,
     GirderAssessment,
     PadTrend,
+    SeatTrend,
     SectionResult,
     SpanTrend,
     TrendResult,
@@ -80,7 +81,10 @@ def _causes(
     girder: str, trend: TrendResult, calibration: CalibrationResult | None, found: Sequence[Driver]
 ) -> str:
     """Name the supports that drive the section, and a pad that changes even if it drives nothing yet."""
-    told = [one for one in found if one.adds >= _TELLS][:2]
+    still = {s.support for s in trend.seats if s.girder == girder and _stands(s)}
+    told = [one for one in found if one.adds >= _TELLS and not (one.what == "seat" and one.support in still)][
+        :2
+    ]
     parts = [_cause(girder, trend, one) for one in told]
     changed = _changed(trend, girder)
     if changed is not None and ("pad", changed.support) not in {(one.what, one.support) for one in told}:
@@ -89,6 +93,11 @@ def _causes(
     if not parts and odd:
         parts.append(odd)
     return ", then at ".join(parts)
+
+
+def _stands(seat: SeatTrend) -> bool:
+    """Tell whether a seat has not moved beyond twice the standard deviation of its level."""
+    return not seat.moving and abs(seat.settlement_mm) < 2.0 * seat.sd_mm
 
 
 def _cause(girder: str, trend: TrendResult, one: Driver) -> str:
