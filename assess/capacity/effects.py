@@ -12,15 +12,19 @@ from assess.capacity.checks import CheckPlan
 from assess.girder import (
     Condensed,
     Envelope,
-    Passage,
+    Part,
+    Placement,
+    Places,
+    Sweep,
     envelope,
     extremes,
     forces_of,
+    governing_placement,
     passages,
     places,
     support_places,
 )
-from assess.loads import LoadCase, Train
+from assess.loads import LoadCase, ModelLoad, Train
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
@@ -28,10 +32,18 @@ Ints = NDArray[np.intp]
 
 @dataclass(frozen=True, kw_only=True)
 class GirderLoads:
-    """What a girder line carries: permanent loads, and trains with live share and dynamic allowance in them."""
+    """What a girder line carries: permanent loads; live loads with the live share in them.
+
+    Attributes
+    ----------
+    permanent : LoadCase
+    trains : with the dynamic allowance in them
+    models : published load models, each beside its allowance
+    """
 
     permanent: LoadCase
     trains: tuple[Train, ...] = ()
+    models: tuple[ModelLoad, ...] = ()
 
 
 class Effects:
@@ -51,9 +63,8 @@ class Effects:
         self.permanent_forces = forces_of(condensed, loads.permanent)
         self._places = {name: places(condensed, name, plan.x, plan.side) for name in ("moment", "shear")}
         self._held = {name: place.held(loads.permanent) for name, place in self._places.items()}
-        self._passages: dict[str, list[Passage]] = {
-            name: [part for train in loads.trains for part in passages(place, train)]
-            for name, place in self._places.items()
+        self._passages: dict[str, list[Part]] = {
+            name: live_parts(place, loads) for name, place in self._places.items()
         }
 
     def permanent(
@@ -74,6 +85,18 @@ class Effects:
             )
         return envelope(self._passages[name], compliance)
 
+    def live_sample(self, name: str, compliances: Floats) -> tuple[Floats, Floats]:
+        """Live maxima and minima (sets, p) at all stations on a few sets of supports (sets, n).
+
+        A load model is taken on a coarser lattice: good enough to tell which station governs.
+        """
+        parts = [_rough(part, compliances) for part in self._passages[name]]
+        if not parts:
+            zero = np.zeros((compliances.shape[0], self.plan.x.size))
+            return zero, zero
+        found = [envelope(parts, one) for one in compliances]
+        return np.array([one.maximum for one in found]), np.array([one.minimum for one in found])
+
     def live_draws(
         self, name: str, stations: Ints, compliances: Floats, sample: Ints
     ) -> tuple[Floats, Floats]:
@@ -88,9 +111,12 @@ class Effects:
         return extremes(parts, compliances)
 
     @cached_property
-    def _reaction_passages(self) -> list[Passage]:
-        supports = support_places(self.condensed)
-        return [part for train in self.loads.trains for part in passages(supports, train)]
+    def _reaction_passages(self) -> list[Part]:
+        return live_parts(support_places(self.condensed), self.loads)
+
+    def placement(self, name: str, compliance: Floats, station: int, sense: float) -> Placement | None:
+        """Where the live load stands for the greatest (sense 1) or least (-1) moment or shear at a station."""
+        return governing_placement(self._passages[name], compliance, station, sense)
 
     def reactions(self, compliance: Floats) -> tuple[Floats, Floats]:
         """Largest and smallest live reaction of every support (n,), kN; 0 where no train is better."""
@@ -98,3 +124,14 @@ class Effects:
             return np.zeros(self.condensed.n_supports), np.zeros(self.condensed.n_supports)
         live = envelope(self._reaction_passages, compliance)
         return live.maximum, live.minimum
+
+
+def live_parts(place: Places, loads: GirderLoads) -> list[Part]:
+    """All live loads of a girder line passing some places."""
+    parts: list[Part] = [part for train in loads.trains for part in passages(place, train)]
+    parts += [Sweep(place, model) for model in loads.models]
+    return parts
+
+
+def _rough(part: Part, compliances: Floats) -> Part:
+    return part.rough().governing(compliances) if isinstance(part, Sweep) else part

@@ -7,6 +7,7 @@ in L. A permanent effect of the other sign than the checked one relieves and tak
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass
 
 import numpy as np
@@ -80,14 +81,25 @@ def response_of(effect: str) -> str:
 
 
 def demands_at(
-    effects: Effects, factors: Factors, compliance: Floats, settlement: Floats
+    effects: Effects,
+    factors: Factors,
+    compliance: Floats,
+    settlement: Floats,
+    live: Mapping[str, tuple[Floats, Floats]] | None = None,
 ) -> dict[tuple[str, float], Demand]:
-    """Factored moments and shears (p,) in both senses, by (response, sign), on one set of supports."""
+    """Factored moments and shears (p,) in both senses, by (response, sign), on one set of supports.
+
+    `live` gives live maxima and minima (p,) that are known already, by response.
+    """
     demands: dict[tuple[str, float], Demand] = {}
     for name in ("moment", "shear"):
         permanent = effects.permanent(name, compliance, settlement)
-        live = effects.live(name, compliance)
-        for sign, extreme in ((1.0, live.maximum), (-1.0, live.minimum)):
+        if live is None:
+            found = effects.live(name, compliance)
+            maximum, minimum = found.maximum, found.minimum
+        else:
+            maximum, minimum = live[name]
+        for sign, extreme in ((1.0, maximum), (-1.0, minimum)):
             demands[name, sign] = demand(factors, permanent, extreme, sign)
     return demands
 
@@ -188,8 +200,10 @@ def _governing_stations(
 ) -> list[Ints]:
     """Stations that govern each row, in each sense, for at least one of some sets of supports (sets, n)."""
     found: list[set[int]] = [set() for _ in effects.plan.checks]
-    for compliance, settlement in zip(compliances, settlements, strict=True):
-        demands = demands_at(effects, factors, compliance, settlement)
+    sample = {name: effects.live_sample(name, compliances) for name in ("moment", "shear")}
+    for s, (compliance, settlement) in enumerate(zip(compliances, settlements, strict=True)):
+        live = {name: (high[s], low[s]) for name, (high, low) in sample.items()}
+        demands = demands_at(effects, factors, compliance, settlement, live)
         for i, check in enumerate(effects.plan.checks):
             own = [demands[response_of(check.effect), sign] for sign in _senses(check.effect)]
             # each sense on its own: the one that seldom governs has a station of its own

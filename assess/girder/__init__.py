@@ -1,11 +1,15 @@
 """The continuous girder: its condensed form, responses, influence lines and envelopes."""
 
 from assess.girder.condensed import Condensed, SupportDerivatives, SupportState
+from assess.girder.distributed import Sweep
 from assess.girder.envelope import (
     Envelope,
+    Part,
     Passage,
+    Placement,
     envelope,
     extremes,
+    governing_placement,
     influence_line,
     passages,
     train_forces,
@@ -19,14 +23,18 @@ __all__ = [
     "Condensed",
     "Envelope",
     "Girder",
+    "Part",
     "Passage",
     "Piece",
+    "Placement",
     "Places",
     "SupportDerivatives",
     "SupportState",
+    "Sweep",
     "envelope",
     "extremes",
     "forces_of",
+    "governing_placement",
     "influence_line",
     "passages",
     "places",

@@ -7,7 +7,9 @@ a grid no coarser than a two-hundredth of the shortest span, and at every place 
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
+from typing import Protocol
 
 import numpy as np
 from numpy.typing import NDArray
@@ -32,13 +34,64 @@ class Envelope:
     ----------
     maximum, minimum : (..., p)
     leading_at_maximum, leading_at_minimum : (..., p) leading axle, m; NaN where the empty girder governs.
-        For the reversed running direction the position is that of the axle with the largest x as well.
+        For the reversed running direction the position is that of the axle with the largest x as well. For a
+        published load model it is the head of the load as it runs, either way.
     """
 
     maximum: Floats
     minimum: Floats
     leading_at_maximum: Floats
     leading_at_minimum: Floats
+
+
+@dataclass(frozen=True, kw_only=True)
+class Peaks:
+    """The greatest and the least response a part of the live load gives, and where it then stands; all (..., p)."""
+
+    top: Floats
+    bottom: Floats
+    at_top: Floats
+    at_bottom: Floats
+
+
+@dataclass(frozen=True, kw_only=True)
+class Placement:
+    """Where a live load stands for an extreme, in plain numbers.
+
+    Attributes
+    ----------
+    name : the alternative of a load model, or nothing
+    value : the response
+    axles : (x in m, kN) of the axles on the girder, with what share and allowance there are in them
+    stretches : (start in m, end in m, kN/m) of the uniform parts on the girder, likewise
+    towards : "larger x" or "smaller x", the way it runs; nothing where that makes no difference
+    """
+
+    name: str
+    value: float
+    axles: tuple[tuple[float, float], ...]
+    stretches: tuple[tuple[float, float, float], ...] = ()
+    towards: str = ""
+
+
+class Part(Protocol):
+    """A live load passing p places, before the supports are known: a train of axles, or a published load model."""
+
+    @property
+    def place(self) -> Places:
+        """The places it passes."""
+
+    def peaks(self, compliance: Floats) -> Peaks:
+        """Peaks (..., p) on supports of compliance (..., n)."""
+
+    def at(self, index: NDArray[np.intp]) -> Part:
+        """Return the same of some of its places."""
+
+    def governing(self, compliances: Floats) -> Passage:
+        """Keep, at each place, the positions that govern for a compliance of (s, n)."""
+
+    def placement(self, compliance: Floats, index: int, sense: float) -> Placement:
+        """Where it stands for the greatest (sense 1) or least (-1) response of one place on supports (n,)."""
 
 
 def influence_line(place: Places, a: Floats, compliance: Floats) -> Floats:
@@ -76,12 +129,14 @@ class Passage:
     leading : (p, m) leading-axle positions examined at each place
     held : (p, m) response with all supports held level
     forces : (p, m, n) support forces with all supports held level; (1, m, n) where all places share them
+    train : the train as it stands on the girder, seen from its right-most axle; None where the loads are no one train
     """
 
     place: Places
     leading: Floats
     held: Floats
     forces: Floats
+    train: Train | None = None
 
     def responses(self, compliance: Floats) -> Floats:
         """Response (..., p, m) on supports of compliance (..., n)."""
@@ -93,6 +148,29 @@ class Passage:
         moved = np.moveaxis(self.forces @ flat.transpose(1, 2, 0), 2, 0)  # one product for all sets
         return np.asarray(self.held + moved.reshape(*weights.shape[:-2], *self.held.shape))
 
+    def peaks(self, compliance: Floats) -> Peaks:
+        """Peaks (..., p) on supports of compliance (..., n)."""
+        y = self.responses(compliance)
+        high, low = y.argmax(axis=-1), y.argmin(axis=-1)
+        index = np.arange(self.place.x.size)
+        return Peaks(
+            top=np.take_along_axis(y, high[..., None], axis=-1)[..., 0],
+            bottom=np.take_along_axis(y, low[..., None], axis=-1)[..., 0],
+            at_top=self.leading[index, high],
+            at_bottom=self.leading[index, low],
+        )
+
+    def placement(self, compliance: Floats, index: int, sense: float) -> Placement:
+        """Where the train stands for the greatest (sense 1) or least (-1) response of one place."""
+        one = self.at(np.array([index])).peaks(compliance)
+        value, leading = (one.top, one.at_top) if sense > 0.0 else (one.bottom, one.at_bottom)
+        if self.train is None:
+            raise ValueError("these positions belong to no one train")
+        x = self.train.axle_positions(leading)[0]
+        on = self.place.condensed.carries(x)
+        axles = tuple((float(a), float(p)) for a, p in zip(x[on], self.train.loads[on], strict=True))
+        return Placement(name="", value=float(value[0]), axles=axles)
+
     def at(self, index: NDArray[np.intp]) -> Passage:
         """Return the passage of some of its places."""
         shared = self.forces.shape[0] == 1
@@ -101,6 +179,7 @@ class Passage:
             leading=self.leading[index],
             held=self.held[index],
             forces=self.forces if shared else self.forces[index],
+            train=self.train,
         )
 
     def governing(self, compliances: Floats) -> Passage:
@@ -122,6 +201,7 @@ class Passage:
             leading=np.take_along_axis(self.leading, keep, axis=1),
             held=np.take_along_axis(self.held, keep, axis=1),
             forces=np.take_along_axis(forces, keep[:, :, None], axis=1),
+            train=self.train,
         )
 
 
@@ -161,7 +241,9 @@ def _on_grid(place: Places, train: Train) -> Passage:
     forces = condensed.forces_from(ends, simple)
     shared = np.broadcast_to(leading, (place.x.size, leading.size))
     if place.quantity == REACTION:
-        return Passage(place=place, leading=shared, held=forces.T[place.supports], forces=forces[None])
+        return Passage(
+            place=place, leading=shared, held=forces.T[place.supports], forces=forces[None], train=train
+        )
     held = np.empty(shared.shape)
     for j, one in enumerate(condensed.spans):
         here = np.flatnonzero(place.span == j)
@@ -177,7 +259,7 @@ def _on_grid(place: Places, train: Train) -> Passage:
                 a = np.clip(leading[None, first:last] - offset - start, 0.0, one.length)
                 block[:, first:last] += load * one.load_response(place.quantity, x, a, side)
         held[here] = block
-    return Passage(place=place, leading=shared, held=held, forces=forces[None])
+    return Passage(place=place, leading=shared, held=held, forces=forces[None], train=train)
 
 
 def _on_places(place: Places, train: Train) -> Passage:
@@ -189,12 +271,12 @@ def _on_places(place: Places, train: Train) -> Passage:
     forces = condensed.forces_from(ends, simple)
     if place.quantity == REACTION:
         held = forces[np.arange(place.x.size), :, place.supports]
-        return Passage(place=place, leading=leading, held=held, forces=forces)
+        return Passage(place=place, leading=leading, held=held, forces=forces, train=train)
     own = ends[np.arange(place.x.size), :, place.span, :]
     held = (own * place.carry[:, None, :]).sum(axis=-1)
     for offset, load in zip(train.offsets, train.loads, strict=True):
         held += load * place.local_unit(leading - offset)
-    return Passage(place=place, leading=leading, held=held, forces=forces)
+    return Passage(place=place, leading=leading, held=held, forces=forces, train=train)
 
 
 def extremes(parts: list[Passage], compliances: Floats) -> tuple[Floats, Floats]:
@@ -211,24 +293,39 @@ def extremes(parts: list[Passage], compliances: Floats) -> tuple[Floats, Floats]
     return maximum, minimum
 
 
-def envelope(parts: list[Passage], compliance: Floats) -> Envelope:
+def envelope(parts: Sequence[Part], compliance: Floats) -> Envelope:
     """Live envelope over passages at the same places on supports of compliance (..., n)."""
-    maximum = minimum = at_maximum = at_minimum = None
-    for part in parts:
-        y = part.responses(compliance)
-        high, low = y.argmax(axis=-1), y.argmin(axis=-1)
-        top = np.take_along_axis(y, high[..., None], axis=-1)[..., 0]
-        bottom = np.take_along_axis(y, low[..., None], axis=-1)[..., 0]
-        index = np.arange(part.place.x.size)
-        at_top, at_bottom = part.leading[index, high], part.leading[index, low]
-        if maximum is None or minimum is None or at_maximum is None or at_minimum is None:
-            zero, nowhere = np.zeros(top.shape), np.full(top.shape, np.nan)
-            maximum, minimum, at_maximum, at_minimum = zero, zero, nowhere, nowhere
-        at_maximum = np.where(top > maximum, at_top, at_maximum)
-        at_minimum = np.where(bottom < minimum, at_bottom, at_minimum)
-        maximum, minimum = np.maximum(maximum, top), np.minimum(minimum, bottom)
-    if maximum is None or minimum is None or at_maximum is None or at_minimum is None:
+    if not parts:
         raise ValueError("an envelope needs at least one passage")
+    first = parts[0].peaks(compliance)
+    maximum = minimum = np.zeros(first.top.shape)
+    at_maximum = at_minimum = np.full(first.top.shape, np.nan)
+    for i, part in enumerate(parts):
+        peaks = part.peaks(compliance) if i else first
+        at_maximum = np.where(peaks.top > maximum, peaks.at_top, at_maximum)
+        at_minimum = np.where(peaks.bottom < minimum, peaks.at_bottom, at_minimum)
+        maximum, minimum = np.maximum(maximum, peaks.top), np.minimum(minimum, peaks.bottom)
     return Envelope(
         maximum=maximum, minimum=minimum, leading_at_maximum=at_maximum, leading_at_minimum=at_minimum
     )
+
+
+def governing_placement(
+    parts: Sequence[Part], compliance: Floats, index: int, sense: float
+) -> Placement | None:
+    """Where the live load stands for the greatest (sense 1) or least (-1) response of one place; None: nowhere.
+
+    Parameters
+    ----------
+    parts : passages at the same places
+    compliance : (n,)
+    index : which place
+    """
+    some = np.array([index])
+    best, most = None, 0.0
+    for part in parts:
+        peaks = part.at(some).peaks(compliance)
+        value = float(sense * (peaks.top if sense > 0.0 else peaks.bottom)[0])
+        if value > most:
+            best, most = part, value
+    return None if best is None else best.placement(compliance, index, sense)

@@ -1,0 +1,338 @@
+"""Published load models as they pass: axles with uniform parts, at their worst for any supports.
+
+Where a uniform part is adverse depends on the influence line and so on the supports. But for loads that stand still the
+response is R(d) like any other, and the extreme is the greatest over all stands. So the search runs on the influence
+lines of one set of supports, which the condensed girder gives at once, and what it finds is kept as one more position
+of a `Passage`: held response and support forces. A batch of supports among those searched then needs no search; a stand
+that is a little off costs the second power of that little.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from assess.girder.cubics import Cubics
+from assess.girder.envelope import GRID_PER_SPAN, Passage, Peaks, Placement
+from assess.girder.lattice import FACE, Lattice, Lines
+from assess.girder.pattern import NOWHERE, Pattern, pattern, search, view
+from assess.girder.response import REACTION, Places, places
+from assess.loads import Alternative, LoadCase, ModelLoad
+
+Floats = NDArray[np.float64]
+Ints = NDArray[np.intp]
+Bools = NDArray[np.bool_]
+
+SENSES = (1.0, -1.0)
+MOST_SEARCHED = 8  # sets of supports searched for a batch
+ROUGH = 2.5  # times the step, an eightieth of the shortest span
+
+
+@dataclass(frozen=True, kw_only=True)
+class Worst:
+    """The worst places found for one sense.
+
+    Attributes
+    ----------
+    sign : 1 or -1
+    value, which, mirrored, beyond, lead, second : (p,) sum (sign put in), pattern (-1: none), running direction, face,
+        and the nodes of the two leading axles as the search saw them
+    lines : the influence lines searched
+    """
+
+    sign: float
+    value: Floats
+    which: Ints
+    mirrored: Bools
+    beyond: Bools
+    lead: Ints
+    second: Ints
+    lines: Lines
+
+
+@dataclass(frozen=True, kw_only=True)
+class Standing:
+    """Loads standing for q of the places.
+
+    Attributes
+    ----------
+    rows : (q,) the places
+    nodes, loads : (q, axles) node of each axle and its load, 0 for one off the girder
+    edges : (q, m) kN/m that end at a node less those that start there
+    head : (q,) x of the head of the load, m
+    beyond : whether an axle at the place stands just beyond it
+    """
+
+    rows: Ints
+    nodes: Ints
+    loads: Floats
+    edges: Floats
+    head: Floats
+    beyond: bool
+
+
+class Sweep:
+    """A load model passing p places, before the supports are known.
+
+    Parameters
+    ----------
+    place : Places
+    load : ModelLoad, with the girder's share in its loads
+    step : m between the nodes of its lattice at most; None: a two-hundredth of the shortest span
+    cubics : those of the girder, if they are there already
+    """
+
+    def __init__(
+        self, place: Places, load: ModelLoad, *, step: float | None = None, cubics: Cubics | None = None
+    ) -> None:
+        condensed = place.condensed
+        self._place, self.load = place, load
+        self._most = float(np.diff(condensed.positions).min()) / GRID_PER_SPAN if step is None else step
+        self._cubics = Cubics(condensed) if cubics is None else cubics
+        module = load.model.module
+        self.step = self._most if np.isinf(module) else module / np.ceil(module / self._most)
+        self.lattice = Lattice(place, self._cubics, self.step)
+        self._spans = condensed.locate(self.lattice.nodes)[0]
+        self.patterns: list[Pattern] = [pattern(a, self.step) for a in load.model.alternatives]
+        allowances = load.allowance.at(np.diff(condensed.positions), place.quantity, place.span, place.local)
+        self._factors = [1.0 + allowance for allowance in allowances]
+        hogging = _hogging_near_supports(place)
+        self._counts = [_counts(place, a, hogging) for a in load.model.alternatives]
+
+    @property
+    def place(self) -> Places:
+        """The places it passes."""
+        return self._place
+
+    def at(self, index: Ints) -> Sweep:
+        """Return the sweep of some of its places."""
+        return Sweep(self._place.at(index), self.load, step=self._most, cubics=self._cubics)
+
+    def peaks(self, compliance: Floats) -> Peaks:
+        """Peaks (..., p) on supports of compliance (..., n)."""
+        compliance = np.asarray(compliance, dtype=np.float64)
+        shape = (*compliance.shape[:-1], self._place.x.size)
+        rows = [self._one_peak(one) for one in compliance.reshape(-1, compliance.shape[-1])]
+        top, bottom, at_top, at_bottom = (
+            np.array(column).reshape(shape) for column in zip(*rows, strict=True)
+        )
+        return Peaks(top=top, bottom=bottom, at_top=at_top, at_bottom=at_bottom)
+
+    def rough(self) -> Sweep:
+        """Return the same on a coarser lattice, for choosing among places and for drawing."""
+        return Sweep(self._place, self.load, step=ROUGH * self._most, cubics=self._cubics)
+
+    def _one_peak(self, compliance: Floats) -> tuple[Floats, Floats, Floats, Floats]:
+        high, low = self._worst(compliance)
+        return high.value, -low.value, self._heads(high), self._heads(low)
+
+    def governing(self, compliances: Floats) -> Passage:
+        """Keep, at each place, what governs for some of the compliances (s, n), as positions of a passage.
+
+        Supports that differ most from each other are searched; those between stand close to one of them.
+        """
+        searched = compliances[_apart(compliances, MOST_SEARCHED)]
+        parts = [self._position(worst) for one in searched for worst in self._worst(one)]
+        leading, held, forces = (np.stack(column, axis=1) for column in zip(*parts, strict=True))
+        return Passage(place=self._place, leading=leading, held=held, forces=forces)
+
+    def placement(self, compliance: Floats, index: int, sense: float) -> Placement:
+        """Where the loads stand for the greatest (sense 1) or least (-1) response of one place."""
+        one = self.at(np.array([index]))
+        worst = one._worst(compliance)[0 if sense > 0.0 else 1]
+        found = next(one._standing(worst), None)
+        if found is None:
+            raise ValueError("no alternative of the model counts here")
+        chosen = one.patterns[int(worst.which[0])]
+        x = one.lattice.nodes[0, found.nodes[0]]
+        axles = tuple((float(a), float(p)) for a, p in zip(x, found.loads[0], strict=True) if p > 0.0)
+        way = "" if chosen.is_symmetric else "smaller x" if worst.mirrored[0] else "larger x"
+        return Placement(
+            name=chosen.source.name,
+            value=float(sense * worst.value[0]),
+            axles=axles,
+            stretches=_stretches(
+                one.lattice.nodes[0], found.edges[0], float(one._place.condensed.positions[-1])
+            ),
+            towards=way,
+        )
+
+    # the search --------------------------------------------------------------------------------------
+
+    def _worst(self, compliance: Floats) -> tuple[Worst, Worst]:
+        """Worst places for the greatest and for the least response on one set of supports (n,)."""
+        operator = self._place.condensed.displacement_operator(compliance)
+        lines = self.lattice.lines(self._place.rows @ operator)
+        high, low = (self._search(lines, i, sign) for i, sign in enumerate(SENSES))
+        return high, low
+
+    def _search(self, lines: Lines, sense: int, sign: float) -> Worst:
+        count = self._place.x.size
+        value, which = np.zeros(count), np.full(count, -1)
+        mirrored, beyond = np.zeros(count, dtype=bool), np.zeros(count, dtype=bool)
+        lead, second = np.full(count, NOWHERE), np.full(count, NOWHERE)
+        spread = any(one.source.uniform for one in self.patterns)
+        positive = lines.positive(sign) if spread else lines.running
+        for face in (False, True) if self._place.quantity == "shear" else (False,):
+            for turned in (False, True):
+                seen = view(lines, positive, self._spans, sign, beyond=face, mirrored=turned)
+                for i, one in enumerate(self.patterns):
+                    rows = np.flatnonzero(self._counts[i][sense])
+                    if not rows.size or (turned and one.is_symmetric):
+                        continue
+                    on_axles, on_uniform = self._on(one, sense, rows)
+                    found = search(one, seen if rows.size == count else seen.at(rows), on_axles, on_uniform)
+                    better = found.value > value[rows]
+                    rows = rows[better]
+                    value[rows], which[rows] = found.value[better], i
+                    mirrored[rows], beyond[rows] = turned, face
+                    lead[rows], second[rows] = found.lead[better], found.second[better]
+        return Worst(
+            sign=sign,
+            value=value,
+            which=which,
+            mirrored=mirrored,
+            beyond=beyond,
+            lead=lead,
+            second=second,
+            lines=lines,
+        )
+
+    def _on(self, one: Pattern, sense: int, rows: Ints) -> tuple[Floats, Floats]:
+        """Factors (q,) on axles and on uniform parts."""
+        on_axles = self._factors[sense][rows]
+        return on_axles, on_axles if one.source.uniform_allowance else np.ones(rows.size)
+
+    # what was found ------------------------------------------------------------------------------------
+
+    def _standing(self, worst: Worst) -> Iterator[Standing]:
+        """Group the places by what stands there, and say where."""
+        sense = SENSES.index(worst.sign)
+        for i, one in enumerate(self.patterns):
+            for turned in (False, True):
+                for face in (False, True):
+                    alike = (worst.which == i) & (worst.mirrored == turned) & (worst.beyond == face)
+                    rows = np.flatnonzero(alike)
+                    if rows.size:
+                        yield self._stand(one, worst, rows, self._on(one, sense, rows))
+
+    def _stand(self, one: Pattern, worst: Worst, rows: Ints, factors: tuple[Floats, Floats]) -> Standing:
+        turned, last = bool(worst.mirrored[rows[0]]), self.lattice.nodes.shape[1] - 1
+        lead, second = worst.lead[rows], worst.second[rows]
+
+        def node(k: Ints) -> Ints:
+            return last - k if turned else k
+
+        nodes = node(np.concatenate([lead[:, None] - one.axles, second[:, None] - one.second], axis=1))
+        loads = np.concatenate([one.loads, one.second_loads]) * factors[0][:, None]
+        on = (nodes >= 0) & (nodes <= last)
+        nodes = np.clip(nodes, 0, last)
+        if one.source.leave_out:
+            y = worst.lines.beyond if worst.beyond[rows[0]] else worst.lines.before
+            on &= worst.sign * y[rows[:, None], nodes] > 0.0
+        edges = np.zeros((rows.size, last + 1))
+        index = np.arange(rows.size)
+        for start, end, intensity in one.blocks:
+            near = node(np.clip(lead - start, 0, last))
+            far = node(np.zeros(rows.size, dtype=np.intp) if end is None else np.clip(lead - end, 0, last))
+            sign = -1.0 if turned else 1.0
+            np.add.at(edges, (index, near), sign * intensity * factors[1])
+            np.add.at(edges, (index, far), -sign * intensity * factors[1])
+        if one.source.uniform:
+            mask = worst.lines.loaded(worst.sign)[rows]
+            if one.clear is not None:
+                ends = node(lead + one.clear), node(lead - one.length - one.clear)
+                cells = np.arange(last)
+                mask = mask & ((cells < np.minimum(*ends)[:, None]) | (cells >= np.maximum(*ends)[:, None]))
+            steps = np.diff(mask.astype(np.float64), axis=1, prepend=0.0, append=0.0)
+            edges -= one.source.uniform * factors[1][:, None] * steps
+        step, home = self.lattice.step, self.lattice.home[rows]
+        return Standing(
+            rows=rows,
+            nodes=nodes,
+            loads=np.where(on, loads, 0.0),
+            edges=edges,
+            head=self._place.x[rows] + step * (node(lead) - home),
+            beyond=bool(worst.beyond[rows[0]]),
+        )
+
+    def _heads(self, worst: Worst) -> Floats:
+        """Where the head of the load stands, (p,) m; NaN where there is none."""
+        last = self.lattice.nodes.shape[1] - 1
+        node = np.where(worst.mirrored, last - worst.lead, worst.lead)
+        x = self._place.x + self.lattice.step * (node - self.lattice.home)
+        return np.where(worst.which < 0, np.nan, x)
+
+    def _position(self, worst: Worst) -> tuple[Floats, Floats, Floats]:
+        """Head (p,), held response (p,) and support forces (p, n) of what was found; zero where nothing was."""
+        lattice, cubics = self.lattice, self._cubics
+        held = np.zeros(self._place.x.size)
+        forces = np.zeros((held.size, self._place.condensed.n_supports))
+        for one in self._standing(worst):
+            rows, level = one.rows, lattice.level
+            line = level.beyond if one.beyond else level.before
+            held[rows] = (one.loads * line[rows[:, None], one.nodes]).sum(axis=1)
+            held[rows] += (one.edges * level.running[rows]).sum(axis=1)
+            x = lattice.nodes[rows[:, None], one.nodes]
+            if self._place.quantity == "shear":
+                face = FACE if one.beyond else -FACE
+                x = x + np.where(one.nodes == lattice.home[rows, None], face, 0.0)
+            forces[rows] = np.einsum("qa,qan->qn", one.loads, cubics.forces_at(x))
+            at, node = np.nonzero(one.edges)
+            uniform = one.edges[at, node][:, None] * cubics.forces_over(lattice.nodes[rows[at], node])
+            np.add.at(forces, rows[at], uniform)
+        return self._heads(worst), held, forces
+
+
+def _apart(compliances: Floats, most: int) -> Ints:
+    """Indices of up to `most` sets (s, n) that lie far apart: the middle one, then always the one farthest off."""
+    finite = np.isfinite(compliances)
+    size = np.where(finite, compliances, 0.0).max(axis=0)
+    unit = np.where(finite, compliances / np.where(size > 0.0, size, 1.0), 2.0)
+    chosen = [int(np.abs(unit - np.median(unit, axis=0)).sum(axis=1).argmin())]
+    off = np.abs(unit - unit[chosen[0]]).max(axis=1)
+    while len(chosen) < most and off.max() > 0.0:
+        chosen.append(int(off.argmax()))
+        off = np.minimum(off, np.abs(unit - unit[chosen[-1]]).max(axis=1))
+    return np.array(chosen, dtype=np.intp)
+
+
+def _counts(place: Places, alternative: Alternative, hogging: Bools) -> tuple[Bools, Bools]:
+    """Whether an alternative counts for the greatest and for the least response, both (p,)."""
+    every, none = np.ones(place.x.size, dtype=bool), np.zeros(place.x.size, dtype=bool)
+    uses = alternative.uses
+    if not uses:
+        return every, every
+    if place.quantity == "moment":
+        low = every if "hogging" in uses else hogging if "hogging near supports" in uses else none
+        return every if "sagging" in uses else none, low
+    if place.quantity == REACTION:
+        inner = (place.supports > 0) & (place.supports < place.condensed.n_supports - 1)
+        both = every if "reaction" in uses else none
+        return both | inner if "interior reaction" in uses else both, both
+    return (every, every) if place.quantity in uses else (none, none)
+
+
+def _hogging_near_supports(place: Places) -> Bools:
+    """Tell which places (p,) hog under a uniform load on all spans, supports held level."""
+    if place.quantity == REACTION:
+        return np.zeros(place.x.size, dtype=bool)
+    condensed = place.condensed
+    everywhere = LoadCase(uniforms=((0.0, float(condensed.positions[-1]), 1.0),))
+    moment = places(condensed, "moment", place.x, place.side).held(everywhere)
+    return np.asarray(moment < -1e-9 * float(np.max(np.diff(condensed.positions))) ** 2)
+
+
+def _stretches(x: Floats, edges: Floats, length: float) -> tuple[tuple[float, float, float], ...]:
+    """Loaded stretches (start, end, kN/m) of a girder from the intensities that end and start at nodes x (m,)."""
+    level = -np.cumsum(edges)
+    changes = np.flatnonzero(np.abs(np.diff(level, prepend=0.0)) > 1e-9)
+    found = []
+    for first, after in zip(changes, [*changes[1:], x.size - 1], strict=True):
+        start, end = max(float(x[first]), 0.0), min(float(x[after]), length)
+        if abs(level[first]) > 1e-9 and end > start:
+            found.append((start, end, float(level[first])))
+    return tuple(found)
