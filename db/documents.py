@@ -113,13 +113,15 @@ class VehicleDoc:
 
 @dataclass(frozen=True, kw_only=True)
 class LiveDoc:
-    """A live load the bridge is assessed for: `count` vehicles coupled at `pitch`."""
+    """A live load the bridge is assessed for: `count` vehicles coupled at `pitch`, or a published model by name."""
 
     id: str
-    vehicle: str
+    vehicle: str = ""  # empty where it is a model
     count: int = 1
     pitch: float = 0.0  # m, leading axle to leading axle; 0 only if count is 1
-    dynamic: float = 0.0  # dynamic allowance, added to 1
+    dynamic: float | None = 0.0  # dynamic allowance, added to 1; None (models only): by the model's own rule
+    model: str | None = None
+    track: str | None = None  # "careful" | "standard": maintenance of the track, for models whose rule asks for it
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -10,7 +10,8 @@ from numpy.typing import NDArray
 from assess.calibrate import PadPrior
 from assess.capacity import CheckPlan, Effects, Factors, GirderLoads, Resistance, plan_checks
 from assess.girder import Condensed, Girder, Piece
-from assess.loads import LoadCase, Train
+from assess.loads import LoadCase, ModelLoad, Train
+from assess.workflow.live_loads import model_loads
 from db.documents import BridgeDoc, GirderDoc, LoadStateDoc, SectionDoc, SpanDoc
 
 Floats = NDArray[np.float64]
@@ -79,12 +80,18 @@ class GirderModel:
 
     @cached_property
     def trains(self) -> tuple[Train, ...]:
-        """The live loads with the girder's share and the dynamic allowance in them."""
+        """The live loads of vehicles with the girder's share and the dynamic allowance in them."""
         trains = []
         for live in self.bridge.live:
-            train = _train(self.bridge, live.vehicle).coupled(live.count, live.pitch)
-            trains.append(train.scaled(self.doc.live_share * (1.0 + live.dynamic)))
+            if live.model is None:
+                train = _train(self.bridge, live.vehicle).coupled(live.count, live.pitch)
+                trains.append(train.scaled(self.doc.live_share * (1.0 + (live.dynamic or 0.0))))
         return tuple(trains)
+
+    @cached_property
+    def models(self) -> tuple[ModelLoad, ...]:
+        """The published live load models with the girder's share in them."""
+        return model_loads(self.bridge, self.doc)
 
     def placed(self, state: LoadStateDoc) -> LoadCase:
         """The girder's share of a placed test vehicle, without dynamic allowance; axles off the girder left out."""
@@ -122,7 +129,7 @@ class GirderModel:
     @cached_property
     def effects(self) -> Effects:
         """Permanent and live effects at the stations."""
-        loads = GirderLoads(permanent=self.permanent, trains=self.trains)
+        loads = GirderLoads(permanent=self.permanent, trains=self.trains, models=self.models)
         return Effects(self.condensed, self.plan, loads)
 
     def flexural_at(self, x: float) -> float:

@@ -8,6 +8,7 @@ from contextlib import contextmanager
 from dataclasses import replace
 from pathlib import Path
 
+from assess.workflow.live_loads import check_live
 from db.documents import BridgeDoc, VisitDoc
 from db.errors import BedstoneError
 from db.exchange import bridge_queries, check_visit, draft_bridge, read_bridge, read_visit, visit_queries
@@ -27,6 +28,7 @@ def init_record(url: str) -> bool:
 def add_bridge(url: str, path: Path) -> tuple[BridgeDoc, Taken]:
     """Take in a bridge file: a new bridge, or a new revision of one."""
     document = read_bridge(path)
+    check_live(document, file=printable(str(path)))
     with open_record(url) as record, _naming(path):
         return document, replace(record.add_bridge(document), queries=tuple(bridge_queries(document)))
 

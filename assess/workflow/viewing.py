@@ -25,6 +25,7 @@ from assess.workflow.assessing import Supports, assess_study, kept_fits, support
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import VisitFit, calibrate_visit
 from assess.workflow.drivers import Driver, drivers
+from assess.workflow.live_loads import live_in_words
 from assess.workflow.movements import line_of, points_of
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
 from assess.workflow.trending import DAYS_PER_YEAR, GirderTrend, trend_study, with_future
@@ -77,12 +78,7 @@ def _view(
         bridge_digest=bridge.digest,
         visits=[(v.date, v.party, v.pad_temperature, len(v.readings)) for v in study.visits],
         factors=_factors(study),
-        live=[
-            f"{live.id}: {live.count} x {live.vehicle}"
-            + (f" at {live.pitch:g} m" if live.count > 1 else "")
-            + f", dynamic allowance {live.dynamic:g}, both running directions"
-            for live in bridge.live
-        ],
+        live=live_in_words(bridge),
         verdicts={g.id: _verdict(study, g.id, assessment, trend, calibration) for g in bridge.girders},
         verdict_cautions={g.id: cautions_beside(g.id, said) for g in bridge.girders},
         calibration=calibration,

@@ -29,7 +29,8 @@ _TOP = "format bridge section girder vehicle live factors"
 _BRIDGE = "id name carries built zero visit_interval"
 _SECTION = "id E I shear_area G sagging_capacity hogging_capacity shear_capacity"
 _VEHICLE = "id axles"
-_LIVE = "id vehicle count pitch dynamic"
+_LIVE = "id vehicle count pitch dynamic model track"
+_TRACKS = ("careful", "standard")
 _FACTORS = "name permanent live resistance permanent_relieving"
 
 
@@ -167,18 +168,39 @@ def _live(top: Fields, vehicles: list[str]) -> tuple[LiveDoc, ...]:
 
 
 def _one_live(fields: Fields, vehicles: list[str]) -> LiveDoc:
+    if fields.has("model"):
+        return _one_model(fields)
+    if fields.has("track"):
+        raise fields.error("track", "it belongs to a published model", 'leave it out, or write model = "lm71"')
     count = fields.whole("count", 1, least=1, most=MOST_VEHICLES)
     pitch = 0.0
     if fields.has("pitch"):
         pitch = fields.positive("pitch", "length", example="13.4 m")
     elif count > 1:
         fields.need("pitch", '"13.4 m"')
+    vehicle = fields.reference("vehicle", vehicles, "vehicle")
+    return LiveDoc(id=fields.id("id"), vehicle=vehicle, count=count, pitch=pitch, dynamic=_dynamic(fields))
+
+
+def _one_model(fields: Fields) -> LiveDoc:
+    for name in ("vehicle", "count", "pitch"):
+        if fields.has(name):
+            remedy = f"leave out {name}, or leave out model and name a vehicle"
+            raise fields.error(name, "it cannot stand beside a published model", remedy)
+    return LiveDoc(
+        id=fields.id("id"),
+        model=fields.id("model"),
+        dynamic=_dynamic(fields) if fields.has("dynamic") else None,
+        track=fields.one_of("track", _TRACKS) if fields.has("track") else None,
+    )
+
+
+def _dynamic(fields: Fields) -> float:
     dynamic = fields.number("dynamic", 0.0)
     if not 0.0 <= dynamic <= 2.0:
         remedy = "write the part added to the static effect, from 0 to 2, for example 0.21"
         raise fields.error("dynamic", f"{dynamic:g} is no dynamic allowance", remedy)
-    vehicle = fields.reference("vehicle", vehicles, "vehicle")
-    return LiveDoc(id=fields.id("id"), vehicle=vehicle, count=count, pitch=pitch, dynamic=dynamic)
+    return dynamic
 
 
 def _factors(top: Fields) -> FactorsDoc:
