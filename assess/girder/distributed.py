@@ -28,6 +28,7 @@ Bools = NDArray[np.bool_]
 
 SENSES = (1.0, -1.0)
 MOST_SEARCHED = 8  # sets of supports searched for a batch
+AT_ENDS = 4.0  # times the step, for grids whose axles stand on an end of the girder
 ROUGH = 2.5  # times the step, an eightieth of the shortest span
 
 
@@ -38,19 +39,21 @@ class Worst:
     Attributes
     ----------
     sign : 1 or -1
-    value, which, mirrored, beyond, lead, second : (p,) sum (sign put in), pattern (-1: none), running direction, face,
-        and the nodes of the two leading axles as the search saw them
-    lines : the influence lines searched
+    value, which, grid : (p,) sum (sign put in), pattern (-1: none), lattice
+    mirrored, beyond : (p,) running direction and face
+    lead, second : (p,) nodes of the two leading axles as the search saw them
+    lines : the influence lines on each lattice that was searched, by its index
     """
 
     sign: float
     value: Floats
     which: Ints
+    grid: Ints
     mirrored: Bools
     beyond: Bools
     lead: Ints
     second: Ints
-    lines: Lines
+    lines: dict[int, Lines]
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -59,18 +62,18 @@ class Standing:
 
     Attributes
     ----------
+    lattice : that of the nodes
     rows : (q,) the places
     nodes, loads : (q, axles) node of each axle and its load, 0 for one off the girder
     edges : (q, m) kN/m that end at a node less those that start there
-    head : (q,) x of the head of the load, m
-    beyond : whether an axle at the place stands just beyond it
+    beyond : whether an axle at the home node stands just beyond it
     """
 
+    lattice: Lattice
     rows: Ints
     nodes: Ints
     loads: Floats
     edges: Floats
-    head: Floats
     beyond: bool
 
 
@@ -93,10 +96,14 @@ class Sweep:
         self._most = float(np.diff(condensed.positions).min()) / GRID_PER_SPAN if step is None else step
         self._cubics = Cubics(condensed) if cubics is None else cubics
         module = load.model.module
-        self.step = self._most if np.isinf(module) else module / np.ceil(module / self._most)
-        self.lattice = Lattice(place, self._cubics, self.step)
-        self._spans = condensed.locate(self.lattice.nodes)[0]
-        self.patterns: list[Pattern] = [pattern(a, self.step) for a in load.model.alternatives]
+        self.lattices = [
+            Lattice(place, self._cubics, _step(module, self._most * (AT_ENDS if end else 1.0)), end=end)
+            for end in (0, -1, 1)
+        ]
+        self._spans = [condensed.locate(lattice.nodes)[0] for lattice in self.lattices]
+        self._patterns: list[list[Pattern]] = [
+            [pattern(a, lattice.step) for a in load.model.alternatives] for lattice in self.lattices
+        ]
         allowances = load.allowance.at(np.diff(condensed.positions), place.quantity, place.span, place.local)
         self._factors = [1.0 + allowance for allowance in allowances]
         hogging = _hogging_near_supports(place)
@@ -142,21 +149,19 @@ class Sweep:
     def placement(self, compliance: Floats, index: int, sense: float) -> Placement:
         """Where the loads stand for the greatest (sense 1) or least (-1) response of one place."""
         one = self.at(np.array([index]))
-        worst = one._worst(compliance)[0 if sense > 0.0 else 1]
+        worst = one._worst(compliance)[SENSES.index(sense)]
         found = next(one._standing(worst), None)
         if found is None:
             raise ValueError("no alternative of the model counts here")
-        chosen = one.patterns[int(worst.which[0])]
-        x = one.lattice.nodes[0, found.nodes[0]]
-        axles = tuple((float(a), float(p)) for a, p in zip(x, found.loads[0], strict=True) if p > 0.0)
+        chosen = one._patterns[0][int(worst.which[0])]
+        x = found.lattice.nodes[0]
+        axles = zip(x[found.nodes[0]], found.loads[0], strict=True)
         way = "" if chosen.is_symmetric else "smaller x" if worst.mirrored[0] else "larger x"
         return Placement(
             name=chosen.source.name,
             value=float(sense * worst.value[0]),
-            axles=axles,
-            stretches=_stretches(
-                one.lattice.nodes[0], found.edges[0], float(one._place.condensed.positions[-1])
-            ),
+            axles=tuple((float(a), float(p)) for a, p in axles if p > 0.0),
+            stretches=_stretches(x, found.edges[0], float(one._place.condensed.positions[-1])),
             towards=way,
         )
 
@@ -164,42 +169,39 @@ class Sweep:
 
     def _worst(self, compliance: Floats) -> tuple[Worst, Worst]:
         """Worst places for the greatest and for the least response on one set of supports (n,)."""
-        operator = self._place.condensed.displacement_operator(compliance)
-        lines = self.lattice.lines(self._place.rows @ operator)
-        high, low = (self._search(lines, i, sign) for i, sign in enumerate(SENSES))
+        weights = self._place.rows @ self._place.condensed.displacement_operator(compliance)
+        grids = [0] + [i for i, end in ((1, 0), (2, -1)) if compliance[end] > 0.0]
+        lines = {i: self.lattices[i].lines(weights) for i in grids}
+        high, low = (self._search(lines, i) for i in range(2))
         return high, low
 
-    def _search(self, lines: Lines, sense: int, sign: float) -> Worst:
+    def _search(self, lines: dict[int, Lines], sense: int) -> Worst:
         count = self._place.x.size
-        value, which = np.zeros(count), np.full(count, -1)
-        mirrored, beyond = np.zeros(count, dtype=bool), np.zeros(count, dtype=bool)
-        lead, second = np.full(count, NOWHERE), np.full(count, NOWHERE)
-        spread = any(one.source.uniform for one in self.patterns)
-        positive = lines.positive(sign) if spread else lines.running
-        for face in (False, True) if self._place.quantity == "shear" else (False,):
-            for turned in (False, True):
-                seen = view(lines, positive, self._spans, sign, beyond=face, mirrored=turned)
-                for i, one in enumerate(self.patterns):
-                    rows = np.flatnonzero(self._counts[i][sense])
-                    if not rows.size or (turned and one.is_symmetric):
-                        continue
-                    on_axles, on_uniform = self._on(one, sense, rows)
-                    found = search(one, seen if rows.size == count else seen.at(rows), on_axles, on_uniform)
-                    better = found.value > value[rows]
-                    rows = rows[better]
-                    value[rows], which[rows] = found.value[better], i
-                    mirrored[rows], beyond[rows] = turned, face
-                    lead[rows], second[rows] = found.lead[better], found.second[better]
-        return Worst(
-            sign=sign,
-            value=value,
-            which=which,
-            mirrored=mirrored,
-            beyond=beyond,
-            lead=lead,
-            second=second,
-            lines=lines,
-        )
+        whole = {"which": np.full(count, -1), "grid": np.zeros(count, dtype=np.intp)}
+        nodes = {"lead": np.full(count, NOWHERE), "second": np.full(count, NOWHERE)}
+        ways = {"mirrored": np.zeros(count, dtype=bool), "beyond": np.zeros(count, dtype=bool)}
+        worst = Worst(sign=SENSES[sense], value=np.zeros(count), lines=lines, **whole, **nodes, **ways)
+        for grid in lines:
+            for beyond in (False, True) if self.lattices[grid].has_faces else (False,):
+                for mirrored in (False, True):
+                    self._look(worst, grid, beyond=beyond, mirrored=mirrored)
+        return worst
+
+    def _look(self, worst: Worst, grid: int, *, beyond: bool, mirrored: bool) -> None:
+        """Search one lattice from one side for all patterns and put what is worse into `worst`."""
+        count, sense = self._place.x.size, SENSES.index(worst.sign)
+        lines = worst.lines[grid]
+        seen = view(lines, self._spans[grid], worst.sign, beyond=beyond, mirrored=mirrored)
+        for i, one in enumerate(self._patterns[grid]):
+            rows = np.flatnonzero(self._counts[i][sense])
+            if not rows.size or (mirrored and one.is_symmetric):
+                continue
+            found = search(one, seen if rows.size == count else seen.at(rows), *self._on(one, sense, rows))
+            better = found.value > worst.value[rows]
+            rows = rows[better]
+            worst.value[rows], worst.which[rows], worst.grid[rows] = found.value[better], i, grid
+            worst.mirrored[rows], worst.beyond[rows] = mirrored, beyond
+            worst.lead[rows], worst.second[rows] = found.lead[better], found.second[better]
 
     def _on(self, one: Pattern, sense: int, rows: Ints) -> tuple[Floats, Floats]:
         """Factors (q,) on axles and on uniform parts."""
@@ -210,81 +212,92 @@ class Sweep:
 
     def _standing(self, worst: Worst) -> Iterator[Standing]:
         """Group the places by what stands there, and say where."""
-        sense = SENSES.index(worst.sign)
-        for i, one in enumerate(self.patterns):
-            for turned in (False, True):
-                for face in (False, True):
-                    alike = (worst.which == i) & (worst.mirrored == turned) & (worst.beyond == face)
-                    rows = np.flatnonzero(alike)
-                    if rows.size:
-                        yield self._stand(one, worst, rows, self._on(one, sense, rows))
+        kinds = np.stack([worst.which, worst.grid, worst.mirrored, worst.beyond], axis=1)
+        for kind in np.unique(kinds[worst.which >= 0], axis=0):
+            yield self._stand(worst, np.flatnonzero((kinds == kind).all(axis=1)))
 
-    def _stand(self, one: Pattern, worst: Worst, rows: Ints, factors: tuple[Floats, Floats]) -> Standing:
-        turned, last = bool(worst.mirrored[rows[0]]), self.lattice.nodes.shape[1] - 1
+    def _stand(self, worst: Worst, rows: Ints) -> Standing:
+        """Say where the loads stand for some places that have pattern, lattice, direction and face in common."""
+        which, grid, mirrored, beyond = (
+            a[rows[0]] for a in (worst.which, worst.grid, worst.mirrored, worst.beyond)
+        )
+        one, lattice, lines = self._patterns[grid][which], self.lattices[grid], worst.lines[grid]
+        sense, last = SENSES.index(worst.sign), lattice.nodes.shape[1] - 1
         lead, second = worst.lead[rows], worst.second[rows]
+        on_axles, on_uniform = self._on(one, sense, rows)
 
         def node(k: Ints) -> Ints:
-            return last - k if turned else k
+            return last - k if mirrored else k
 
         nodes = node(np.concatenate([lead[:, None] - one.axles, second[:, None] - one.second], axis=1))
-        loads = np.concatenate([one.loads, one.second_loads]) * factors[0][:, None]
         on = (nodes >= 0) & (nodes <= last)
         nodes = np.clip(nodes, 0, last)
         if one.source.leave_out:
-            y = worst.lines.beyond if worst.beyond[rows[0]] else worst.lines.before
+            y = lines.beyond if beyond else lines.before
             on &= worst.sign * y[rows[:, None], nodes] > 0.0
         edges = np.zeros((rows.size, last + 1))
-        index = np.arange(rows.size)
         for start, end, intensity in one.blocks:
-            near = node(np.clip(lead - start, 0, last))
-            far = node(np.zeros(rows.size, dtype=np.intp) if end is None else np.clip(lead - end, 0, last))
-            sign = -1.0 if turned else 1.0
-            np.add.at(edges, (index, near), sign * intensity * factors[1])
-            np.add.at(edges, (index, far), -sign * intensity * factors[1])
+            tail = np.full(rows.size, 0) if end is None else np.clip(lead - end, 0, last)
+            low, high = np.sort([node(tail), node(np.clip(lead - start, 0, last))], axis=0)
+            edges += _between(low, high, last + 1) * (intensity * on_uniform)[:, None]
         if one.source.uniform:
-            mask = worst.lines.loaded(worst.sign)[rows]
+            mask = lines.loaded(worst.sign)[rows]
             if one.clear is not None:
-                ends = node(lead + one.clear), node(lead - one.length - one.clear)
+                ends = np.sort([node(lead + one.clear), node(lead - one.length - one.clear)], axis=0)
                 cells = np.arange(last)
-                mask = mask & ((cells < np.minimum(*ends)[:, None]) | (cells >= np.maximum(*ends)[:, None]))
+                mask = mask & ((cells < ends[0][:, None]) | (cells >= ends[1][:, None]))
             steps = np.diff(mask.astype(np.float64), axis=1, prepend=0.0, append=0.0)
-            edges -= one.source.uniform * factors[1][:, None] * steps
-        step, home = self.lattice.step, self.lattice.home[rows]
+            edges -= (one.source.uniform * on_uniform)[:, None] * steps
+        loads = np.concatenate([one.loads, one.second_loads]) * on_axles[:, None]
         return Standing(
+            lattice=lattice,
             rows=rows,
             nodes=nodes,
             loads=np.where(on, loads, 0.0),
             edges=edges,
-            head=self._place.x[rows] + step * (node(lead) - home),
-            beyond=bool(worst.beyond[rows[0]]),
+            beyond=bool(beyond),
         )
 
     def _heads(self, worst: Worst) -> Floats:
         """Where the head of the load stands, (p,) m; NaN where there is none."""
-        last = self.lattice.nodes.shape[1] - 1
-        node = np.where(worst.mirrored, last - worst.lead, worst.lead)
-        x = self._place.x + self.lattice.step * (node - self.lattice.home)
-        return np.where(worst.which < 0, np.nan, x)
+        x = np.full(worst.value.size, np.nan)
+        for grid, lattice in enumerate(self.lattices):
+            rows = np.flatnonzero((worst.which >= 0) & (worst.grid == grid))
+            last = lattice.nodes.shape[1] - 1
+            x[rows] = lattice.x_of(
+                rows, np.where(worst.mirrored[rows], last - worst.lead[rows], worst.lead[rows])
+            )
+        return x
 
     def _position(self, worst: Worst) -> tuple[Floats, Floats, Floats]:
         """Head (p,), held response (p,) and support forces (p, n) of what was found; zero where nothing was."""
-        lattice, cubics = self.lattice, self._cubics
         held = np.zeros(self._place.x.size)
         forces = np.zeros((held.size, self._place.condensed.n_supports))
         for one in self._standing(worst):
-            rows, level = one.rows, lattice.level
-            line = level.beyond if one.beyond else level.before
+            rows, lattice = one.rows, one.lattice
+            line = lattice.level.beyond if one.beyond else lattice.level.before
             held[rows] = (one.loads * line[rows[:, None], one.nodes]).sum(axis=1)
-            held[rows] += (one.edges * level.running[rows]).sum(axis=1)
+            held[rows] += (one.edges * lattice.level.running[rows]).sum(axis=1)
             x = lattice.nodes[rows[:, None], one.nodes]
-            if self._place.quantity == "shear":
+            if lattice.has_faces:
                 face = FACE if one.beyond else -FACE
                 x = x + np.where(one.nodes == lattice.home[rows, None], face, 0.0)
-            forces[rows] = np.einsum("qa,qan->qn", one.loads, cubics.forces_at(x))
+            forces[rows] = np.einsum("qa,qan->qn", one.loads, self._cubics.forces_at(x))
             at, node = np.nonzero(one.edges)
-            uniform = one.edges[at, node][:, None] * cubics.forces_over(lattice.nodes[rows[at], node])
+            uniform = one.edges[at, node][:, None] * self._cubics.forces_over(lattice.nodes[rows[at], node])
             np.add.at(forces, rows[at], uniform)
         return self._heads(worst), held, forces
+
+
+def _step(module: float, most: float) -> float:
+    """Return the largest step of at most `most` that divides the module."""
+    return most if np.isinf(module) else float(module / np.ceil(module / most))
+
+
+def _between(low: Ints, high: Ints, count: int) -> Floats:
+    """Edges (q, count) of a stretch of intensity 1 from node low to node high (q,)."""
+    nodes = np.arange(count)
+    return np.asarray((nodes == high[:, None]).astype(np.float64) - (nodes == low[:, None]))
 
 
 def _apart(compliances: Floats, most: int) -> Ints:

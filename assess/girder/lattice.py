@@ -1,13 +1,14 @@
 """Influence lines of many places on a grid on which every axle of a load model falls.
 
-The grid of a place has a node on the place itself, so an axle can stand exactly on it (where a moment's influence line
-has its corner and a shear's its step), and its step divides all distances of the load model, so all axles stand on
-nodes at once. Node values and the running integral at nodes are exact for prismatic pieces.
+A grid has a node on the place itself, so an axle can stand exactly on it (where a moment's influence line has its
+corner and a shear's its step), or on an end of the girder (where all lines have a step if the end yields). Its step
+divides all distances of the load model, so all axles stand on nodes at once. Node values and the running integral at
+nodes are exact for prismatic pieces.
 """
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from functools import cached_property
 
 import numpy as np
@@ -30,28 +31,37 @@ class Lines:
     Attributes
     ----------
     before, beyond : response to a unit load that stands just before or just beyond the node; they differ at the place
-        itself, and for shear only
+        itself for shear, and at an end of the girder where an axle is then on it or off
     running : integral from the left end of the girder to the node, m times the response
     step : m between nodes
+    broken : whether the lines may have a step between nodes
     """
 
     before: Floats
     beyond: Floats
     running: Floats
     step: float
+    broken: bool = False
+    _kept: dict[float, Floats] = field(default_factory=dict, repr=False)
 
     def positive(self, sign: float) -> Floats:
         """Running integral (p, m) of the positive part of sign times the influence line.
 
         A cell without change of sign counts with its exact integral; one with a change counts with the triangle on its
-        positive side, which is exact to the third power of the step.
+        positive side, which is exact to the third power of the step; in a broken line it counts whole or not at all.
         """
+        if sign not in self._kept:
+            self._kept[sign] = self._positive(sign)
+        return self._kept[sign]
+
+    def _positive(self, sign: float) -> Floats:
         left, right = sign * self.beyond[:, :-1], sign * self.before[:, 1:]
         whole = sign * np.diff(self.running, axis=1)
         mixed = left * right < 0.0
         top = np.maximum(left, right)
         height = np.where(mixed, np.abs(left - right), 1.0)
-        cells = np.where(mixed, 0.5 * self.step * top**2 / height, np.where(top > 0.0, whole, 0.0))
+        part = np.maximum(whole, 0.0) if self.broken else 0.5 * self.step * top**2 / height
+        cells = np.where(mixed, part, np.where(top > 0.0, whole, 0.0))
         return np.concatenate([np.zeros((cells.shape[0], 1)), np.cumsum(cells, axis=1)], axis=1)
 
     def loaded(self, sign: float) -> NDArray[np.bool_]:
@@ -62,29 +72,33 @@ class Lines:
 class Lattice:
     """The grids of p places and what is needed for their influence lines on any supports.
 
-    Attributes
+    Parameters
     ----------
     place : Places
+    cubics : those of the girder
     step : m between nodes
-    home : (p,) the node that is the place
+    end : 0 for grids with a node on each place, -1 or 1 for grids with a node on the left or the right end
+
+    Attributes
+    ----------
+    place, step, end : as given
+    anchor : (p,) x of the node that is `home`, m
+    home : (p,) the node on the place or on the end
     nodes : (p, m) x of the nodes; the first is at or before the left end, the last at or beyond the right one
     """
 
-    def __init__(self, place: Places, cubics: Cubics, step: float) -> None:
-        self.place, self.cubics, self.step = place, cubics, step
+    def __init__(self, place: Places, cubics: Cubics, step: float, *, end: int = 0) -> None:
+        self.place, self.cubics, self.step, self.end = place, cubics, step, end
         length = float(place.condensed.positions[-1])
-        self.home: Ints = np.ceil(place.x / step).astype(np.intp)
-        count = int((self.home + np.ceil((length - place.x) / step)).max()) + 1
-        self.nodes: Floats = place.x[:, None] + step * (np.arange(count) - self.home[:, None])
+        self.anchor: Floats = np.full(place.x.size, 0.0 if end < 0 else length) if end else place.x
+        self.home: Ints = np.ceil(self.anchor / step).astype(np.intp)
+        count = int((self.home + np.ceil((length - self.anchor) / step)).max()) + 1
+        self.nodes: Floats = self.anchor[:, None] + step * (np.arange(count) - self.home[:, None])
         self._piece, self._share, self._on = cubics.locate(self.nodes)
         self._local = (
             place.local_unit(self.nodes) if place.quantity != REACTION else np.zeros(self.nodes.shape)
         )
         self._local_running = self._run_locally()
-
-    def at(self, index: Ints) -> Lattice:
-        """Return the lattice of some of its places."""
-        return Lattice(self.place.at(index), self.cubics, self.step)
 
     @cached_property
     def level(self) -> Lines:
@@ -102,10 +116,25 @@ class Lattice:
         ]
         running = found[..., 4] + self.cubics.lengths[self._piece] * t * integral + self._local_running
         value = np.where(self._on, value, 0.0) + self._local
-        if self.place.quantity != "shear":
-            return Lines(before=value, beyond=value, running=running, step=self.step)
-        before, beyond = self._faces(table, value)
-        return Lines(before=before, beyond=beyond, running=running, step=self.step)
+        before = beyond = value
+        broken = False
+        if self.end:
+            off = value.copy()
+            off[np.arange(self.home.size), self.home] = 0.0
+            before, beyond = (off, value) if self.end < 0 else (value, off)
+            broken = self.place.quantity == "shear"
+        elif self.place.quantity == "shear":
+            before, beyond = self._faces(table, value)
+        return Lines(before=before, beyond=beyond, running=running, step=self.step, broken=broken)
+
+    @property
+    def has_faces(self) -> bool:
+        """Whether it matters if a load stands just before or just beyond the home node."""
+        return self.end != 0 or self.place.quantity == "shear"
+
+    def x_of(self, rows: Ints, nodes: Ints) -> Floats:
+        """Return x (...) of nodes, which may lie off the grid, of the places `rows`."""
+        return np.asarray(self.anchor[rows] + self.step * (nodes - self.home[rows]))
 
     def _table(self, weights: Floats) -> tuple[Floats, Ints]:
         """Cubics of all places and pieces with the integral before them (p pieces, 5); the row of each node (p, m)."""
@@ -139,11 +168,17 @@ class Lattice:
         if self.place.quantity == REACTION:
             return np.zeros(self.nodes.shape)
         condensed, span = self.place.condensed, self.place.span
-        start, end = condensed.positions[span][:, None], condensed.positions[span + 1][:, None]
+        x, start, end = (
+            a[:, None] for a in (self.place.x, condensed.positions[span], condensed.positions[span + 1])
+        )
+        cells = self._cells(start, end) if not self.end else self._cells(start, x) + self._cells(x, end)
+        return np.concatenate([np.zeros((span.size, 1)), np.cumsum(cells, axis=1)], axis=1)
+
+    def _cells(self, start: Floats, end: Floats) -> Floats:
+        """Integral (p, m - 1) of the local part over what of each cell lies between start and end (p, 1)."""
         low, high = np.clip(self.nodes[:, :-1], start, end), np.clip(self.nodes[:, 1:], start, end)
         half, middle = (high - low) / 2.0, (high + low) / 2.0
-        cells = sum(
-            weight * half * self.place.local_unit(middle + at * half)
-            for at, weight in zip(*_GAUSS, strict=True)
-        )
-        return np.concatenate([np.zeros((span.size, 1)), np.cumsum(cells, axis=1)], axis=1)
+        total = np.zeros(low.shape)
+        for at, weight in zip(*_GAUSS, strict=True):
+            total += weight * half * self.place.local_unit(middle + at * half)
+        return total

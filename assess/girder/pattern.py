@@ -117,17 +117,17 @@ class View:
         )
 
 
-def view(lines: Lines, positive: Floats, spans: Ints, sign: float, *, beyond: bool, mirrored: bool) -> View:
-    """Look at lines from one side, with a load at the place itself just before or just beyond it.
+def view(lines: Lines, spans: Ints, sign: float, *, beyond: bool, mirrored: bool) -> View:
+    """Look at lines from one side, with a load at the home node just before or just beyond it.
 
     Parameters
     ----------
     lines : Lines
-    positive : (p, m) running integral of the positive part, `lines.positive(sign)`
     spans : (p, m) the span each node is in
     sign : 1 for the greatest response, -1 for the least
     """
     y, running = sign * (lines.beyond if beyond else lines.before), sign * lines.running
+    positive = lines.positive(sign)
     if not mirrored:
         return View(y=y, running=running, positive=positive, span=spans)
     return View(
