@@ -11,6 +11,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -75,6 +76,15 @@ class Standing:
     loads: Floats
     edges: Floats
     beyond: bool
+
+    @property
+    def x(self) -> Floats:
+        """Where the axles stand, (q, axles) m; one at the home node just off it, on its face."""
+        x = self.lattice.nodes[self.rows[:, None], self.nodes]
+        if not self.lattice.has_faces:
+            return x
+        face = FACE if self.beyond else -FACE
+        return np.asarray(x + np.where(self.nodes == self.lattice.home[self.rows, None], face, 0.0))
 
 
 class Sweep:
@@ -154,14 +164,16 @@ class Sweep:
         if found is None:
             raise ValueError("no alternative of the model counts here")
         chosen = one._patterns[0][int(worst.which[0])]
-        x = found.lattice.nodes[0]
-        axles = zip(x[found.nodes[0]], found.loads[0], strict=True)
+        on = self._place.condensed.carries(found.x[0]) & (found.loads[0] > 0.0)
+        axles = zip(found.x[0][on], found.loads[0][on], strict=True)
         way = "" if chosen.is_symmetric else "smaller x" if worst.mirrored[0] else "larger x"
         return Placement(
             name=chosen.source.name,
             value=float(sense * worst.value[0]),
-            axles=tuple((float(a), float(p)) for a, p in axles if p > 0.0),
-            stretches=_stretches(x, found.edges[0], float(one._place.condensed.positions[-1])),
+            axles=tuple((float(a), float(p)) for a, p in axles),
+            stretches=_stretches(
+                found.lattice.nodes[0], found.edges[0], float(one._place.condensed.positions[-1])
+            ),
             towards=way,
         )
 
@@ -278,11 +290,7 @@ class Sweep:
             line = lattice.level.beyond if one.beyond else lattice.level.before
             held[rows] = (one.loads * line[rows[:, None], one.nodes]).sum(axis=1)
             held[rows] += (one.edges * lattice.level.running[rows]).sum(axis=1)
-            x = lattice.nodes[rows[:, None], one.nodes]
-            if lattice.has_faces:
-                face = FACE if one.beyond else -FACE
-                x = x + np.where(one.nodes == lattice.home[rows, None], face, 0.0)
-            forces[rows] = np.einsum("qa,qan->qn", one.loads, self._cubics.forces_at(x))
+            forces[rows] = np.einsum("qa,qan->qn", one.loads, self._cubics.forces_at(one.x))
             at, node = np.nonzero(one.edges)
             uniform = one.edges[at, node][:, None] * self._cubics.forces_over(lattice.nodes[rows[at], node])
             np.add.at(forces, rows[at], uniform)
@@ -344,7 +352,7 @@ def _stretches(x: Floats, edges: Floats, length: float) -> tuple[tuple[float, fl
     level = -np.cumsum(edges)
     changes = np.flatnonzero(np.abs(np.diff(level, prepend=0.0)) > 1e-9)
     found = []
-    for first, after in zip(changes, [*changes[1:], x.size - 1], strict=True):
+    for first, after in pairwise([*changes, x.size - 1]):
         start, end = max(float(x[first]), 0.0), min(float(x[after]), length)
         if abs(level[first]) > 1e-9 and end > start:
             found.append((start, end, float(level[first])))
