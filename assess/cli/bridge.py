@@ -37,7 +37,7 @@ def add(record: str, file: Path) -> None:
     from assess.cli.tables.records import show_bridge_taken
 
     document, taken = workflow.add_bridge(record, file)
-    show_bridge_taken(document, taken)
+    show_bridge_taken(document, taken, workflow.models_in_words(document))
 
 
 @command.command("list")

@@ -53,6 +53,11 @@ def live_in_words(bridge: BridgeDoc) -> list[str]:
     ]
 
 
+def models_in_words(bridge: BridgeDoc) -> list[str]:
+    """The published live load models alone, for a reader."""
+    return [_model_in_words(bridge, live) for live in bridge.live if live.model is not None]
+
+
 def _vehicle_in_words(live: LiveDoc) -> str:
     at = f" at {live.pitch:g} m" if live.count > 1 else ""
     return (

@@ -15,8 +15,8 @@ if TYPE_CHECKING:
     from db.records import BridgeSummary, Taken, VisitSummary
 
 
-def show_bridge_taken(bridge: BridgeDoc, taken: Taken) -> None:
-    """Say what became of a bridge file."""
+def show_bridge_taken(bridge: BridgeDoc, taken: Taken, models: Sequence[str] = ()) -> None:
+    """Say what became of a bridge file, and which published live loads it names, in words."""
     revision = "" if taken.revision is None else f" as revision {taken.revision}"
     if not taken.added:
         click.echo(f"Bridge {bridge.id} ({bridge.name}): this file is in the record already{revision}.")
@@ -44,6 +44,9 @@ def show_bridge_taken(bridge: BridgeDoc, taken: Taken) -> None:
     if bridge.vehicles:
         click.echo()
         _show_vehicles(bridge)
+    for model in models:
+        click.echo()
+        click.echo(f"Live load {model}")
     factors = bridge.factors
     click.echo()
     effects = f"permanent {factors.permanent:g}, live {factors.live:g} on the effects"
