@@ -1,0 +1,64 @@
+"""The live load standing where it governs: a strip of rail or road under the moments, wheels and strokes on it."""
+
+from __future__ import annotations
+
+import numpy as np
+from matplotlib.axes import Axes
+from matplotlib.collections import LineCollection
+from matplotlib.patches import Circle
+
+from assess.report import svg, words
+from assess.report.figures.layout import fitted
+from assess.results import Floats, LoadStand
+
+STRIP_PT = 44.0
+_TALLEST = 13.0  # pt: the strokes of the heaviest stretch
+_EVERY = 5.0  # pt between strokes
+
+
+def strip(sheet: Axes, stand: LoadStand, supports_m: Floats, *, top: float, left: float, width: float) -> None:
+    """Draw one strip from `top` (pt) down: what stands there in words, then the girder line with the load on it.
+
+    Parameters
+    ----------
+    sheet : in pt, y downward
+    stand : LoadStand
+    supports_m : (n,) x of the supports, which mark the line; the last is its end
+    top, left, width : pt
+    """
+    per_m = width / float(supports_m[-1])
+    base = top + STRIP_PT - 8.0
+    sheet.text(2.0, top + 10.0, fitted(in_words(stand), left + width - 4.0), ha="left", va="baseline")
+    sheet.plot([left, left + width], [base, base], color=svg.INK, lw=0.9, zorder=2)
+    for x in supports_m:
+        sheet.plot([left + per_m * x], [base + 3.5], marker="^", ms=5.0, mfc="white", mec=svg.INK, mew=0.9, zorder=3)
+    most = max((w for _, _, w in stand.stretches), default=1.0)
+    for start, end, intensity in stand.stretches:
+        _strokes(sheet, left + per_m * start, left + per_m * end, base, _TALLEST * intensity / most)
+    for x, _ in stand.axles:
+        sheet.add_patch(Circle((left + per_m * x, base - 3.2), 2.8, fc="white", ec=svg.INK, lw=1.1, zorder=5))
+    at = left + per_m * stand.x_m
+    sheet.plot([at, at], [base - 19.0, base + 6.0], color=svg.ACCENT, lw=1.0, ls=(0, (3.0, 2.0)), zorder=4)
+
+
+def in_words(stand: LoadStand) -> str:
+    """Say what stands where, for whom the drawing is read out as well."""
+    parts = []
+    if stand.axles:
+        loads = [load for _, load in stand.axles]
+        first, last = min(x for x, _ in stand.axles), max(x for x, _ in stand.axles)
+        where = words.place(first) if len(loads) == 1 else f"{words.number(first)} to {words.place(last)}"
+        parts.append(f"{len(loads)} axle{'s' if len(loads) > 1 else ''}, {words.number(sum(loads))} kN, {where}")
+    parts += [
+        f"{words.number(w)} kN/m {words.number(start)} to {words.place(end)}" for start, end, w in stand.stretches
+    ]
+    way = f", running to {stand.towards}" if stand.towards else ""
+    return f"{stand.effect} at {words.place(stand.x_m)}: {'; '.join(parts)}{way}"
+
+
+def _strokes(sheet: Axes, start: float, end: float, base: float, tall: float) -> None:
+    """Draw a stretch as a row of short strokes under a line."""
+    count = max(2, round((end - start) / _EVERY) + 1)
+    lines = [[(x, base), (x, base - tall)] for x in np.linspace(start, end, count)]
+    sheet.add_collection(LineCollection(lines, colors=svg.NEUTRAL, linewidths=0.8, zorder=1))
+    sheet.plot([start, end], [base - tall] * 2, color=svg.INK, lw=1.1, zorder=2)
