@@ -280,6 +280,19 @@ class PadHistory:
 
 
 @dataclass(frozen=True, kw_only=True)
+class LoadStand:
+    """Where the live load stands for the section that it uses most; loads with share and dynamic allowance."""
+
+    effect: str  # "sagging" | "hogging"
+    x_m: float  # of the section
+    live_kNm: float
+    name: str  # of the arrangement, where a load model has several
+    axles: list[tuple[float, float]]  # (x in m, kN)
+    stretches: list[tuple[float, float, float]]  # (start in m, end in m, kN/m)
+    towards: str  # "larger x" | "smaller x" | ""
+
+
+@dataclass(frozen=True, kw_only=True)
 class GirderView:
     """All that the report draws of one girder line."""
 
@@ -289,6 +302,7 @@ class GirderView:
     states: list[ElevationState]
     moments: MomentLines
     histories: list[PadHistory]
+    stands: list[LoadStand] = field(default_factory=list)
 
 
 @dataclass(frozen=True, kw_only=True)

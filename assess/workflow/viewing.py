@@ -27,6 +27,7 @@ from assess.workflow.calibrating import VisitFit, calibrate_visit
 from assess.workflow.drivers import Driver, drivers
 from assess.workflow.live_loads import live_in_words
 from assess.workflow.movements import line_of, points_of
+from assess.workflow.stands import governing_stands
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
 from assess.workflow.trending import DAYS_PER_YEAR, GirderTrend, trend_study, with_future
 from assess.workflow.verdicts import cautions_beside, head_row, verdict
@@ -132,13 +133,15 @@ def _calibration(study: Study, assessment: AssessmentResult) -> VisitFit | None:
 def _girder(study: Study, girder: str, calibration: VisitFit | None, part: GirderTrend | None) -> GirderView:
     model = study.model(girder)
     supports, _ = supports_of(study, model, kept_fits(study, None), None)
+    lines = _moments(model, supports)
     return GirderView(
         girder=girder,
         span_lengths_m=[span.length for span in model.doc.spans],
         supports=_supports(model, supports),
         states=_states(study, model, calibration),
-        moments=_moments(model, supports),
+        moments=lines,
         histories=_histories(model, part) if part is not None else [],
+        stands=governing_stands(model, model.compliance(supports.log_stiffness), lines),
     )
 
 

@@ -12,6 +12,7 @@ from matplotlib.collections import LineCollection
 from matplotlib.figure import Figure
 
 from assess.report import svg, words
+from assess.report.figures import silhouette
 from assess.report.figures.layout import Block, fitted, pack, row_heights, write
 from assess.results import Floats, GirderView, MomentLines
 
@@ -71,10 +72,11 @@ def envelopes(girder: GirderView, *, key: str, zero: str, basis: str = words.CAL
     below = pack(*_labels(sagging, x_end), low=_LEFT + 2.0, high=svg.FULL_WIDTH - 1.0)
     over, under = sum(row_heights(above)), sum(row_heights(below))
     head, body = 60.0, 190.0
-    height = head + over + body + under + _FOOT
+    foot = _FOOT + silhouette.STRIP_PT * len(girder.stands)
+    height = head + over + body + under + foot
     lines = girder.moments
     with svg.drawing(svg.FULL_WIDTH, height) as figure:
-        axes = _axes(figure, girder, head=head, height=height, zero=zero)
+        axes = _axes(figure, girder, head=head, foot=foot, height=height, zero=zero)
         _limits(axes, _extent(lines), over=over, under=under, body=body)
         _curves(axes, lines)
         for capacity, outward in ((lines.capacity_sagging, 1.0), (lines.capacity_hogging, -1.0)):
@@ -82,6 +84,7 @@ def envelopes(girder: GirderView, *, key: str, zero: str, basis: str = words.CAL
         sheet = svg.paper(figure)
         _write(sheet, axes, above, hogging, start=head + over, upward=True)
         _write(sheet, axes, below, sagging, start=head + over + body, upward=False)
+        _stands(sheet, girder, top=height - foot + _FOOT)
         given = bool(np.isfinite(np.concatenate([lines.capacity_sagging, lines.capacity_hogging])).any())
         told = f"capacity; dots mark the peaks on {basis}" if given else "capacity not given"
         _legend(sheet, basis, capacity=told)
@@ -100,7 +103,7 @@ def permanent(girder: GirderView, *, key: str, zero: str, basis: str = words.CAL
     head, body = 36.0, 104.0
     height = head + body + _FOOT
     with svg.drawing(svg.FULL_WIDTH, height) as figure:
-        axes = _axes(figure, girder, head=head, height=height, zero=zero)
+        axes = _axes(figure, girder, head=head, foot=_FOOT, height=height, zero=zero)
         _limits(axes, _range(series), over=3.0, under=3.0, body=body - 6.0)
         for values, style in zip(series, _styles(), strict=True):
             axes.plot(lines.x_m, values, **style)
@@ -153,10 +156,10 @@ def _extent(lines: MomentLines) -> tuple[float, float]:
     )
 
 
-def _axes(figure: Figure, girder: GirderView, *, head: float, height: float, zero: str) -> Axes:
+def _axes(figure: Figure, girder: GirderView, *, head: float, foot: float, height: float, zero: str) -> Axes:
     width = svg.FULL_WIDTH
     axes = figure.add_axes(
-        (_LEFT / width, _FOOT / height, (width - _LEFT - _RIGHT) / width, (height - _FOOT - head) / height)
+        (_LEFT / width, foot / height, (width - _LEFT - _RIGHT) / width, (height - foot - head) / height)
     )
     axes.patch.set_visible(False)
     for side in ("top", "right"):
@@ -233,6 +236,15 @@ def _write(
     write(sheet, blocks, start=start, upward=upward)
 
 
+def _stands(sheet: Axes, girder: GirderView, *, top: float) -> None:
+    """Stand the live load under the axis where it governs, lengthwise to the scale of the moments."""
+    supports = np.concatenate([[0.0], np.cumsum(girder.span_lengths_m)])
+    width = svg.FULL_WIDTH - _LEFT - _RIGHT
+    for i, stand in enumerate(girder.stands):
+        at = top + i * silhouette.STRIP_PT
+        silhouette.strip(sheet, stand, supports, top=at, left=_LEFT, width=width)
+
+
 def _legend(sheet: Axes, basis: str, *, capacity: str | None) -> None:
     third = basis if basis != words.NOMINAL else "nominal pads, median"
     names = ("unyielding supports", "nominal pads", third)
@@ -267,4 +279,5 @@ def _in_words(girder: GirderView, sagging: list[Peak], hogging: list[Peak], basi
             parts.append(
                 f"{name} {words.number(peak.moment)} kN m at {words.place(peak.x_m)}, capacity there {told};"
             )
+    parts += [f"Live load for {silhouette.in_words(stand)}." for stand in girder.stands]
     return " ".join(parts)
