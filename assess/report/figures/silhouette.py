@@ -16,7 +16,9 @@ _TALLEST = 13.0  # pt: the strokes of the heaviest stretch
 _EVERY = 5.0  # pt between strokes
 
 
-def strip(sheet: Axes, stand: LoadStand, supports_m: Floats, *, top: float, left: float, width: float) -> None:
+def strip(
+    sheet: Axes, stand: LoadStand, supports_m: Floats, *, top: float, left: float, width: float
+) -> None:
     """Draw one strip from `top` (pt) down: what stands there in words, then the girder line with the load on it.
 
     Parameters
@@ -31,7 +33,9 @@ def strip(sheet: Axes, stand: LoadStand, supports_m: Floats, *, top: float, left
     sheet.text(2.0, top + 10.0, fitted(in_words(stand), left + width - 4.0), ha="left", va="baseline")
     sheet.plot([left, left + width], [base, base], color=svg.INK, lw=0.9, zorder=2)
     for x in supports_m:
-        sheet.plot([left + per_m * x], [base + 3.5], marker="^", ms=5.0, mfc="white", mec=svg.INK, mew=0.9, zorder=3)
+        sheet.plot(
+            [left + per_m * x], [base + 3.5], marker="^", ms=5.0, mfc="white", mec=svg.INK, mew=0.9, zorder=3
+        )
     most = max((w for _, _, w in stand.stretches), default=1.0)
     for start, end, intensity in stand.stretches:
         _strokes(sheet, left + per_m * start, left + per_m * end, base, _TALLEST * intensity / most)
@@ -46,14 +50,18 @@ def in_words(stand: LoadStand) -> str:
     parts = []
     if stand.axles:
         loads = [load for _, load in stand.axles]
-        first, last = min(x for x, _ in stand.axles), max(x for x, _ in stand.axles)
-        where = words.place(first) if len(loads) == 1 else f"{words.number(first)} to {words.place(last)}"
-        parts.append(f"{len(loads)} axle{'s' if len(loads) > 1 else ''}, {words.number(sum(loads))} kN, {where}")
-    parts += [
-        f"{words.number(w)} kN/m {words.number(start)} to {words.place(end)}" for start, end, w in stand.stretches
-    ]
+        x = [at for at, _ in stand.axles]
+        count = f"{len(loads)} axle{'s' if len(loads) > 1 else ''}, {words.number(sum(loads))} kN"
+        parts.append(f"{count}, {_between(min(x), max(x))}" if len(loads) > 1 else f"{count}, {x[0]:.2f} m")
+    for intensity in dict.fromkeys(w for _, _, w in stand.stretches):
+        where = ", ".join(_between(a, b) for a, b, w in stand.stretches if w == intensity)
+        parts.append(f"{words.number(intensity)} kN/m on {where}")
     way = f", running to {stand.towards}" if stand.towards else ""
     return f"{stand.effect} at {words.place(stand.x_m)}: {'; '.join(parts)}{way}"
+
+
+def _between(start: float, end: float) -> str:
+    return f"{start:.1f} to {end:.1f} m"
 
 
 def _strokes(sheet: Axes, start: float, end: float, base: float, tall: float) -> None:
