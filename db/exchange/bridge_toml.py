@@ -171,7 +171,9 @@ def _one_live(fields: Fields, vehicles: list[str]) -> LiveDoc:
     if fields.has("model"):
         return _one_model(fields)
     if fields.has("track"):
-        raise fields.error("track", "it belongs to a published model", 'leave it out, or write model = "lm71"')
+        raise fields.error(
+            "track", "it belongs to a published model", 'leave it out, or write model = "lm71"'
+        )
     count = fields.whole("count", 1, least=1, most=MOST_VEHICLES)
     pitch = 0.0
     if fields.has("pitch"):
