@@ -48,7 +48,7 @@ def _live(bridge: BridgeDoc) -> list[str]:
     said = []
     for live in bridge.live:
         where = f'live "{live.id}"'
-        if live.dynamic > MOST_DYNAMIC:
+        if live.dynamic is not None and live.dynamic > MOST_DYNAMIC:
             said.append(
                 f"{where}: dynamic {live.dynamic:g} is added to 1: for effects times 1.25 write dynamic = 0.25"
             )
