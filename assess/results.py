@@ -198,6 +198,21 @@ class PadTrend:
 
 
 @dataclass(frozen=True, kw_only=True)
+class SeatTrend:
+    """A seat over the visits: mm since the datum, downward, and its rate with the 95 % interval."""
+
+    girder: str
+    support: str
+    visits: int
+    settlement_mm: float
+    sd_mm: float
+    moving: bool
+    rate_mm_per_year: float | None
+    low95: float | None
+    high95: float | None
+
+
+@dataclass(frozen=True, kw_only=True)
 class SpanTrend:
     """A governing section carried forward."""
 
@@ -220,6 +235,7 @@ class TrendResult:
     as_of: dt.date
     pads: list[PadTrend]
     spans: list[SpanTrend]
+    seats: list[SeatTrend] = field(default_factory=list)
     next_visit_by: dt.date | None
     next_visit_reason: str
     cautions: list[str]

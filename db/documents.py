@@ -69,7 +69,9 @@ class SectionDoc:
     id: str
     youngs_modulus: float  # kN/m2
     second_moment: float | None = None  # m4; None: from the plates
-    shear_area: float | None = None  # m2; None: from the plates; without plates it leaves shear flexibility out
+    shear_area: float | None = (
+        None  # m2; None: from the plates; without plates it leaves shear flexibility out
+    )
     shear_modulus: float | None = None  # kN/m2; None means E / 2.6
     sagging_capacity: float | None = None  # kN m; None: not given, utilisation not determined
     hogging_capacity: float | None = None  # kN m
@@ -105,8 +107,12 @@ class SupportDoc:
 
     id: str
     kind: str  # "pad" | "pin"
-    stiffness: float | None = None  # kN/m, nominal; None for a pin, and for a pad that gives its geometry alone
-    stiffness_cv: float | None = None  # coefficient of variation of the nominal stiffness; None: from the geometry
+    stiffness: float | None = (
+        None  # kN/m, nominal; None for a pin, and for a pad that gives its geometry alone
+    )
+    stiffness_cv: float | None = (
+        None  # coefficient of variation of the nominal stiffness; None: from the geometry
+    )
     pad: PadDoc | None = None  # geometry; where a stiffness is given too, that is the nominal one
     rotation: float = 0.0  # kN m/rad; 0 free, inf fixed
     temperature_coefficient: float | None = None  # 1/K, growth of ln k per kelvin colder than 20 degC
@@ -173,7 +179,9 @@ class LiveDoc:
     pitch: float = 0.0  # m, leading axle to leading axle; 0 only if count is 1
     dynamic: float | None = 0.0  # dynamic allowance, added to 1; None (models only): by the model's own rule
     model: str | None = None
-    track: str | None = None  # "careful" | "standard": maintenance of the track, for models whose rule asks for it
+    track: str | None = (
+        None  # "careful" | "standard": maintenance of the track, for models whose rule asks for it
+    )
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -38,10 +38,15 @@ class KeptBridge:
 
 @dataclass(frozen=True, kw_only=True)
 class Taken:
-    """What became of a file handed in: kept now (`added`), or in the record already."""
+    """What became of a file handed in: kept now (`added`), in the record already, or only looked at (`tried`).
+
+    `queries` is what to look at again in it: unusual, not refused.
+    """
 
     added: bool
     revision: int | None = None
+    tried: bool = False
+    queries: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, kw_only=True)

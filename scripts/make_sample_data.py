@@ -16,7 +16,7 @@ from db.documents import LoadStateDoc
 from db.exchange import parse_bridge
 
 FOLDER = Path(__file__).resolve().parent.parent / "sample_data"
-SEED = 5
+SEED = 16
 
 # (date, party, pad temperature in degC, settlement of pier 2 in mm)
 VISITS = [

@@ -19,6 +19,7 @@ Linearised = Callable[[Floats], tuple[Floats, Floats]]
 
 _STEPS = 30
 _HALVINGS = 12
+_FARTHEST = 4.0  # of one step in any unknown: e^4 in stiffness; past it the linear picture says nothing
 _SMALL = 1e-10  # of a step against the unknowns, and of what a step could still gain against the cost
 
 
@@ -64,6 +65,7 @@ def _gauss_newton(linearise: Linearised, start: Floats) -> Minimum | None:
         done = bool(gain @ gain <= _SMALL**2 * max(cost, 1e-12))
         if done or float(np.abs(step).max()) <= _SMALL * max(1.0, float(np.abs(theta).max())):
             return Minimum(theta=theta + step, evaluations=used, trust_region=False)
+        step = step * min(1.0, _FARTHEST / float(np.abs(step).max()))
         for _ in range(_HALVINGS):
             used += 1
             next_residual, next_jacobian = linearise(theta + step)

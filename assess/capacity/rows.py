@@ -198,7 +198,7 @@ def moment_draws(
 def _governing_stations(
     effects: Effects, factors: Factors, compliances: Floats, settlements: Floats
 ) -> list[Ints]:
-    """Stations that govern each row for at least one of some sets of supports (sets, n)."""
+    """Stations that govern each row, in each sense, for at least one of some sets of supports (sets, n)."""
     found: list[set[int]] = [set() for _ in effects.plan.checks]
     sample = {name: effects.live_sample(name, compliances) for name in ("moment", "shear")}
     for s, (compliance, settlement) in enumerate(zip(compliances, settlements, strict=True)):
@@ -206,8 +206,9 @@ def _governing_stations(
         demands = demands_at(effects, factors, compliance, settlement, live)
         for i, check in enumerate(effects.plan.checks):
             own = [demands[response_of(check.effect), sign] for sign in _senses(check.effect)]
-            uses = _uses(effects.plan, check, own)
-            found[i].add(int(check.stations[int(uses.argmax()) % check.stations.size]))
+            # each sense on its own: the one that seldom governs has a station of its own
+            best = _uses(effects.plan, check, own).argmax(axis=-1)
+            found[i].update(int(station) for station in check.stations[best])
     return [np.array(sorted(stations), dtype=np.intp) for stations in found]
 
 

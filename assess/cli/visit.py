@@ -23,20 +23,23 @@ def command() -> None:
 
 @command.command("log")
 @file_argument
+@click.option("--dry-run", is_flag=True, help="Check and show the file; keep nothing.")
 @click.pass_obj
-def log(record: str, file: Path) -> None:
+def log(record: str, file: Path, dry_run: bool) -> None:
     """Take a visit file into the record: the whole of it, or nothing.
 
-    The same file again changes nothing; another file for the same day is refused.
+    The same file again changes nothing; another file for the same day is refused. A visit that is in the
+    record cannot be changed, so try it with --dry-run first.
 
     \b
     Example:
+      bedstone visit log --dry-run visit-2024.toml
       bedstone visit log visit-2024.toml
     """
     from assess import workflow
     from assess.cli.tables.records import show_visit_taken
 
-    document, taken = workflow.log_visit(record, file)
+    document, taken = workflow.log_visit(record, file, keep=not dry_run)
     show_visit_taken(document, taken)
 
 

@@ -2,14 +2,13 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable
 from dataclasses import dataclass, field
 
 from markupsafe import Markup
 
-from assess.report import sections, tables, words
+from assess.report import cautions, sections, tables, words
 from assess.report.figures import elevation, history, moments, residuals, utilisation
-from assess.results import GirderAssessment, GirderCalibration, GirderView, ReportView, TrendResult
+from assess.results import GirderAssessment, GirderCalibration, GirderView, ReportView
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -30,16 +29,22 @@ class GirderPage:
     number: str
     cautions: list[str]
     status: str
+    told: str
     mark: Markup
     elevation: Figure | None = None
     states: list[Figure] = field(default_factory=list)
     pads: list[list[str]] = field(default_factory=list)
     moments: list[Figure] = field(default_factory=list)
+    case_heads: list[str] = field(default_factory=list)
     sections: list[tables.SectionRow] = field(default_factory=list)
+    reaction_heads: list[str] = field(default_factory=list)
     reactions: list[list[str]] = field(default_factory=list)
     histories: list[Figure] = field(default_factory=list)
+    histories_caption: str = ""
     pad_trends: list[list[str]] = field(default_factory=list)
+    seat_trends: list[list[str]] = field(default_factory=list)
     span_trends: list[list[str]] = field(default_factory=list)
+    span_trends_caption: str = ""
     fit: str = ""
     residuals: list[Figure] = field(default_factory=list)
     readings: list[list[str]] = field(default_factory=list)
@@ -50,7 +55,7 @@ def build(view: ReportView) -> dict[str, object]:
     return {
         "name": words.plain(view.name) or view.bridge,
         "facts": _facts(view),
-        "next_visit": _next_visit(view.trend),
+        "next_visit": _next_visit(view),
         "girders": [_girder(view, name, f"g{i + 1}") for i, name in enumerate(_names(view))],
         "sections": sections.pages(view.sections),
         "section_heads": list(sections.HEADS),
@@ -66,7 +71,7 @@ def build(view: ReportView) -> dict[str, object]:
             for day, party, warmth, count in view.visits
         ],
         "has_trend": view.trend is not None,
-        "cautions": _cautions(view),
+        "cautions": cautions.of_page(view),
         "fixed_cautions": list(words.FIXED_CAUTIONS),
         "provenance": _provenance(view),
     }
@@ -92,10 +97,11 @@ def _facts(view: ReportView) -> list[tuple[str, str]]:
     ]
 
 
-def _next_visit(trend: TrendResult | None) -> str:
+def _next_visit(view: ReportView) -> str:
+    trend = view.trend
     if trend is None:
         return "Next visit " + words.not_determined("no trend was drawn up") + "."
-    reason = trend.next_visit_reason.strip().rstrip(".")
+    reason = words.prose(trend.next_visit_reason, cautions.support_names(view)).strip().rstrip(".")
     if trend.next_visit_by is None:
         return "Next visit " + words.not_determined(reason) + "."
     return f"Next visit by {words.date(trend.next_visit_by)}" + (f": {reason}." if reason else ".")
@@ -106,30 +112,46 @@ def _girder(view: ReportView, name: str, key: str) -> GirderPage:
     assessed = next((g for g in view.assessment.girders if g.girder == name), None)
     fits = view.calibration.girders if view.calibration is not None else []
     fit = next((c for c in fits if c.girder == name), None)
+    stands_on = _basis(view, drawn, fit)
     status, mark = _status(assessed, key)
+    names = cautions.support_names(view)
     big, small = (None, []) if drawn is None else _elevations(view, drawn, key)
     return GirderPage(
         name=name,
         key=key,
-        verdict=view.verdicts.get(name)
+        verdict=words.prose(view.verdicts.get(name, ""), names)
         or "What to do " + words.not_determined("no verdict for this girder") + ".",
-        number=tables.number_behind(assessed),
-        cautions=view.verdict_cautions.get(name, []),
+        number=tables.number_behind(assessed, stands_on),
+        cautions=[words.prose(c, names) for c in dict.fromkeys(view.verdict_cautions.get(name, []))],
         status=status,
+        told=words.status_on(status, stands_on),
         mark=mark,
         elevation=big,
         states=small,
         pads=[] if drawn is None else tables.pad_rows(drawn.supports, fit),
-        moments=[] if drawn is None else _moments(view, drawn, key),
-        sections=[] if assessed is None else tables.section_rows(assessed, key),
+        moments=[] if drawn is None else _moments(view, drawn, key, stands_on),
+        case_heads=tables.case_heads(stands_on),
+        sections=[] if assessed is None else tables.section_rows(assessed, key, stands_on),
+        reaction_heads=tables.reaction_heads(stands_on),
         reactions=[] if assessed is None else tables.reaction_rows(assessed.reactions),
         histories=[] if drawn is None else _histories(view, drawn, key),
+        histories_caption="" if drawn is None else _histories_caption(drawn),
         pad_trends=[] if view.trend is None else tables.pad_trend_rows(view.trend, name),
-        span_trends=[] if view.trend is None else tables.span_trend_rows(view.trend, name),
+        seat_trends=[] if view.trend is None else tables.seat_trend_rows(view.trend, name),
+        span_trends=[] if view.trend is None else tables.span_trend_rows(view.trend, name, stands_on),
+        span_trends_caption=_span_trends_caption(name, drawn),
         fit="" if fit is None else tables.fit_sentence(fit),
         residuals=[] if fit is None else _residuals(fit, key),
         readings=[] if fit is None else tables.reading_rows(fit.readings),
     )
+
+
+def _basis(view: ReportView, drawn: GirderView | None, fit: GirderCalibration | None) -> str:
+    """Name the supports of the third case; without a drawing the kept calibration tells."""
+    if drawn is not None:
+        return tables.basis(drawn.supports)
+    kept = fit is not None and view.assessment.calibration_visit is not None
+    return words.CALIBRATED if kept else words.NOMINAL
 
 
 def _status(assessed: GirderAssessment | None, key: str) -> tuple[str, Markup]:
@@ -165,15 +187,15 @@ def _elevations(view: ReportView, girder: GirderView, key: str) -> tuple[Figure,
     return big, small
 
 
-def _moments(view: ReportView, girder: GirderView, key: str) -> list[Figure]:
+def _moments(view: ReportView, girder: GirderView, key: str, stands_on: str) -> list[Figure]:
     zero = view.zero or "the left end"
     return [
         Figure(
-            svg=Markup(moments.envelopes(girder, key=f"{key}-moments", zero=zero)),
+            svg=Markup(moments.envelopes(girder, key=f"{key}-moments", zero=zero, basis=stands_on)),
             caption=f"Girder {girder.girder}: factored moments, permanent and live together.",
         ),
         Figure(
-            svg=Markup(moments.permanent(girder, key=f"{key}-permanent", zero=zero)),
+            svg=Markup(moments.permanent(girder, key=f"{key}-permanent", zero=zero, basis=stands_on)),
             caption=f"Girder {girder.girder}: moments of the permanent loads alone.",
         ),
     ]
@@ -195,9 +217,25 @@ def _histories(view: ReportView, girder: GirderView, key: str) -> list[Figure]:
     ]
 
 
+def _histories_caption(girder: GirderView) -> str:
+    told = f"Girder {girder.girder}: stiffness of its pads over the years"
+    if any(history.has_forecast(h) for h in girder.histories):
+        told += (
+            "; line: the law of all visits; fan: the forecast, which starts from the last visit's own value"
+        )
+    return told + "."
+
+
+def _span_trends_caption(name: str, girder: GirderView | None) -> str:
+    """Say how far the sections are carried forward: the last date of the histories' lines."""
+    told = f"Sections of girder {name}, carried forward"
+    histories = [] if girder is None else girder.histories
+    ends = [h.line_dates[-1] for h in histories if h.line_dates and h.line_dates[-1] > h.last_visit]
+    return f"{told} to {words.date(max(ends))}" if ends else told
+
+
 def _residuals(fit: GirderCalibration, key: str) -> list[Figure]:
-    count = residuals.ROWS_MOST
-    parts = [fit.readings[i : i + count] for i in range(0, len(fit.readings), count)]
+    parts = residuals.parts(fit.readings)
     return [
         Figure(
             svg=Markup(
@@ -210,13 +248,6 @@ def _residuals(fit: GirderCalibration, key: str) -> list[Figure]:
         )
         for i, part in enumerate(parts)
     ]
-
-
-def _cautions(view: ReportView) -> list[str]:
-    """Return every caution once, in the order in which they were raised."""
-    raised: list[Iterable[str]] = [view.cautions, *view.verdict_cautions.values()]
-    raised += [r.cautions for r in (view.calibration, view.assessment, view.trend) if r is not None]
-    return list(dict.fromkeys(c for group in raised for c in group))
 
 
 def _provenance(view: ReportView) -> list[tuple[str, str]]:

@@ -23,6 +23,7 @@ from assess.results import (
 )
 
 NO_CAPACITY = "no capacity given here"
+STEP_FROM = 4  # visits; with fewer a step and a drift cannot be told apart
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -44,12 +45,42 @@ class SectionRow:
     mark: Markup
 
 
-def section_rows(girder: GirderAssessment, key: str) -> list[SectionRow]:
+def basis(supports: list[SupportView]) -> str:
+    """Name the supports that the third case stands on: calibrated pads, nominal ones, or no pads at all."""
+    pads = [s for s in supports if s.kind != "pin"]
+    if not pads:
+        return words.HELD
+    return words.NOMINAL if all(s.ratio is None for s in pads) else words.CALIBRATED
+
+
+def case_heads(stands_on: str) -> list[str]:
+    """Return the heads of the utilisation table."""
+    third = {
+        words.CALIBRATED: "Calibrated pads (95 % band)",
+        words.NOMINAL: "Nominal pads with the spread assumed for them (95 % band)",
+        words.HELD: "Supports that hold their level (95 % band)",
+    }[stands_on]
+    return ["Section", "Unyielding supports", "Nominal pads", third, f"Status on {stands_on}"]
+
+
+def reaction_heads(stands_on: str) -> list[str]:
+    """Return the heads of the table of reactions."""
+    return [
+        "Support",
+        "Permanent, unyielding, kN",
+        f"Permanent, {stands_on}, kN",
+        "Live, most, kN",
+        "Live, least, kN",
+        "Contact",
+    ]
+
+
+def section_rows(girder: GirderAssessment, key: str, stands_on: str) -> list[SectionRow]:
     """Return the utilisation table of a girder; `key` makes the ids of its marks."""
-    return [_section_row(section, f"{key}-u{i}") for i, section in enumerate(girder.sections)]
+    return [_section_row(section, f"{key}-u{i}", stands_on) for i, section in enumerate(girder.sections)]
 
 
-def _section_row(section: SectionResult, key: str) -> SectionRow:
+def _section_row(section: SectionResult, key: str, stands_on: str) -> SectionRow:
     name = words.section(section.effect, section.span, section.support)
     case = section.calibrated
     unit = "kN" if section.effect == "shear" else "kN\N{NO-BREAK SPACE}m"
@@ -61,7 +92,7 @@ def _section_row(section: SectionResult, key: str) -> SectionRow:
             _cell(case, unit, calibrated_utilisation(case)),
         ],
         probability=words.probability(case.probability_over_1, NO_CAPACITY),
-        status=words.status(case.utilisation),
+        status=words.judged(case.utilisation, stands_on),
         mark=Markup(
             utilisation.mark(
                 case.utilisation, case.utilisation_low95, case.utilisation_high95, key=key, name=name
@@ -98,8 +129,8 @@ def governing(girder: GirderAssessment) -> SectionResult | None:
     return max(rated, key=lambda pair: pair[0])[1] if rated else None
 
 
-def number_behind(girder: GirderAssessment | None) -> str:
-    """Word the number that a verdict rests on."""
+def number_behind(girder: GirderAssessment | None, stands_on: str) -> str:
+    """Word the number that a verdict rests on, and the supports that it holds for."""
     section = None if girder is None else governing(girder)
     if girder is None or section is None:
         return (
@@ -111,8 +142,8 @@ def number_behind(girder: GirderAssessment | None) -> str:
     rest = f" Not determined for {unrated} other section(s): no capacity given." if unrated else ""
     return (
         f"Governing: {name} at {words.place(case.x_m)}, utilisation {calibrated_utilisation(case)} on "
-        f"calibrated pads, {words.quantity(section.unyielding.utilisation, '', NO_CAPACITY)} on unyielding "
-        f"supports; probability of exceeding 1: "
+        f"{stands_on}, {words.quantity(section.unyielding.utilisation, '', NO_CAPACITY)} on unyielding "
+        f"supports; probability of being over 1: "
         f"{words.probability(case.probability_over_1, NO_CAPACITY)}.{rest}"
     )
 
@@ -169,11 +200,13 @@ def pad_rows(supports: list[SupportView], calibration: GirderCalibration | None)
 def _seat(support: SupportView) -> str:
     if support.seat_drop_mm is None:
         return words.not_determined("no level of this seat")
-    sense = "down" if support.seat_drop_mm >= 0.0 else "up"
     sd = words.not_determined("no sd given")
     if support.seat_drop_sd_mm is not None:
         sd = words.entered(support.seat_drop_sd_mm, "mm")
-    return f"{sense} {words.entered(abs(support.seat_drop_mm))} mm (sd {sd})"
+    told = f"{words.seat(support.seat_drop_mm)} (sd {sd})"
+    if not words.seat_moved(support.seat_drop_mm, support.seat_drop_sd_mm):
+        return f"no movement beyond 2 sd: {told}"
+    return told
 
 
 def pad_trend_rows(trend: TrendResult, girder: str) -> list[list[str]]:
@@ -182,21 +215,38 @@ def pad_trend_rows(trend: TrendResult, girder: str) -> list[list[str]]:
     for p in trend.pads:
         if p.girder != girder:
             continue
-        why = "one visit gives no rate" if p.visits < 2 else "fewer than two visits tell this pad"
-        step = "no step told"
+        why = "fewer than two visits tell this pad"
+        if p.visits < 2:
+            why = f"{'one visit' if p.visits == 1 else 'no visit'} gives no rate"
+        step = "no step told" if p.visits >= STEP_FROM else "cannot be told: fewer than four visits"
         if p.step_between is not None:
             step = f"between {words.date(p.step_between[0])} and {words.date(p.step_between[1])}"
-        change = words.interval(p.change_per_year_percent, p.low95, p.high95, "% a year", why)
-        rows.append([p.support, str(p.visits), words.law(p.law), change, step])
+        rate = p.change_per_year_percent if p.visits >= 2 else None
+        change = words.interval(rate, p.low95, p.high95, "% a year", why)
+        rows.append([p.support, str(p.visits), words.law(p.law, p.visits), change, step])
     return rows
 
 
-def span_trend_rows(trend: TrendResult, girder: str) -> list[list[str]]:
+def seat_trend_rows(trend: TrendResult, girder: str) -> list[list[str]]:
+    """Return level and rate of the seats of a girder that were levelled."""
+    rows = []
+    for s in trend.seats:
+        if s.girder != girder:
+            continue
+        why = "one visit gives no rate"
+        rate = words.interval(s.rate_mm_per_year, s.low95, s.high95, "mm a year", why)
+        told = "moving" if s.moving else "no movement told by the levels"
+        level = f"{words.seat(s.settlement_mm)} (sd {words.entered(s.sd_mm, 'mm')})"
+        rows.append([s.support, str(s.visits), level, rate, told if s.visits > 1 else "one visit"])
+    return rows
+
+
+def span_trend_rows(trend: TrendResult, girder: str, stands_on: str) -> list[list[str]]:
     """Return the governing sections of a girder carried forward."""
     return [
         [
             words.section(s.effect, s.span, s.support),
-            s.status,
+            words.status_on(s.status, stands_on),
             words.quantity(s.utilisation_now, "", NO_CAPACITY),
             words.probability(s.probability_over_1_now, NO_CAPACITY),
             _crossing(s, s.median_crossing),

@@ -4,6 +4,8 @@ from __future__ import annotations
 
 import datetime as dt
 import math
+import re
+from collections.abc import Iterable
 
 MONTHS = (
     "January",
@@ -21,6 +23,8 @@ MONTHS = (
 )
 MINUS = "\N{MINUS SIGN}"
 THIN = "\N{NARROW NO-BREAK SPACE}"
+_ISO_DATE = re.compile(r"(?<![\w./-])\d{4}-\d{2}-\d{2}(?![\w/-]|\.\w)")  # none within a file name
+CALIBRATED, NOMINAL, HELD = "calibrated pads", "nominal pads", "supports that hold their level"
 WATCH_FROM = 0.9
 OVER_FROM = 1.0
 
@@ -30,6 +34,12 @@ FIXED_CAUTIONS = (
     "A licensed engineer must review these outputs before anyone acts on them.",
     "On sight of distress, close the bridge: closure needs no calculation.",
     "Deflection proves stiffness, not strength: what resists under test loads may be gone at failure.",
+)
+
+# How the results word what the fixed cautions say in full; such a caution of theirs would stand twice.
+SAID_BY_FIXED = (
+    "These figures support the engineer in charge and never replace",
+    "Stiffness seen under a test load may not be there at ultimate load",
 )
 
 LAWS = {
@@ -45,6 +55,29 @@ def plain(text: str) -> str:
     """Return the text with control characters, which no XML can hold, shown as a replacement mark."""
     spaced = " ".join(text.split())
     return "".join(c if c.isprintable() or c == " " else "\N{REPLACEMENT CHARACTER}" for c in spaced)
+
+
+def prose(text: str, names: Iterable[str] = ()) -> str:
+    """Word a sentence from elsewhere as this page does: dates in words, names of supports without quotes.
+
+    Parameters
+    ----------
+    text
+        A verdict, a reason or a caution.
+    names
+        The supports of the bridge; a name in quotes that is none of them keeps its quotes.
+    """
+    dated = _ISO_DATE.sub(_in_prose, text)
+    for name in sorted(set(names), key=len, reverse=True):
+        dated = dated.replace(f'"{name}"', name)
+    return dated
+
+
+def _in_prose(match: re.Match[str]) -> str:
+    try:
+        return date(dt.date.fromisoformat(match.group()))
+    except ValueError:  # looks like a date and is none: a number of a drawing, say
+        return match.group()
 
 
 def known(value: float | None) -> bool:
@@ -82,6 +115,11 @@ def number(value: float, digits: int = 3) -> str:
 def entered(value: float, unit: str = "") -> str:
     """Word a number that a person wrote, as it was written: no figures added, none past six."""
     return f"{value:.6g} {unit}".rstrip().replace("-", MINUS)
+
+
+def span_length(length_m: float) -> str:
+    """Word the length of a span in at most four significant figures."""
+    return entered(float(f"{length_m:.4g}"), "m")
 
 
 def quantity(value: float | None, unit: str, reason: str = "") -> str:
@@ -134,15 +172,41 @@ def status(utilisation: float | None) -> str:
     return "watch" if utilisation < OVER_FROM else "over"
 
 
+def judged(utilisation: float | None, basis: str) -> str:
+    """Word a status and, where no pad is calibrated, that nothing measured stands behind it."""
+    return status_on(status(utilisation), basis)
+
+
+def status_on(told: str, basis: str) -> str:
+    """Add to a status word, except on calibrated pads, that it was not measured."""
+    return told if basis == CALIBRATED else f"{told}, not measured"
+
+
 def section(effect: str, span: int | None, support: str | None) -> str:
-    """Name a governing section: "sagging, span 1", "hogging at pier 1", "shear, span 1 at pier 1"."""
-    where = f", span {span}" if span is not None else ""
+    """Name a governing section: "sagging in span 1", "hogging at pier 1", "shear in span 1 at pier 1"."""
+    where = f" in span {span}" if span is not None else ""
     return effect + where + (f" at {support}" if support is not None else "")
 
 
-def law(name: str) -> str:
-    """Word a law of the pads; a name that is not known here is shown as it is."""
+def law(name: str, visits: int) -> str:
+    """Word a law of the pads; a name that is not known here is shown as it is. Fewer than two visits give none."""
+    if visits < 2:
+        return f"none: {'one visit' if visits == 1 else 'no visit'} gives no law"
     return LAWS.get(name, name)
+
+
+def seat_moved(drop_mm: float | None, sd_mm: float | None) -> bool:
+    """Say whether a seat moved since the datum by more than twice the standard deviation of its level."""
+    if drop_mm is None or not math.isfinite(drop_mm) or drop_mm == 0.0:
+        return False
+    return sd_mm is None or not abs(drop_mm) <= 2.0 * sd_mm
+
+
+def seat(drop_mm: float) -> str:
+    """Word which way and how far a seat moved: "down 7.4 mm"."""
+    if drop_mm == 0.0:
+        return "0 mm"
+    return f"{'down' if drop_mm > 0.0 else 'up'} {entered(float(f'{abs(drop_mm):.3g}'))} mm"
 
 
 def told_by(data_share: float | None) -> str:

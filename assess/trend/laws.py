@@ -15,7 +15,7 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy import stats
+from scipy import special, stats
 
 Floats = NDArray[np.float64]
 
@@ -213,17 +213,20 @@ def _scatter(visits: Sequence[VisitEstimate], times: Floats, level: Floats, rate
 def _law(rate: float, rate_sd: float, scatter: float, visits: Sequence[VisitEstimate], pad: int) -> PadLaw:
     telling = sum(visit.data_share[pad] >= 0.5 for visit in visits)
     determined = bool(telling >= 2 and rate_sd < UNTOLD_RATE_SD)
-    z2 = (rate / rate_sd) ** 2
-    weight = 1.0 / (1.0 + float(np.exp(np.clip((2.0 - z2) / 2.0, -50.0, 50.0))))
-    drifts = determined and z2 > Z95**2
+    drifts = determined and abs(rate) > Z95 * rate_sd
     return PadLaw(
         law="drift" if drifts else "steady",
         rate=float(rate),
         rate_sd=float(rate_sd),
-        drift_weight=weight if determined else 0.0,
+        drift_weight=akaike_weight(rate, rate_sd) if determined else 0.0,
         determined=determined,
         scatter=float(scatter),
     )
+
+
+def akaike_weight(rate: float, rate_sd: float) -> float:
+    """Akaike weight of a line against no change, variances known: the line has one parameter more."""
+    return float(special.expit(((rate / rate_sd) ** 2 - 2.0) / 2.0))
 
 
 def _now(visits: Sequence[VisitEstimate], prior_mean: Floats, held: Floats) -> tuple[Floats, Floats]:

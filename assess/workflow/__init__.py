@@ -11,7 +11,7 @@ from assess.workflow.records import (
     list_visits,
     log_visit,
 )
-from assess.workflow.showing import show_bridge
+from assess.workflow.showing import bridge_view, show_bridge
 from assess.workflow.study import Progress
 from assess.workflow.trending import trend
 from assess.workflow.viewing import report_view
@@ -20,6 +20,7 @@ __all__ = [
     "Progress",
     "add_bridge",
     "assess",
+    "bridge_view",
     "calibrate",
     "draft_bridge",
     "init_record",

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 from dataclasses import asdict, dataclass, replace
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -124,6 +125,9 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
     girders, said = [], _of_sources(study, fits, visit)
     if not study.bridge.live:
         said.append(cautions.no_live(study.bridge.id))
+    if study.bridge.factors.resistance > 1.0:
+        said.append(cautions.resistance_above_one(study.bridge.factors.resistance))
+    said += _of_datum(study, visit)
     digests = []
     for i, girder in enumerate(study.bridge.girders):
         progress(f"assessing {girder.id}", i, len(study.bridge.girders))
@@ -190,7 +194,8 @@ def supports_of(
             settlements={},
         )
         return nominal, left
-    said = cautions.settlements_used(
+    said = _of_seats(study, model, fits, until)
+    said += cautions.settlements_used(
         name, [(s, 1e3 * one.value, 1e3 * one.sd, one.date) for s, one in measured.items()]
     )
     if not own:
@@ -223,6 +228,38 @@ def supports_of(
     )
 
 
+def _of_seats(
+    study: Study, model: GirderModel, fits: dict[dt.date, tuple[VisitFit, KeptResult]], until: dt.date | None
+) -> list[str]:
+    """Cautions on seats: never read, read long ago, risen since."""
+    name = model.doc.id
+    histories = seat_histories(study, name, until)
+    newest = max([*fits, *(visit.date for visit in study.until(until))])
+    said = cautions.seats_not_read(name, [s.id for s in model.doc.supports if s.id not in histories], newest)
+    old: dict[dt.date, list[str]] = {}
+    for support, history in histories.items():
+        if history[-1].date < newest:
+            old.setdefault(history[-1].date, []).append(support)
+        for first, second in pairwise(history):
+            fall = second.value - first.value
+            if fall < -cautions.SUSPECT * float(np.hypot(first.sd, second.sd)):
+                args = (1e3 * first.value, 1e3 * second.value, first.date, second.date)
+                said.append(cautions.seat_turned(name, support, *args))
+    for date, supports in sorted(old.items()):
+        said += cautions.seats_old(name, supports, date, newest)
+    return said
+
+
+def _of_datum(study: Study, until: dt.date | None) -> list[str]:
+    """Cautions where the levels' datum got another name."""
+    levelled = [v for v in study.until(until) if any(r.quantity == "settlement" for r in v.readings)]
+    return [
+        cautions.datum_changed(first.datum, second.datum, second.date)
+        for first, second in pairwise(levelled)
+        if first.datum.strip() != second.datum.strip()
+    ]
+
+
 def _forgotten(model: GirderModel, own: dict[dt.date, GirderFit], date: dt.date) -> list[str]:
     said = []
     for i, support in enumerate(model.pad_ids):
@@ -236,9 +273,9 @@ def _forgotten(model: GirderModel, own: dict[dt.date, GirderFit], date: dt.date)
     return said
 
 
-def settlements(study: Study, girder: str, until: dt.date | None) -> dict[str, Settlement]:
-    """The last measured seat settlement of each support of a girder; repeats of one visit are pooled by weight."""
-    found: dict[str, Settlement] = {}
+def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str, list[Settlement]]:
+    """Measured settlements of each support of a girder, by date; repeats of one visit are pooled by weight."""
+    found: dict[str, list[Settlement]] = {}
     for visit in study.until(until):
         values: dict[str, list[tuple[float, float]]] = {}
         for reading in visit.readings:
@@ -253,10 +290,16 @@ def settlements(study: Study, girder: str, until: dt.date | None) -> dict[str, S
         for support, pairs in values.items():
             value, sd = np.array(pairs).T
             weight = sd**-2.0
-            found[support] = Settlement(
+            pooled = Settlement(
                 value=float((weight @ value) / weight.sum()), sd=float(weight.sum() ** -0.5), date=visit.date
             )
+            found.setdefault(support, []).append(pooled)
     return found
+
+
+def settlements(study: Study, girder: str, until: dt.date | None) -> dict[str, Settlement]:
+    """The last measured settlement of each support of a girder."""
+    return {support: history[-1] for support, history in seat_histories(study, girder, until).items()}
 
 
 def _assess_girder(model: GirderModel, supports: Supports) -> tuple[GirderAssessment, list[float]]:

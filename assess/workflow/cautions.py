@@ -5,7 +5,8 @@ from __future__ import annotations
 import datetime as dt
 from collections.abc import Sequence
 
-from assess.calibrate import SUSPECT, Fit
+from assess.calibrate import SUSPECT as SUSPECT
+from assess.calibrate import Fit
 from assess.results import GirderCalibration, ReactionResult, SectionResult
 from db.documents import ReadingDoc, VisitDoc
 
@@ -212,13 +213,12 @@ def uplift(girder: str, reactions: Sequence[ReactionResult], factored: Sequence[
 def of_sections(girder: str, sections: Sequence[SectionResult]) -> list[str]:
     """Cautions on rows that are over, may be over, or cannot be judged."""
     said = []
+    blind: dict[str, list[str]] = {}
     for row in sections:
         name = f"{girder}: {section_name(row.effect, row.span, row.support)}"
         case = row.calibrated
         if case.utilisation is None:
-            said.append(
-                f"{name}: utilisation not determined: no {row.effect} capacity is given for the section at {case.x_m:.4g} m."
-            )
+            blind.setdefault(row.effect, []).append(f"{case.x_m:.4g} m")
             continue
         if case.utilisation > 1.0:
             said.append(f"{name} is over its factored capacity: utilisation {case.utilisation:.3g}.")
@@ -232,6 +232,11 @@ def of_sections(girder: str, sections: Sequence[SectionResult]) -> list[str]:
                 f"{name}: the measured supports relieve it (utilisation {case.utilisation:.3g}, {kinder:.3g} on unyielding "
                 "supports); such relief can go when pads stiffen, settle or are replaced: do not bank it."
             )
+    for effect, where in blind.items():
+        said.append(
+            f"{girder}: {effect} not determined where it governs at {', '.join(dict.fromkeys(where))}: the section there has no "
+            f"{effect} capacity in the bridge file."
+        )
     return said
 
 
@@ -309,21 +314,73 @@ def far_extrapolation(limit: dt.date) -> str:
     return f"Dates after {limit} lie further ahead than twice the span of the visits: read them as a direction, not a date."
 
 
-def settlements_not_forecast(girder: str, supports: Sequence[str]) -> list[str]:
-    """Caution: settlements are held at their last value."""
+def seat_moves(girder: str, support: str, rate: float, low: float, high: float) -> str:
+    """Caution: a seat that moves on (mm a year)."""
+    return (
+        f'{girder}: the seat at "{support}" moves by {rate:+.2g} mm a year ({low:+.2g} to {high:+.2g}, downward positive) and is '
+        "carried on at that rate; find out why it moves, because the ground may not keep to a line."
+    )
+
+
+def seats_without_rate(girder: str, supports: Sequence[str]) -> list[str]:
+    """Caution: seats read once."""
     if not supports:
         return []
     names = ", ".join(f'"{support}"' for support in supports)
     return [
-        f"{girder}: seat settlements ({names}) are held at their last measured values; they are not carried forward."
+        f"{girder}: the seat level at {names} was read on one visit only: no rate; it is held at that level."
     ]
+
+
+def seats_not_read(girder: str, supports: Sequence[str], last: dt.date) -> list[str]:
+    """Caution: seats that were never levelled."""
+    if not supports:
+        return []
+    names = ", ".join(f'"{support}"' for support in supports)
+    return [
+        f"{girder}: no seat level is in the record for {names} up to {last}: settlement there is unknown and not in these figures."
+    ]
+
+
+def seats_old(girder: str, supports: Sequence[str], date: dt.date, newest: dt.date) -> list[str]:
+    """Caution: seat levels that are older than the visit that is assessed."""
+    if not supports:
+        return []
+    names = ", ".join(f'"{support}"' for support in supports)
+    return [
+        f"{girder}: the seat level at {names} is of {date}, not of the visit of {newest}: what has moved since is not in these figures."
+    ]
+
+
+def seat_turned(
+    girder: str, support: str, before: float, after: float, first: dt.date, second: dt.date
+) -> str:
+    """Caution: a seat that rose between two visits by more than its levels allow (mm)."""
+    return (
+        f'{girder}: the seat at "{support}" stands {after:.3g} mm down on {second} and stood {before:.3g} mm down on {first}: a seat '
+        "seldom rises; check the datum, the benchmark and the sign before relying on it."
+    )
+
+
+def datum_changed(first: str, second: str, date: dt.date) -> str:
+    """Caution: the levels' datum has another name."""
+    return (
+        f'The levels of {date} have another datum ("{second}") than those before ("{first}"): settlements are compared as if '
+        "both were one."
+    )
+
+
+def resistance_above_one(factor: float) -> str:
+    """Caution: a resistance factor that raises capacities."""
+    return (
+        f"The resistance factor {factor:g} multiplies the capacities and raises them; a partial factor that divides them is to be "
+        f"written as {1.0 / factor:.3g}."
+    )
 
 
 def overdue(date: dt.date) -> str:
     """Caution: the next visit is due or overdue."""
-    return (
-        f"The next visit was due by {date}: what is shown is out of date, and its present state is unknown."
-    )
+    return f"The next visit was due by {date}: what is shown is of the last visit, and the bridge's present state is unknown."
 
 
 def assumed_interval(years: float) -> str:

@@ -5,13 +5,22 @@ from __future__ import annotations
 import datetime as dt
 from collections.abc import Iterator
 from contextlib import contextmanager
+from dataclasses import replace
 from pathlib import Path
 
-from assess.workflow.pads import refuse_pads
 from assess.workflow.live_loads import check_live
+from assess.workflow.pads import refuse_pads
 from db.documents import BridgeDoc, VisitDoc
 from db.errors import BedstoneError
-from db.exchange import check_losses, check_visit, draft_bridge, read_bridge, read_visit
+from db.exchange import (
+    bridge_queries,
+    check_losses,
+    check_visit,
+    draft_bridge,
+    read_bridge,
+    read_visit,
+    visit_queries,
+)
 from db.records import BridgeSummary, Taken, VisitSummary
 from db.store import Record, open_record
 from db.wording import printable
@@ -32,7 +41,7 @@ def add_bridge(url: str, path: Path) -> tuple[BridgeDoc, Taken]:
     check_live(document, file=printable(str(path)))
     refuse_pads(document, printable(str(path)))
     with open_record(url) as record, _naming(path):
-        return document, record.add_bridge(document)
+        return document, replace(record.add_bridge(document), queries=tuple(bridge_queries(document)))
 
 
 def list_bridges(url: str) -> list[BridgeSummary]:
@@ -41,13 +50,16 @@ def list_bridges(url: str) -> list[BridgeSummary]:
         return record.bridges()
 
 
-def log_visit(url: str, path: Path) -> tuple[VisitDoc, Taken]:
-    """Take in a visit file, whole or not at all."""
+def log_visit(url: str, path: Path, *, keep: bool = True) -> tuple[VisitDoc, Taken]:
+    """Take in a visit file, whole or not at all; with `keep` off it is checked and not kept."""
     document = read_visit(path)
     with open_record(url) as record, _naming(path):
         bridge = _bridge_of(record, document.bridge)
         check_visit(document, bridge, today=dt.date.today(), file=printable(str(path)))
-        return document, record.log_visit(document)
+        before = [one for one in record.visit_docs(bridge.id) if one.date < document.date]
+        queries = tuple(visit_queries(document, before[-1] if before else None))
+        taken = record.log_visit(document) if keep else Taken(added=False, tried=True)
+        return document, replace(taken, queries=queries)
 
 
 def _bridge_of(record: Record, bridge: str) -> BridgeDoc:

@@ -29,6 +29,11 @@ def show_bridge(url: str, bridge: str, *, visit: dt.date | None = None) -> Bridg
     """Show the newest revision of a bridge file, its sections with the losses measured up to a day (None: all)."""
     with open_record(url) as record:
         document = record.bridge(bridge).document
+    return bridge_view(document, visit)
+
+
+def bridge_view(document: BridgeDoc, visit: dt.date | None = None) -> BridgeView:
+    """What a bridge file comes to, its sections with the losses measured up to a day (None: all)."""
     views = section_views(document, visit)
     return BridgeView(
         shown=BridgeShown(

@@ -11,10 +11,19 @@ from numpy.typing import NDArray
 
 from assess.calibrate import SUSPECT
 from assess.capacity import evaluate, evaluate_draws
-from assess.results import PadTrend, SpanTrend, TrendResult
-from assess.trend import PadLaw, Trend, VisitEstimate, crossing, fit_trend, pad_future
+from assess.results import PadTrend, SeatTrend, SpanTrend, TrendResult
+from assess.trend import (
+    PadLaw,
+    SeatLaw,
+    Trend,
+    VisitEstimate,
+    crossing,
+    fit_seat,
+    fit_trend,
+    pad_future,
+)
 from assess.workflow import cautions, pad_cautions, section_cautions
-from assess.workflow.assessing import Settlement, Supports, kept_fits, settlements
+from assess.workflow.assessing import Settlement, kept_fits, seat_histories
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import GirderFit, VisitFit, calibrate_visit
 from assess.workflow.pads import cold_shift, corrected
@@ -42,7 +51,7 @@ class GirderTrend:
     visits, fits : the visits that calibrate this girder, by date
     estimates : what each tells, at the reference temperature where a pad's coefficient allows it
     trend : laws of the pads
-    pads, spans : rows of the result
+    pads, spans, seats : rows of the result
     """
 
     girder: str
@@ -52,6 +61,7 @@ class GirderTrend:
     trend: Trend
     pads: list[PadTrend]
     spans: list[SpanTrend]
+    seats: list[SeatTrend]
 
 
 def trend(url: str, bridge: str, *, progress: Progress | None = None) -> TrendResult:
@@ -103,6 +113,7 @@ def trend_study(study: Study, *, progress: Progress) -> tuple[TrendResult, list[
         as_of=as_of,
         pads=[row for part in parts for row in part.pads],
         spans=[row for part in parts for row in part.spans],
+        seats=[row for part in parts for row in part.seats],
         next_visit_by=due,
         next_visit_reason=reason,
         cautions=[*said, cautions.PERMANENT_STIFFNESS, *cautions.STANDING],
@@ -138,8 +149,9 @@ def _girder(
     first, last = own[0][0].date, own[-1][0].date
     estimates = [_estimate(model, visit, fit, first) for visit, fit in own]
     found = fit_trend(estimates, model.prior.mean, model.prior.sd, model.prior.correlation)
-    measured = settlements(study, model.doc.id, None)
-    spans = _spans(model, found, measured, _years(first, last), last)
+    histories = seat_histories(study, model.doc.id, None)
+    seats = {support: _seat_law(history) for support, history in histories.items()}
+    spans = _spans(model, found, seats, _years(first, last), last)
     dates = [visit.date for visit, _ in own]
     pads = [_pad(model, i, law, len(own)) for i, law in enumerate(found.laws)]
     part = GirderTrend(
@@ -150,9 +162,10 @@ def _girder(
         trend=found,
         pads=pads,
         spans=spans,
+        seats=[_seat(model, s, law, len(histories[s])) for s, law in seats.items()],
     )
     said = _of_laws(model, found, estimates, dates)
-    said += cautions.settlements_not_forecast(model.doc.id, list(measured))
+    said += _of_seats(model, seats, histories, last)
     for row in spans:
         name = f"{model.doc.id}: {cautions.section_name(row.effect, row.span, row.support)}"
         chance = row.probability_over_1_now
@@ -211,18 +224,22 @@ def _of_laws(
             said.append(cautions.rate_untold(name, support))
         elif law.scatter > 1.0:
             said.append(cautions.scattered(name, support, law.scatter))
-        worst = _jump(estimates, i)
+        worst = _jump(estimates, i, law.rate if law.law == "drift" else 0.0)
         if worst is not None:
             change, at = worst
             said.append(cautions.jump(name, support, change, dates[at - 1], dates[at]))
     return said
 
 
-def _jump(estimates: list[VisitEstimate], pad: int) -> tuple[float, int] | None:
-    """The largest change between neighbouring visits past 3.29 of its own sd: (relative change, later visit)."""
+def _jump(estimates: list[VisitEstimate], pad: int, rate: float) -> tuple[float, int] | None:
+    """The largest change between neighbouring visits beyond the law's own, if past 3.29 of its sd.
+
+    Returned as (relative change, later visit).
+    """
     value = np.array([e.log_stiffness[pad] for e in estimates])
     sd = np.array([e.sd[pad] for e in estimates])
-    z = np.diff(value) / np.hypot(sd[1:], sd[:-1])
+    beyond = np.diff(value) - rate * np.diff([e.time for e in estimates])
+    z = beyond / np.hypot(sd[1:], sd[:-1])
     at = int(np.argmax(np.abs(z)))
     if abs(z[at]) <= SUSPECT:
         return None
@@ -237,23 +254,61 @@ def forecast_years(span_of_visits: float) -> Floats:
     return np.linspace(0.0, float(np.clip(2.0 * span_of_visits, *_HORIZON)), _TIMES)
 
 
-def _spans(
-    model: GirderModel, found: Trend, measured: dict[str, Settlement], span_of_visits: float, last: dt.date
-) -> list[SpanTrend]:
-    supports = Supports(
-        log_stiffness=found.now,
-        covariance=found.now_covariance,
-        source=last,
-        fit=None,
-        settlements=measured,
+def _seat_law(history: list[Settlement]) -> SeatLaw:
+    times = np.array([_years(history[0].date, one.date) for one in history])
+    return fit_seat(times, np.array([one.value for one in history]), np.array([one.sd for one in history]))
+
+
+def _seat(model: GirderModel, support: str, law: SeatLaw, visits: int) -> SeatTrend:
+    told = visits > 1 and np.isfinite(law.rate)
+    low, high = law.interval
+    return SeatTrend(
+        girder=model.doc.id,
+        support=support,
+        visits=visits,
+        settlement_mm=1e3 * law.last,
+        sd_mm=1e3 * law.last_sd,
+        moving=law.moving,
+        rate_mm_per_year=1e3 * law.rate if told else None,
+        low95=1e3 * low if told else None,
+        high95=1e3 * high if told else None,
     )
-    rows = evaluate(model.effects, model.factors, model.compliance(found.now), supports.drops(model))
+
+
+def _of_seats(
+    model: GirderModel, seats: dict[str, SeatLaw], histories: dict[str, list[Settlement]], last: dt.date
+) -> list[str]:
+    name = model.doc.id
+    said = []
+    for support, law in seats.items():
+        if law.moving:
+            said.append(cautions.seat_moves(name, support, *(1e3 * v for v in (law.rate, *law.interval))))
+    single = [support for support, history in histories.items() if len(history) < 2]
+    return (
+        said
+        + cautions.seats_without_rate(name, single)
+        + cautions.seats_not_read(name, [s.id for s in model.doc.supports if s.id not in histories], last)
+    )
+
+
+def _spans(
+    model: GirderModel, found: Trend, seats: dict[str, SeatLaw], span_of_visits: float, last: dt.date
+) -> list[SpanTrend]:
+    drops_now = np.zeros(model.n)
+    for support, law in seats.items():
+        drops_now[model.doc.support_index(support)] = law.last
+    rows = evaluate(model.effects, model.factors, model.compliance(found.now), drops_now)
     years = forecast_years(span_of_visits)
-    if all(law.drift_weight == 0.0 for law in found.laws):
+    if all(law.drift_weight == 0.0 for law in found.laws) and all(
+        law.weight == 0.0 for law in seats.values()
+    ):
         years = years[:1]
     future = pad_future(found, years, draws=FORECAST_DRAWS, seed=SEED)
     compliances = model.compliance(future.log_stiffness)  # (draws, times, n)
-    drops = np.broadcast_to(supports.drop_draws(model, FORECAST_DRAWS, SEED)[:, None, :], compliances.shape)
+    drops = np.zeros(compliances.shape)
+    rng = np.random.default_rng([SEED, 1])
+    for support, law in seats.items():
+        drops[:, :, model.doc.support_index(support)] = law.draws(years, FORECAST_DRAWS, rng)
     flat = (FORECAST_DRAWS * years.size, model.n)
     drawn = evaluate_draws(model.effects, model.factors, compliances.reshape(flat), drops.reshape(flat))
     result = []
@@ -302,13 +357,21 @@ def _next_visit(study: Study, as_of: dt.date, parts: list[GirderTrend]) -> tuple
         interval = DEFAULT_INTERVAL_YEARS
         said.append(cautions.assumed_interval(interval))
     due, reason = _reach(last, interval), f"the interval of {interval:g} years between visits"
-    for part in parts:
-        for row in part.spans:
-            date = row.earliest_5_percent
-            if date is not None and date < due:
-                due = date
-                name = cautions.section_name(row.effect, row.span, row.support)
-                reason = f"{part.girder}: {name} reaches a 5 % chance of being over its factored capacity"
+    dated = [
+        (row.earliest_5_percent, -(row.utilisation_now or 0.0), part.girder, row)
+        for part in parts
+        for row in part.spans
+        if row.earliest_5_percent is not None and row.earliest_5_percent < due
+    ]
+    if dated:
+        due, _, girder, row = min(dated, key=lambda one: one[:2])
+        name = f"{girder}: {cautions.section_name(row.effect, row.span, row.support)}"
+        chance = row.probability_over_1_now or 0.0
+        reason = f"{name} reaches a 5 % chance of being over its factored capacity"
+        if row.status == "over":
+            reason = f"{name} is over its factored capacity"
+        elif chance >= 0.05:
+            reason = f"{name} has a {chance:.0%} chance of being over its factored capacity already"
     if due < dt.date.today():
         said.append(cautions.overdue(due))
     return due, reason, said

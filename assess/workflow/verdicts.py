@@ -2,18 +2,34 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
+
 from assess.results import (
     AssessmentResult,
     CalibrationResult,
     GirderAssessment,
     PadTrend,
+    SeatTrend,
     SectionResult,
     SpanTrend,
     TrendResult,
 )
 from assess.workflow.cautions import section_name
+from assess.workflow.drivers import Driver
 
+_TELLS = 0.005  # of a utilisation: what a support must add to be named
 _ORDER = {"over": 0, "watch": 1, "within": 2, "unknown": 3}
+
+
+def head_row(trend: TrendResult | None, girder: str) -> SpanTrend | None:
+    """The section that a girder's first sentence speaks of: over, soonest to be over, or most used."""
+    rows = [row for row in trend.spans if row.girder == girder] if trend is not None else []
+    judged = [row for row in rows if row.status != "unknown"]
+    if not judged:
+        return None
+    worst = min(judged, key=lambda row: (_ORDER[row.status], -(row.utilisation_now or 0.0)))
+    soon = _soonest(judged)
+    return worst if worst.status == "over" or soon is None else soon
 
 
 def verdict(
@@ -21,51 +37,83 @@ def verdict(
     assessment: AssessmentResult,
     trend: TrendResult | None,
     calibration: CalibrationResult | None,
+    found: Sequence[Driver] = (),
 ) -> str:
-    """What to do first on a girder, and by when."""
+    """What to do first on a girder, and by when; `found` are the drivers of its `head_row`."""
     own = next(g for g in assessment.girders if g.girder == girder)
-    rows = [row for row in trend.spans if row.girder == girder] if trend is not None else []
-    if trend is None or not rows:
+    if trend is None or not any(row.girder == girder for row in trend.spans):
         return _without_trend(girder, own)
-    by = trend.next_visit_by.isoformat() if trend.next_visit_by else "the owner's own interval"
-    unknown = [row for row in rows if row.status == "unknown"]
-    judged = [row for row in rows if row.status != "unknown"]
-    if not judged:
+    row = head_row(trend, girder)
+    if row is None:
         return f"Girder {girder}: not determined: no capacities are given; complete the bridge file before anything else."
-    worst = min(judged, key=lambda row: (_ORDER[row.status], -(row.utilisation_now or 0.0)))
-    name = section_name(worst.effect, worst.span, worst.support)
-    number = _number(own, worst)
-    if worst.status == "over":
-        sentence = (
-            f"Girder {girder}: have a licensed engineer decide now on restricting or propping: {name} is over its factored "
-            f"capacity (utilisation {number})"
-        )
-    elif (soon := _soonest(judged)) is not None and soon.earliest_5_percent is not None:
-        chance = soon.probability_over_1_now or 0.0
-        what = section_name(soon.effect, soon.span, soon.support)
-        when = (
-            f"already has a {chance:.0%} chance of being over"
-            if chance >= 0.05
-            else f"reaches a 5 % chance of being over its factored capacity by {soon.earliest_5_percent.isoformat()}"
-        )
-        sentence = f"Girder {girder}: visit by {by} and prepare a remedy: {what} {when} (utilisation {_number(own, soon)})"
-    elif worst.status == "watch":
-        sentence = f"Girder {girder}: watch {name} (utilisation {number}) and visit by {by}"
-    else:
-        sentence = f"Girder {girder}: visit by {by}; the most used section is {name} (utilisation {number})"
-    changed = _changed(trend, girder)
-    if changed is not None:
-        rate = changed.change_per_year_percent or 0.0
-        sentence += (
-            f'; look first at the pad at "{changed.support}", whose stiffness changes by {rate:+.3g} % a year '
-            f"({changed.low95:+.3g} to {changed.high95:+.3g})"
-        )
-    found = _softest(calibration, girder)
-    if found and changed is None:
-        sentence += f"; {found}"
+    sentence = f"Girder {girder}: {_first(own, row, trend)}"
+    causes = _causes(girder, trend, calibration, found)
+    if causes:
+        sentence += f"; look first at {causes}"
+    unknown = sum(one.girder == girder and one.status == "unknown" for one in trend.spans)
     if unknown:
-        sentence += f"; {len(unknown)} sections are not determined for want of a capacity"
+        sentence += f"; {unknown} sections are not determined for want of a capacity"
     return sentence + "."
+
+
+def _first(own: GirderAssessment, row: SpanTrend, trend: TrendResult) -> str:
+    by = trend.next_visit_by.isoformat() if trend.next_visit_by else "the owner's own interval"
+    name, number = section_name(row.effect, row.span, row.support), _number(own, row)
+    if row.status == "over":
+        return (
+            f"have a licensed engineer decide now on restricting or propping: {name} is over its factored capacity "
+            f"(utilisation {number})"
+        )
+    if row.earliest_5_percent is not None:
+        chance = row.probability_over_1_now or 0.0
+        when = (
+            f"already has a {chance:.0%} chance of being over its factored capacity"
+            if chance >= 0.05
+            else f"reaches a 5 % chance of being over its factored capacity by {row.earliest_5_percent.isoformat()}"
+        )
+        return f"visit by {by} and prepare a remedy: {name} {when} (utilisation {number})"
+    if row.status == "watch":
+        return f"watch {name} (utilisation {number}) and visit by {by}"
+    return f"visit by {by}; the most used section is {name} (utilisation {number})"
+
+
+def _causes(
+    girder: str, trend: TrendResult, calibration: CalibrationResult | None, found: Sequence[Driver]
+) -> str:
+    """Name the supports that drive the section, and a pad that changes even if it drives nothing yet."""
+    still = {s.support for s in trend.seats if s.girder == girder and _stands(s)}
+    told = [one for one in found if one.adds >= _TELLS and not (one.what == "seat" and one.support in still)][
+        :2
+    ]
+    parts = [_cause(girder, trend, one) for one in told]
+    changed = _changed(trend, girder)
+    if changed is not None and ("pad", changed.support) not in {(one.what, one.support) for one in told}:
+        parts.append(f'the pad at "{changed.support}", whose {_rate(changed)}')
+    odd = _softest(calibration, girder)
+    if not parts and odd:
+        parts.append(odd)
+    return ", then at ".join(parts)
+
+
+def _stands(seat: SeatTrend) -> bool:
+    """Tell whether a seat has not moved beyond twice the standard deviation of its level."""
+    return not seat.moving and abs(seat.settlement_mm) < 2.0 * seat.sd_mm
+
+
+def _cause(girder: str, trend: TrendResult, one: Driver) -> str:
+    if one.what == "seat":
+        seat = next(s for s in trend.seats if (s.girder, s.support) == (girder, one.support))
+        way = "down" if seat.settlement_mm >= 0.0 else "up"
+        moving = f", moving by {seat.rate_mm_per_year:+.2g} mm a year" if seat.moving else ""
+        return f'the seat at "{one.support}", {abs(seat.settlement_mm):.3g} mm {way}{moving}: it adds {one.adds:.2g}'
+    pad = next((p for p in trend.pads if (p.girder, p.support) == (girder, one.support)), None)
+    moving = f", whose {_rate(pad)}" if pad is not None and pad.law != "steady" else ""
+    return f'the pad at "{one.support}"{moving}: it adds {one.adds:.2g}'
+
+
+def _rate(pad: PadTrend) -> str:
+    rate = pad.change_per_year_percent or 0.0
+    return f"stiffness changes by {rate:+.3g} % a year ({pad.low95:+.3g} to {pad.high95:+.3g})"
 
 
 def cautions_beside(girder: str, said: list[str]) -> list[str]:
@@ -79,6 +127,8 @@ def cautions_beside(girder: str, said: list[str]) -> list[str]:
         "nominal",
         "straight line",
         "was due",
+        "the seat at",
+        "seat level",
     )
     return [one for one in said if one.startswith(f"{girder}:") and any(word in one for word in words)] + [
         one
@@ -138,5 +188,5 @@ def _softest(calibration: CalibrationResult | None, girder: str) -> str | None:
         ]
         if odd:
             pad = min(odd, key=lambda p: p.ratio_to_nominal)
-            return f'look at the pad at "{pad.support}", found at {pad.ratio_to_nominal:.2g} times nominal'
+            return f'the pad at "{pad.support}", found at {pad.ratio_to_nominal:.2g} times nominal'
     return None

@@ -24,13 +24,14 @@ from assess.workflow import cautions
 from assess.workflow.assessing import Supports, assess_study, kept_fits, supports_of
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import VisitFit, calibrate_visit
+from assess.workflow.drivers import Driver, drivers
 from assess.workflow.live_loads import live_in_words
 from assess.workflow.movements import line_of, points_of
 from assess.workflow.showing import section_views
 from assess.workflow.stands import governing_stands
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
 from assess.workflow.trending import DAYS_PER_YEAR, GirderTrend, trend_study, with_future
-from assess.workflow.verdicts import cautions_beside, verdict
+from assess.workflow.verdicts import cautions_beside, head_row, verdict
 from db.documents import VisitDoc
 from db.store import open_record
 
@@ -80,7 +81,7 @@ def _view(
         visits=[(v.date, v.party, v.pad_temperature, len(v.readings)) for v in study.visits],
         factors=_factors(study),
         live=live_in_words(bridge),
-        verdicts={g.id: verdict(g.id, assessment, trend, calibration) for g in bridge.girders},
+        verdicts={g.id: _verdict(study, g.id, assessment, trend, calibration) for g in bridge.girders},
         verdict_cautions={g.id: cautions_beside(g.id, said) for g in bridge.girders},
         calibration=calibration,
         assessment=assessment,
@@ -96,6 +97,22 @@ def _view(
         cautions=said,
         sections=section_views(bridge, None),
     )
+
+
+def _verdict(
+    study: Study,
+    girder: str,
+    assessment: AssessmentResult,
+    trend: TrendResult | None,
+    calibration: CalibrationResult | None,
+) -> str:
+    row = head_row(trend, girder)
+    found: list[Driver] = []
+    if row is not None:
+        model = study.model(girder)
+        supports, _ = supports_of(study, model, kept_fits(study, None), None)
+        found = drivers(model, supports, row)
+    return verdict(girder, assessment, trend, calibration, found)
 
 
 def _factors(study: Study) -> str:

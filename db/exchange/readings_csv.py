@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import csv
 import io
+import re
 
 from db.documents import QUANTITIES, ReadingDoc
 from db.errors import BedstoneError
@@ -16,6 +18,8 @@ REQUIRED = ("girder", "state", "quantity", "value", "sd", "unit")
 OPTIONAL = ("support", "at", "height", "instrument", "remark")
 COLUMNS = "girder,state,quantity,support,at,value,sd,unit,instrument,remark"
 WHAT = "table of readings"
+_SD_NAMES = ("stdev", "std", "stddev", "sigma", "s.d.", "standard deviation", "uncertainty")
+_UNEVEN = re.compile(r"Expected (\d+) fields in line (\d+), saw (\d+)")
 
 Row = tuple[int, dict[str, str]]
 
@@ -83,16 +87,30 @@ def _cells(text: str, file: str) -> list[list[str]]:
     except pd.errors.EmptyDataError:
         return []
     except (pd.errors.ParserError, ValueError, OverflowError) as error:
+        _refuse_uneven(str(error), head, file)
         remedy = f"save it as CSV with the columns {COLUMNS}"
         raise BedstoneError(f"it is not CSV: {shown_reason(error)}", file=file, remedy=remedy) from error
     return [[cell if isinstance(cell, str) else "" for cell in row] for row in frame.to_numpy().tolist()]
+
+
+def _refuse_uneven(reason: str, head: str, file: str) -> None:
+    """Say which row has too many cells; a missing column is named first, because it is the likelier slip."""
+    found = _UNEVEN.search(reason)
+    if found is None:
+        return
+    wanted, row, seen = found.groups()
+    _check_names([name.strip() for name in next(csv.reader([head]), [])], file)
+    problem = f"row {row} has {seen} cells, the names in row 1 are {wanted}"
+    remedy = "write decimals with a point, and put a remark that holds a comma in quotes"
+    raise BedstoneError(problem, file=file, field=f"row {row}", remedy=remedy)
 
 
 def _check_names(names: list[str], file: str) -> None:
     known = (*REQUIRED, *OPTIONAL)
     for name in names:
         if name not in known:
-            problem = f'unknown column "{shown(name)}"{suggestion(name, known)}'
+            meant = ' - did you mean "sd"?' if name.lower() in _SD_NAMES else suggestion(name, known)
+            problem = f'unknown column "{shown(name)}"{meant}'
             raise BedstoneError(problem, file=file, field="row 1", remedy=f"known: {', '.join(known)}")
         if names.count(name) > 1:
             problem = f'two columns are called "{name}"'

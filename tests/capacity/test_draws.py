@@ -68,7 +68,9 @@ def apart(seed: int) -> Floats:
     return np.asarray((singly - drawn) / np.maximum(singly, 0.01))
 
 
-@pytest.mark.parametrize("seed", [1, 4, 5, 6, 8, 9])
+@pytest.mark.parametrize(
+    "seed", [1, 4, 5, 6, 8, 282732]
+)  # the last: a shear that seldom governs, of the other sense
 def test_a_batch_of_draws_is_what_one_at_a_time_gives(seed: int) -> None:
     assert apart(seed).max() < 1e-3
 

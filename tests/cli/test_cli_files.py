@@ -104,7 +104,8 @@ def sample(monkeypatch, workflow, page_writer):
     monkeypatch.setattr(demo, "_sample_files", lambda: files)
     calls: list[tuple[str, str]] = []
 
-    def log(url, path):
+    def log(url, path, *, keep=True):
+        assert keep
         calls.append(("log", path.name))
         visit = VisitDoc(
             bridge=demo.BRIDGE, date=dt.date(2016, 5, 10), states=(), readings=(), text="", digest="0"
@@ -171,7 +172,7 @@ def test_the_demo_refuses_a_folder_in_use(bedstone, sample, name):
 def test_the_demo_stops_at_the_first_failure(bedstone, sample, workflow):
     from db.errors import BedstoneError
 
-    def refuse(url, path):
+    def refuse(url, path, *, keep=True):
         raise BedstoneError("is wrong", file=path.name, remedy="mend it")
 
     workflow(log_visit=refuse)

@@ -26,6 +26,7 @@ from assess.results import (
     ReactionResult,
     ReadingResult,
     ReportView,
+    SeatTrend,
     SectionResult,
     SpanTrend,
     SupportView,
@@ -342,6 +343,19 @@ def trend_of(names: list[str]) -> TrendResult:
         as_of=VISITS[-1],
         pads=pads,
         spans=spans,
+        seats=[
+            SeatTrend(
+                girder="north",
+                support="pier 1",
+                visits=6,
+                settlement_mm=3.2,
+                sd_mm=0.3,
+                moving=True,
+                rate_mm_per_year=0.41,
+                low95=0.28,
+                high95=0.54,
+            )
+        ],
         next_visit_by=dt.date(2026, 5, 14),
         next_visit_reason="at pier 1 of girder north the probability of exceeding 1 reaches 5 % on 1 September 2026",
         cautions=["The forecast past 2030 rests on the law alone."],

@@ -11,7 +11,7 @@ from itertools import combinations
 import numpy as np
 import pytest
 
-from assess.report.figures import elevation, history, moments, residuals, utilisation
+from assess.report.figures import elevation, history, moments, residuals, seats, utilisation
 from assess.report.figures.layout import pack, spread
 
 
@@ -19,25 +19,37 @@ from assess.report.figures.layout import pack, spread
 def test_the_exaggeration_is_round_and_fills_the_room(view_of, view):
     girder = view_of(view).girders[0]
     per_m, room = 10.0, 60.0
-    factor = elevation.exaggeration(girder, room, per_m)
-    largest = max(elevation.largest_movement_mm(s) for s in girder.states)
-    drops = [s.seat_drop_mm or 0.0 for s in girder.supports]
-    drawn = factor * per_m / 1000.0 * max(largest, *drops)
+    lie = seats.lie(girder)
+    factor = elevation.exaggeration(girder, lie, room, per_m)
+    drawn = factor * per_m / 1000.0 * max(abs(v) for v in seats.extent_mm(girder, girder.states, lie))
     assert 0.6 * room < drawn <= room
     assert f"{factor:.1e}"[:3] in {"1.0", "1.5", "2.0", "2.5", "3.0", "4.0", "5.0", "6.0", "8.0"}
 
 
 def test_a_girder_that_does_not_move_has_no_exaggeration(view_of):
     girder = view_of("bare").girders[0]
-    assert elevation.exaggeration(girder, 60.0, 10.0) is None
+    assert elevation.exaggeration(girder, seats.lie(girder), 60.0, 10.0) is None
     assert "no movement to draw" in elevation.full(girder, None, key="k", zero="west")
+
+
+def test_the_girder_is_drawn_on_its_seats_and_a_seat_within_twice_its_sd_holds_its_level(view_of):
+    girder = view_of("example").girders[0]
+    first, second, *rest = girder.supports
+    supports = [replace(first, seat_drop_mm=0.4, seat_drop_sd_mm=0.3), second, *rest]
+    supports[1] = replace(second, seat_drop_mm=7.2, seat_drop_sd_mm=0.3)
+    lie = seats.lie(replace(girder, supports=supports))
+    places = [support.x_m for support in supports]
+    assert lie.at(places[0]) == pytest.approx(0.0, abs=1e-12)
+    assert lie.at(places[1]) == pytest.approx(7.2)
+    assert lie.moved
+    assert not seats.flat().moved
 
 
 def test_the_elevation_says_its_factor_spans_ratios_and_drops(view_of):
     girder = view_of("example").girders[0]
     drawn = elevation.full(girder, girder.states[1], key="k", zero="west abutment")
     for words in (
-        "movements × 1500",
+        "movements × 1000",
         "12 m",
         "0.410 × nominal",
         "(0.353 to 0.480)",

@@ -8,7 +8,7 @@ from html.parser import HTMLParser
 
 import pytest
 
-from assess.report import render, write_report
+from assess.report import cautions, render, write_report
 from assess.report.words import FIXED_CAUTIONS
 
 VIEWS = ["example", "single_span", "bare", "long_names", "nasty"]
@@ -240,3 +240,14 @@ def test_a_report_that_cannot_be_put_in_place_leaves_nothing_behind(tmp_path, vi
     assert [p.name for p in tmp_path.iterdir()] == ["taken"]
     with pytest.raises(OSError):
         write_report(view_of("single_span"), tmp_path / "missing" / "a.html")
+
+
+def test_the_seats_stand_among_the_years_with_level_and_rate(page_of):
+    page = page_of("example")
+    assert "down 3.2 mm (sd 0.3 mm)" in page
+    assert "0.410 (0.280 to 0.540) mm a year" in page
+
+
+def test_what_is_said_alike_of_several_girders_is_said_once():
+    told = ["north: a", "south: a", "b", "north: c"]
+    assert cautions.grouped(told, ["north", "south"]) == ["north and south: a", "b", "north: c"]

@@ -139,7 +139,7 @@ TREND = {
 }
 # said beside the contract's own keys
 BESIDE_GIRDER = {"pads"}
-BESIDE = {"assess": {"version", "input_digest", "seed", "draws"}, "trend": {"next_visit_reason"}}
+BESIDE = {"assess": {"version", "input_digest", "seed", "draws"}, "trend": {"next_visit_reason", "seats"}}
 
 
 def check(value: Any, shape: Any, where: str = "") -> None:

@@ -7,8 +7,15 @@ import math
 import shutil
 from types import ModuleType
 
+import numpy as np
 import pytest
 
+from assess import workflow
+from assess.girder import places
+from assess.workflow.assessing import kept_fits, supports_of
+from assess.workflow.drivers import drivers
+from assess.workflow.study import Study
+from db.store import open_record
 from tests.workflow.conftest import ROOT, Demo
 
 SAMPLE = ROOT / "sample_data"
@@ -109,3 +116,50 @@ def test_the_assessment_rests_on_the_last_visit(demo: Demo, story: ModuleType) -
     assert demo.assessment.calibration_visit == story.VISITS[-1][0]
     assert demo.trend.as_of == story.VISITS[-1][0]
     assert demo.trend.next_visit_by is not None
+
+
+def test_the_settling_pier_is_carried_forward_and_the_other_seats_stand(
+    demo: Demo, story: ModuleType
+) -> None:
+    moving = {(s.girder, s.support): s for s in demo.trend.seats if s.moving}
+    assert set(moving) == {("north", "pier 2"), ("south", "pier 2")}
+    first, last = story.VISITS[0], story.VISITS[-1]
+    true = (last[3] - first[3]) / ((last[0] - first[0]).days / 365.25)
+    for seat in moving.values():
+        assert seat.low95 is not None
+        assert seat.high95 is not None
+        assert seat.low95 - 0.1 <= true <= seat.high95 + 0.1
+    # south's pads stand still: what brings its hogging at pier 1 to the limit is the seat alone
+    south = next(
+        s for s in demo.trend.spans if (s.girder, s.effect, s.support) == ("south", "hogging", "pier 1")
+    )
+    assert south.median_crossing is not None
+
+
+def test_the_first_sentence_names_the_seat_before_the_pad(demo: Demo) -> None:
+    sentences = workflow.report_view(demo.url, "hollin-water").verdicts
+    north = sentences["north"]
+    assert 0 < north.index('the seat at "pier 2"') < north.index('the pad at "pier 2"')
+    assert "the pad at" not in sentences["south"]
+
+
+def test_the_drivers_of_a_section_are_what_putting_a_support_back_takes_away(demo: Demo) -> None:
+    with open_record(demo.url) as record:
+        study = Study.fetch(record, "hollin-water")
+    model = study.model("north")
+    supports, _ = supports_of(study, model, kept_fits(study, None), None)
+    row = next(
+        s for s in demo.trend.spans if (s.girder, s.effect, s.support) == ("north", "hogging", "pier 1")
+    )
+    found = drivers(model, supports, row)
+    seat = next(d for d in found if (d.what, d.support) == ("seat", "pier 2"))
+    assert found[0] == seat
+    # by hand: the permanent moment per metre of drop, factored, over the resistance
+    place = places(model.condensed, "moment", np.array([15.0]))
+    level = model.condensed.derivatives(
+        model.compliance(supports.log_stiffness),
+        model.condensed.solve(model.compliance(supports.log_stiffness), model.effects.permanent_forces),
+    ).displacement_by_settlement[:, 2]
+    moment = float(place.rows[0] @ level) * supports.settlements["pier 2"].value
+    capacity = float(model.plan.hogging[np.argmin(np.abs(model.plan.x - 15.0))])
+    assert seat.adds == pytest.approx(-1.2 * moment / capacity, rel=1e-6)

@@ -347,7 +347,7 @@ def test_missing_capacities_are_not_determined_and_not_zero(record: str, tmp_pat
         assert (row["calibrated"]["utilisation_high95"] is None) == bare
         assert (row["calibrated"]["rating_factor"] is None) == bare
         assert row["calibrated"]["permanent"] is not None
-    assert any("utilisation not determined: no sagging capacity" in one for one in document["cautions"])
+    assert any("sagging not determined where it governs" in one for one in document["cautions"])
 
 
 # every output -------------------------------------------------------------------------------------

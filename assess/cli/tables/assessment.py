@@ -48,7 +48,7 @@ def _show_sections(girder: GirderAssessment) -> None:
             "utilisation,\nnominal",
             "utilisation, calibrated\n(95 % band)",
             "rating\nfactor",
-            "chance\nover 1, %",
+            "probability\nover 1, %",
         ],
         [_section_row(section) for section in girder.sections],
         words=2,

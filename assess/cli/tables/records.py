@@ -2,25 +2,26 @@
 
 from __future__ import annotations
 
-from collections import Counter
 from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
 import click
 
-from assess.cli.tables.screen import print_table
-from assess.cli.tables.words import counted, listed
+from assess.cli.tables.screen import print_heading, print_table, print_wrapped
+from assess.cli.tables.words import counted, listed, number
 
 if TYPE_CHECKING:
+    from assess.shown import BridgeView
     from db.documents import BridgeDoc, ReadingDoc, VisitDoc
     from db.records import BridgeSummary, Taken, VisitSummary
 
 
-def show_bridge_taken(bridge: BridgeDoc, taken: Taken, models: Sequence[str] = ()) -> None:
+def show_bridge_taken(bridge: BridgeDoc, taken: Taken, view: BridgeView, models: Sequence[str] = ()) -> None:
     """Say what became of a bridge file, and which published live loads it names, in words."""
     revision = "" if taken.revision is None else f" as revision {taken.revision}"
     if not taken.added:
         click.echo(f"Bridge {bridge.id} ({bridge.name}): this file is in the record already{revision}.")
+        _look_again(taken)
         return
     click.echo(f"Bridge {bridge.id} ({bridge.name}): added{revision}.")
     print_table(
@@ -37,9 +38,73 @@ def show_bridge_taken(bridge: BridgeDoc, taken: Taken, models: Sequence[str] = (
         ],
         words=2,
     )
+    click.echo()
+    _show_pads(view)
+    click.echo()
+    _show_sections(bridge, view)
+    if bridge.vehicles:
+        click.echo()
+        _show_vehicles(bridge)
     for model in models:
         click.echo()
         click.echo(f"Live load {model}")
+    factors = bridge.factors
+    click.echo()
+    effects = f"permanent {factors.permanent:g}, live {factors.live:g} on the effects"
+    click.echo(f"Factors: {effects}; capacity x {factors.resistance:g}.")
+    _look_again(taken)
+
+
+def _show_pads(view: BridgeView) -> None:
+    print_table(
+        ["girder", "pad", "nominal, kN/mm", "coefficient\nof variation"],
+        [
+            [girder.girder, pad.support, f"{pad.nominal_kN_per_m / 1e3:.4g}", f"{pad.cv:.3g}"]
+            for girder in view.shown.girders
+            for pad in girder.supports
+            if pad.nominal_kN_per_m is not None and pad.cv is not None
+        ],
+        words=2,
+    )
+
+
+def _show_sections(bridge: BridgeDoc, view: BridgeView) -> None:
+    print_table(
+        ["section", "EI, kN m2", "sagging\ncapacity, kN m", "hogging\ncapacity, kN m", "shear\ncapacity, kN"],
+        [
+            [
+                section.id,
+                number(section.youngs_modulus * shown.second_moment_m4),
+                number(shown.sagging_capacity_kNm, none="not given"),
+                number(shown.hogging_capacity_kNm, none="not given"),
+                number(shown.shear_capacity_kN, none="not given"),
+            ]
+            for section, shown in zip(bridge.sections, view.shown.sections, strict=True)
+        ],
+    )
+
+
+def _show_vehicles(bridge: BridgeDoc) -> None:
+    print_table(
+        ["vehicle", "axles", "weight, kN", "first to last\naxle, m"],
+        [
+            [
+                vehicle.id,
+                str(len(vehicle.axles)),
+                f"{sum(load for _, load in vehicle.axles):g}",
+                f"{max(at for at, _ in vehicle.axles):g}",
+            ]
+            for vehicle in bridge.vehicles
+        ],
+    )
+
+
+def _look_again(taken: Taken) -> None:
+    if not taken.queries:
+        return
+    print_heading("Look again at")
+    for query in taken.queries:
+        print_wrapped(query, first="- ", then="  ")
 
 
 def show_bridges(bridges: Sequence[BridgeSummary]) -> None:
@@ -56,24 +121,36 @@ def show_bridges(bridges: Sequence[BridgeSummary]) -> None:
 
 def show_visit_taken(visit: VisitDoc, taken: Taken) -> None:
     """Say what became of a visit file: readings by state and quantity, and the settlements kept."""
-    if not taken.added:
+    if not taken.added and not taken.tried:
         click.echo(
             f"Bridge {visit.bridge}, visit {visit.date}: this file is in the record already; nothing changed."
         )
         return
     count = counted(len(visit.readings), "reading")
-    click.echo(f"Bridge {visit.bridge}, visit {visit.date}: {count} taken in.")
+    became = "would be taken in; nothing was kept (--dry-run)" if taken.tried else "taken in"
+    click.echo(f"Bridge {visit.bridge}, visit {visit.date}: {count} {became}.")
     if visit.readings:
-        print_table(["state", "quantity", "readings"], _by_state(visit.readings), words=2)
-    settlements = [reading for reading in visit.readings if reading.quantity == "settlement"]
+        print_table(
+            ["state", "quantity", "readings", "values", "standard deviations"],
+            _by_state(visit.readings),
+            words=2,
+        )
+    settlements = [
+        r for r in visit.readings if r.quantity == "settlement" and visit.state(r.state).vehicle is None
+    ]
     if settlements:
         click.echo()
         click.echo("Seat settlements kept for the assessment")
         print_table(
-            ["girder", "support", "settlement", "sd"],
-            [[r.girder, r.support or f"x = {r.at} m", r.value_entered, r.sd_entered] for r in settlements],
+            ["girder", "support", "since the datum", "sd"],
+            [[r.girder, str(r.support), _settlement(r), r.sd_entered] for r in settlements],
             words=2,
         )
+    _look_again(taken)
+
+
+def _settlement(reading: ReadingDoc) -> str:
+    return f"{'up' if reading.value < 0.0 else 'down'} {reading.value_entered.lstrip('+-−')}"
 
 
 def show_visits(bridge: str, visits: Sequence[VisitSummary]) -> None:
@@ -88,5 +165,17 @@ def show_visits(bridge: str, visits: Sequence[VisitSummary]) -> None:
 
 
 def _by_state(readings: Sequence[ReadingDoc]) -> list[list[str]]:
-    counts = Counter((reading.state, reading.quantity) for reading in readings)
-    return [[state, quantity, str(count)] for (state, quantity), count in counts.items()]
+    groups: dict[tuple[str, str], list[ReadingDoc]] = {}
+    for reading in readings:
+        groups.setdefault((reading.state, reading.quantity), []).append(reading)
+    return [
+        [state, quantity, str(len(some)), _range(some, "value"), _range(some, "sd")]
+        for (state, quantity), some in groups.items()
+    ]
+
+
+def _range(readings: Sequence[ReadingDoc], what: str) -> str:
+    """Smallest to largest, as they were written."""
+    ordered = sorted(readings, key=lambda reading: float(getattr(reading, what)))
+    least, most = (str(getattr(reading, f"{what}_entered")) for reading in (ordered[0], ordered[-1]))
+    return least if least == most else f"{least} to {most}"

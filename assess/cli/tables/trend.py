@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import datetime as dt
 from collections.abc import Sequence
 from typing import TYPE_CHECKING
 
@@ -11,11 +12,10 @@ from assess.cli.tables.screen import print_cautions, print_heading, print_table,
 from assess.cli.tables.words import NOT_DETERMINED, chance, day, interval, number, section_name
 
 if TYPE_CHECKING:
-    import datetime as dt
-
-    from assess.results import PadTrend, SpanTrend, TrendResult
+    from assess.results import PadTrend, SeatTrend, SpanTrend, TrendResult
 
 NONE_FORESEEN = "none foreseen"
+STEP_VISITS = 4  # fewer cannot tell a step from a drift
 
 
 def show_trend(result: TrendResult) -> None:
@@ -24,6 +24,10 @@ def show_trend(result: TrendResult) -> None:
     for name in dict.fromkeys([*(p.girder for p in result.pads), *(s.girder for s in result.spans)]):
         print_heading(f"Girder {name}")
         _show_pads([pad for pad in result.pads if pad.girder == name])
+        seats = [seat for seat in result.seats if seat.girder == name]
+        if seats:
+            click.echo()
+            _show_seats(seats)
         click.echo()
         _show_spans([span for span in result.spans if span.girder == name])
     click.echo()
@@ -37,14 +41,41 @@ def _show_pads(pads: Sequence[PadTrend]) -> None:
         [
             [
                 pad.support,
-                pad.law,
+                pad.law if pad.visits > 1 else "none: one visit",
                 str(pad.visits),
                 interval(pad.change_per_year_percent, pad.low95, pad.high95),
-                "no step" if pad.step_between is None else " and ".join(map(day, pad.step_between)),
+                _step(pad),
             ]
             for pad in pads
         ],
         words=2,
+    )
+
+
+def _step(pad: PadTrend) -> str:
+    if pad.step_between is not None:
+        return " and ".join(map(day, pad.step_between))
+    return "no step" if pad.visits >= STEP_VISITS else "cannot be told"
+
+
+def _show_seats(seats: Sequence[SeatTrend]) -> None:
+    print_table(
+        [
+            "seat",
+            "visits",
+            "down since the datum, mm\n(standard deviation)",
+            "downward a year, mm\n(95 % interval)",
+        ],
+        [
+            [
+                seat.support,
+                str(seat.visits),
+                f"{number(seat.settlement_mm)} ({number(seat.sd_mm)})",
+                interval(seat.rate_mm_per_year, seat.low95, seat.high95)
+                + (", moving" if seat.moving else ""),
+            ]
+            for seat in seats
+        ],
     )
 
 
@@ -53,10 +84,10 @@ def _show_spans(spans: Sequence[SpanTrend]) -> None:
         [
             "section",
             "status",
-            "utilisation\nnow",
-            "chance over 1\nnow, %",
+            "utilisation at\nthe last visit",
+            "probability\nover 1, %",
             "median\ncrossing of 1",
-            "chance over 1\nreaches 5 %",
+            "probability over\n1 reaches 5 %",
         ],
         [
             [
@@ -81,4 +112,5 @@ def _next_visit(date: dt.date | None, reason: str) -> str:
     told = f": {reason}" if reason else ""
     if date is None:
         return f"Next visit: date {NOT_DETERMINED}{told}"
-    return f"Next visit by {date}{told}"
+    late = " (OVERDUE)" if date < dt.date.today() else ""
+    return f"Next visit by {date}{late}{told}"

@@ -5,17 +5,19 @@ from __future__ import annotations
 import math
 from dataclasses import dataclass
 
+import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.patches import Circle, Polygon, Rectangle
 
 from assess.report import svg, words
+from assess.report.figures import seats
+from assess.report.figures.bearings import DRAWN_MOST, PAD, draw_pad, draw_pin
 from assess.report.figures.layout import LINE_PT, fitted, pack, row_heights, wrapped, write
 from assess.results import ElevationState, GirderView, MeasuredPoint, SupportView
 
 _DEPTH = 15.0  # pt, girder
-_PAD = 13.0  # pt, pad: its height never changes
 _STONE = 6.0
-_DRAWN_MOST = 2.0  # a pad stiffer than this many times nominal is drawn no wider
+_DATUM = (0, (1.0, 1.6))
 _STEPS = (1.0, 1.5, 2.0, 2.5, 3.0, 4.0, 5.0, 6.0, 8.0)
 
 
@@ -30,13 +32,19 @@ class _Sheet:
     ground: float
     pad_width: float
     line_width: float
+    bar: float  # level of the test vehicle
+    lie: seats.Lie
 
     def x(self, x_m: float) -> float:
         return self.left + self.per_m * x_m
 
+    def under(self, x_m: float) -> float:
+        """Return the level of the girder's soffit as it lies on its seats."""
+        return self.soffit + self.per_mm * float(self.lie.at(x_m))
+
     @property
     def seat(self) -> float:
-        return self.soffit + _PAD
+        return self.soffit + PAD
 
 
 def largest_movement_mm(state: ElevationState) -> float:
@@ -46,13 +54,12 @@ def largest_movement_mm(state: ElevationState) -> float:
     return max((v for v in values if math.isfinite(v)), default=0.0)
 
 
-def exaggeration(girder: GirderView, room_pt: float, per_m: float) -> float | None:
+def exaggeration(girder: GirderView, lie: seats.Lie, room_pt: float, per_m: float) -> float | None:
     """Return the round factor by which movements are drawn larger than lengths; None if nothing moves.
 
-    One factor holds for all states of a girder and for the drops of its seats.
+    One factor holds for all states of a girder and for the lie of the girder on its seats, from which they start.
     """
-    drops = [abs(s.seat_drop_mm) for s in girder.supports if s.seat_drop_mm is not None]
-    largest = max([*drops, *(largest_movement_mm(s) for s in girder.states)], default=0.0)
+    largest = max(abs(v) for v in seats.extent_mm(girder, girder.states, lie))
     if not largest > 0.0:
         return None
     free = room_pt / (largest * per_m / 1000.0)
@@ -75,15 +82,19 @@ def full(girder: GirderView, state: ElevationState | None, *, key: str, zero: st
         What stands at x = 0, in words.
     """
     supports = sorted(girder.supports, key=lambda s: s.x_m)
-    sheet, factor = _sheet(girder, svg.FULL_WIDTH, margin=46.0, head=52.0 if state else 22.0, room=62.0)
+    lie = seats.lie(girder)
+    head = 38.0 if state else 8.0
+    sheet, factor = _sheet(
+        girder, lie, svg.FULL_WIDTH, margin=46.0, head=head, room=72.0 if lie.moved else 62.0
+    )
     anchors = [sheet.x(s.x_m) for s in supports]
     blocks = pack(anchors, [_support_lines(s) for s in supports], low=1.0, high=svg.FULL_WIDTH - 1.0)
     top = sheet.ground + 18.0
     foot = top + sum(row_heights(blocks))
-    height = foot + 2.0 * LINE_PT + 5.0
+    height = foot + (3.0 if lie.moved else 2.0) * LINE_PT + 5.0
     with svg.drawing(svg.FULL_WIDTH, height) as figure:
         axes = svg.paper(figure)
-        _piers(axes, sheet, supports, drops=True)
+        _piers(axes, sheet, supports, full=True)
         _girder(axes, sheet, girder)
         for support in supports:
             _bearing(axes, sheet, support)
@@ -92,7 +103,7 @@ def full(girder: GirderView, state: ElevationState | None, *, key: str, zero: st
         if state is not None:
             _movement(axes, sheet, state, label=True)
             _key(axes, state)
-        _notes(axes, factor, foot=foot, zero=zero)
+        _notes(axes, factor, lie, foot=foot, zero=zero)
         return svg.to_svg(
             figure,
             key=key,
@@ -102,13 +113,13 @@ def full(girder: GirderView, state: ElevationState | None, *, key: str, zero: st
 
 
 def small(girder: GirderView, state: ElevationState, *, key: str) -> str:
-    """Draw one more test state, small, by the exaggeration that fits all states of the girder."""
+    """Draw one more test state, small, by the exaggeration that fits all states; the girder is drawn straight."""
     supports = sorted(girder.supports, key=lambda s: s.x_m)
-    sheet, factor = _sheet(girder, svg.SMALL_WIDTH, margin=12.0, head=46.0, room=36.0)
+    sheet, factor = _sheet(girder, seats.flat(), svg.SMALL_WIDTH, margin=12.0, head=32.0, room=36.0)
     suspects = sum(1 for p in state.points if p.suspect)
     with svg.drawing(svg.SMALL_WIDTH, sheet.ground + 18.0 + (LINE_PT if suspects else 0.0)) as figure:
         axes = svg.paper(figure)
-        _piers(axes, sheet, supports, drops=False)
+        _piers(axes, sheet, supports, full=False)
         _girder(axes, sheet, girder)
         _movement(axes, sheet, state, label=False)
         told = "no movement to draw" if factor is None else f"movements × {words.number(factor)}"
@@ -126,14 +137,15 @@ def small(girder: GirderView, state: ElevationState, *, key: str) -> str:
 
 
 def _sheet(
-    girder: GirderView, width: float, *, margin: float, head: float, room: float
+    girder: GirderView, lie: seats.Lie, width: float, *, margin: float, head: float, room: float
 ) -> tuple[_Sheet, float | None]:
     length = sum(girder.span_lengths_m)
     per_m = (width - 2.0 * margin) / length
-    factor = exaggeration(girder, room, per_m)
-    upward = max((-float(min(s.fitted_mm, default=0.0)) for s in girder.states), default=0.0)
+    factor = exaggeration(girder, lie, room, per_m)
     per_mm = 0.0 if factor is None else factor * per_m / 1000.0
-    soffit = head + max(0.0, upward * per_mm - _DEPTH)
+    upward = -per_mm * seats.extent_mm(girder, [], lie)[0]  # of the girder before a test
+    risen = -per_mm * seats.extent_mm(girder, girder.states, lie)[0]
+    soffit = head + max(upward + _DEPTH, risen)
     shortest = per_m * min(girder.span_lengths_m)
     sheet = _Sheet(
         left=margin,
@@ -143,87 +155,56 @@ def _sheet(
         ground=soffit + room + 26.0,
         pad_width=min(26.0, 0.42 * shortest),
         line_width=1.8 if width == svg.FULL_WIDTH else 1.5,
+        bar=soffit - upward - _DEPTH - 10.0,
+        lie=lie,
     )
     return sheet, factor
 
 
 def _girder(axes: Axes, sheet: _Sheet, girder: GirderView) -> None:
-    a, b = sheet.x(0.0), sheet.x(sum(girder.span_lengths_m))
-    top = sheet.soffit - _DEPTH
-    axes.add_patch(Rectangle((a, top), b - a, _DEPTH, fc=svg.NEUTRAL_TINT, ec=svg.INK, lw=0.9, zorder=2))
-    axes.plot([a, b], [top + 2.5, top + 2.5], color=svg.INK, lw=0.5, zorder=2.1)
-    axes.plot([a, b], [sheet.soffit - 2.5, sheet.soffit - 2.5], color=svg.INK, lw=0.5, zorder=2.1)
+    """Draw the girder as it lies on its pads; where seats moved, its level at the datum as a dotted line."""
+    end = float(sum(girder.span_lengths_m))
+    at = np.linspace(0.0, end, 101) if sheet.lie.moved else np.array([0.0, end])
+    xs = sheet.left + sheet.per_m * at
+    soffit = sheet.soffit + sheet.per_mm * sheet.lie.at(at)
+    outline = np.concatenate([np.stack([xs, soffit], 1), np.stack([xs, soffit - _DEPTH], 1)[::-1]])
+    axes.add_patch(Polygon(outline, closed=True, fc=svg.NEUTRAL_TINT, ec=svg.INK, lw=0.9, zorder=2))
+    for inset in (2.5, _DEPTH - 2.5):
+        axes.plot(xs, soffit - inset, color=svg.INK, lw=0.5, zorder=2.1)
+    if sheet.lie.moved:
+        axes.plot(xs[[0, -1]], [sheet.soffit] * 2, color=svg.SECOND, lw=1.0, ls=_DATUM, zorder=3.5)
 
 
-def _piers(axes: Axes, sheet: _Sheet, supports: list[SupportView], *, drops: bool) -> None:
-    half = 0.5 * sheet.pad_width * (1.0 if drops else 0.5)
+def _piers(axes: Axes, sheet: _Sheet, supports: list[SupportView], *, full: bool) -> None:
+    half = 0.5 * sheet.pad_width * (1.0 if full else 0.5)
     for support in supports:
         x = sheet.x(support.x_m)
-        seat = sheet.seat + (_drop(sheet, support) if drops else 0.0)
+        seat = sheet.under(support.x_m) + PAD
         stone = Rectangle((x - half - 3.0, seat), 2 * half + 6.0, _STONE, fc=svg.NEUTRAL, ec=svg.INK, lw=0.7)
         axes.add_patch(stone)
         for side in (-1.0, 1.0):
             axes.plot([x + side * half] * 2, [seat + _STONE, sheet.ground], color=svg.NEUTRAL, lw=0.9)
         axes.plot([x - half - 5.0, x + half + 5.0], [sheet.ground] * 2, color=svg.NEUTRAL, lw=0.9)
-        if not drops:
-            stub = Rectangle((x - 3.0, sheet.soffit), 6.0, _PAD, fc="white", ec=svg.INK, lw=0.7)
+        if not full:
+            stub = Rectangle((x - 3.0, sheet.soffit), 6.0, PAD, fc="white", ec=svg.INK, lw=0.7)
             axes.add_patch(stub)
 
 
-def _drop(sheet: _Sheet, support: SupportView) -> float:
-    return 0.0 if support.seat_drop_mm is None else support.seat_drop_mm * sheet.per_mm
-
-
 def _bearing(axes: Axes, sheet: _Sheet, support: SupportView) -> None:
-    """Draw a pad or a pin on its seat; a dropped seat shows the level that it had."""
-    x, drop = sheet.x(support.x_m), _drop(sheet, support)
-    top = sheet.soffit + drop
+    """Draw a pad or a pin between girder and seat; an arrow shows how far a seat moved since the datum."""
+    x, top = sheet.x(support.x_m), sheet.under(support.x_m)
+    drop = sheet.per_mm * seats.drop_mm(support)
     if abs(drop) > 0.5:
-        reach = 0.5 * sheet.pad_width + 9.0
+        reach = 0.5 * sheet.pad_width
         axes.plot(
-            [x - reach, x + reach], [sheet.seat] * 2, color=svg.SECOND, lw=0.9, ls=(0, (3, 2)), zorder=3
+            [x - reach - 4, x + reach + 12], [sheet.seat] * 2, color=svg.SECOND, lw=1.0, ls=_DATUM, zorder=3
         )
-        arrow = {"arrowstyle": "-|>", "color": svg.SECOND, "lw": 0.9, "shrinkA": 0, "shrinkB": 0}
-        axes.annotate("", (x + reach - 2, sheet.seat + drop), (x + reach - 2, sheet.seat), arrowprops=arrow)
-        axes.plot([x, x], [sheet.soffit, top], color=svg.INK, lw=0.8, ls=(0, (1, 1.5)), zorder=1)
+        arrow = {"arrowstyle": "-|>", "color": svg.SECOND, "lw": 1.0, "shrinkA": 0, "shrinkB": 0}
+        axes.annotate("", (x + reach + 9, sheet.seat + drop), (x + reach + 9, sheet.seat), arrowprops=arrow)
     if support.kind == "pin":
-        _pin(axes, x, top)
+        draw_pin(axes, x, top)
     else:
-        _pad(axes, x, top, support.ratio, sheet.pad_width)
-
-
-def _pin(axes: Axes, x: float, top: float) -> None:
-    foot = top + _PAD
-    rocker = Polygon([(x - 7, foot), (x + 7, foot), (x + 2.5, top + 4), (x - 2.5, top + 4)], closed=True)
-    rocker.set(fc="white", ec=svg.INK, lw=0.9, zorder=3)
-    axes.add_patch(rocker)
-    axes.add_patch(Circle((x, top + 3.2), 3.2, fc=svg.INK, ec=svg.INK, lw=0.5, zorder=3.1))
-
-
-def _pad(axes: Axes, x: float, top: float, ratio: float | None, nominal: float) -> None:
-    """Draw the stack: as wide as the pad is stiff; the dashed outline is the pad as designed."""
-    outline = Rectangle((x - nominal / 2, top), nominal, _PAD, fc="none", ec=svg.INK, lw=0.7, zorder=3.2)
-    outline.set_linestyle((0, (2, 1.5)))
-    if ratio is None:
-        axes.add_patch(outline)
-        return
-    width = nominal * min(max(ratio, 0.0), _DRAWN_MOST)
-    layer = _PAD / 7.0
-    for i in range(4):  # four rubber layers, three plates between them
-        y = top + 2 * i * layer
-        axes.add_patch(Rectangle((x - width / 2, y), width, layer, fc=svg.ACCENT, ec="none", zorder=3))
-        if i < 3:
-            plate = Rectangle((x - width / 2, y + layer), width, layer, fc="white", ec=svg.ACCENT, lw=0.3)
-            plate.set_zorder(2.9)
-            axes.add_patch(plate)
-    axes.add_patch(outline)
-    if ratio > _DRAWN_MOST:
-        for side in (-1.0, 1.0):
-            tip = x + side * (width / 2 + 5.0)
-            mid = top + _PAD / 2
-            arrow = Polygon([(tip, mid), (tip - side * 4, mid - 4), (tip - side * 4, mid + 4)], closed=True)
-            arrow.set(fc=svg.ACCENT, ec="none", zorder=3)
-            axes.add_patch(arrow)
+        draw_pad(axes, x, top, support.ratio, sheet.pad_width)
 
 
 def _dimensions(axes: Axes, sheet: _Sheet, girder: GirderView) -> None:
@@ -234,7 +215,7 @@ def _dimensions(axes: Axes, sheet: _Sheet, girder: GirderView) -> None:
         axes.plot([a, b], [y, y], color=svg.INK, lw=0.6)
         for end in (a, b):
             axes.plot([end - 2.5, end + 2.5], [y + 2.5, y - 2.5], color=svg.INK, lw=0.9)
-        text = words.entered(length, "m")
+        text = words.span_length(length)
         if svg.text_width(text) < b - a - 6.0:
             axes.text((a + b) / 2, y - 3.0, text, ha="center", va="baseline")
         x_m += length
@@ -249,13 +230,14 @@ def _support_lines(support: SupportView) -> tuple[str, ...]:
         lines = ("not determined:", "no calibration")
     else:
         lines = (f"{words.number(support.ratio)} × nominal", *_interval_lines(support))
-        if support.ratio > _DRAWN_MOST:
-            lines += (f"drawn at {words.entered(_DRAWN_MOST)} ×",)
+        if support.ratio > DRAWN_MOST:
+            lines += (f"drawn at {words.entered(DRAWN_MOST)} ×",)
         if support.data_share is not None and support.data_share < 0.5:
             lines += ("told by the", "assumption")
     if support.seat_drop_mm is not None:
-        sense = "down" if support.seat_drop_mm >= 0 else "up"
-        lines += (f"seat {sense} {words.entered(abs(support.seat_drop_mm))} mm",)
+        lines += (f"seat {words.seat(support.seat_drop_mm)}",)
+        if not words.seat_moved(support.seat_drop_mm, support.seat_drop_sd_mm):
+            lines += ("within 2 sd of 0",)
         if support.seat_drop_sd_mm is not None:
             lines += (f"(sd {words.entered(support.seat_drop_sd_mm)} mm)",)
     return name + lines
@@ -269,9 +251,9 @@ def _interval_lines(support: SupportView) -> tuple[str, ...]:
 
 
 def _movement(axes: Axes, sheet: _Sheet, state: ElevationState, *, label: bool) -> None:
-    """Draw the fitted line, the measured points and the wheels of one state."""
+    """Draw the fitted line, the measured points and the wheels of one state, from the girder as it lies."""
     xs = [sheet.x(x) for x in state.x_m.tolist()]
-    ys = [sheet.soffit + sheet.per_mm * v for v in state.fitted_mm.tolist()]
+    ys = (sheet.soffit + sheet.per_mm * (sheet.lie.at(state.x_m) + state.fitted_mm)).tolist()
     axes.plot(xs, ys, color=svg.ACCENT, lw=sheet.line_width, zorder=5)
     for point in state.points:
         _point(axes, sheet, point, label=label)
@@ -279,7 +261,7 @@ def _movement(axes: Axes, sheet: _Sheet, state: ElevationState, *, label: bool) 
 
 
 def _level(sheet: _Sheet, point: MeasuredPoint) -> float:
-    base = sheet.seat if point.kind == "settlement" else sheet.soffit
+    base = sheet.under(point.x_m) + (PAD if point.kind == "settlement" else 0.0)
     return base + sheet.per_mm * point.value_mm
 
 
@@ -301,23 +283,24 @@ def _point(axes: Axes, sheet: _Sheet, point: MeasuredPoint, *, label: bool) -> N
 def _wheels(axes: Axes, sheet: _Sheet, state: ElevationState) -> None:
     if not state.axles:
         return
-    rail = sheet.soffit - _DEPTH
     for x_m, _ in state.axles:
-        axes.add_patch(Circle((sheet.x(x_m), rail - 4.0), 3.6, fc="white", ec=svg.INK, lw=1.1, zorder=4))
-        axes.add_patch(Circle((sheet.x(x_m), rail - 4.0), 0.9, fc=svg.INK, ec="none", zorder=4.1))
+        x, hub = sheet.x(x_m), sheet.under(x_m) - _DEPTH - 4.0
+        axes.plot([x, x], [sheet.bar, hub], color=svg.INK, lw=0.8, zorder=3.9)
+        axes.add_patch(Circle((x, hub), 3.6, fc="white", ec=svg.INK, lw=1.1, zorder=4))
+        axes.add_patch(Circle((x, hub), 0.9, fc=svg.INK, ec="none", zorder=4.1))
     ends = [sheet.x(x) for x, _ in state.axles]
     a, b = min(ends), max(ends)
-    axes.plot([a - 4.5, b + 4.5], [rail - 10.0] * 2, color=svg.INK, lw=1.6, zorder=4)
+    axes.plot([a - 4.5, b + 4.5], [sheet.bar] * 2, color=svg.INK, lw=1.6, zorder=4)
     text = _axles_in_words(state)
     width = 2.0 * sheet.left + sheet.per_m * float(max(state.x_m, default=0.0))
     half = svg.text_width(text) / 2.0 + 2.0
-    axes.text(min(max((a + b) / 2, half), width - half), rail - 14.0, text, ha="center", va="baseline")
+    axes.text(min(max((a + b) / 2, half), width - half), sheet.bar - 4.0, text, ha="center", va="baseline")
 
 
 def _axles_in_words(state: ElevationState) -> str:
     loads = [kn for _, kn in state.axles]
     axle = "axle" if len(loads) == 1 else "axles"
-    return f"{len(loads)} {axle}, {words.number(sum(loads))} kN"
+    return f"{len(loads)} {axle}, {words.number(sum(loads))} kN on this girder"
 
 
 def _key(axes: Axes, state: ElevationState) -> None:
@@ -336,16 +319,21 @@ def _key(axes: Axes, state: ElevationState) -> None:
     axes.text(147.0, y, told, ha="left", va="baseline")
 
 
-def _notes(axes: Axes, factor: float | None, *, foot: float, zero: str) -> None:
+def _notes(axes: Axes, factor: float | None, lie: seats.Lie, *, foot: float, zero: str) -> None:
     told = "no movement to draw" if factor is None else f"movements × {words.number(factor)}"
-    first = f"{told}, seats that dropped since the datum too; girder depth and pad height not to scale"
+    first = f"{told}; girder depth and pad height not to scale"
     second = fitted(f"pad width = stiffness, dashed outline = as designed; x from {zero}", svg.FULL_WIDTH - 4)
     axes.text(2.0, foot + LINE_PT, first, ha="left", va="baseline")
     axes.text(2.0, foot + 2 * LINE_PT, second, ha="left", va="baseline")
+    if lie.moved:
+        third = (
+            "dotted: soffit and seats at the datum; arrow: seat since then; the girder is drawn on its seats"
+        )
+        axes.text(2.0, foot + 3 * LINE_PT, third, ha="left", va="baseline", color=svg.SECOND)
 
 
 def _supports_in_words(girder: GirderView) -> str:
-    spans = ", ".join(words.entered(v, "m") for v in girder.span_lengths_m)
+    spans = ", ".join(words.span_length(v) for v in girder.span_lengths_m)
     parts = [f"Spans {spans}."]
     for support in girder.supports:
         told = "pin"
@@ -355,7 +343,9 @@ def _supports_in_words(girder: GirderView) -> str:
             )
             told = f"pad, stiffness over nominal {ratio}"
         if support.seat_drop_mm is not None:
-            told += f", seat lower by {words.number(support.seat_drop_mm)} mm"
+            told += f", seat {words.seat(support.seat_drop_mm)} since the datum"
+            if not words.seat_moved(support.seat_drop_mm, support.seat_drop_sd_mm):
+                told += ", no movement beyond 2 sd"
         parts.append(f"{support.support}: {told}.")
     return " ".join(parts)
 
@@ -363,7 +353,7 @@ def _supports_in_words(girder: GirderView) -> str:
 def _state_in_words(state: ElevationState | None, factor: float | None) -> list[str]:
     if state is None:
         return ["No test state is drawn."]
-    parts = [f"State {state.state}: {_axles_in_words(state)} on the girder." if state.axles else ""]
+    parts = [f"State {state.state}: {_axles_in_words(state)}." if state.axles else ""]
     if factor is not None:
         parts.append(f"Movements drawn {words.number(factor)} times as large as lengths.")
     for p in state.points:

@@ -155,7 +155,12 @@ def _ratio_ticks(low: float, high: float) -> list[float]:
 
 
 def _fan_length(history: PadHistory) -> int:
-    """Return how many times of the line are drawn: the fan ends where it stops being meaningful."""
+    """Return how many times of the line are drawn: the fan ends where it stops being meaningful.
+
+    One visit gives no law, so no line.
+    """
+    if len(history.dates) < 2:
+        return 0
     last = history.last_visit
     for i, (day, low, high) in enumerate(
         zip(history.line_dates, history.fan_low.tolist(), history.fan_high.tolist(), strict=True)
@@ -163,6 +168,12 @@ def _fan_length(history: PadHistory) -> int:
         if day > last and not (low > 0.0 and high / low <= _FAN_WIDEST):
             return i
     return len(history.line_dates)
+
+
+def has_forecast(history: PadHistory) -> bool:
+    """Say whether a fan is drawn: a law of at least two visits, carried past the last of them."""
+    count = _fan_length(history)
+    return count > 0 and history.line_dates[count - 1] > history.last_visit
 
 
 def _fan(axes: Axes, history: PadHistory) -> None:
@@ -238,8 +249,8 @@ def _step(axes: Axes, step: tuple[dt.date, dt.date]) -> None:
 def _foot(sheet: Axes, history: PadHistory, assumed: bool) -> None:
     """Write below the axis what law the line is and where the fan ends."""
     count = _fan_length(history)
-    told = f"law: {words.plain(history.law)}" if history.line_dates else "no law: too few visits"
-    if count and history.line_dates[count - 1] > history.last_visit:
+    told = f"law: {words.plain(history.law)}" if count else "no law: too few visits"
+    if has_forecast(history):
         told += f"; forecast ends {history.line_dates[count - 1].year}"
     sheet.text(2.0, _HEIGHT - 27.0, told, ha="left", va="baseline")
     keys = [("told by the readings, bar 95 %", svg.INK)]
@@ -252,16 +263,15 @@ def _foot(sheet: Axes, history: PadHistory, assumed: bool) -> None:
 
 
 def _in_words(history: PadHistory) -> str:
-    parts = [f"Law: {history.law}."]
+    parts = [f"Law: {history.law}." if _fan_length(history) else "No law: too few visits."]
     for i, day in enumerate(history.dates):
         ratio = words.interval(float(history.ratio[i]), float(history.low95[i]), float(history.high95[i]))
         share = "" if float(history.data_share[i]) >= 0.5 else ", told by the assumption"
         warmth = history.temperature_degC[i]
         cold = f", pad at {words.entered(warmth)} °C" if warmth is not None else ""
         parts.append(f"{words.date(day)}: {ratio} of nominal{share}{cold}.")
-    count = _fan_length(history)
-    if count and history.line_dates[count - 1] > history.last_visit:
-        i = count - 1
+    if has_forecast(history):
+        i = _fan_length(history) - 1
         told = words.interval(float(history.line[i]), float(history.fan_low[i]), float(history.fan_high[i]))
         parts.append(f"Forecast for {words.date(history.line_dates[i])}: {told} of nominal.")
     return " ".join(parts)

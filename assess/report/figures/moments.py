@@ -52,7 +52,7 @@ def _peak(x_m: Floats, values: Floats, start: float, end: float) -> Peak | None:
     return Peak(x_m=float(x_m[best]), moment=float(values[best]))
 
 
-def envelopes(girder: GirderView, *, key: str, zero: str) -> str:
+def envelopes(girder: GirderView, *, key: str, zero: str, basis: str = words.CALIBRATED) -> str:
     """Draw the factored envelopes on unyielding, nominal and calibrated supports with the capacity.
 
     Parameters
@@ -63,13 +63,15 @@ def envelopes(girder: GirderView, *, key: str, zero: str) -> str:
         Unique on the page.
     zero
         What stands at x = 0, in words.
+    basis
+        The supports of the third case, in words.
     """
     sagging, hogging = peaks(girder)
     x_end = float(sum(girder.span_lengths_m))
     above = pack(*_labels(hogging, x_end), low=_LEFT + 2.0, high=svg.FULL_WIDTH - 1.0)
     below = pack(*_labels(sagging, x_end), low=_LEFT + 2.0, high=svg.FULL_WIDTH - 1.0)
     over, under = sum(row_heights(above)), sum(row_heights(below))
-    head, body = 48.0, 190.0
+    head, body = 60.0, 190.0
     foot = _FOOT + silhouette.STRIP_PT * len(girder.stands)
     height = head + over + body + under + foot
     lines = girder.moments
@@ -84,16 +86,17 @@ def envelopes(girder: GirderView, *, key: str, zero: str) -> str:
         _write(sheet, axes, below, sagging, start=head + over + body, upward=False)
         _stands(sheet, girder, top=height - foot + _FOOT)
         given = bool(np.isfinite(np.concatenate([lines.capacity_sagging, lines.capacity_hogging])).any())
-        _legend(sheet, capacity="capacity; dots mark the calibrated peaks" if given else "capacity not given")
+        told = f"capacity; dots mark the peaks on {basis}" if given else "capacity not given"
+        _legend(sheet, basis, capacity=told)
         return svg.to_svg(
             figure,
             key=key,
             title=f"Factored bending moments of girder {girder.girder}",
-            desc=_in_words(girder, sagging, hogging),
+            desc=_in_words(girder, sagging, hogging, basis),
         )
 
 
-def permanent(girder: GirderView, *, key: str, zero: str) -> str:
+def permanent(girder: GirderView, *, key: str, zero: str, basis: str = words.CALIBRATED) -> str:
     """Draw the moments of the permanent loads alone, smaller."""
     lines = girder.moments
     series = (lines.unyielding_permanent, lines.nominal_permanent, lines.calibrated_permanent)
@@ -104,14 +107,14 @@ def permanent(girder: GirderView, *, key: str, zero: str) -> str:
         _limits(axes, _range(series), over=3.0, under=3.0, body=body - 6.0)
         for values, style in zip(series, _styles(), strict=True):
             axes.plot(lines.x_m, values, **style)
-        _legend(svg.paper(figure), capacity=None)
+        _legend(svg.paper(figure), basis, capacity=None)
         low, high = _range(series[2:])
         return svg.to_svg(
             figure,
             key=key,
             title=f"Moments of the permanent loads alone, girder {girder.girder}",
             desc=(
-                f"On calibrated supports from {words.number(low)} kN m (hogging) to "
+                f"On {basis} from {words.number(low)} kN m (hogging) to "
                 f"{words.number(high)} kN m (sagging); on unyielding supports from "
                 f"{words.number(_range(series[:1])[0])} to {words.number(_range(series[:1])[1])} kN m."
             ),
@@ -242,26 +245,30 @@ def _stands(sheet: Axes, girder: GirderView, *, top: float) -> None:
         silhouette.strip(sheet, stand, supports, top=at, left=_LEFT, width=width)
 
 
-def _legend(sheet: Axes, *, capacity: str | None) -> None:
-    names = ("unyielding supports", "nominal pads", "calibrated pads" + (", 95 % band" if capacity else ""))
+def _legend(sheet: Axes, basis: str, *, capacity: str | None) -> None:
+    third = basis if basis != words.NOMINAL else "nominal pads, median"
+    names = ("unyielding supports", "nominal pads", third)
     x = _LEFT
     for name, style in zip(names, _styles(), strict=True):
-        if capacity and name.startswith("calibrated"):
-            sheet.fill_between([x, x + 24], [3, 3], [13, 13], fc=svg.ACCENT_TINT, ec=svg.ACCENT, lw=0.35)
         sheet.plot([x, x + 24], [8, 8], **style)
         sheet.text(x + 29, 11, name, ha="left", va="baseline")
         x += 29 + svg.text_width(name) + 16
     if capacity:
+        band: dict[str, Any] = {"fc": svg.ACCENT_TINT, "ec": svg.ACCENT, "lw": 0.35}
+        sheet.fill_between([_LEFT, _LEFT + 24], [29, 29], [38, 38], **band)
+        sheet.plot([_LEFT, _LEFT + 24], [33.5, 33.5], **_styles()[2])
+        told = "95 % band (narrower than the line where it does not show)"
+        sheet.text(_LEFT + 29, 36.5, told, ha="left", va="baseline")
         sheet.plot([_LEFT, _LEFT + 24], [20, 20], color=svg.INK, lw=1.3)
         for i in range(4):
             sheet.plot([_LEFT + 6 * i, _LEFT + 6 * i + 4], [20, 25.5], color=svg.INK, lw=0.7)
         sheet.text(_LEFT + 29, 24, capacity, ha="left", va="baseline")
-    sheet.text(2.0, 26.0 if capacity is None else 40.0, "kN m, sagging downward", ha="left", va="baseline")
+    sheet.text(2.0, 26.0 if capacity is None else 52.0, "kN m, sagging downward", ha="left", va="baseline")
 
 
-def _in_words(girder: GirderView, sagging: list[Peak], hogging: list[Peak]) -> str:
+def _in_words(girder: GirderView, sagging: list[Peak], hogging: list[Peak], basis: str) -> str:
     lines = girder.moments
-    parts = ["Calibrated peaks:"]
+    parts = [f"Peaks on {basis}:"]
     for name, found, capacity in (
         ("sagging", sagging, lines.capacity_sagging),
         ("hogging", hogging, lines.capacity_hogging),

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
+from itertools import pairwise
 
 from matplotlib.axes import Axes
 
@@ -23,6 +24,13 @@ def reading_name(reading: ReadingResult) -> str:
     if reading.at_m is not None:
         where += f" at {words.place(reading.at_m)}"
     return f"{reading.state}: {reading.quantity}{where}"
+
+
+def parts(readings: Sequence[ReadingResult]) -> list[Sequence[ReadingResult]]:
+    """Return the readings of each drawing: as few drawings as hold them all, of about equal length."""
+    count = math.ceil(len(readings) / ROWS_MOST)
+    bounds = [round(i * len(readings) / count) for i in range(count + 1)] if count else []
+    return [readings[a:b] for a, b in pairwise(bounds)]
 
 
 def plot(readings: Sequence[ReadingResult], *, key: str, title: str) -> str:

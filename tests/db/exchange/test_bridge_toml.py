@@ -79,7 +79,11 @@ BAD = {
     "rotation misspelt": (PIN, PIN + '\n  rotation = "fixd"', "support 4 (east abutment), rotation"),
     "rotation without rad": (PIN, PIN + '\n  rotation = "2e5 kN m"', "rotation"),
     "zero rotation": (PIN, PIN + '\n  rotation = "0 kN m/rad"', "rotation"),
-    "pad geometry of a pin": (PIN, PIN + "\n    [girder.support.pad]\n    layers = 3", "a pin holds its level"),
+    "pad geometry of a pin": (
+        PIN,
+        PIN + "\n    [girder.support.pad]\n    layers = 3",
+        "a pin holds its level",
+    ),
     "duplicate support": ('id = "pier 2"', 'id = "pier 1"', 'two supports are called "pier 1"'),
     "permanent outside": ('end = "39 m"', 'end = "40 m"', "outside the girder"),
     "permanent reversed": ('end = "39 m"', 'end = "0 m"', "does not lie past the start"),

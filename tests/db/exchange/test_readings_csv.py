@@ -37,7 +37,7 @@ BAD = {
     "compression without support": ("pier 1,,1.42", ",,1.42", "row 2, support"),
     "place and support": ("deflection,,6", "deflection,pier 1,6", "row 3, at"),
     "neither": ("deflection,,6", "deflection,,", "row 3, at"),
-    "too many cells": ("gap gauge,", "gap gauge,,,extra", "line 2"),
+    "too many cells": ("gap gauge,", "gap gauge,,,extra", "row 2 has 12 cells"),
     "a quote never closed": ('"dial gauge 3, rusty"', '"dial gauge 3', "not CSV"),
     "a NUL": ("gap gauge", "gap\x00gauge", "line 2 holds the control character"),
 }
