@@ -233,8 +233,9 @@ class Condensed:
         """
         w, fw = self._weights(np.asarray(compliance, dtype=np.float64))
         right = np.asarray(forces, dtype=np.float64)
-        drop = 0.0 if settlement is None else np.asarray(settlement, dtype=np.float64)
+        drop: float | Floats = 0.0
         if settlement is not None:
+            drop = np.where(np.isinf(compliance), 0.0, settlement)  # no support: its seat means nothing
             right = right - drop @ self.K
         if w.ndim == 2 and len(w) >= WORTHWHILE and right.shape in {w.shape, w.shape[1:]}:
             z: Floats = solve_many(self.K, w, fw, right)

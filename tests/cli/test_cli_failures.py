@@ -107,9 +107,11 @@ def test_ctrl_c_is_exit_130_without_a_traceback(bedstone, workflow):
 
 def test_a_real_interrupt_is_exit_130():
     code = (
-        "import time\n"
+        "import signal, time\n"
         "from assess import workflow\n"
         "from assess.cli.main import main\n"
+        # a shell that starts the tests in the background has them ignore interrupts
+        "signal.signal(signal.SIGINT, signal.default_int_handler)\n"
         "def wait(*args, **options):\n"
         "    print('waiting', flush=True)\n"
         "    time.sleep(30)\n"
