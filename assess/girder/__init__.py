@@ -1,6 +1,7 @@
 """The continuous girder: its condensed form, responses, influence lines and envelopes."""
 
 from assess.girder.condensed import Condensed, SupportDerivatives, SupportState
+from assess.girder.contact import ContactState, Tips, contact
 from assess.girder.distributed import Sweep
 from assess.girder.envelope import (
     Envelope,
@@ -21,6 +22,7 @@ __all__ = [
     "REACTION",
     "RESPONSES",
     "Condensed",
+    "ContactState",
     "Envelope",
     "Girder",
     "Part",
@@ -31,6 +33,8 @@ __all__ = [
     "SupportDerivatives",
     "SupportState",
     "Sweep",
+    "Tips",
+    "contact",
     "envelope",
     "extremes",
     "forces_of",
