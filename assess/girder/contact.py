@@ -76,7 +76,7 @@ def contact(
 
     Returns
     -------
-    ContactState with (..., n) arrays, the leading dimensions broadcast; where nothing lifts, what `Condensed.solve` gives
+    ContactState with (..., n) arrays, the leading dimensions broadcast; as from `Condensed.solve` where nothing lifts
 
     Raises
     ------
@@ -98,11 +98,12 @@ def contact(
     off = _lifted(condensed, rows, pulled[some], ~held_down)
     again = condensed.solve(np.where(off, np.inf, rows.compliance), rows.forces, rows.settlement)
     n, shape = condensed.n_supports, reaction.shape
-    reaction, level = reaction.reshape(-1, n).copy(), np.broadcast_to(level, shape).reshape(-1, n).copy()
-    lifted = lifted.reshape(-1, n)
-    reaction[some] = np.where(off, 0.0, again.reaction)
-    level[some], lifted[some] = again.displacement, off
-    return ContactState(reaction.reshape(shape), level.reshape(shape), lifted.reshape(shape))
+    all_reactions = reaction.reshape(-1, n).copy()
+    all_levels = np.broadcast_to(level, shape).reshape(-1, n).copy()
+    all_lifted = lifted.reshape(-1, n)
+    all_reactions[some] = np.where(off, 0.0, again.reaction)
+    all_levels[some], all_lifted[some] = again.displacement, off
+    return ContactState(all_reactions.reshape(shape), all_levels.reshape(shape), all_lifted.reshape(shape))
 
 
 @dataclass(frozen=True)

@@ -72,6 +72,8 @@ class OneSided:
 
     def solved(self, own: Floats, moment: Floats, settlement: Floats) -> Floats:
         """Reactions (n,) from those of the simple beam (n,) and its moment (nodes,)."""
+        if not self.carry.size:
+            return own
         slope = self.by_inner.T @ (self.weight * moment)
         slope += self.carry.T @ (self.compliance * own + settlement)
         centre = np.linalg.solve(self.root, slope)
