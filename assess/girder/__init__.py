@@ -15,7 +15,15 @@ from assess.girder.envelope import (
     train_forces,
 )
 from assess.girder.model import Girder, Piece
-from assess.girder.response import REACTION, RESPONSES, Places, forces_of, places, support_places
+from assess.girder.response import (
+    REACTION,
+    RESPONSES,
+    Places,
+    forces_of,
+    places,
+    simple_forces_of,
+    support_places,
+)
 
 __all__ = [
     "REACTION",
@@ -38,6 +46,7 @@ __all__ = [
     "influence_line",
     "passages",
     "places",
+    "simple_forces_of",
     "support_places",
     "train_forces",
 ]
