@@ -80,11 +80,17 @@ class CaseResult:
     factored: float
     utilisation: float | None
     rating_factor: float | None
+    rating_levels: dict[str, float | None] = field(default_factory=dict)  # by the levels of a rating set
+    temperature: float = 0.0  # of the worst temperature case, unfactored; in `factored`
 
 
 @dataclass(frozen=True, kw_only=True)
 class CalibratedCase(CaseResult):
-    """The calibrated case with its 95 % band."""
+    """The calibrated case with its 95 % band; `settlement` is the part of `permanent` that seat drops add."""
+
+    settlement: float = 0.0
+    utilisation_with_relief: float | None = None
+    utilisation_without_relief: float | None = None
 
     utilisation_low95: float | None
     utilisation_high95: float | None
@@ -112,6 +118,8 @@ class ReactionResult:
     calibrated_permanent_kN: float
     calibrated_live_max_kN: float
     calibrated_live_min_kN: float
+    calibrated_factored_max_kN: float
+    calibrated_factored_min_kN: float
 
 
 @dataclass(frozen=True, kw_only=True)

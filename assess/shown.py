@@ -124,4 +124,7 @@ class BridgeView:
     shown: BridgeShown
     sections: list[SectionView]
     as_of: dt.date | None
+    models: list[str]  # published live loads, in words
+    temperature: list[str]  # temperature cases, in words
+    factors: str  # in words
     cautions: list[str]

@@ -15,6 +15,12 @@ from db.pad_doc import PadDoc
 PERMANENT = "permanent"
 """The id of the load state measured from the as-built datum under permanent load."""
 
+PERMANENT_KINDS = ("structure", "surfacing")
+"""Kinds of permanent load that may have factors of their own."""
+
+STAGES = ("continuous", "span by span")
+"""Carried by the continuous girder, or by each span as a simple one before the spans were joined."""
+
 QUANTITIES = ("compression", "deflection", "settlement", "rotation", "strain")
 
 
@@ -80,6 +86,7 @@ class SectionDoc:
     holes: tuple[HoleDoc, ...] = ()
     losses: tuple[LossDoc, ...] = ()
     deck: DeckDoc | None = None
+    depth: float | None = None  # m, for temperature; None: from the plates
     moment_resistance: str = "elastic"  # "elastic" | "plastic": how plates and yield strength give a moment
 
 
@@ -128,6 +135,8 @@ class PermanentDoc:
     end: float = 0.0  # m
     point: float | None = None  # kN, downward
     at: float | None = None  # m
+    kind: str = "structure"  # one of PERMANENT_KINDS: which factor it takes
+    stage: str = "continuous"  # one of STAGES: the girder that carries it
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -186,13 +195,45 @@ class LiveDoc:
 
 @dataclass(frozen=True, kw_only=True)
 class FactorsDoc:
-    """The owner's partial factors."""
+    """The owner's partial factors; what is None is that of the built-in set, if one is named.
+
+    Without a set permanent, live and resistance are given.
+    """
 
     name: str
-    permanent: float
-    live: float
-    resistance: float = 1.0
+    permanent: float | None = None
+    live: float | None = None
+    resistance: float | None = None
     permanent_relieving: float | None = None  # on a permanent effect that relieves; None: min(1, permanent)
+    surfacing: float | None = None  # on surfacing; None: as the other permanent loads
+    surfacing_relieving: float | None = None
+    settlement: float | None = None  # on what settlements add; None: as the permanent loads
+    settlement_relieving: float | None = None
+    temperature: float | None = None  # on a temperature case beside the live load
+    relief_counts: bool = False  # let a relief by settlement count
+    set: str | None = None  # a built-in set, for what is not given here
+    level: str | None = None  # level of the set to assess at; None: its first
+    condition: str | None = None  # of the member, for a set that has factors on it
+    system: float | None = None  # system factor on the resistance
+
+
+@dataclass(frozen=True, kw_only=True)
+class SeatRiseDoc:
+    """A seat that a warm pier lifts."""
+
+    girder: str
+    support: str
+    rise: float  # m, upward
+
+
+@dataclass(frozen=True, kw_only=True)
+class TemperatureDoc:
+    """A temperature case: a linear difference from top to underside, and piers that are warmer than others."""
+
+    id: str
+    difference: float = 0.0  # K, top warmer positive
+    expansion: float = 12e-6  # 1/K
+    seats: tuple[SeatRiseDoc, ...] = ()
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -209,6 +250,7 @@ class BridgeDoc:
     girders: tuple[GirderDoc, ...]
     vehicles: tuple[VehicleDoc, ...] = ()
     live: tuple[LiveDoc, ...] = ()
+    temperature: tuple[TemperatureDoc, ...] = ()
     factors: FactorsDoc
     text: str = field(repr=False)  # the file as read
     digest: str  # sha256 of the text

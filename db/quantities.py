@@ -51,6 +51,7 @@ DIMENSIONS = {
         Dimension(name="angle", si="rad", example="0.4 mrad"),
         Dimension(name="strain", si="strain", example="120 microstrain"),
         Dimension(name="temperature", si="degC", example="13 degC"),
+        Dimension(name="temperature difference", si="K", example="10 K"),
         Dimension(name="temperature coefficient", si="1/K", example="0.5 percent / K"),
         Dimension(name="duration", si="year", example="24 months"),
     )
@@ -208,8 +209,9 @@ def to_si(value: float, unit: str, dimension: str) -> float:
         If the unit is unknown, is of another dimension, or the result is not finite.
     """
     made = _unit_of(unit, dimension, f'write for example "{DIMENSIONS[dimension].example}"')
-    si = made.offset + made.factor * value
-    if not math.isfinite(si) or (si == 0.0 and value != 0.0 and made.offset == 0.0):
+    offset = 0.0 if dimension == "temperature difference" else made.offset  # degrees count there as steps
+    si = offset + made.factor * value
+    if not math.isfinite(si) or (si == 0.0 and value != 0.0 and offset == 0.0):
         raise BedstoneError(f'"{value!r} {shown(unit)}" is out of range', remedy="check number and unit")
     return si
 

@@ -1,21 +1,42 @@
 """Limit states: factored effects against resistances, under unyielding, nominal and calibrated supports."""
 
-from assess.capacity.checks import CheckPlan, Factors, Resistance, plan_checks
-from assess.capacity.effects import Effects, GirderLoads
-from assess.capacity.rows import Case, Row, RowDraws, demands_at, evaluate, evaluate_draws, moment_draws
+from assess.capacity.actions import Dead, GirderLoads, Steady, Thermal
+from assess.capacity.checks import CheckPlan, Resistance, plan_checks
+from assess.capacity.effects import Effects
+from assess.capacity.factors import KINDS, Factors
+from assess.capacity.rows import (
+    Case,
+    Row,
+    RowDraws,
+    demands_at,
+    evaluate,
+    evaluate_draws,
+    factored_steady,
+    moment_draws,
+)
+from assess.capacity.sets import FactorSet, UnknownSetError, factor_set, set_names
 
 __all__ = [
+    "KINDS",
     "Case",
     "CheckPlan",
+    "Dead",
     "Effects",
+    "FactorSet",
     "Factors",
     "GirderLoads",
     "Resistance",
     "Row",
     "RowDraws",
+    "Steady",
+    "Thermal",
+    "UnknownSetError",
     "demands_at",
     "evaluate",
     "evaluate_draws",
+    "factor_set",
+    "factored_steady",
     "moment_draws",
     "plan_checks",
+    "set_names",
 ]

@@ -8,22 +8,13 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from assess.capacity.factors import Factors
 from assess.girder import Girder
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
 
 STATIONS_PER_SPAN = 120
-
-
-@dataclass(frozen=True, kw_only=True)
-class Factors:
-    """Partial factors on permanent effects (loading, relieving), on live effects and on resistance."""
-
-    permanent: float
-    permanent_relieving: float
-    live: float
-    resistance: float
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -2,13 +2,15 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from functools import cached_property
 
 import numpy as np
 from numpy.typing import NDArray
 
+from assess.capacity.actions import GirderLoads, Steady
 from assess.capacity.checks import CheckPlan
+from assess.capacity.factors import KINDS
+from assess.capacity.standing import PermanentLoads, ThermalCases
 from assess.girder import (
     Condensed,
     Envelope,
@@ -18,32 +20,14 @@ from assess.girder import (
     Sweep,
     envelope,
     extremes,
-    forces_of,
     governing_placement,
     passages,
     places,
     support_places,
 )
-from assess.loads import LoadCase, ModelLoad, Train
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
-
-
-@dataclass(frozen=True, kw_only=True)
-class GirderLoads:
-    """What a girder line carries: permanent loads; live loads with the live share in them.
-
-    Attributes
-    ----------
-    permanent : LoadCase
-    trains : with the dynamic allowance in them
-    models : published load models, each beside its allowance
-    """
-
-    permanent: LoadCase
-    trains: tuple[Train, ...] = ()
-    models: tuple[ModelLoad, ...] = ()
 
 
 class Effects:
@@ -60,20 +44,45 @@ class Effects:
         self.condensed = condensed
         self.plan = plan
         self.loads = loads
-        self.permanent_forces = forces_of(condensed, loads.permanent)
+        kinds = tuple(dict.fromkeys(one.kind for one in loads.dead)) or (KINDS[0],)
         self._places = {name: places(condensed, name, plan.x, plan.side) for name in ("moment", "shear")}
-        self._held = {name: place.held(loads.permanent) for name, place in self._places.items()}
+        self._permanent = PermanentLoads(condensed, loads, kinds)
+        self._held = {name: self._permanent.held(place) for name, place in self._places.items()}
+        self._thermal = ThermalCases(condensed, loads.thermal)
+        self._bent = {name: self._thermal.held(place) for name, place in self._places.items()}
         self._passages: dict[str, list[Part]] = {
             name: live_parts(place, loads) for name, place in self._places.items()
         }
 
-    def permanent(
+    def steady(
         self, name: str, compliance: Floats, settlement: Floats, stations: Ints | None = None
-    ) -> Floats:
-        """Unfactored permanent moment or shear (..., p) on supports (..., n) with seat drops (..., n)."""
+    ) -> Steady:
+        """Unfactored moments or shears (..., p) that do not move, on supports (..., n) with seat drops (..., n)."""
         index = slice(None) if stations is None else stations
-        level = self.condensed.solve(compliance, self.permanent_forces, settlement).displacement
-        return np.asarray(self._held[name][index] + level @ self._places[name].rows[index].T)
+        rows = self._places[name].rows[index].T
+        settled = self._permanent.settled(compliance, settlement).displacement @ rows
+        dead = [
+            np.broadcast_to(held[index] + state.displacement @ rows, settled.shape)
+            for held, state in zip(self._held[name], self._permanent.states(compliance), strict=True)
+        ]
+        hot, cold = np.zeros(settled.shape), np.zeros(settled.shape)
+        for bent, state in zip(self._bent[name], self._thermal.states(compliance), strict=True):
+            effect = bent[index] + state.displacement @ rows
+            hot, cold = np.maximum(hot, effect), np.minimum(cold, effect)
+        return Steady(dead=np.array(dead), kinds=self._permanent.kinds, settled=settled, hot=hot, cold=cold)
+
+    def steady_reactions(self, compliance: Floats, settlement: Floats) -> Steady:
+        """Unfactored support reactions (..., n) that do not move, on supports (..., n) with seat drops (..., n)."""
+        settled = self._permanent.settled(compliance, settlement).reaction
+        states = self._permanent.states(compliance)
+        dead = [
+            np.broadcast_to(state.reaction + simple, settled.shape)
+            for state, simple in zip(states, self._permanent.simple_forces, strict=True)
+        ]
+        hot, cold = np.zeros(settled.shape), np.zeros(settled.shape)
+        for state in self._thermal.states(compliance):
+            hot, cold = np.maximum(hot, state.reaction), np.minimum(cold, state.reaction)
+        return Steady(dead=np.array(dead), kinds=self._permanent.kinds, settled=settled, hot=hot, cold=cold)
 
     def live(self, name: str, compliance: Floats) -> Envelope:
         """Live envelope of moment or shear (p,) on supports (n,)."""

@@ -2,7 +2,9 @@
 
 Utilisation is the factored effect over the factored resistance. The rating factor has the form of the AASHTO
 Manual for Bridge Evaluation (6A.4.2), RF = (C - g_D D) / (g_L L), with the dynamic allowance and the live share
-in L. A permanent effect of the other sign than the checked one relieves and takes its own factor.
+in L. A permanent effect of the other sign than the checked one relieves and takes its own factor; each kind of
+permanent load does so by itself, and so does what settlements add. A relief by settlement can reverse, so that a
+section is also taken without it, and the worse of the two governs unless the owner lets relief count.
 """
 
 from __future__ import annotations
@@ -13,8 +15,10 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from assess.capacity.checks import Check, CheckPlan, Factors
+from assess.capacity.actions import Steady
+from assess.capacity.checks import Check, CheckPlan
 from assess.capacity.effects import Effects
+from assess.capacity.factors import Factors
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
@@ -34,6 +38,11 @@ class Case:
     factored: float
     utilisation: float  # NaN where the resistance is not given
     rating_factor: float  # NaN where there is no adverse live effect or no resistance
+    settled: float = 0.0  # the part of `permanent` that seat drops add
+    temperature: float = 0.0  # of the worst temperature case, unfactored; in `factored`
+    with_relief: float = np.nan  # utilisation with relief by settlement
+    without_relief: float = np.nan  # utilisation without it
+    ratings: tuple[tuple[str, float], ...] = ()  # rating factor at each level by name
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -54,21 +63,57 @@ class RowDraws:
 
 @dataclass(frozen=True, kw_only=True)
 class Demand:
-    """Signed effects at all stations in one sense: `sign` +1 for maxima, -1 for minima; arrays (..., p)."""
+    """Signed effects at all stations in one sense: `sign` +1 for maxima, -1 for minima; arrays (..., p).
+
+    `factored` governs; `relief` is what it would fall by if relief by settlement counted, factored, at most 0 in
+    the sense of `sign`; `live` and `temperature` are unfactored.
+    """
 
     sign: float
-    permanent: Floats
+    steady: Steady
     live: Floats
+    temperature: Floats
     factored: Floats
+    relief: Floats
+
+    @property
+    def permanent(self) -> Floats:
+        """Unfactored permanent effect with settlements."""
+        return self.steady.permanent
 
 
-def demand(factors: Factors, permanent: Floats, live: Floats, sign: float) -> Demand:
-    """Factor permanent and live effects (..., p) in the adverse sense `sign`."""
-    adverse = sign * permanent >= 0.0
-    factor = np.where(adverse, factors.permanent, factors.permanent_relieving)
+def demand(factors: Factors, steady: Steady, live: Floats, sign: float) -> Demand:
+    """Factor what stands and what moves (..., p) in the adverse sense `sign`."""
+    held, relief, temperature = factored_steady(factors, steady, sign)
+    counted = relief if factors.relief_counts else 0.0
     return Demand(
-        sign=sign, permanent=permanent, live=live, factored=factor * permanent + factors.live * live
+        sign=sign,
+        steady=steady,
+        live=live,
+        temperature=temperature,
+        factored=held + counted + factors.live * live,
+        relief=relief,
     )
+
+
+def factored_steady(factors: Factors, steady: Steady, sign: float) -> tuple[Floats, Floats, Floats]:
+    """Factored effect (..., p) of what does not move in the sense `sign`.
+
+    Returns
+    -------
+    held : without relief by settlement, temperature in it
+    relief : what settlements relieve, factored
+    temperature : of the worst case, unfactored
+    """
+    temperature = steady.hot if sign > 0.0 else steady.cold
+    held = factors.temperature * temperature
+    for kind, effect in zip(steady.kinds, steady.dead, strict=True):
+        loading, relieving = factors.of_kind(kind)
+        held = held + np.where(sign * effect >= 0.0, loading, relieving) * effect
+    loading, relieving = factors.of_settlement
+    adverse = sign * steady.settled >= 0.0
+    held = held + np.where(adverse, loading * steady.settled, 0.0)
+    return held, np.where(adverse, 0.0, relieving * steady.settled), temperature
 
 
 def _senses(effect: str) -> tuple[float, ...]:
@@ -93,14 +138,14 @@ def demands_at(
     """
     demands: dict[tuple[str, float], Demand] = {}
     for name in ("moment", "shear"):
-        permanent = effects.permanent(name, compliance, settlement)
+        steady = effects.steady(name, compliance, settlement)
         if live is None:
             found = effects.live(name, compliance)
             maximum, minimum = found.maximum, found.minimum
         else:
             maximum, minimum = live[name]
         for sign, extreme in ((1.0, maximum), (-1.0, minimum)):
-            demands[name, sign] = demand(factors, permanent, extreme, sign)
+            demands[name, sign] = demand(factors, steady, extreme, sign)
     return demands
 
 
@@ -132,9 +177,16 @@ def _govern(plan: CheckPlan, check: Check, demands: list[Demand], factors: Facto
     chosen, station = demands[int(sense)], int(check.stations[int(place)])
     permanent, live = float(chosen.permanent[station]), float(chosen.live[station])
     factored, sign = float(chosen.factored[station]), chosen.sign
+    relief = float(chosen.relief[station])
+    bare = factored - relief if factors.relief_counts else factored
     capacity = float(plan.resistance(check.effect)[station])
     adverse = sign * factors.live * live
     steady = sign * factored - adverse
+
+    def rating(level: float) -> float:
+        most = sign * level * live
+        return (capacity - steady) / most if most > _NO_LIVE * capacity else np.nan
+
     return Case(
         x=float(plan.x[station]),
         resistance=capacity,
@@ -142,7 +194,12 @@ def _govern(plan: CheckPlan, check: Check, demands: list[Demand], factors: Facto
         live=live,
         factored=factored,
         utilisation=max(0.0, sign * factored) / capacity,
-        rating_factor=(capacity - steady) / adverse if adverse > _NO_LIVE * capacity else np.nan,
+        rating_factor=rating(factors.live),
+        settled=float(chosen.steady.settled[station]),
+        temperature=float(chosen.temperature[station]),
+        with_relief=max(0.0, sign * (bare + relief)) / capacity,
+        without_relief=max(0.0, sign * bare) / capacity,
+        ratings=tuple((name, rating(level)) for name, level in factors.levels),
     )
 
 
@@ -168,10 +225,10 @@ def evaluate_draws(
     for name in ("moment", "shear"):
         rows = [i for i, check in enumerate(effects.plan.checks) if response_of(check.effect) == name]
         stations = np.unique(np.concatenate([kept[i] for i in rows]))
-        permanent = effects.permanent(name, compliances, settlements, stations)
+        steady = effects.steady(name, compliances, settlements, stations)
         maximum, minimum = effects.live_draws(name, stations, compliances, sample)
         for sign, live in ((1.0, maximum), (-1.0, minimum)):
-            factored = demand(factors, permanent, live, sign).factored
+            factored = demand(factors, steady, live, sign).factored
             for i in rows:
                 check = effects.plan.checks[i]
                 if sign not in _senses(check.effect):
@@ -189,10 +246,10 @@ def moment_draws(
     """Factored sagging and hogging moments (draws, p) at all stations over draws of the supports (draws, n)."""
     stations = np.arange(effects.plan.x.size)
     sample = _spread(compliances, settlements)
-    permanent = effects.permanent("moment", compliances, settlements)
+    steady = effects.steady("moment", compliances, settlements)
     maximum, minimum = effects.live_draws("moment", stations, compliances, sample)
-    sagging = demand(factors, permanent, maximum, 1.0).factored
-    return sagging, demand(factors, permanent, minimum, -1.0).factored
+    sagging = demand(factors, steady, maximum, 1.0).factored
+    return sagging, demand(factors, steady, minimum, -1.0).factored
 
 
 def _governing_stations(

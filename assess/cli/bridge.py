@@ -39,7 +39,7 @@ def add(record: str, file: Path) -> None:
     from assess.cli.tables.records import show_bridge_taken
 
     document, taken = workflow.add_bridge(record, file)
-    show_bridge_taken(document, taken, workflow.bridge_view(document), workflow.models_in_words(document))
+    show_bridge_taken(document, taken, workflow.bridge_view(document))
 
 
 @command.command("list")

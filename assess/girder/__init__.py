@@ -16,7 +16,15 @@ from assess.girder.envelope import (
     train_forces,
 )
 from assess.girder.model import Girder, Piece
-from assess.girder.response import REACTION, RESPONSES, Places, forces_of, places, support_places
+from assess.girder.response import (
+    REACTION,
+    RESPONSES,
+    Places,
+    forces_of,
+    places,
+    simple_forces_of,
+    support_places,
+)
 
 __all__ = [
     "REACTION",
@@ -42,6 +50,7 @@ __all__ = [
     "influence_line",
     "passages",
     "places",
+    "simple_forces_of",
     "support_places",
     "train_forces",
 ]

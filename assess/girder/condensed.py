@@ -14,6 +14,7 @@ analysis); unit-load theorem for the span flexibilities; Maxwell-Betti for the l
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -196,6 +197,23 @@ class Condensed:
         flat = end_moments.reshape(*end_moments.shape[:-2], -1)
         by_drop: Floats = self._by_drop.reshape(-1, self.n_supports)
         return np.asarray(simple - flat @ by_drop)
+
+    def imposed_end_moments(self, curvatures: Sequence[tuple[float, float, float]]) -> Floats:
+        """Span-end moments (spans, 2) of imposed curvatures, supports held level.
+
+        Parameters
+        ----------
+        curvatures : (start m, end m, 1/m) stretches that would bend, sagging positive; a difference of temperature
+            over the depth h bends a free girder by expansion * (bottom - top) / h
+        """
+        rotation = np.zeros((len(self.spans), 2))
+        for start, end, curvature in curvatures:
+            edges = np.clip([start, end], self.positions[:-1, None], self.positions[1:, None])
+            local = edges - self.positions[:-1, None]
+            length = local[:, 1] - local[:, 0]
+            share = local.mean(axis=1) / np.diff(self.positions)
+            rotation += curvature * length[:, None] * np.stack([1.0 - share, share], axis=-1)
+        return np.asarray(np.einsum("sitb,tb->si", self.moments_by_load, rotation))
 
     # yielding supports -----------------------------------------------------------------------
 

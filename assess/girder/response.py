@@ -7,6 +7,7 @@ All values are exact for prismatic pieces: nothing is interpolated.
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
@@ -94,16 +95,25 @@ class Places:
 
     def held(self, loads: LoadCase) -> Floats:
         """Response (p,) to a load case, supports held level: y0."""
+        return self._of(loads, self.unit_paired)
+
+    def simple(self, loads: LoadCase) -> Floats:
+        """Response (p,) to a load case carried span by span: every span on two hinged ends of its own."""
+        if self.quantity == REACTION:
+            return simple_forces_of(self.condensed, loads)[self.supports]
+        return self._of(loads, self.local_unit)
+
+    def _of(self, loads: LoadCase, unit: Callable[[Floats], Floats]) -> Floats:
         result = np.zeros(self.x.size)
         if loads.points:
             at, weight = np.array(loads.points, dtype=np.float64).T
-            result += self.unit(at) @ weight
+            result += unit(np.broadcast_to(at, (self.x.size, at.size))) @ weight
         breaks = self.condensed.girder.breakpoints
         own = np.column_stack([np.broadcast_to(breaks, (self.x.size, breaks.size)), self.x])
         for start, end, intensity in loads.uniforms:
             # influence lines are cubic between the ends of pieces and the place itself
             nodes, weights = _gauss(own, start, end)
-            result += intensity * (self.unit_paired(nodes) * weights).sum(axis=1)
+            result += intensity * (unit(nodes) * weights).sum(axis=1)
         return result
 
 
@@ -121,13 +131,22 @@ def _gauss(breaks: Floats, start: float, end: float) -> tuple[Floats, Floats]:
 
 def forces_of(condensed: Condensed, loads: LoadCase) -> Floats:
     """Support forces P (n,) of a load case with all supports held level, kN."""
+    return _forces(condensed, loads, condensed.unit_forces)
+
+
+def simple_forces_of(condensed: Condensed, loads: LoadCase) -> Floats:
+    """Support forces (n,) of a load case carried span by span: the lever rule, kN."""
+    return _forces(condensed, loads, condensed.unit_simple_forces)
+
+
+def _forces(condensed: Condensed, loads: LoadCase, unit: Callable[[Floats], Floats]) -> Floats:
     forces = np.zeros(condensed.n_supports)
     if loads.points:
         at, weight = np.array(loads.points, dtype=np.float64).T
-        forces += weight @ condensed.unit_forces(at)
+        forces += weight @ unit(at)
     for start, end, intensity in loads.uniforms:
         nodes, weights = _gauss(condensed.girder.breakpoints[None, :], start, end)
-        forces += intensity * (weights[0] @ condensed.unit_forces(nodes[0]))
+        forces += intensity * (weights[0] @ unit(nodes[0]))
     return forces
 
 

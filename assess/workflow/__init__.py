@@ -2,7 +2,6 @@
 
 from assess.workflow.assessing import assess
 from assess.workflow.calibrating import calibrate
-from assess.workflow.live_loads import models_in_words
 from assess.workflow.records import (
     add_bridge,
     draft_bridge,
@@ -27,7 +26,6 @@ __all__ = [
     "list_bridges",
     "list_visits",
     "log_visit",
-    "models_in_words",
     "report_view",
     "show_bridge",
     "trend",

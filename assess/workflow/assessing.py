@@ -5,12 +5,13 @@ from __future__ import annotations
 import datetime as dt
 from dataclasses import asdict, dataclass, replace
 from itertools import pairwise
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
 from assess.calibrate import draw_normal
-from assess.capacity import Case, Row, RowDraws, evaluate, evaluate_draws
+from assess.capacity import Case, Row, RowDraws, evaluate, evaluate_draws, factored_steady
 from assess.results import (
     AssessmentResult,
     CalibratedCase,
@@ -22,6 +23,7 @@ from assess.results import (
 from assess.workflow import cautions, pad_cautions, section_cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import GirderFit, VisitFit, from_kept
+from assess.workflow.combination import factors_of
 from assess.workflow.pad_checks import check_pads
 from assess.workflow.sections import last_loss
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
@@ -125,20 +127,21 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
     girders, said = [], _of_sources(study, fits, visit)
     if not study.bridge.live:
         said.append(cautions.no_live(study.bridge.id))
-    if study.bridge.factors.resistance > 1.0:
-        said.append(cautions.resistance_above_one(study.bridge.factors.resistance))
+    factors = factors_of(study.bridge)
+    if factors.resistance > 1.0:
+        said.append(cautions.resistance_above_one(factors.resistance))
     said += _of_datum(study, visit)
     digests = []
     for i, girder in enumerate(study.bridge.girders):
         progress(f"assessing {girder.id}", i, len(study.bridge.girders))
         model = study.model(girder.id, visit)
         supports, about = supports_of(study, model, fits, visit)
-        shown, factored = _assess_girder(model, supports)
+        shown = _assess_girder(model, supports)
         pads, about_pads = check_pads(model, supports.log_stiffness, shown.reactions)
         girders.append(replace(shown, pads=pads))
         said += about
         said += pad_cautions.of_prior(model) + about_pads
-        said += cautions.uplift(girder.id, shown.reactions, factored)
+        said += cautions.uplift(girder.id, shown.reactions)
         said += cautions.of_sections(girder.id, shown.sections)
         digests += [
             f"{s} {one.value!r} {one.sd!r} {one.date}" for s, one in sorted(supports.settlements.items())
@@ -302,7 +305,7 @@ def settlements(study: Study, girder: str, until: dt.date | None) -> dict[str, S
     return {support: history[-1] for support, history in seat_histories(study, girder, until).items()}
 
 
-def _assess_girder(model: GirderModel, supports: Supports) -> tuple[GirderAssessment, list[float]]:
+def _assess_girder(model: GirderModel, supports: Supports) -> GirderAssessment:
     drops, none = supports.drops(model), np.zeros(model.n)
     calibrated = model.compliance(supports.log_stiffness)
     firm = evaluate(model.effects, model.factors, model.unyielding, none)
@@ -310,8 +313,8 @@ def _assess_girder(model: GirderModel, supports: Supports) -> tuple[GirderAssess
     found = evaluate(model.effects, model.factors, calibrated, drops)
     draws = evaluate_draws(model.effects, model.factors, *supports.draws(model, DRAWS, SEED))
     sections = [_section(model, *four) for four in zip(firm, nominal, found, draws, strict=True)]
-    reactions, factored = _reactions(model, calibrated, drops)
-    return GirderAssessment(girder=model.doc.id, sections=sections, reactions=reactions), factored
+    reactions = _reactions(model, calibrated, drops)
+    return GirderAssessment(girder=model.doc.id, sections=sections, reactions=reactions)
 
 
 def _section(
@@ -329,42 +332,53 @@ def _section(
         unyielding=CaseResult(**_case(unyielding.case)),
         nominal=CaseResult(**_case(nominal.case)),
         calibrated=CalibratedCase(
-            **_case(calibrated.case), utilisation_low95=low, utilisation_high95=high, probability_over_1=over
+            **_case(calibrated.case),
+            settlement=calibrated.case.settled,
+            utilisation_with_relief=_known(calibrated.case.with_relief),
+            utilisation_without_relief=_known(calibrated.case.without_relief),
+            utilisation_low95=low,
+            utilisation_high95=high,
+            probability_over_1=over,
         ),
     )
 
 
-def _case(case: Case) -> dict[str, float]:
-    values = {
+def _case(case: Case) -> dict[str, Any]:
+    return {
         "x_m": case.x,
-        "capacity": case.resistance,
+        "capacity": _known(case.resistance),
         "permanent": case.permanent,
         "live": case.live,
         "factored": case.factored,
-        "utilisation": case.utilisation,
-        "rating_factor": case.rating_factor,
+        "utilisation": _known(case.utilisation),
+        "rating_factor": _known(case.rating_factor),
+        "rating_levels": {name: _known(value) for name, value in case.ratings},
+        "temperature": case.temperature,
     }
-    return {key: value if np.isfinite(value) else None for key, value in values.items()}  # type: ignore[misc]
 
 
-def _reactions(
-    model: GirderModel, calibrated: Floats, drops: Floats
-) -> tuple[list[ReactionResult], list[float]]:
-    """Reactions as shown, and the least reaction under factored loads, kN."""
-    effects, condensed = model.effects, model.condensed
-    firm = condensed.solve(model.unyielding, effects.permanent_forces).reaction
-    soft = condensed.solve(calibrated, effects.permanent_forces, drops).reaction
+def _known(value: float) -> float | None:
+    """None for what is not determined."""
+    return value if np.isfinite(value) else None
+
+
+def _reactions(model: GirderModel, calibrated: Floats, drops: Floats) -> list[ReactionResult]:
+    effects, factors = model.effects, model.factors
+    firm = effects.steady_reactions(model.unyielding, np.zeros(model.n)).permanent
+    steady = effects.steady_reactions(calibrated, drops)
+    soft = steady.permanent
     highest, lowest = effects.reactions(calibrated)
-    rows = [
+    most = factored_steady(factors, steady, 1.0)[0] + factors.live * highest
+    least = factored_steady(factors, steady, -1.0)[0] + factors.live * lowest
+    return [
         ReactionResult(
             support=support.id,
             unyielding_permanent_kN=float(firm[i]),
             calibrated_permanent_kN=float(soft[i]),
             calibrated_live_max_kN=float(highest[i]),
             calibrated_live_min_kN=float(lowest[i]),
+            calibrated_factored_max_kN=float(most[i]),
+            calibrated_factored_min_kN=float(least[i]),
         )
         for i, support in enumerate(model.doc.supports)
     ]
-    factors = model.factors
-    steady = np.where(soft >= 0.0, factors.permanent_relieving, factors.permanent) * soft
-    return rows, [float(v) for v in steady + factors.live * lowest]

@@ -14,9 +14,11 @@ from assess.girder import Condensed, Girder, Piece
 from assess.loads import LoadCase, ModelLoad, Train
 from assess.pad import Pad
 from assess.workflow import pads
+from assess.workflow.combination import dead_loads, factors_of, thermal_cases
 from assess.workflow.live_loads import model_loads
 from assess.workflow.sections import EFFECTS, SectionState, section_on
-from db.documents import BridgeDoc, GirderDoc, LoadStateDoc, SectionDoc, SpanDoc
+from assess.workflow.stretches import stretches
+from db.documents import BridgeDoc, GirderDoc, LoadStateDoc, SectionDoc
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
@@ -34,7 +36,9 @@ class GirderModel:
         self.bridge = bridge
         self.doc = girder
         self.as_of = as_of
-        self.sections: list[list[tuple[float, SectionDoc]]] = [_split(bridge, span) for span in girder.spans]
+        self.sections: list[list[tuple[float, SectionDoc]]] = [
+            stretches(bridge, span) for span in girder.spans
+        ]
         self.pads: Ints = np.array(
             [i for i, support in enumerate(girder.supports) if support.kind == "pad"], dtype=np.intp
         )
@@ -103,15 +107,6 @@ class GirderModel:
     # loads -----------------------------------------------------------------------------------
 
     @cached_property
-    def permanent(self) -> LoadCase:
-        """The permanent loads."""
-        points = tuple(
-            (p.at, p.point) for p in self.doc.permanent if p.point is not None and p.at is not None
-        )
-        uniforms = tuple((p.start, p.end, p.uniform) for p in self.doc.permanent if p.uniform is not None)
-        return LoadCase(points=points, uniforms=uniforms)
-
-    @cached_property
     def trains(self) -> tuple[Train, ...]:
         """The live loads of vehicles with the girder's share and the dynamic allowance in them."""
         trains = []
@@ -143,15 +138,8 @@ class GirderModel:
 
     @cached_property
     def factors(self) -> Factors:
-        """The owner's factors; a relieving permanent effect counts at most once unless the file says otherwise."""
-        given = self.bridge.factors
-        relieving = given.permanent_relieving
-        return Factors(
-            permanent=given.permanent,
-            permanent_relieving=min(1.0, given.permanent) if relieving is None else relieving,
-            live=given.live,
-            resistance=given.resistance,
-        )
+        """The owner's factors, or those of the set the file names."""
+        return factors_of(self.bridge)
 
     @cached_property
     def plan(self) -> CheckPlan:
@@ -163,7 +151,12 @@ class GirderModel:
     @cached_property
     def effects(self) -> Effects:
         """Permanent and live effects at the stations."""
-        loads = GirderLoads(permanent=self.permanent, trains=self.trains, models=self.models)
+        loads = GirderLoads(
+            dead=dead_loads(self.doc),
+            trains=self.trains,
+            models=self.models,
+            thermal=thermal_cases(self.bridge, self.doc),
+        )
         return Effects(self.condensed, self.plan, loads)
 
     def flexural_at(self, x: float) -> float:
@@ -172,22 +165,6 @@ class GirderModel:
         i = int(np.clip(np.searchsorted(edges, x, side="right") - 1, 0, edges.size - 2))
         flat = [piece for span in self.girder.spans for piece in span]
         return flat[i].flexural
-
-
-def _split(bridge: BridgeDoc, span: SpanDoc) -> list[tuple[float, SectionDoc]]:
-    """Lengths and sections of a span from left to right, the overriding pieces put in."""
-    parts: list[tuple[float, SectionDoc]] = []
-    at = 0.0
-    slack = 1e-9 * max(1.0, span.length)
-    for piece in sorted(span.pieces, key=lambda p: p.start):
-        start = piece.start if piece.start - at > slack else at
-        if start > at:
-            parts.append((start - at, bridge.section(span.section)))
-        parts.append((piece.end - start, bridge.section(piece.section)))
-        at = piece.end
-    if span.length - at > slack:
-        parts.append((span.length - at, bridge.section(span.section)))
-    return parts
 
 
 def _piece(length: float, section: SectionState) -> Piece:

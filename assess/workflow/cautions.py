@@ -188,10 +188,11 @@ def settlements_left_out(girder: str, drops: Sequence[tuple[str, float]]) -> lis
     return [f"{girder}: seat settlements are in the record but do not enter nominal pads: {each}."]
 
 
-def uplift(girder: str, reactions: Sequence[ReactionResult], factored: Sequence[float]) -> list[str]:
-    """Cautions on supports that lift, or would under factored loads (kN, factored)."""
+def uplift(girder: str, reactions: Sequence[ReactionResult]) -> list[str]:
+    """Cautions on supports that lift, or would under factored loads."""
     said = []
-    for row, low in zip(reactions, factored, strict=True):
+    for row in reactions:
+        low = row.calibrated_factored_min_kN
         plain = row.calibrated_permanent_kN + row.calibrated_live_min_kN
         if row.calibrated_permanent_kN < 0.0:
             said.append(

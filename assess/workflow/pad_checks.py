@@ -53,22 +53,21 @@ def check_pads(
         if pad is None or support.pad is None:
             continue
         softness = pad.stiffness / float(np.exp(log_stiffness[i]))
-        loads = _loads(model, reactions[index])
+        loads = _loads(reactions[index])
         row = _check(model, i, support, pad, loads, softness)
         rows.append(row)
         said += pad_cautions.of_check(model.doc.id, row, _least(support))
     return rows, said
 
 
-def _loads(model: GirderModel, reaction: ReactionResult) -> PadLoads:
-    permanent, factors = reaction.calibrated_permanent_kN, model.factors
+def _loads(reaction: ReactionResult) -> PadLoads:
+    permanent = reaction.calibrated_permanent_kN
     live = max(reaction.calibrated_live_max_kN, 0.0)
-    held = factors.permanent if permanent >= 0.0 else factors.permanent_relieving
     return PadLoads(
         permanent=permanent,
         total=permanent + live,
         minimum=permanent + min(reaction.calibrated_live_min_kN, 0.0),
-        factored=held * permanent + factors.live * live,
+        factored=reaction.calibrated_factored_max_kN,
     )
 
 

@@ -8,6 +8,7 @@ from contextlib import contextmanager
 from dataclasses import replace
 from pathlib import Path
 
+from assess.workflow.combination import check_combination
 from assess.workflow.live_loads import check_live
 from assess.workflow.pads import refuse_pads
 from db.documents import BridgeDoc, VisitDoc
@@ -39,6 +40,7 @@ def add_bridge(url: str, path: Path) -> tuple[BridgeDoc, Taken]:
     document = read_bridge(path)
     check_losses(document, today=dt.date.today(), file=printable(str(path)))
     check_live(document, file=printable(str(path)))
+    check_combination(document, file=printable(str(path)))
     refuse_pads(document, printable(str(path)))
     with open_record(url) as record, _naming(path):
         return document, replace(record.add_bridge(document), queries=tuple(bridge_queries(document)))

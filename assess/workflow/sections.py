@@ -91,6 +91,16 @@ def section_on(section: SectionDoc, day: dt.date | None) -> SectionState:
     )
 
 
+def depth_of(section: SectionDoc) -> float | None:
+    """Depth of a section for temperature, m: given, or from its plates and deck as built; None for neither."""
+    if section.depth is not None or not section.plates:
+        return section.depth
+    top = max(plate.bottom + plate.height for plate in section.plates)
+    bottom = min(plate.bottom for plate in section.plates)
+    deck = 0.0 if section.deck is None else section.deck.gap + section.deck.thickness
+    return top + deck - bottom
+
+
 def counting_losses(section: SectionDoc, day: dt.date | None) -> dict[str, tuple[LossDoc, ...]]:
     """For each plate the entries of the newest visit up to a day that measured it."""
     found: dict[str, tuple[LossDoc, ...]] = {}

@@ -18,6 +18,8 @@ from assess.shown import (
 )
 from assess.workflow import section_cautions
 from assess.workflow.building import GirderModel
+from assess.workflow.combination import factors_in_words, temperature_in_words
+from assess.workflow.live_loads import models_in_words
 from assess.workflow.sections import EFFECTS, SectionState, section_on
 from db.documents import BridgeDoc, GirderDoc
 from db.store import open_record
@@ -43,6 +45,9 @@ def bridge_view(document: BridgeDoc, visit: dt.date | None = None) -> BridgeView
         ),
         sections=views,
         as_of=visit,
+        models=models_in_words(document),
+        temperature=temperature_in_words(document),
+        factors=factors_in_words(document),
         cautions=section_cautions.of_bridge(document, visit),
     )
 

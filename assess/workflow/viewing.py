@@ -24,6 +24,7 @@ from assess.workflow import cautions
 from assess.workflow.assessing import Supports, assess_study, kept_fits, supports_of
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import VisitFit, calibrate_visit
+from assess.workflow.combination import factors_in_words
 from assess.workflow.drivers import Driver, drivers
 from assess.workflow.live_loads import live_in_words
 from assess.workflow.movements import line_of, points_of
@@ -79,7 +80,7 @@ def _view(
         revision=study.kept.revision,
         bridge_digest=bridge.digest,
         visits=[(v.date, v.party, v.pad_temperature, len(v.readings)) for v in study.visits],
-        factors=_factors(study),
+        factors=factors_in_words(bridge),
         live=live_in_words(bridge),
         verdicts={g.id: _verdict(study, g.id, assessment, trend, calibration) for g in bridge.girders},
         verdict_cautions={g.id: cautions_beside(g.id, said) for g in bridge.girders},
@@ -113,14 +114,6 @@ def _verdict(
         supports, _ = supports_of(study, model, kept_fits(study, None), None)
         found = drivers(model, supports, row)
     return verdict(girder, assessment, trend, calibration, found)
-
-
-def _factors(study: Study) -> str:
-    given, used = study.bridge.factors, study.model(study.bridge.girders[0].id).factors
-    return (
-        f"{given.name}: permanent {used.permanent:g} (where it relieves {used.permanent_relieving:g}), "
-        f"live {used.live:g}, resistance {used.resistance:g}"
-    )
 
 
 def _calibration(study: Study, assessment: AssessmentResult) -> VisitFit | None:

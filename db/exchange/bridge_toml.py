@@ -2,18 +2,17 @@
 
 from __future__ import annotations
 
-import math
 from pathlib import Path
 
 from db.documents import (
     BridgeDoc,
-    FactorsDoc,
     GirderDoc,
     LiveDoc,
     SectionDoc,
     VehicleDoc,
 )
 from db.errors import BedstoneError
+from db.exchange.combination_toml import factors, temperatures
 from db.exchange.fields import Fields, refuse_duplicates
 from db.exchange.files import digest_of, parse_toml, read_text, refuse_controls
 from db.exchange.girder_toml import GIRDER, girder
@@ -26,13 +25,12 @@ STIFFEST_KN_PER_M2 = 1e9  # 1000 GPa
 SOFTEST_KN_PER_M2 = 1e6  # 1 GPa
 MOST_VEHICLES = 1000
 
-_TOP = "format bridge section girder vehicle live factors"
+_TOP = "format bridge section girder vehicle live temperature factors"
 _BRIDGE = "id name carries built zero visit_interval"
-_SECTION = f"id E I shear_area G sagging_capacity hogging_capacity shear_capacity {PLATES}"
+_SECTION = f"id E I shear_area G depth sagging_capacity hogging_capacity shear_capacity {PLATES}"
 _VEHICLE = "id axles"
 _LIVE = "id vehicle count pitch dynamic model track"
 _TRACKS = ("careful", "standard")
-_FACTORS = "name permanent live resistance permanent_relieving"
 
 
 def read_bridge(path: Path) -> BridgeDoc:
@@ -72,6 +70,7 @@ def parse_bridge(text: str, *, file: str) -> BridgeDoc:
     interval = head.optional_positive("visit_interval", "duration")
     sections = _sections(top)
     vehicles = _vehicles(top)
+    girders = _girders(top, [section.id for section in sections])
     return BridgeDoc(
         id=name,
         name=head.text("name", name),
@@ -80,10 +79,11 @@ def parse_bridge(text: str, *, file: str) -> BridgeDoc:
         zero=head.text("zero", ""),
         visit_interval_years=interval,
         sections=sections,
-        girders=_girders(top, [section.id for section in sections]),
+        girders=girders,
         vehicles=vehicles,
         live=_live(top, [vehicle.id for vehicle in vehicles]),
-        factors=_factors(top),
+        temperature=temperatures(top, girders),
+        factors=factors(top),
         text=text,
         digest=digest_of(text),
     )
@@ -111,6 +111,7 @@ def _section(fields: Fields) -> SectionDoc:
         ),
         shear_area=fields.optional_positive("shear_area", "area"),
         shear_modulus=fields.optional_positive("G", "stress", example="79 GPa"),
+        depth=fields.optional_positive("depth", "length", example="900 mm"),
         sagging_capacity=fields.optional_positive("sagging_capacity", "moment"),
         hogging_capacity=fields.optional_positive("hogging_capacity", "moment", example="4700 kN m"),
         shear_capacity=fields.optional_positive("shear_capacity", "force", example="1900 kN"),
@@ -207,19 +208,3 @@ def _dynamic(fields: Fields) -> float:
         remedy = "write the part added to the static effect, from 0 to 2, for example 0.21"
         raise fields.error("dynamic", f"{dynamic:g} is no dynamic allowance", remedy)
     return dynamic
-
-
-def _factors(top: Fields) -> FactorsDoc:
-    fields = top.subtable("factors", _FACTORS, "name, permanent and live")
-    relieving = (
-        fields.number("permanent_relieving", math.nan, over=0.0)
-        if fields.has("permanent_relieving")
-        else None
-    )
-    return FactorsDoc(
-        name=fields.text("name", ""),
-        permanent=fields.number("permanent", over=0.0),
-        live=fields.number("live", over=0.0),
-        resistance=fields.number("resistance", 1.0, over=0.0),
-        permanent_relieving=relieving,
-    )

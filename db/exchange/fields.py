@@ -134,6 +134,14 @@ class Fields:
             )
         return float(value)
 
+    def flag(self, name: str) -> bool:
+        """Return true or false; false if the field is absent."""
+        value = self.table.get(name, False)
+        if not isinstance(value, bool):
+            problem = f"{written(value)} is neither true nor false"
+            raise self.error(name, problem, f"write {name} = true or {name} = false, without quotes")
+        return value
+
     def whole(self, name: str, default: int, *, least: int, most: int) -> int:
         """Return a whole number between two bounds."""
         value = self.table.get(name, default)

@@ -4,7 +4,15 @@ from __future__ import annotations
 
 import math
 
-from db.documents import GirderDoc, PermanentDoc, PieceDoc, SpanDoc, SupportDoc
+from db.documents import (
+    PERMANENT_KINDS,
+    STAGES,
+    GirderDoc,
+    PermanentDoc,
+    PieceDoc,
+    SpanDoc,
+    SupportDoc,
+)
 from db.errors import BedstoneError
 from db.exchange.fields import Fields, refuse_duplicates
 from db.exchange.pad_toml import PAD, pad
@@ -24,7 +32,7 @@ LARGEST_COEFFICIENT = 0.2  # 1/K
 _SPAN = "length section piece"
 _PIECE = "start end section"
 _SUPPORT = "id kind stiffness stiffness_cv rotation temperature_coefficient pad"
-_PERMANENT = "name uniform start end point at"
+_PERMANENT = "name uniform start end point at kind stage"
 
 
 def girder(fields: Fields, sections: list[str]) -> GirderDoc:
@@ -154,6 +162,8 @@ def _coefficient(fields: Fields) -> float | None:
 
 def _permanent(fields: Fields, length: float) -> PermanentDoc:
     name = fields.text("name", "permanent load")
+    kind = fields.one_of("kind", PERMANENT_KINDS, PERMANENT_KINDS[0])
+    stage = fields.one_of("stage", STAGES, STAGES[0])
     if fields.has("point") == fields.has("uniform"):
         remedy = 'write uniform = "9.5 kN/m", or point = "40 kN" with at = "12 m"'
         raise fields.error("uniform", "exactly one of uniform and point is needed", remedy)
@@ -166,11 +176,12 @@ def _permanent(fields: Fields, length: float) -> PermanentDoc:
             problem = f'"{shown(fields.table["at"])}" lies outside the girder (0 to {length:g} m)'
             raise fields.error("at", problem, f"write a place between 0 and {length:g} m")
         point = fields.si("point", "force", example="40 kN")
-        return PermanentDoc(name=name, point=point, at=min(max(at, 0.0), length))
+        return PermanentDoc(name=name, point=point, at=min(max(at, 0.0), length), kind=kind, stage=stage)
     if fields.has("at"):
         raise fields.error("at", "a uniform load has none", "write start and end, or neither")
     start, end = _reach(fields, length)
-    return PermanentDoc(name=name, uniform=fields.si("uniform", "line load"), start=start, end=end)
+    uniform = fields.si("uniform", "line load")
+    return PermanentDoc(name=name, uniform=uniform, start=start, end=end, kind=kind, stage=stage)
 
 
 def _reach(fields: Fields, length: float) -> tuple[float, float]:

@@ -59,7 +59,7 @@ def pad(fields: Fields) -> PadDoc:
         batch_correlation=_correlation(fields),
         shear_modulus_tolerance=_share(fields, "shear_modulus_tolerance", 0.5, "0.15"),
         height_tolerance=_height_tolerance(fields, rubber),
-        fixed=_yes_or_no(fields, "fixed"),
+        fixed=fields.flag("fixed"),
         limits=fields.one_of("limits", PAD_LIMITS) if fields.has("limits") else None,
         own_limits=own,
         least_permanent_pressure=least,
@@ -198,13 +198,6 @@ def _height_tolerance(fields: Fields, rubber: float) -> float | None:
     if not 0.0 <= value < 0.5 * rubber:
         problem = f'"{shown(fields.table[name])}" is no tolerance of {1e3 * rubber:g} mm of rubber'
         raise fields.error(name, problem, 'write for example "2 mm"')
-    return value
-
-
-def _yes_or_no(fields: Fields, name: str) -> bool:
-    value = fields.table.get(name, False)
-    if not isinstance(value, bool):
-        raise fields.error(name, f'"{shown(value)}" is neither true nor false', "write true or false")
     return value
 
 

@@ -67,10 +67,15 @@ def _factors(bridge: BridgeDoc) -> list[str]:
     factors = bridge.factors
     said = [
         f"factors, {name}: {value:g} is an unusual factor on effects"
-        for name, value in (("permanent", factors.permanent), ("live", factors.live))
-        if not low <= value <= high
+        for name, value in (
+            ("permanent", factors.permanent),
+            ("surfacing", factors.surfacing),
+            ("settlement", factors.settlement),
+            ("live", factors.live),
+        )
+        if value is not None and not low <= value <= high
     ]
-    if factors.resistance > 1.0:
+    if factors.resistance is not None and factors.resistance > 1.0:
         said.append(
             f"factors, resistance: {factors.resistance:g} multiplies the capacities and raises them; a partial factor of "
             f"{factors.resistance:g} that divides them is written {1.0 / factors.resistance:.3g}"

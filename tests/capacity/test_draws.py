@@ -9,6 +9,7 @@ from hypothesis import strategies as st
 from numpy.typing import NDArray
 
 from assess.capacity import (
+    Dead,
     Effects,
     Factors,
     GirderLoads,
@@ -45,7 +46,7 @@ def made(seed: int, per_span: int = 24) -> tuple[Effects, Floats, Floats]:
     girder = Girder(tuple(spans))
     gaps = np.concatenate([[0.0], np.cumsum(rng.uniform(1.2, 6.0, rng.integers(1, 5)))])
     trains = (Train(gaps, rng.uniform(60.0, 200.0, gaps.size)), Train(np.array([0.0]), np.array([250.0])))
-    loads = GirderLoads(permanent=LoadCase(uniforms=((0.0, girder.length, 25.0),)), trains=trains)
+    loads = GirderLoads(dead=(Dead(loads=LoadCase(uniforms=((0.0, girder.length, 25.0),))),), trains=trains)
     effects = Effects(Condensed(girder), plan_checks(girder, resistances, FACTORS, per_span=per_span), loads)
     n = girder.n_supports
     f = np.exp(

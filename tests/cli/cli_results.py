@@ -109,6 +109,8 @@ def assessment(
         calibrated_permanent_kN=498.4,
         calibrated_live_max_kN=701.0,
         calibrated_live_min_kN=-44.0,
+        calibrated_factored_max_kN=1649.6,
+        calibrated_factored_min_kN=432.4,
     )
     return AssessmentResult(
         bridge="quillmere",

@@ -86,7 +86,7 @@ def test_a_report_into_no_folder_is_refused_before_the_work(bedstone, workflow, 
 
 
 def bridge_doc() -> BridgeDoc:
-    factors = FactorsDoc(name="own", permanent=1.2, live=1.5)
+    factors = FactorsDoc(name="own", permanent=1.2, live=1.5, resistance=1.0)
     return BridgeDoc(
         id=demo.BRIDGE, name="Hollin Water", sections=(), girders=(), factors=factors, text="", digest="0"
     )

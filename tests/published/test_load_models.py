@@ -13,7 +13,7 @@ import numpy as np
 import pytest
 from numpy.typing import NDArray
 
-from assess.capacity import Effects, Factors, GirderLoads, Resistance, evaluate, plan_checks
+from assess.capacity import Dead, Effects, Factors, GirderLoads, Resistance, evaluate, plan_checks
 from assess.girder import Condensed, Girder, Piece, Sweep, envelope, places, support_places
 from assess.loads import Allowance, LoadCase, ModelLoad, live_model
 from tests.published.beams import DATA, Solved, half_unit
@@ -228,7 +228,7 @@ def test_an_assessment_of_the_interior_stringer_rates_one_section(
     factors = Factors(permanent=1.25, permanent_relieving=0.9, live=live_factor, resistance=1.0)
     resistance = Resistance(sagging=CAPACITY * KIP_FT, hogging=np.nan, shear=np.nan)
     plan = plan_checks(girder, [[resistance]], factors)
-    effects = Effects(Condensed(girder), plan, GirderLoads(permanent=dead, models=(load,)))
+    effects = Effects(Condensed(girder), plan, GirderLoads(dead=(Dead(loads=dead),), models=(load,)))
     cases = evaluate(effects, factors, np.zeros(2), np.zeros(2))
     case = next(row.case for row in cases if row.check.effect == "sagging")
     assert case.live / KIP_FT == pytest.approx(957.6, rel=2e-3)

@@ -10,7 +10,7 @@ from __future__ import annotations
 import numpy as np
 import pytest
 
-from assess.capacity import Effects, Factors, GirderLoads, Resistance, evaluate, plan_checks
+from assess.capacity import Dead, Effects, Factors, GirderLoads, Resistance, evaluate, plan_checks
 from assess.girder import Condensed, Girder, Piece
 from assess.loads import LoadCase, Train
 
@@ -27,7 +27,7 @@ def rate(live_factor: float) -> float:
     factors = Factors(permanent=1.25, permanent_relieving=0.9, live=live_factor, resistance=1.0)
     plan = plan_checks(girder, [[Resistance(sagging=CAPACITY, hogging=np.nan, shear=np.nan)]], factors)
     loads = GirderLoads(
-        permanent=LoadCase(uniforms=((0.0, SPAN, 8.0 * DEAD / SPAN**2),)),
+        dead=(Dead(loads=LoadCase(uniforms=((0.0, SPAN, 8.0 * DEAD / SPAN**2),))),),
         trains=(Train(np.array([0.0]), np.array([4.0 * LIVE / SPAN])),),
     )
     rows = evaluate(Effects(Condensed(girder), plan, loads), factors, np.zeros(2), np.zeros(2))

@@ -255,6 +255,8 @@ def assessment_of(name: str, spans: list[float] = SPANS, names: list[str] = SUPP
             calibrated_permanent_kN=(9.0 if i == 0 else 172.0) + 290.0 * (0 < i < len(spans)),
             calibrated_live_max_kN=610.0,
             calibrated_live_min_kN=-41.5,
+            calibrated_factored_max_kN=1500.0,
+            calibrated_factored_min_kN=-53.0 if i == 0 else 110.0,
         )
         for i, n in enumerate(names)
     ]

@@ -138,7 +138,16 @@ TREND = {
     "cautions": [TEXT],
 }
 # said beside the contract's own keys
-BESIDE_GIRDER = {"pads"}
+BESIDE_INSIDE = {
+    "pads",
+    "rating_levels",
+    "temperature",
+    "settlement",
+    "utilisation_with_relief",
+    "utilisation_without_relief",
+    "calibrated_factored_max_kN",
+    "calibrated_factored_min_kN",
+}
 BESIDE = {"assess": {"version", "input_digest", "seed", "draws"}, "trend": {"next_visit_reason", "seats"}}
 
 
@@ -171,12 +180,14 @@ def check(value: Any, shape: Any, where: str = "") -> None:
 def trimmed(document: dict[str, Any], command: str) -> dict[str, Any]:
     assert set(document) >= BESIDE[command]
     plain = {key: value for key, value in document.items() if key not in BESIDE[command]}
-    if command == "assess":
-        plain["girders"] = [
-            {key: value for key, value in girder.items() if key not in BESIDE_GIRDER}
-            for girder in plain["girders"]
-        ]
-    return plain
+    return without(plain, BESIDE_INSIDE) if command == "assess" else plain
+
+
+def without(value: Any, keys: set[str]) -> Any:
+    """A document without some keys of its tables, at any depth."""
+    if isinstance(value, dict):
+        return {key: without(inner, keys) for key, inner in value.items() if key not in keys}
+    return [without(one, keys) for one in value] if isinstance(value, list) else value
 
 
 @pytest.fixture

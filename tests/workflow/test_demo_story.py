@@ -156,10 +156,10 @@ def test_the_drivers_of_a_section_are_what_putting_a_support_back_takes_away(dem
     assert found[0] == seat
     # by hand: the permanent moment per metre of drop, factored, over the resistance
     place = places(model.condensed, "moment", np.array([15.0]))
-    level = model.condensed.derivatives(
-        model.compliance(supports.log_stiffness),
-        model.condensed.solve(model.compliance(supports.log_stiffness), model.effects.permanent_forces),
-    ).displacement_by_settlement[:, 2]
+    unit = np.eye(model.n)[2]
+    level = model.condensed.solve(
+        model.compliance(supports.log_stiffness), np.zeros(model.n), unit
+    ).displacement
     moment = float(place.rows[0] @ level) * supports.settlements["pier 2"].value
     capacity = float(model.plan.hogging[np.argmin(np.abs(model.plan.x - 15.0))])
     assert seat.adds == pytest.approx(-1.2 * moment / capacity, rel=1e-6)

@@ -253,11 +253,11 @@ def test_permanent_effects_of_the_calibrated_case_include_measured_settlements(
             (row.nominal, np.array([*np.exp(-one.nominal), 0.0]), 0.0 * drops),
             (row.unyielding, np.zeros(4), 0.0 * drops),
         ):
-            expected = frame.solve(one.girder, f, s, one.permanent, np.array([case.x_m]))
+            expected = frame.solve(one.girder, f, s, one.effects.loads.dead[0].loads, np.array([case.x_m]))
             assert case.permanent == pytest.approx(expected.moment[0], rel=1e-8, abs=1e-6)
-    expected = frame.solve(one.girder, compliance, drops, one.permanent, np.array([1.0]))
+    expected = frame.solve(one.girder, compliance, drops, one.effects.loads.dead[0].loads, np.array([1.0]))
     assert [r.calibrated_permanent_kN for r in girder.reactions] == pytest.approx(expected.reaction, rel=1e-8)
-    firm = frame.solve(one.girder, np.zeros(4), 0.0 * drops, one.permanent, np.array([1.0]))
+    firm = frame.solve(one.girder, np.zeros(4), 0.0 * drops, one.effects.loads.dead[0].loads, np.array([1.0]))
     assert [r.unyielding_permanent_kN for r in girder.reactions] == pytest.approx(firm.reaction, rel=1e-8)
 
 

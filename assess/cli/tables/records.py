@@ -16,7 +16,7 @@ if TYPE_CHECKING:
     from db.records import BridgeSummary, Taken, VisitSummary
 
 
-def show_bridge_taken(bridge: BridgeDoc, taken: Taken, view: BridgeView, models: Sequence[str] = ()) -> None:
+def show_bridge_taken(bridge: BridgeDoc, taken: Taken, view: BridgeView) -> None:
     """Say what became of a bridge file, and which published live loads it names, in words."""
     revision = "" if taken.revision is None else f" as revision {taken.revision}"
     if not taken.added:
@@ -45,14 +45,20 @@ def show_bridge_taken(bridge: BridgeDoc, taken: Taken, view: BridgeView, models:
     if bridge.vehicles:
         click.echo()
         _show_vehicles(bridge)
-    for model in models:
-        click.echo()
-        click.echo(f"Live load {model}")
-    factors = bridge.factors
-    click.echo()
-    effects = f"permanent {factors.permanent:g}, live {factors.live:g} on the effects"
-    click.echo(f"Factors: {effects}; capacity x {factors.resistance:g}.")
+    show_actions(view)
     _look_again(taken)
+
+
+def show_actions(view: BridgeView) -> None:
+    """Say what acts beside the permanent loads, and with which factors."""
+    for model in view.models:
+        click.echo()
+        print_wrapped(f"Live load {model}.")
+    for case in view.temperature:
+        click.echo()
+        print_wrapped(f"Temperature {case}.")
+    click.echo()
+    print_wrapped(f"Factors by {view.factors}.")
 
 
 def _show_pads(view: BridgeView) -> None:

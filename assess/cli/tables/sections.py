@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 import click
 
+from assess.cli.tables.records import show_actions
 from assess.cli.tables.screen import print_cautions, print_heading, print_table, print_wrapped
 from assess.cli.tables.words import NOT_DETERMINED, number
 
@@ -27,6 +28,7 @@ def show_bridge(view: BridgeView) -> None:
     for girder in view.shown.girders:
         print_heading(f"Girder {girder.girder}")
         _show_supports(girder)
+    show_actions(view)
     print_cautions(view.cautions)
 
 
