@@ -111,15 +111,30 @@ def calibrated_utilisation(case: CalibratedCase) -> str:
 def _cell(case: CaseResult, unit: str, told: str) -> CaseCell:
     no_factor = "no capacity" if case.capacity is None else "no live load effect to divide by"
     of = "" if case.capacity is None else f" of {words.number(case.capacity)}"
-    return CaseCell(
-        utilisation=told,
-        lines=[
-            f"at {words.place(case.x_m)}",
-            f"rating factor {words.quantity(case.rating_factor, '', no_factor)}",
-            f"factored {words.number(case.factored)}{of}\N{NO-BREAK SPACE}{unit}",
-            f"permanent {words.number(case.permanent)}, live {words.number(case.live)}\N{NO-BREAK SPACE}{unit}",
-        ],
-    )
+    lines = [
+        f"at {words.place(case.x_m)}",
+        f"rating factor {words.quantity(case.rating_factor, '', no_factor)}",
+        f"factored {words.number(case.factored)}{of}\N{NO-BREAK SPACE}{unit}",
+        f"permanent {words.number(case.permanent)}, live {words.number(case.live)}\N{NO-BREAK SPACE}{unit}",
+    ]
+    lines += [
+        f"rating factor {level} {words.quantity(value, '', no_factor)}"
+        for level, value in case.rating_levels.items()
+    ]
+    if case.temperature:
+        lines.append(f"temperature {words.number(case.temperature)}\N{NO-BREAK SPACE}{unit}")
+    if isinstance(case, CalibratedCase) and case.settlement:
+        lines += _relief(case, unit)
+    return CaseCell(utilisation=told, lines=lines)
+
+
+def _relief(case: CalibratedCase, unit: str) -> list[str]:
+    """What settlement adds, and how a section fares with and without a relief by it."""
+    lines = [f"settlement {words.number(case.settlement)}\N{NO-BREAK SPACE}{unit} of the permanent"]
+    with_relief, without = case.utilisation_with_relief, case.utilisation_without_relief
+    if with_relief is not None and without is not None and with_relief != without:
+        lines.append(f"utilisation with relief {words.number(with_relief)}, without {words.number(without)}")
+    return lines
 
 
 def governing(girder: GirderAssessment) -> SectionResult | None:

@@ -20,7 +20,7 @@ from assess.results import (
     ReactionResult,
     SectionResult,
 )
-from assess.workflow import cautions, pad_cautions, section_cautions
+from assess.workflow import cautions, combination_cautions, pad_cautions, section_cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import GirderFit, VisitFit, from_kept
 from assess.workflow.combination import factors_of
@@ -131,6 +131,7 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
     if factors.resistance > 1.0:
         said.append(cautions.resistance_above_one(factors.resistance))
     said += _of_datum(study, visit)
+    said += combination_cautions.of_bridge(study.bridge)
     digests = []
     for i, girder in enumerate(study.bridge.girders):
         progress(f"assessing {girder.id}", i, len(study.bridge.girders))

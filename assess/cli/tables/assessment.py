@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 import click
 
+from assess.cli.tables.beside import show_beside
 from assess.cli.tables.screen import print_cautions, print_heading, print_table
 from assess.cli.tables.words import chance, interval, number, section_name
 
@@ -22,6 +23,7 @@ def show_assessment(result: AssessmentResult) -> None:
     for girder in result.girders:
         print_heading(f"Girder {girder.girder}")
         _show_sections(girder)
+        show_beside(girder)
         click.echo()
         print_table(
             [
