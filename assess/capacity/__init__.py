@@ -2,6 +2,7 @@
 
 from assess.capacity.actions import Dead, GirderLoads, Steady, Thermal
 from assess.capacity.checks import CheckPlan, Resistance, plan_checks
+from assess.capacity.contact import standing_on
 from assess.capacity.effects import Effects
 from assess.capacity.factors import KINDS, Factors
 from assess.capacity.rows import (
@@ -15,6 +16,7 @@ from assess.capacity.rows import (
     moment_draws,
 )
 from assess.capacity.sets import FactorSet, UnknownSetError, factor_set, set_names
+from assess.capacity.standing import PermanentLoads, permanent_loads
 
 __all__ = [
     "KINDS",
@@ -25,6 +27,7 @@ __all__ = [
     "FactorSet",
     "Factors",
     "GirderLoads",
+    "PermanentLoads",
     "Resistance",
     "Row",
     "RowDraws",
@@ -37,6 +40,8 @@ __all__ = [
     "factor_set",
     "factored_steady",
     "moment_draws",
+    "permanent_loads",
     "plan_checks",
     "set_names",
+    "standing_on",
 ]

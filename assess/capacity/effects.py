@@ -9,8 +9,7 @@ from numpy.typing import NDArray
 
 from assess.capacity.actions import GirderLoads, Steady
 from assess.capacity.checks import CheckPlan
-from assess.capacity.factors import KINDS
-from assess.capacity.standing import PermanentLoads, ThermalCases
+from assess.capacity.standing import ThermalCases, permanent_loads
 from assess.girder import (
     Condensed,
     Envelope,
@@ -44,9 +43,8 @@ class Effects:
         self.condensed = condensed
         self.plan = plan
         self.loads = loads
-        kinds = tuple(dict.fromkeys(one.kind for one in loads.dead)) or (KINDS[0],)
         self._places = {name: places(condensed, name, plan.x, plan.side) for name in ("moment", "shear")}
-        self._permanent = PermanentLoads(condensed, loads, kinds)
+        self._permanent = permanent_loads(condensed, loads)
         self._held = {name: self._permanent.held(place) for name, place in self._places.items()}
         self._thermal = ThermalCases(condensed, loads.thermal)
         self._bent = {name: self._thermal.held(place) for name, place in self._places.items()}

@@ -9,7 +9,16 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.calibrate import PadPrior
-from assess.capacity import CheckPlan, Effects, Factors, GirderLoads, Resistance, plan_checks
+from assess.capacity import (
+    CheckPlan,
+    Effects,
+    Factors,
+    GirderLoads,
+    PermanentLoads,
+    Resistance,
+    permanent_loads,
+    plan_checks,
+)
 from assess.girder import Condensed, Girder, Piece
 from assess.loads import LoadCase, ModelLoad, Train
 from assess.pad import Pad
@@ -104,7 +113,17 @@ class GirderModel:
         """Compliances (n,) of supports that all hold their level."""
         return np.zeros(self.n)
 
+    @cached_property
+    def held_down(self) -> NDArray[np.bool_]:
+        """Supports (n,) that take tension."""
+        return np.array([support.takes_tension for support in self.doc.supports], dtype=bool)
+
     # loads -----------------------------------------------------------------------------------
+
+    @cached_property
+    def permanent(self) -> PermanentLoads:
+        """The permanent loads, as the supports see them."""
+        return permanent_loads(self.condensed, GirderLoads(dead=dead_loads(self.doc)))
 
     @cached_property
     def trains(self) -> tuple[Train, ...]:

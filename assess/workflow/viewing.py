@@ -178,7 +178,8 @@ def _states(study: Study, model: GirderModel, calibration: VisitFit | None) -> l
     visit: VisitDoc = study.visit(calibration.visit)
     states = []
     for state in visit.states:
-        if state.vehicle is None or not any(r.state == state.id for r in shown.readings):
+        read = any(r.state == state.id and r.predicted is not None for r in shown.readings)
+        if state.vehicle is None or not read:
             continue
         load = model.placed(state)
         x, fitted = line_of(model, fit.log_stiffness, load)
