@@ -39,6 +39,7 @@ class GirderPage:
     sections: list[tables.SectionRow] = field(default_factory=list)
     reaction_heads: list[str] = field(default_factory=list)
     reactions: list[list[str]] = field(default_factory=list)
+    pad_checks: list[list[str]] = field(default_factory=list)
     histories: list[Figure] = field(default_factory=list)
     histories_caption: str = ""
     pad_trends: list[list[str]] = field(default_factory=list)
@@ -58,6 +59,8 @@ def build(view: ReportView) -> dict[str, object]:
         "next_visit": _next_visit(view),
         "girders": [_girder(view, name, f"g{i + 1}") for i, name in enumerate(_names(view))],
         "sections": sections.pages(view.sections),
+        "pad_check_heads": tables.PAD_CHECK_HEADS,
+        "factors": view.factors,
         "section_heads": list(sections.HEADS),
         "visits": [
             [
@@ -134,6 +137,7 @@ def _girder(view: ReportView, name: str, key: str) -> GirderPage:
         sections=[] if assessed is None else tables.section_rows(assessed, key, stands_on),
         reaction_heads=tables.reaction_heads(stands_on),
         reactions=[] if assessed is None else tables.reaction_rows(assessed.reactions),
+        pad_checks=[] if assessed is None else tables.pad_check_rows(assessed.pads),
         histories=[] if drawn is None else _histories(view, drawn, key),
         histories_caption="" if drawn is None else _histories_caption(drawn),
         pad_trends=[] if view.trend is None else tables.pad_trend_rows(view.trend, name),

@@ -6,6 +6,9 @@ import re
 from dataclasses import replace
 from itertools import pairwise
 
+import pytest
+
+from assess.report import svg
 from assess.report.figures import moments, silhouette
 from assess.results import LoadStand
 from tests.report.example_view import example
@@ -26,8 +29,8 @@ def drawn(*stands: LoadStand) -> str:
     return moments.envelopes(girder, key="k", zero="west")
 
 
-def wheels(svg: str) -> int:
-    return len(re.findall(r"stroke-width: 1.1", svg))
+def wheels(page: str) -> int:
+    return len(re.findall(r"stroke-width: 1.1", page))
 
 
 def test_words_say_what_stands_where() -> None:
@@ -41,10 +44,19 @@ def test_words_say_what_stands_where() -> None:
 
 def test_every_stand_adds_a_strip_and_its_words() -> None:
     bare, one, two = drawn(), drawn(STAND), drawn(STAND, replace(STAND, effect="sagging"))
-    heights = [float(re.search(r'viewBox="0 0 [\d.]+ ([\d.]+)"', svg).group(1)) for svg in (bare, one, two)]  # type: ignore[union-attr]
-    assert [round(b - a) for a, b in pairwise(heights)] == [silhouette.STRIP_PT] * 2
+    heights = [float(re.search(r'viewBox="0 0 [\d.]+ ([\d.]+)"', page).group(1)) for page in (bare, one, two)]  # type: ignore[union-attr]
+    each = silhouette.strip_height(STAND, svg.FULL_WIDTH - 40.0)
+    assert [b - a for a, b in pairwise(heights)] == pytest.approx([each, each], abs=0.1)
     assert "Live load for hogging at 12.00 m: 4 axles" in one
     assert "Live load for" not in bare
+
+
+def test_long_words_break_between_their_parts_and_none_is_cut() -> None:
+    told = silhouette.lines(STAND, 200.0)
+    assert len(told) > 1
+    assert " ".join(told) == silhouette.in_words(STAND)
+    assert max(svg.text_width(line) for line in told) <= 200.0
+    assert silhouette.strip_height(STAND, 200.0) > silhouette.strip_height(STAND, 2000.0)
 
 
 def test_a_wheel_stands_for_every_axle() -> None:

@@ -14,7 +14,9 @@ from assess import workflow
 from assess.girder import places
 from assess.workflow.assessing import kept_fits, supports_of
 from assess.workflow.drivers import drivers
+from assess.workflow.pads import cold_shift
 from assess.workflow.study import Study
+from db.exchange import parse_bridge
 from db.store import open_record
 from tests.workflow.conftest import ROOT, Demo
 
@@ -25,7 +27,10 @@ SOFTENING = ("north", "pier 2")
 def true_ratio(story: ModuleType, pad: tuple[str, str], date: dt.date, temperature: float) -> float:
     ratio, growth = story.TRUTH[pad]
     years = (date - story.VISITS[0][0]).days / 365.25
-    return float(ratio * math.exp(growth * years + story.COLDER * (20.0 - temperature)))
+    bridge = parse_bridge((SAMPLE / "hollin-water.toml").read_text(), file="hollin-water.toml")
+    girder = bridge.girder(pad[0])
+    cold = cold_shift(girder, [girder.support_index(pad[1])], temperature).shift[0]
+    return float(ratio * math.exp(growth * years + cold))
 
 
 def test_the_files_are_what_the_script_writes(story: ModuleType, tmp_path, monkeypatch) -> None:  # type: ignore[no-untyped-def]

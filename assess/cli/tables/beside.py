@@ -28,12 +28,13 @@ def show_beside(girder: GirderAssessment) -> None:
 
 
 def _show_moved(sections: list[SectionResult]) -> None:
+    warm = any(s.calibrated.temperature for s in sections)
     print_table(
         [
-            "settlement and temperature\n(calibrated case, unfactored)",
+            f"{'settlement and temperature' if warm else 'settlement'}\n(calibrated case, unfactored)",
             "unit",
             "settlement\nadds",
-            "temperature\nadds",
+            *(["temperature\nadds"] if warm else []),
             "utilisation with\nrelief by settlement",
             "utilisation\nwithout it",
         ],
@@ -42,7 +43,7 @@ def _show_moved(sections: list[SectionResult]) -> None:
                 section_name(s.effect, s.span, s.support),
                 "kN" if s.effect == "shear" else "kN m",
                 number(s.calibrated.settlement),
-                number(s.calibrated.temperature),
+                *([number(s.calibrated.temperature)] if warm else []),
                 number(s.calibrated.utilisation_with_relief),
                 number(s.calibrated.utilisation_without_relief),
             ]

@@ -72,7 +72,7 @@ def envelopes(girder: GirderView, *, key: str, zero: str, basis: str = words.CAL
     below = pack(*_labels(sagging, x_end), low=_LEFT + 2.0, high=svg.FULL_WIDTH - 1.0)
     over, under = sum(row_heights(above)), sum(row_heights(below))
     head, body = 60.0, 190.0
-    foot = _FOOT + silhouette.STRIP_PT * len(girder.stands)
+    foot = _FOOT + _strips(girder)
     height = head + over + body + under + foot
     lines = girder.moments
     with svg.drawing(svg.FULL_WIDTH, height) as figure:
@@ -236,13 +236,19 @@ def _write(
     write(sheet, blocks, start=start, upward=upward)
 
 
+def _strips(girder: GirderView) -> float:
+    """Height of all strips, pt."""
+    return sum(silhouette.strip_height(one, svg.FULL_WIDTH - _RIGHT - 4.0) for one in girder.stands)
+
+
 def _stands(sheet: Axes, girder: GirderView, *, top: float) -> None:
     """Stand the live load under the axis where it governs, lengthwise to the scale of the moments."""
     supports = np.concatenate([[0.0], np.cumsum(girder.span_lengths_m)])
     width = svg.FULL_WIDTH - _LEFT - _RIGHT
-    for i, stand in enumerate(girder.stands):
-        at = top + i * silhouette.STRIP_PT
+    at = top
+    for stand in girder.stands:
         silhouette.strip(sheet, stand, supports, top=at, left=_LEFT, width=width)
+        at += silhouette.strip_height(stand, _LEFT + width - 4.0)
 
 
 def _legend(sheet: Axes, basis: str, *, capacity: str | None) -> None:

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import re
+
 import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.collections import LineCollection
@@ -12,6 +14,9 @@ from assess.report.figures.layout import fitted
 from assess.results import Floats, LoadStand
 
 STRIP_PT = 44.0
+"""Height of a strip with one line of words."""
+
+LINE_PT = 13.0
 _TALLEST = 13.0  # pt: the strokes of the heaviest stretch
 _EVERY = 5.0  # pt between strokes
 
@@ -29,8 +34,10 @@ def strip(
     top, left, width : pt
     """
     per_m = width / float(supports_m[-1])
-    base = top + STRIP_PT - 8.0
-    sheet.text(2.0, top + 10.0, fitted(in_words(stand), left + width - 4.0), ha="left", va="baseline")
+    told = lines(stand, left + width - 4.0)
+    base = top + strip_height(stand, left + width - 4.0) - 8.0
+    for i, line in enumerate(told):
+        sheet.text(2.0, top + 10.0 + i * LINE_PT, line, ha="left", va="baseline")
     sheet.plot([left, left + width], [base, base], color=svg.INK, lw=0.9, zorder=2)
     for x in supports_m:
         sheet.plot(
@@ -43,6 +50,23 @@ def strip(
         sheet.add_patch(Circle((left + per_m * x, base - 3.2), 2.8, fc="white", ec=svg.INK, lw=1.1, zorder=5))
     at = left + per_m * stand.x_m
     sheet.plot([at, at], [base - 19.0, base + 6.0], color=svg.ACCENT, lw=1.0, ls=(0, (3.0, 2.0)), zorder=4)
+
+
+def strip_height(stand: LoadStand, width: float) -> float:
+    """Height of a strip, pt, with its words in `width` pt."""
+    return STRIP_PT + LINE_PT * (len(lines(stand, width)) - 1)
+
+
+def lines(stand: LoadStand, width: float) -> list[str]:
+    """What stands where, broken between its parts into as few lines of `width` pt as hold it."""
+    told: list[str] = []
+    for part in re.split(r"(?<=[;,]) ", in_words(stand)):
+        longer = f"{told[-1]} {part}" if told else part
+        if told and svg.text_width(longer) <= width:
+            told[-1] = longer
+        else:
+            told.append(part)
+    return [fitted(line, width) for line in told]
 
 
 def in_words(stand: LoadStand) -> str:
