@@ -4,7 +4,7 @@ from assess.capacity.actions import Dead, GirderLoads, Steady, Thermal
 from assess.capacity.checks import CheckPlan, Resistance, plan_checks
 from assess.capacity.contact import standing_on
 from assess.capacity.effects import Effects
-from assess.capacity.factors import KINDS, Factors
+from assess.capacity.factors import AS_THEY_ARE, KINDS, Factors
 from assess.capacity.rows import (
     Case,
     Row,
@@ -19,6 +19,7 @@ from assess.capacity.sets import FactorSet, UnknownSetError, factor_set, set_nam
 from assess.capacity.standing import PermanentLoads, permanent_loads
 
 __all__ = [
+    "AS_THEY_ARE",
     "KINDS",
     "Case",
     "CheckPlan",

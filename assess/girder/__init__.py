@@ -1,7 +1,8 @@
 """The continuous girder: its condensed form, responses, influence lines and envelopes."""
 
 from assess.girder.condensed import Condensed, SupportDerivatives, SupportState
-from assess.girder.contact import ContactState, Tips, contact
+from assess.girder.contact import ContactState, Tips, contact, holds
+from assess.girder.contact_many import ManyStates, contact_many
 from assess.girder.distributed import Sweep
 from assess.girder.envelope import (
     Envelope,
@@ -33,6 +34,7 @@ __all__ = [
     "ContactState",
     "Envelope",
     "Girder",
+    "ManyStates",
     "Part",
     "Passage",
     "Piece",
@@ -43,10 +45,12 @@ __all__ = [
     "Sweep",
     "Tips",
     "contact",
+    "contact_many",
     "envelope",
     "extremes",
     "forces_of",
     "governing_placement",
+    "holds",
     "influence_line",
     "passages",
     "places",

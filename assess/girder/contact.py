@@ -178,14 +178,17 @@ def _gaps(by_gap: Floats, reaction: Floats, off: Bools) -> Floats:
 
 
 def _held(condensed: Condensed, off: Bools) -> Bools:
-    """Tell in which rows (rows, n) the other supports hold the girder: K of those that are off has no zero."""
+    """Tell in which rows (rows, n) the supports that are not off hold the girder."""
     sets, which = np.unique(off, axis=0, return_inverse=True)
-    holds = np.ones(len(sets), dtype=bool)
-    for i, one in enumerate(sets):
-        if one.any():
-            stiffness = np.linalg.eigvalsh(condensed.K[np.ix_(one, one)])
-            holds[i] = stiffness[0] > _HOLDS * max(stiffness[-1], np.trace(condensed.K) * _HOLDS)
-    return np.asarray(holds[which.ravel()])
+    return np.array([holds(condensed, one) for one in sets], dtype=bool)[which.ravel()]
+
+
+def holds(condensed: Condensed, off: Bools) -> bool:
+    """Tell whether the supports that are not off (n,) hold the girder: K of those that are off has no zero."""
+    if not off.any():
+        return True
+    stiffness = np.linalg.eigvalsh(condensed.K[np.ix_(off, off)])
+    return bool(stiffness[0] > _HOLDS * max(stiffness[-1], np.trace(condensed.K) * _HOLDS))
 
 
 def _one_by_one(by_gap: Floats, stuck: Floats, free: Bools, slack: float) -> Bools:

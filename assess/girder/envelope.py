@@ -193,9 +193,13 @@ class Passage:
             for best in (y.argmax(axis=1), y.argmin(axis=1)):
                 for beside in (-1, 0, 1):
                     chosen[index, np.clip(best + beside, 0, m - 1)] = True
+        return self.keep(chosen)
+
+    def keep(self, chosen: NDArray[np.bool_]) -> Passage:
+        """Keep some positions, (p, m); places with fewer than others keep some more."""
         width = int(chosen.sum(axis=1).max())
         keep = np.argsort(~chosen, axis=1, kind="stable")[:, :width]
-        forces = np.broadcast_to(self.forces, (count, *self.forces.shape[1:]))
+        forces = np.broadcast_to(self.forces, (self.place.x.size, *self.forces.shape[1:]))
         return Passage(
             place=self.place,
             leading=np.take_along_axis(self.leading, keep, axis=1),

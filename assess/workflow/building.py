@@ -176,7 +176,7 @@ class GirderModel:
             models=self.models,
             thermal=thermal_cases(self.bridge, self.doc),
         )
-        return Effects(self.condensed, self.plan, loads)
+        return Effects(self.condensed, self.plan, loads, self.held_down)
 
     def flexural_at(self, x: float) -> float:
         """EI at x, kN m2; at a change of section the piece to the right."""

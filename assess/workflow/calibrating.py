@@ -159,7 +159,7 @@ def _require_a_fit(done: VisitFit, visit: VisitDoc) -> None:
     raise BedstoneError(
         f"no reading is left to fit: in every test state read ({states}) the girder is off a pad",
         field=f"girder {girders}, visit {visit.date.isoformat()}",
-        remedy="stand the vehicle where the girder stays down, or write hold_down = true at a support that is tied down",
+        remedy="stand the vehicle where the girder stays down; write hold_down = true at a support that is tied down",
     )
 
 

@@ -136,7 +136,9 @@ def _girder(study: Study, girder: str, calibration: VisitFit | None, part: Girde
         states=_states(study, model, calibration),
         moments=lines,
         histories=_histories(model, part) if part is not None else [],
-        stands=governing_stands(model, model.compliance(supports.log_stiffness), lines),
+        stands=governing_stands(
+            model, model.compliance(supports.log_stiffness), supports.drops(model), lines
+        ),
     )
 
 
