@@ -18,13 +18,9 @@ from assess.capacity.uplift import Uplift
 from assess.girder import (
     REACTION,
     Condensed,
-    Envelope,
     Part,
-    Placement,
     Places,
     Sweep,
-    envelope,
-    governing_placement,
     passages,
     places,
     support_places,
@@ -94,34 +90,11 @@ class Effects:
     def _stands(self, compliance: Floats, settlement: Floats) -> Stands:
         return stands(self.condensed, self._permanent, self._thermal, compliance, settlement, self.held_down)
 
-    # live loads that leave the girder on its pads ------------------------------------------------
-
-    def live(self, name: str, compliance: Floats) -> Envelope:
-        """Live envelope of moment or shear (p,) on supports (n,)."""
-        if not self._passages[name]:
-            zero = np.zeros(self.plan.x.size)
-            nowhere = np.full(self.plan.x.size, np.nan)
-            return Envelope(
-                maximum=zero, minimum=zero, leading_at_maximum=nowhere, leading_at_minimum=nowhere
-            )
-        return envelope(self._passages[name], compliance)
-
-    def placement(self, name: str, compliance: Floats, station: int, sense: float) -> Placement | None:
-        """Where the live load stands for the greatest (sense 1) or least (-1) moment or shear at a station."""
-        return governing_placement(self._passages[name], compliance, station, sense)
-
-    def reactions(self, compliance: Floats) -> tuple[Floats, Floats]:
-        """Largest and smallest live reaction of every support (n,), kN; 0 where no train is better."""
-        if not self._reaction_passages:
-            return np.zeros(self.condensed.n_supports), np.zeros(self.condensed.n_supports)
-        live = envelope(self._reaction_passages, compliance)
-        return live.maximum, live.minimum
+    # live loads beside it ------------------------------------------------------------------------
 
     @cached_property
     def _reaction_passages(self) -> list[Part]:
         return live_parts(support_places(self.condensed), self.loads)
-
-    # live loads beside what stands: on pads without tension ---------------------------------------
 
     def passing(
         self, factors: Factors, compliances: Floats, settlements: Floats, sample: Ints | None = None

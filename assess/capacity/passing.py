@@ -78,7 +78,7 @@ class Passing:
             return Envelope(
                 maximum=zero, minimum=zero, leading_at_maximum=nowhere, leading_at_minimum=nowhere
             )
-        if not self.opens[0]:
+        if not self._lifts(name):
             return envelope(parts, self._compliances[0])
         found = self._extremes_of(name)
         return Envelope(
@@ -98,7 +98,7 @@ class Passing:
 
     def placement(self, name: str, station: int, sense: float) -> Placement | None:
         """Where the live load stands for the greatest (sense 1) or least (-1) response at a station; None: nowhere."""
-        if not self.opens[0]:
+        if not self._lifts(name):
             return governing_placement(self._parts[name], self._compliances[0], station, sense)
         found = self._extremes_of(name)
         value, part, position = (
@@ -175,6 +175,13 @@ class Passing:
         on = self._compliances[self._chosen], self._settlements[self._chosen]
         passages = [part.governing(on[0]) for part in self._parts[REACTION] if isinstance(part, Sweep)]
         return occurring(passages, self._uplift, *on)
+
+    def _lifts(self, name: str) -> bool:
+        """Whether some position of what passes the places lifts anything on the one set of supports there is."""
+        if not self.opens[0]:
+            return False
+        passages = [one.passage for one in self._candidates(name)]
+        return bool(occurring(passages, self._uplift, self._compliances, self._settlements).any())
 
     def _candidates(self, name: str) -> list[Candidate]:
         if name not in self._made:
