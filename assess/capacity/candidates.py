@@ -14,11 +14,12 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.capacity.uplift import Uplift
-from assess.girder import Part, Passage, Placement, Sweep, holds
+from assess.girder import Part, Passage, Placement, Sweep, holds, passage_at
 
 Floats = NDArray[np.float64]
 Bools = NDArray[np.bool_]
 
+_FINER = 16  # steps that a step of the grid is divided into where a support is left or met
 _MOST_SETS = 12  # of lifted supports that are searched; a few are usual
 
 
@@ -67,6 +68,32 @@ def candidates(
         found += new
         waiting += list(occurring([c.passage for c in new], uplift, compliances, settlements))
     return found
+
+
+def refined(
+    found: Sequence[Candidate], uplift: Uplift, compliance: Floats, settlement: Floats
+) -> list[Candidate]:
+    """More positions of trains about where a support is left or met: an effect can be worst just there.
+
+    Parameters
+    ----------
+    found : Candidates, of which those on one grid for all places are refined
+    compliance, settlement : (n,)
+    """
+    more = []
+    for one in found:
+        part = one.passage
+        if part.train is None or part.forces.shape[0] != 1:
+            continue
+        leading = part.leading[0]
+        lifted = uplift.moved(compliance[None], settlement[None], part.forces[0])[1][:, 0]  # (c, m, n)
+        change = np.flatnonzero((lifted[:, 1:] != lifted[:, :-1]).any(axis=(0, 2)))
+        if change.size:
+            share = np.arange(1, _FINER) / _FINER
+            between = leading[change, None] + np.diff(leading)[change, None] * share
+            passage = passage_at(part.place, part.train, np.unique(between))
+            more.append(Candidate(passage=passage, source=passage, lifted=one.lifted))
+    return more
 
 
 def occurring(passages: Sequence[Passage], uplift: Uplift, compliances: Floats, settlements: Floats) -> Bools:

@@ -13,7 +13,7 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import NDArray
 
-from assess.capacity.candidates import Candidate, candidates, occurring, placement_of
+from assess.capacity.candidates import Candidate, candidates, occurring, placement_of, refined
 from assess.capacity.uplift import Extremes, Uplift
 from assess.girder import REACTION, Envelope, Part, Placement, Sweep, envelope, extremes, governing_placement
 
@@ -186,7 +186,9 @@ class Passing:
     def _candidates(self, name: str) -> list[Candidate]:
         if name not in self._made:
             on = self._compliances[:1], self._settlements[:1]
-            self._made[name] = candidates(self._parts[name], self._uplift, *on, seeds=self._seeds)
+            found = candidates(self._parts[name], self._uplift, *on, seeds=self._seeds)
+            found += refined(found, self._uplift, on[0][0], on[1][0])
+            self._made[name] = found
         return self._made[name]
 
     def _extremes_of(self, name: str) -> Extremes:

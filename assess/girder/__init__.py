@@ -13,6 +13,7 @@ from assess.girder.envelope import (
     extremes,
     governing_placement,
     influence_line,
+    passage_at,
     passages,
     train_forces,
 )
@@ -52,6 +53,7 @@ __all__ = [
     "governing_placement",
     "holds",
     "influence_line",
+    "passage_at",
     "passages",
     "places",
     "simple_forces_of",

@@ -233,14 +233,14 @@ def passages(place: Places, train: Train, *, both_ways: bool = True) -> list[Pas
         ways.append(train.reversed())
     result = []
     for way in ways:
-        result.append(_on_grid(place, way))
+        result.append(passage_at(place, way, leading_grid(place.condensed, way)))
         result.append(_on_places(place, way))
     return result
 
 
-def _on_grid(place: Places, train: Train) -> Passage:
+def passage_at(place: Places, train: Train, leading: Floats) -> Passage:
+    """Let a train stand with its leading axle at some positions (m,), ascending."""
     condensed = place.condensed
-    leading = leading_grid(condensed, train)
     ends, simple = _train_state(condensed, train, leading)
     forces = condensed.forces_from(ends, simple)
     shared = np.broadcast_to(leading, (place.x.size, leading.size))
