@@ -14,7 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.capacity.uplift import Uplift
-from assess.girder import Part, Passage, Placement, Sweep, holds, passage_at
+from assess.girder import Part, Passage, Placement, Rolling, Sweep, holds, passage_at
 
 Floats = NDArray[np.float64]
 Bools = NDArray[np.bool_]
@@ -82,6 +82,13 @@ def refined(
     """
     more = []
     for one in found:
+        if isinstance(one.source, Sweep):
+            on = np.where(one.lifted, np.inf, compliance)
+            more += [
+                Candidate(passage=passage, source=passage, lifted=one.lifted)
+                for passage in Rolling(one.source).passages(on)
+            ]
+            continue
         part = one.passage
         if part.train is None or part.forces.shape[0] != 1:
             continue

@@ -27,6 +27,7 @@ from assess.girder.response import (
     simple_forces_of,
     support_places,
 )
+from assess.girder.rolling import Rolling
 
 __all__ = [
     "REACTION",
@@ -41,6 +42,7 @@ __all__ = [
     "Piece",
     "Placement",
     "Places",
+    "Rolling",
     "SupportDerivatives",
     "SupportState",
     "Sweep",

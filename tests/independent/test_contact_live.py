@@ -12,7 +12,6 @@ import pytest
 from numpy.typing import NDArray
 
 from assess.capacity import (
-    AS_THEY_ARE,
     Dead,
     Effects,
     Factors,
@@ -61,7 +60,7 @@ def rolled(train: Train, length: float, step: float) -> list[Position]:
 
 
 class Worst:
-    """Moments at places and reactions over all positions and choices of the permanent factor, each by its own programme."""
+    """Moments and reactions over all positions and choices of the permanent factor, each by its own programme."""
 
     def __init__(
         self, girder: Girder, f: Floats, drops: Floats, held: NDArray[np.bool_], x: Floats, factors: Factors
@@ -195,7 +194,3 @@ def test_a_published_model_on_pads_without_tension_agrees_with_every_position(gi
     found = compare(effects, f, nothing, FACTORS, sw0(girder.length))
     plain = stuck(effects, f, nothing, FACTORS)
     assert max(np.abs(a - b).max() for a, b in zip(found, plain, strict=True)) > 0.02 * found[0].max()
-
-
-def test_without_factors_total_is_permanent_plus_live() -> None:
-    assert AS_THEY_ARE.live == AS_THEY_ARE.permanent == 1.0
