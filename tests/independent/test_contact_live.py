@@ -35,7 +35,7 @@ RIGID = {2: np.zeros(3), 3: np.zeros(4)}
 SOFT = {2: np.array([6e-6, 4e-6, 9e-6]), 3: np.array([5e-6, 1.2e-5, 4e-6, 8e-6])}
 SETTLED = {2: np.array([0.0, 0.0, 0.012]), 3: np.array([0.0, 0.004, 0.0, 0.010])}
 OWN = 5.0  # kN/m
-GRID = 0.01  # m; stations and axles stand on it
+GRID = 0.025  # m; stations and axles stand on it
 
 Position = tuple[tuple[tuple[float, float], ...], tuple[tuple[float, float, float], ...]]
 """Axles (x, kN) and stretches (start, end, kN/m)."""
@@ -134,7 +134,7 @@ def stuck(effects: Effects, f: Floats, drops: Floats, factors: Factors) -> tuple
 
 @pytest.mark.parametrize("pads", [RIGID, SOFT], ids=["rigid", "soft"])
 @pytest.mark.parametrize("girder", [TWO, THREE], ids=["two spans", "three spans"])
-def test_a_train_on_pads_without_tension_agrees_with_every_centimetre(
+def test_a_train_on_pads_without_tension_agrees_with_every_position_by_itself(
     girder: Girder, pads: dict[int, Floats]
 ) -> None:
     free = np.zeros(girder.n_supports, dtype=bool)
@@ -175,7 +175,7 @@ def test_an_end_that_is_held_down_stays(girder: Girder) -> None:
 def sw0(length: float) -> list[Position]:
     """EN 1991-2 load model SW/0: two stretches of 15 m of 133 kN/m, 5.3 m apart; scaled to a light girder."""
     found: list[Position] = []
-    for head in np.arange(0.0, length + 35.3, 0.02):
+    for head in np.arange(0.0, length + 35.3, 0.05):
         ends = [(head - 15.0, head), (head - 35.3, head - 20.3)]
         on = [(max(a, 0.0), min(b, length), SHARE * 133.0) for a, b in ends if b > 0.0 and a < length]
         found.append(((), tuple(one for one in on if one[1] - one[0] > 1e-9)))
