@@ -60,15 +60,15 @@ def _of_batches(model: GirderModel) -> list[str]:
     if not said:
         return []
     also = [g.id for g in model.bridge.girders if g.id != name and _batch_names(g) & _batch_names(model.doc)]
-    across = (
-        f"; girders are fitted one by one, so what is read under {_listed(also)} does not narrow them"
-        if also
-        else ""
-    )
-    return [
+    sentence = (
         f"{name}: pads of one batch share a prior (batch, pads and correlation: {', '.join(said)}): a reading at one of them "
-        f"narrows the others by assumption{across}."
-    ]
+        "narrows the others by assumption"
+    )
+    if also:
+        sentence += (
+            f"; girders are fitted one by one, so what is read under {_listed(also)} does not narrow them"
+        )
+    return [f"{sentence}."]
 
 
 def _batch_names(girder: GirderDoc) -> set[str]:
