@@ -14,6 +14,7 @@ from playwright.sync_api import sync_playwright
 FOLDER = Path(__file__).resolve().parent.parent / "docs" / "pictures"
 PARTS = {
     "elevation": "Girder north: test state T3",
+    "section": "Section pier 2:",
     "moments": "Girder north: factored moments",
     "pads": "Pad at pier 2",
 }

@@ -44,29 +44,35 @@ def of_prior(model: GirderModel) -> list[str]:
             f'and by "{pad.formula}" would give {ratio:.3g} times as much'
             + (": one of the two is likely wrong, look at the drawing." if far else ".")
         )
+    return said + _of_batches(model)
+
+
+def _of_batches(model: GirderModel) -> list[str]:
+    """Caution on batches: what they narrow by assumption, and what they do not across girders."""
+    name = model.doc.id
+    supports = [model.doc.supports[i] for i in model.pads]
+    said = []
     for batch, members in batches(supports).items():
         docs = [pad for i in members if (pad := supports[i].pad) is not None]
         said.append(
-            f'{name}: the pads at {_listed(supports[i].id for i in members)} are of one batch ("{batch}") and share a prior of '
-            f"correlation {correlation_of(batch, docs):.2g}: a reading at one of them narrows the others by assumption."
+            f'"{batch}" ({_listed(supports[i].id for i in members)}; {correlation_of(batch, docs):.2g})'
         )
-    return said + _across(model.bridge, model.doc)
+    if not said:
+        return []
+    also = [g.id for g in model.bridge.girders if g.id != name and _batch_names(g) & _batch_names(model.doc)]
+    sentence = (
+        f"{name}: pads of one batch share a prior (batch, pads and correlation: {', '.join(said)}): a reading at one of them "
+        "narrows the others by assumption"
+    )
+    if also:
+        sentence += (
+            f"; girders are fitted one by one, so what is read under {_listed(also)} does not narrow them"
+        )
+    return [f"{sentence}."]
 
 
-def _across(bridge: BridgeDoc, girder: GirderDoc) -> list[str]:
-    def of(one: GirderDoc) -> set[str]:
-        return {s.pad.batch for s in one.supports if s.pad is not None and s.pad.batch is not None}
-
-    others = [other for other in bridge.girders if other.id != girder.id]
-    said = []
-    for batch in sorted(of(girder)):
-        also = [other.id for other in others if batch in of(other)]
-        if also:
-            said.append(
-                f'{girder.id}: batch "{batch}" lies under {_listed(also)} too; girders are fitted one by one, so what is read '
-                "there does not narrow the pads here."
-            )
-    return said
+def _batch_names(girder: GirderDoc) -> set[str]:
+    return {s.pad.batch for s in girder.supports if s.pad is not None and s.pad.batch is not None}
 
 
 def of_check(girder: str, pad: PadCheck, least: float | None) -> list[str]:

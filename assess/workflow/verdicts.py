@@ -18,6 +18,10 @@ from assess.workflow.cautions import section_name
 from assess.workflow.drivers import Driver
 
 _TELLS = 0.005  # of a utilisation: what a support must add to be named
+_OF_NOMINAL = (
+    ": the nominal stiffness of the pads at",
+    ": pads of one batch share a prior",
+)  # change no sentence alone
 _ORDER = {"over": 0, "watch": 1, "within": 2, "unknown": 3}
 
 
@@ -130,6 +134,7 @@ def cautions_beside(girder: str, said: list[str]) -> list[str]:
         "the seat at",
         "seat level",
     )
+    said = [one for one in said if not any(mark in one for mark in _OF_NOMINAL)]
     return [one for one in said if one.startswith(f"{girder}:") and any(word in one for word in words)] + [
         one
         for one in said

@@ -13,6 +13,8 @@ PAD = (
 )
 _LIMIT = "permanent_pressure total_pressure permanent_strain total_strain live_compression least_permanent_pressure"
 
+_SHORT = {"NR": "natural rubber", "CR": "chloroprene", "polychloroprene": "chloroprene"}
+
 MOST_LAYERS = 60
 LARGEST_PLAN_M = 3.0
 SMALLEST_PLAN_M = 0.02
@@ -53,7 +55,7 @@ def pad(fields: Fields) -> PadDoc:
         shear_modulus=_shear_modulus(fields),
         hardness=_hardness(fields),
         bulk_modulus=_modulus(fields, "bulk_modulus", BULK_KN_PER_M2, "2000 MPa"),
-        compound=fields.one_of("compound", PAD_COMPOUNDS) if fields.has("compound") else None,
+        compound=_compound(fields),
         formula=fields.one_of("formula", PAD_FORMULAS, PAD_FORMULAS[0]),
         batch=fields.id("batch") if fields.has("batch") else None,
         batch_correlation=_correlation(fields),
@@ -156,6 +158,13 @@ def _modulus(fields: Fields, name: str, bounds: tuple[float, float], example: st
         reach = f"{bounds[0] / 1e3:g} to {bounds[1] / 1e3:g} MPa"
         raise fields.error(name, problem, f'check the unit ({reach}), for example "{example}"')
     return value
+
+
+def _compound(fields: Fields) -> str | None:
+    if not fields.has("compound"):
+        return None
+    word = fields.one_of("compound", (*PAD_COMPOUNDS, *_SHORT))
+    return _SHORT.get(word, word)
 
 
 def _hardness(fields: Fields) -> float | None:
