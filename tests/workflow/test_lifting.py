@@ -47,10 +47,8 @@ def test_a_state_that_lifts_is_shown_without_a_fit_and_named(light: str, tmp_pat
     assert {r.state for r in off} == {STATE}
     assert len(off) == 6
     assert all(r.standardised_residual is None and not r.suspect for r in off)
-    assert (
-        f'north: left out of the fit, because the girder is off a pad under permanent load and the vehicle: {STATE} (lifts at "west abutment"'
-        in said
-    )
+    why = "north: left out of the fit, because the girder is off a pad under permanent load and the vehicle: "
+    assert f'{why}{STATE} (lifts at "west abutment")' in said
     # six readings in each of the other two states, three pads
     assert shown.degrees_of_freedom == 9
     assert [pad.ratio_to_nominal for pad in shown.pads] == pytest.approx(RATIOS, rel=0.03)
