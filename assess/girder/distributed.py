@@ -110,11 +110,11 @@ class Sweep:
             Lattice(place, self._cubics, _step(module, self._most * (AT_ENDS if end else 1.0)), end=end)
             for end in (0, -1, 1)
         ]
-        self._spans = [condensed.locate(lattice.nodes)[0] for lattice in self.lattices]
+        self._spans = [condensed.span_of(lattice.nodes) for lattice in self.lattices]
         self._patterns: list[list[Pattern]] = [
             [pattern(a, lattice.step) for a in load.model.alternatives] for lattice in self.lattices
         ]
-        allowances = load.allowance.at(np.diff(condensed.positions), place.quantity, place.span, place.local)
+        allowances = load.allowance.at(np.diff(condensed.positions), place.quantity, place.span, place.along)
         self._factors = [1.0 + allowance for allowance in allowances]
         hogging = _hogging_near_supports(place)
         self._counts = [_counts(place, a, hogging) for a in load.model.alternatives]

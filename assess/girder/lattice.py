@@ -143,7 +143,7 @@ class Lattice:
         if place.quantity == REACTION:
             coefficients += np.moveaxis(cubics.forces[:, :, place.supports], 2, 0)
         else:
-            coefficients += np.einsum("pi,jkpi->pjk", place.carry, cubics.ends[:, :, place.span, :])
+            coefficients += np.einsum("pi,jkpi->pjk", place.carry, cubics.ends[:, :, place.segment, :])
         before = cubics.running(coefficients)
         table = np.concatenate([coefficients, before[..., None]], axis=-1).reshape(-1, 5)
         first = cubics.lengths.size * np.arange(place.x.size)
@@ -164,15 +164,13 @@ class Lattice:
         return result[0], result[1]
 
     def _run_locally(self) -> Floats:
-        """Running integral (p, m) of the part that a place's own span carries as a simple span."""
+        """Running integral (p, m) of the part that a place's own segment carries as a simple span."""
         if self.place.quantity == REACTION:
             return np.zeros(self.nodes.shape)
-        condensed, span = self.place.condensed, self.place.span
-        x, start, end = (
-            a[:, None] for a in (self.place.x, condensed.positions[span], condensed.positions[span + 1])
-        )
+        nodes, segment = self.place.condensed.nodes, self.place.segment
+        x, start, end = (a[:, None] for a in (self.place.x, nodes[segment], nodes[segment + 1]))
         cells = self._cells(start, end) if not self.end else self._cells(start, x) + self._cells(x, end)
-        return np.concatenate([np.zeros((span.size, 1)), np.cumsum(cells, axis=1)], axis=1)
+        return np.concatenate([np.zeros((segment.size, 1)), np.cumsum(cells, axis=1)], axis=1)
 
     def _cells(self, start: Floats, end: Floats) -> Floats:
         """Integral (p, m - 1) of the local part over what of each cell lies between start and end (p, 1)."""
