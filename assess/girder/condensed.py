@@ -196,13 +196,14 @@ class Condensed:
         for c in self._cubics:
             rotation = ((c[3][piece] * t + c[2][piece]) * t + c[1][piece]) * t + c[0][piece]
             turned.append(np.bincount(where, (weight * rotation).ravel(), rows * count))
+        rotations = np.stack(turned, axis=-1, dtype=np.float64).reshape(rows, count, 2)
         about = np.bincount(where, (weight * local).ravel(), rows * count).reshape(rows, count)
         right = about / self._lengths
         left = np.bincount(where, weight.ravel(), rows * count).reshape(rows, count) - right
         lever = np.zeros((rows, self.nodes.size))
         lever[:, :-1] += left
         lever[:, 1:] += right
-        return self.ends_under(np.stack(turned, axis=-1).reshape(rows, count, 2), lever), lever
+        return self.ends_under(rotations, lever), lever
 
     def forces_from(self, ends: Floats, lever: Floats) -> Floats:
         """Support forces (..., n) from segment-end state (..., segments, c) and lever-rule forces (..., nodes)."""

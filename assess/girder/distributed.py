@@ -29,7 +29,7 @@ Bools = NDArray[np.bool_]
 
 SENSES = (1.0, -1.0)
 MOST_SEARCHED = 8  # sets of supports searched for a batch
-AT_ENDS = 4.0  # times the step, for grids whose axles stand on an end of the girder
+AT_ENDS = 4.0  # times the step, for grids whose axles stand on an end of the girder or on a hinge
 ROUGH = 2.5  # times the step, an eightieth of the shortest span
 
 
@@ -106,10 +106,10 @@ class Sweep:
         self._most = float(np.diff(condensed.positions).min()) / GRID_PER_SPAN if step is None else step
         self._cubics = Cubics(condensed) if cubics is None else cubics
         module = load.model.module
-        self.lattices = [
-            Lattice(place, self._cubics, _step(module, self._most * (AT_ENDS if end else 1.0)), end=end)
-            for end in (0, -1, 1)
-        ]
+        fine, coarse = (_step(module, self._most * times) for times in (1.0, AT_ENDS))
+        corners = [0.0, float(condensed.positions[-1]), *condensed.girder.hinges]
+        self.lattices = [Lattice(place, self._cubics, fine)]
+        self.lattices += [Lattice(place, self._cubics, coarse, at=x) for x in corners]
         self._spans = [condensed.span_of(lattice.nodes) for lattice in self.lattices]
         self._patterns: list[list[Pattern]] = [
             [pattern(a, lattice.step) for a in load.model.alternatives] for lattice in self.lattices
@@ -183,6 +183,7 @@ class Sweep:
         """Worst places for the greatest and for the least response on one set of supports (n,)."""
         weights = self._place.rows @ self._place.condensed.displacement_operator(compliance)
         grids = [0] + [i for i, end in ((1, 0), (2, -1)) if compliance[end] > 0.0]
+        grids += range(3, len(self.lattices))
         lines = {i: self.lattices[i].lines(weights) for i in grids}
         high, low = (self._search(lines, i) for i in range(2))
         return high, low

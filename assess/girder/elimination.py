@@ -1,7 +1,7 @@
 """What is eliminated once, before any support is known: the girder between its nodes.
 
-A segment's ends have moments and, where there are hinges, levels. Both are linear in what acts: the end rotations a load
-gives the simple segment, the lever-rule load on each hinge, and the drops of the supports.
+A segment's ends have moments and, where there are hinges, levels. Both are linear in what acts: the end rotations a
+load gives the simple segment, the lever-rule load on each hinge, and the drops of the supports.
 
 A girder without hinges is solved here by slope-deflection on whole spans: the spans' flexibilities are exact
 (`span.py`) and the unknowns are the n support rotations. One with hinges is solved in `hinged.py`.

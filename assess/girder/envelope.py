@@ -211,7 +211,7 @@ def grid_step(condensed: Condensed) -> float:
 
 
 def leading_grid(condensed: Condensed, train: Train) -> Floats:
-    """Leading-axle positions (m,), ascending: an even grid, and each axle just on and just off either end and on a hinge.
+    """Leading-axle positions (m,), ascending: an even grid, each axle just on and off either end and on a hinge.
 
     An end that yields makes a step in every influence line where an axle comes on or goes off; a hinge makes a corner.
     """

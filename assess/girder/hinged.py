@@ -8,9 +8,9 @@ equilibrium of the free supports (no moment jumps) and of the hinges (what the l
 
     G m + r - B d = C l,   C' m = p,   so   m = H (B d - r) + (1 - H G) Y p,   l = Y' (G m + r - B d)
 
-with N spanning the null space of C', H = N (N' G N)^-1 N' and Y = C (C' C)^-1; l holds the levels of the hinges. Moments
-of a statically determinate girder (no N, H = 0) come from equilibrium alone, to the last digit, whatever settles, and a
-short cantilever beside a long span costs no digits, as stiffnesses of its ends would.
+with N spanning the null space of C', H = N (N' G N)^-1 N' and Y = C (C' C)^-1; l holds the levels of the hinges.
+Moments of a statically determinate girder (no N, H = 0) come from equilibrium alone, whatever settles, and a short
+cantilever beside a long span costs no digits, as stiffnesses of its ends would.
 
 The rank of C tells a mechanism: then some loads cannot be carried by any moments.
 
@@ -52,7 +52,7 @@ def hinged(girder: Girder, segments: Sequence[SimpleSpan], hinges: Ints) -> Ends
     supports = np.setdiff1d(np.arange(m + 1), hinges)
     chord = chord_rotations(np.array([one.length for one in segments])).reshape(2 * m, m + 1)
     turn = node_rotations(m).reshape(2 * m, m + 1)
-    live = ~turn[:, hinges].any(axis=1)  # ends that may carry a moment
+    live = np.abs(turn[:, hinges]).sum(axis=1) == 0.0  # ends that may carry a moment
     turn, chord_live = turn[live][:, supports], chord[live]
     flexible = _flexibility(segments)[np.ix_(live, live)] + _restraints(turn, girder.rotation)
     equations = np.concatenate([turn[:, girder.rotation == 0.0], chord_live[:, hinges]], axis=1)
@@ -67,16 +67,10 @@ def hinged(girder: Girder, segments: Sequence[SimpleSpan], hinges: Ints) -> Ends
 
     levels = np.concatenate([-carried.T @ by_drop, carried.T, carried.T @ flexible @ carried], axis=1)
     moments = np.concatenate([redundant @ by_drop, -redundant, carried], axis=1)
-    by_drop_level = np.zeros((m + 1, supports.size))
-    by_drop_level[supports, np.arange(supports.size)] = 1.0
-    return _assembled(
-        moments,
-        levels,
-        live=live,
-        hinges=hinges,
-        support_level=by_drop_level,
-        stiffness=by_drop.T @ redundant @ by_drop,
-    )
+    of_supports = np.zeros((m + 1, supports.size))
+    of_supports[supports, np.arange(supports.size)] = 1.0
+    stiffness = by_drop.T @ redundant @ by_drop
+    return _assembled(moments, levels, live=live, hinges=hinges, of_supports=of_supports, stiffness=stiffness)
 
 
 def _flexibility(segments: Sequence[SimpleSpan]) -> Floats:
@@ -111,16 +105,16 @@ def _assembled(
     *,
     live: NDArray[np.bool_],
     hinges: Ints,
-    support_level: Floats,
+    of_supports: Floats,
     stiffness: Floats,
 ) -> Ends:
-    """Put moments (ends, n + ends + hinges) and levels of the hinges (hinges, the same) where the segments' ends are."""
-    m, n, h = live.size // 2, support_level.shape[1], hinges.size
+    """Put moments (ends, n + ends + hinges) and levels of hinges (hinges, the same) where the segments' ends are."""
+    m, n, h = live.size // 2, of_supports.shape[1], hinges.size
     columns = np.concatenate([np.ones(n, dtype=bool), live, np.ones(h, dtype=bool)])
     ends = np.zeros((2 * m, columns.size))
     ends[np.ix_(live, columns)] = moments
     nodes = np.zeros((m + 1, columns.size))
-    nodes[:, :n] = support_level
+    nodes[:, :n] = of_supports
     nodes[np.ix_(hinges, columns)] = levels
     state = np.concatenate([ends.reshape(m, 2, -1), np.stack([nodes[:-1], nodes[1:]], axis=1)], axis=1)
     return Ends(

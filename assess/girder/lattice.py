@@ -1,9 +1,9 @@
 """Influence lines of many places on a grid on which every axle of a load model falls.
 
 A grid has a node on the place itself, so an axle can stand exactly on it (where a moment's influence line has its
-corner and a shear's its step), or on an end of the girder (where all lines have a step if the end yields). Its step
-divides all distances of the load model, so all axles stand on nodes at once. Node values and the running integral at
-nodes are exact for prismatic pieces.
+corner and a shear's its step), on an end of the girder (where all lines have a step if the end yields) or on a hinge
+(where all lines have a corner). Its step divides all distances of the load model, so all axles stand on nodes at once.
+Node values and the running integral at nodes are exact for prismatic pieces.
 """
 
 from __future__ import annotations
@@ -77,20 +77,22 @@ class Lattice:
     place : Places
     cubics : those of the girder
     step : m between nodes
-    end : 0 for grids with a node on each place, -1 or 1 for grids with a node on the left or the right end
+    at : x of an end or a hinge for grids with a node there, m; None for grids with a node on each place
 
     Attributes
     ----------
-    place, step, end : as given
+    place, step : as given
+    end : -1 or 1 for grids with a node on the left or the right end, else 0
     anchor : (p,) x of the node that is `home`, m
-    home : (p,) the node on the place or on the end
+    home : (p,) the node on the place, the end or the hinge
     nodes : (p, m) x of the nodes; the first is at or before the left end, the last at or beyond the right one
     """
 
-    def __init__(self, place: Places, cubics: Cubics, step: float, *, end: int = 0) -> None:
-        self.place, self.cubics, self.step, self.end = place, cubics, step, end
+    def __init__(self, place: Places, cubics: Cubics, step: float, *, at: float | None = None) -> None:
+        self.place, self.cubics, self.step, self._on_place = place, cubics, step, at is None
         length = float(place.condensed.positions[-1])
-        self.anchor: Floats = np.full(place.x.size, 0.0 if end < 0 else length) if end else place.x
+        self.end = {0.0: -1, length: 1}.get(at, 0) if at is not None else 0
+        self.anchor: Floats = place.x if at is None else np.full(place.x.size, at)
         self.home: Ints = np.ceil(self.anchor / step).astype(np.intp)
         count = int((self.home + np.ceil((length - self.anchor) / step)).max()) + 1
         self.nodes: Floats = self.anchor[:, None] + step * (np.arange(count) - self.home[:, None])
@@ -117,20 +119,19 @@ class Lattice:
         running = found[..., 4] + self.cubics.lengths[self._piece] * t * integral + self._local_running
         value = np.where(self._on, value, 0.0) + self._local
         before = beyond = value
-        broken = False
         if self.end:
             off = value.copy()
             off[np.arange(self.home.size), self.home] = 0.0
             before, beyond = (off, value) if self.end < 0 else (value, off)
-            broken = self.place.quantity == "shear"
-        elif self.place.quantity == "shear":
+        elif self.place.quantity == "shear" and self._on_place:
             before, beyond = self._faces(table, value)
+        broken = self.place.quantity == "shear" and not self._on_place
         return Lines(before=before, beyond=beyond, running=running, step=self.step, broken=broken)
 
     @property
     def has_faces(self) -> bool:
         """Whether it matters if a load stands just before or just beyond the home node."""
-        return self.end != 0 or self.place.quantity == "shear"
+        return self.end != 0 or (self._on_place and self.place.quantity == "shear")
 
     def x_of(self, rows: Ints, nodes: Ints) -> Floats:
         """Return x (...) of nodes, which may lie off the grid, of the places `rows`."""
@@ -169,7 +170,7 @@ class Lattice:
             return np.zeros(self.nodes.shape)
         nodes, segment = self.place.condensed.nodes, self.place.segment
         x, start, end = (a[:, None] for a in (self.place.x, nodes[segment], nodes[segment + 1]))
-        cells = self._cells(start, end) if not self.end else self._cells(start, x) + self._cells(x, end)
+        cells = self._cells(start, end) if self._on_place else self._cells(start, x) + self._cells(x, end)
         return np.concatenate([np.zeros((segment.size, 1)), np.cumsum(cells, axis=1)], axis=1)
 
     def _cells(self, start: Floats, end: Floats) -> Floats:

@@ -34,7 +34,7 @@ class Places:
     side : (p,) -1 or +1, the face meant where x stands on a support or hinge or under a load
     span : (p,) the span it is in
     segment, local : (p,) the segment between supports or hinges, and the distance from its left end
-    carry : (p, c) response per unit of the state of the segment's own two ends: moments, and levels where there are hinges
+    carry : (p, c) response per unit of the state of the segment's two ends: moments, and levels where there are hinges
     rows : (p, n) response per unit support drop: Y of y = y0 + Y d
     """
 
@@ -192,7 +192,7 @@ def _by_ends_and_drops(
         carry = np.concatenate([carry, shares], axis=1)
         return carry, np.einsum("pi,pin->pn", carry, condensed.state_by_drop[segment])
     rigid = np.zeros((local.size, condensed.n_supports))
-    np.put_along_axis(rigid, segment[:, None] + [0, 1], shares, axis=1)
+    np.put_along_axis(rigid, segment[:, None] + np.arange(2), shares, axis=1)
     return carry, np.einsum("pi,pin->pn", carry, condensed.state_by_drop[segment]) + rigid
 
 
