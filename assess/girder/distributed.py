@@ -16,6 +16,7 @@ from itertools import pairwise
 import numpy as np
 from numpy.typing import NDArray
 
+from assess.girder.condensed import Condensed
 from assess.girder.cubics import Cubics
 from assess.girder.envelope import GRID_PER_SPAN, Passage, Peaks, Placement
 from assess.girder.lattice import FACE, Lattice, Lines
@@ -29,7 +30,10 @@ Bools = NDArray[np.bool_]
 
 SENSES = (1.0, -1.0)
 MOST_SEARCHED = 8  # sets of supports searched for a batch
-AT_ENDS = 4.0  # times the step, for grids whose axles stand on an end of the girder or on a hinge
+AT_ENDS = 4.0  # times the step, for grids whose axles stand on an end of the girder
+AT_HINGES = 2.0  # and on a hinge
+PER_SEGMENT = 100
+MOST_FINER = 4.0  # times, however short a segment
 ROUGH = 2.5  # times the step, an eightieth of the shortest span
 
 
@@ -103,13 +107,14 @@ class Sweep:
     ) -> None:
         condensed = place.condensed
         self._place, self.load = place, load
-        self._most = float(np.diff(condensed.positions).min()) / GRID_PER_SPAN if step is None else step
+        self._most = _finest(condensed) if step is None else step
         self._cubics = Cubics(condensed) if cubics is None else cubics
         module = load.model.module
-        fine, coarse = (_step(module, self._most * times) for times in (1.0, AT_ENDS))
-        corners = [0.0, float(condensed.positions[-1]), *condensed.girder.hinges]
-        self.lattices = [Lattice(place, self._cubics, fine)]
-        self.lattices += [Lattice(place, self._cubics, coarse, at=x) for x in corners]
+        corners = [(0.0, AT_ENDS), (float(condensed.positions[-1]), AT_ENDS)]
+        corners += [(x, AT_HINGES) for x in condensed.girder.hinges]
+        self.lattices = [Lattice(place, self._cubics, _step(module, self._most))]
+        for x, times in corners:
+            self.lattices.append(Lattice(place, self._cubics, _step(module, self._most * times), at=x))
         self._spans = [condensed.span_of(lattice.nodes) for lattice in self.lattices]
         self._patterns: list[list[Pattern]] = [
             [pattern(a, lattice.step) for a in load.model.alternatives] for lattice in self.lattices
@@ -296,6 +301,17 @@ class Sweep:
             uniform = one.edges[at, node][:, None] * self._cubics.forces_over(lattice.nodes[rows[at], node])
             np.add.at(forces, rows[at], uniform)
         return self._heads(worst), held, forces
+
+
+def _finest(condensed: Condensed) -> float:
+    """Step in m of the finest lattice: two hundred in the shortest span, and beside a hinge a hundred in a segment.
+
+    Lines fall off steeply over a short suspended span, and an axle at a free distance seldom meets its corner.
+    """
+    step = float(np.diff(condensed.positions).min()) / GRID_PER_SPAN
+    if not condensed.hinges.size:
+        return step
+    return float(np.clip(np.diff(condensed.nodes).min() / PER_SEGMENT, step / MOST_FINER, step))
 
 
 def _step(module: float, most: float) -> float:

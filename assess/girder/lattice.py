@@ -8,6 +8,7 @@ Node values and the running integral at nodes are exact for prismatic pieces.
 
 from __future__ import annotations
 
+from collections.abc import Iterator
 from dataclasses import dataclass, field
 from functools import cached_property
 
@@ -25,6 +26,24 @@ _GAUSS = np.polynomial.legendre.leggauss(2)  # exact for cubics
 
 
 @dataclass(frozen=True, kw_only=True)
+class Corner:
+    """Where each of p influence lines has a corner or a step inside a cell of its grid.
+
+    Attributes
+    ----------
+    cell, share : (p,) the cell, and how far into it
+    before, beyond : (p,) response to a unit load just before and just beyond the corner
+    running : (p,) integral from the left end of the girder to the corner
+    """
+
+    cell: Ints
+    share: Floats
+    before: Floats
+    beyond: Floats
+    running: Floats
+
+
+@dataclass(frozen=True, kw_only=True)
 class Lines:
     """Influence lines (p, m) at the nodes of a lattice.
 
@@ -35,6 +54,7 @@ class Lines:
     running : integral from the left end of the girder to the node, m times the response
     step : m between nodes
     broken : whether the lines may have a step between nodes
+    corners : where hinges, or the step of a broken line, part cells in two
     """
 
     before: Floats
@@ -42,6 +62,7 @@ class Lines:
     running: Floats
     step: float
     broken: bool = False
+    corners: tuple[Corner, ...] = ()
     _kept: dict[float, Floats] = field(default_factory=dict, repr=False)
 
     def positive(self, sign: float) -> Floats:
@@ -49,6 +70,7 @@ class Lines:
 
         A cell without change of sign counts with its exact integral; one with a change counts with the triangle on its
         positive side, which is exact to the third power of the step; in a broken line it counts whole or not at all.
+        A cell parted by a corner counts as two.
         """
         if sign not in self._kept:
             self._kept[sign] = self._positive(sign)
@@ -57,16 +79,28 @@ class Lines:
     def _positive(self, sign: float) -> Floats:
         left, right = sign * self.beyond[:, :-1], sign * self.before[:, 1:]
         whole = sign * np.diff(self.running, axis=1)
-        mixed = left * right < 0.0
-        top = np.maximum(left, right)
-        height = np.where(mixed, np.abs(left - right), 1.0)
-        part = np.maximum(whole, 0.0) if self.broken else 0.5 * self.step * top**2 / height
-        cells = np.where(mixed, part, np.where(top > 0.0, whole, 0.0))
+        cells = _positive_part(left, right, whole, None if self.broken else self.step)
+        rows = np.arange(cells.shape[0])
+        for corner in self.corners:
+            first, last = (sign * self.running[rows, corner.cell + i] for i in (0, 1))
+            middle, share = sign * corner.running, corner.share
+            near = left[rows, corner.cell], sign * corner.before, middle - first, share * self.step
+            far = sign * corner.beyond, right[rows, corner.cell], last - middle, (1.0 - share) * self.step
+            cells[rows, corner.cell] = _positive_part(*near) + _positive_part(*far)
         return np.concatenate([np.zeros((cells.shape[0], 1)), np.cumsum(cells, axis=1)], axis=1)
 
     def loaded(self, sign: float) -> NDArray[np.bool_]:
         """Tell which cells (p, m - 1) are on the positive side of sign times the influence line."""
         return np.asarray(sign * (self.beyond[:, :-1] + self.before[:, 1:]) > 0.0)
+
+
+def _positive_part(left: Floats, right: Floats, whole: Floats, width: Floats | float | None) -> Floats:
+    """Integral of the positive part over cells with these end values and integrals; width None: a step in them."""
+    mixed = left * right < 0.0
+    top = np.maximum(left, right)
+    height = np.where(mixed, np.abs(left - right), 1.0)
+    part = np.maximum(whole, 0.0) if width is None else 0.5 * width * top**2 / height
+    return np.where(mixed, part, np.where(top > 0.0, whole, 0.0))
 
 
 class Lattice:
@@ -126,7 +160,10 @@ class Lattice:
         elif self.place.quantity == "shear" and self._on_place:
             before, beyond = self._faces(table, value)
         broken = self.place.quantity == "shear" and not self._on_place
-        return Lines(before=before, beyond=beyond, running=running, step=self.step, broken=broken)
+        corners = tuple(self._corners(table)) if self.place.condensed.hinges.size else ()
+        return Lines(
+            before=before, beyond=beyond, running=running, step=self.step, broken=broken, corners=corners
+        )
 
     @property
     def has_faces(self) -> bool:
@@ -163,6 +200,35 @@ class Lattice:
             faced[rows, self.home] = own + self.place.local_unit(a)[:, 0]
             result.append(faced)
         return result[0], result[1]
+
+    def _corners(self, table: Floats) -> Iterator[Corner]:
+        """Corners at the hinges, and at the places where their own shear has its step off the nodes."""
+        place, whole = self.place, self._local_running[:, -1]
+        for x in place.condensed.girder.hinges:
+            value, running = self._at(table, np.full(place.x.size, x))
+            # a hinge is an end of a segment, where the part that a segment carries as a simple span is nothing
+            local = np.where(x > place.x, whole, 0.0)
+            yield self._corner(np.full(place.x.size, x), value, value, running + local)
+        if place.quantity == "shear" and not self._on_place:
+            value, running = self._at(table, place.x)
+            length = np.diff(place.condensed.nodes)[place.segment]
+            before, beyond = value - place.local / length, value + 1.0 - place.local / length
+            yield self._corner(place.x, before, beyond, running - place.local**2 / (2.0 * length))
+
+    def _at(self, table: Floats, x: Floats) -> tuple[Floats, Floats]:
+        """Value and running integral of the cubics of each place at its own x (p,)."""
+        piece, t, _ = self.cubics.locate(x)
+        found = table[self.cubics.lengths.size * np.arange(x.size) + piece]
+        powers = t[:, None] ** np.arange(5)
+        value = (found[:, :4] * powers[:, :4]).sum(axis=1)
+        inside = (found[:, :4] * powers[:, 1:] / np.arange(1.0, 5.0)).sum(axis=1)
+        return value, found[:, 4] + self.cubics.lengths[piece] * inside
+
+    def _corner(self, x: Floats, before: Floats, beyond: Floats, running: Floats) -> Corner:
+        along = (x - self.nodes[:, 0]) / self.step
+        cell = np.clip(along.astype(np.intp), 0, self.nodes.shape[1] - 2)
+        share = np.clip(along - cell, 0.0, 1.0)
+        return Corner(cell=cell, share=share, before=before, beyond=beyond, running=running)
 
     def _run_locally(self) -> Floats:
         """Running integral (p, m) of the part that a place's own segment carries as a simple span."""
