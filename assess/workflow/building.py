@@ -52,7 +52,8 @@ class GirderModel:
         """The girder as the mechanics know it."""
         states = self.section_states
         spans = tuple(tuple(_piece(length, states[s.id]) for length, s in span) for span in self.sections)
-        return Girder(spans, np.array([support.rotation for support in self.doc.supports]))
+        rotation = np.array([support.rotation for support in self.doc.supports])
+        return Girder(spans, rotation, self.doc.hinges)
 
     @cached_property
     def condensed(self) -> Condensed:
@@ -175,7 +176,7 @@ class GirderModel:
 
 
 def _split(bridge: BridgeDoc, span: SpanDoc) -> list[tuple[float, SectionDoc]]:
-    """Lengths and sections of a span from left to right, the overriding pieces put in."""
+    """Lengths and sections of a span from left to right, the overriding pieces put in, parted at hinges."""
     parts: list[tuple[float, SectionDoc]] = []
     at = 0.0
     slack = 1e-9 * max(1.0, span.length)
@@ -187,7 +188,20 @@ def _split(bridge: BridgeDoc, span: SpanDoc) -> list[tuple[float, SectionDoc]]:
         at = piece.end
     if span.length - at > slack:
         parts.append((span.length - at, bridge.section(span.section)))
+    for hinge in span.hinges:
+        parts = _parted(parts, hinge, slack)
     return parts
+
+
+def _parted(parts: list[tuple[float, SectionDoc]], at: float, slack: float) -> list[tuple[float, SectionDoc]]:
+    """Part the piece that a place (m from the span's left end) lies in; one that ends there already is left."""
+    ends = np.cumsum([length for length, _ in parts])
+    i = int(np.searchsorted(ends, at - slack))
+    if abs(ends[i] - at) <= slack:
+        return parts
+    length, section = parts[i]
+    rest = float(ends[i] - at)
+    return [*parts[:i], (length - rest, section), (rest, section), *parts[i + 1 :]]
 
 
 def _piece(length: float, section: SectionState) -> Piece:
