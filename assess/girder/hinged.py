@@ -70,6 +70,7 @@ def hinged(girder: Girder, segments: Sequence[SimpleSpan], hinges: Ints) -> Ends
     of_supports = np.zeros((m + 1, supports.size))
     of_supports[supports, np.arange(supports.size)] = 1.0
     stiffness = by_drop.T @ redundant @ by_drop
+    stiffness = (stiffness + stiffness.T) / 2.0
     return _assembled(moments, levels, live=live, hinges=hinges, of_supports=of_supports, stiffness=stiffness)
 
 
