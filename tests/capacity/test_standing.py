@@ -106,7 +106,10 @@ def test_a_simple_span_is_free_to_arch() -> None:
 
 
 def test_hinges_that_make_a_girder_determinate_leave_no_moment_to_temperature() -> None:
-    pieces = tuple((Piece(length=length, flexural=EI),) for length in (10.0, 12.0, 10.0))
+    pieces = tuple(
+        tuple(Piece(length=length, flexural=EI) for length in span)
+        for span in ((10.0,), (3.0, 6.0, 3.0), (10.0,))
+    )
     thermal = Thermal(curvatures=((0.0, 32.0, -1e-4),), drop=np.array([0.0, -0.003, 0.0, 0.0]))
     for hinges, most in (((13.0, 19.0), 1e-9), ((13.0,), None)):
         girder = Girder(pieces, hinges=hinges)
