@@ -40,7 +40,8 @@ def answers(
 @pytest.mark.parametrize("kind", sorted(SUPPORTS))
 def test_gerber_beam_that_levels_its_moments(kind: str) -> None:
     # DERIVED: three equal spans L, uniform w, hinges in the middle span at a = L (1 - 1/sqrt 2) / 2 from its piers, so
-    # that the pier moment -w a (L - a) / 2 equals the sagging moment of the suspended span w (L - 2 a)^2 / 8 = w L^2 / 16
+    # that the pier moment -w a (L - a) / 2 and the sagging moment of the suspended span w (L - 2 a)^2 / 8 are both
+    # w L^2 / 16
     length, w = 16.0, 25.0
     a = length * (1.0 - 1.0 / np.sqrt(2.0)) / 2.0
     condensed = beam([length] * 3, [3e6, 2e6, 4e6], [length + a, 2.0 * length - a])
@@ -57,7 +58,8 @@ def test_gerber_beam_that_levels_its_moments(kind: str) -> None:
 def test_gerber_beam_with_a_hinge_in_each_end_span(kind: str) -> None:
     # DERIVED: spans 8, 10, 8 m; hinges 2 m outside the piers, at 6 and 20 m; 12 kN/m on the left end span alone.
     # Left suspended part 6 m: its end 12 * 6 / 2 = 36 kN on the hinge and on the abutment. Pier 1:
-    # -(36 * 2 + 12 * 2^2 / 2) = -96; pier 2: 0. Middle span: 96 / 10 = 9.6 kN: pier 1 36 + 24 + 9.6 = 69.6, pier 2 -9.6, right abutment 0.
+    # -(36 * 2 + 12 * 2^2 / 2) = -96; pier 2: 0. Middle span 96 / 10 = 9.6 kN: pier 1 36 + 24 + 9.6 = 69.6, pier 2 -9.6,
+    # right abutment 0.
     condensed = beam([8.0, 10.0, 8.0], [1e6, 3e6, 2e6], [6.0, 20.0])
     loads = LoadCase(uniforms=((0.0, 8.0, 12.0),))
     moment, reaction = answers(condensed, loads, [3.0, 8.0, 13.0, 18.0], *SUPPORTS[kind])
@@ -87,7 +89,7 @@ def test_influence_lines_of_a_gerber_beam_are_straight() -> None:
 
 
 def test_two_axles_stand_worst_for_the_pier_with_one_on_the_hinge() -> None:
-    # DERIVED: of two axles of 100 kN 2 m apart one stands on the hinge, 3 m past the pier, and its fellow 2 m further on
+    # DERIVED: of two axles of 100 kN 2 m apart one stands on the hinge, 3 m past the pier, its fellow 2 m further on
     # the suspended span of 6 m: 100 * 3 * (1 + 4 / 6) = 500, more than 100 * (3 + 1) = 400 on the other side of it
     condensed = beam([10.0, 12.0, 10.0], [2e6] * 3, [13.0, 19.0])
     train = Train(np.array([0.0, 2.0]), np.array([100.0, 100.0]))

@@ -64,7 +64,7 @@ def test_hinges_are_drawn_in_elevation_and_moments_and_named(view_of):
     hinged = replace(girder, hinges_m=[15.0, 24.25])
     for draw in (
         lambda one: elevation.full(one, one.states[1], key="k", zero="west"),
-        lambda one: moments.factored(one, key="k", zero="west", basis="calibrated pads"),
+        lambda one: moments.envelopes(one, key="k", zero="west", basis="calibrated pads"),
     ):
         plain, drawn = draw(girder), draw(hinged)
         assert "hinge" in drawn
