@@ -31,14 +31,17 @@ class PadResult:
 
 @dataclass(frozen=True, kw_only=True)
 class ReadingResult:
-    """A reading beside what the fitted girder predicts, in the unit it was entered in."""
+    """A reading beside what the fitted girder predicts, in the unit it was entered in.
+
+    `predicted` is None for a reading that was left out of the fit because the girder leaves a pad in its state.
+    """
 
     state: str
     quantity: str
     support: str | None
     at_m: float | None
     observed: float
-    predicted: float
+    predicted: float | None
     unit: str
     sd: float
     standardised_residual: float | None
@@ -120,6 +123,9 @@ class ReactionResult:
     calibrated_live_min_kN: float
     calibrated_factored_max_kN: float
     calibrated_factored_min_kN: float
+    calibrated_lifts_under: str | None = (
+        None  # "permanent" | "live" | "factored"; None: it stays down or is held down
+    )
 
 
 @dataclass(frozen=True, kw_only=True)

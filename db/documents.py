@@ -124,6 +124,14 @@ class SupportDoc:
     pad: PadDoc | None = None  # geometry; where a stiffness is given too, that is the nominal one
     rotation: float = 0.0  # kN m/rad; 0 free, inf fixed
     temperature_coefficient: float | None = None  # 1/K, growth of ln k per kelvin colder than 20 degC
+    hold_down: bool | None = (
+        None  # whether it takes tension; None: a pin does, a pad only where it holds rotation
+    )
+
+    @property
+    def takes_tension(self) -> bool:
+        """Whether the girder is held down here."""
+        return self.kind == "pin" or self.rotation > 0.0 if self.hold_down is None else self.hold_down
 
 
 @dataclass(frozen=True, kw_only=True)

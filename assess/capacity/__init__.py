@@ -2,8 +2,9 @@
 
 from assess.capacity.actions import Dead, GirderLoads, Steady, Thermal
 from assess.capacity.checks import CheckPlan, Resistance, plan_checks
+from assess.capacity.contact import standing_on
 from assess.capacity.effects import Effects
-from assess.capacity.factors import KINDS, Factors
+from assess.capacity.factors import AS_THEY_ARE, KINDS, Factors
 from assess.capacity.rows import (
     Case,
     Row,
@@ -15,8 +16,10 @@ from assess.capacity.rows import (
     moment_draws,
 )
 from assess.capacity.sets import FactorSet, UnknownSetError, factor_set, set_names
+from assess.capacity.standing import PermanentLoads, permanent_loads
 
 __all__ = [
+    "AS_THEY_ARE",
     "KINDS",
     "Case",
     "CheckPlan",
@@ -25,6 +28,7 @@ __all__ = [
     "FactorSet",
     "Factors",
     "GirderLoads",
+    "PermanentLoads",
     "Resistance",
     "Row",
     "RowDraws",
@@ -37,6 +41,8 @@ __all__ = [
     "factor_set",
     "factored_steady",
     "moment_draws",
+    "permanent_loads",
     "plan_checks",
     "set_names",
+    "standing_on",
 ]

@@ -58,3 +58,7 @@ class Factors:
             return self.permanent, self.permanent_relieving
         relieving = self.settlement_relieving
         return self.settlement, min(1.0, self.settlement) if relieving is None else relieving
+
+
+AS_THEY_ARE = Factors(permanent=1.0, permanent_relieving=1.0, live=1.0, resistance=1.0)
+"""No factors: what the loads do as they are."""

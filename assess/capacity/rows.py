@@ -137,10 +137,11 @@ def demands_at(
     `live` gives live maxima and minima (p,) that are known already, by response.
     """
     demands: dict[tuple[str, float], Demand] = {}
+    passing = effects.passing(factors, compliance[None], settlement[None])
     for name in ("moment", "shear"):
         steady = effects.steady(name, compliance, settlement)
         if live is None:
-            found = effects.live(name, compliance)
+            found = passing.envelope(name)
             maximum, minimum = found.maximum, found.minimum
         else:
             maximum, minimum = live[name]
@@ -222,11 +223,12 @@ def evaluate_draws(
     sample = _spread(compliances, settlements)
     kept = _governing_stations(effects, factors, compliances[sample], settlements[sample])
     used: dict[int, Floats] = {}
+    passing = effects.passing(factors, compliances, settlements, sample)
     for name in ("moment", "shear"):
         rows = [i for i, check in enumerate(effects.plan.checks) if response_of(check.effect) == name]
         stations = np.unique(np.concatenate([kept[i] for i in rows]))
         steady = effects.steady(name, compliances, settlements, stations)
-        maximum, minimum = effects.live_draws(name, stations, compliances, sample)
+        maximum, minimum = passing.draws(name, stations)
         for sign, live in ((1.0, maximum), (-1.0, minimum)):
             factored = demand(factors, steady, live, sign).factored
             for i in rows:
@@ -247,7 +249,7 @@ def moment_draws(
     stations = np.arange(effects.plan.x.size)
     sample = _spread(compliances, settlements)
     steady = effects.steady("moment", compliances, settlements)
-    maximum, minimum = effects.live_draws("moment", stations, compliances, sample)
+    maximum, minimum = effects.passing(factors, compliances, settlements, sample).draws("moment", stations)
     sagging = demand(factors, steady, maximum, 1.0).factored
     return sagging, demand(factors, steady, minimum, -1.0).factored
 
@@ -257,7 +259,8 @@ def _governing_stations(
 ) -> list[Ints]:
     """Stations that govern each row, in each sense, for at least one of some sets of supports (sets, n)."""
     found: list[set[int]] = [set() for _ in effects.plan.checks]
-    sample = {name: effects.live_sample(name, compliances) for name in ("moment", "shear")}
+    passing = effects.passing(factors, compliances, settlements)
+    sample = {name: passing.sampled(name) for name in ("moment", "shear")}
     for s, (compliance, settlement) in enumerate(zip(compliances, settlements, strict=True)):
         live = {name: (high[s], low[s]) for name, (high, low) in sample.items()}
         demands = demands_at(effects, factors, compliance, settlement, live)

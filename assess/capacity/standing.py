@@ -12,6 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.capacity.actions import GirderLoads, Thermal
+from assess.capacity.factors import KINDS
 from assess.girder import Condensed, Places, SupportState, forces_of, simple_forces_of
 from assess.loads import LoadCase
 
@@ -38,6 +39,11 @@ class PermanentLoads:
         self.simple_forces: Floats = np.array(
             [simple_forces_of(condensed, one) if one.points or one.uniforms else none for one in self._before]
         )
+
+    @property
+    def given(self) -> bool:
+        """Whether there is any permanent load."""
+        return any(one.points or one.uniforms for one in (*self._later, *self._before))
 
     def held(self, place: Places) -> Floats:
         """Responses (kinds, p) with all supports held level."""
@@ -76,6 +82,12 @@ class ThermalCases:
             self._condensed.solve(compliance, forces, drop)
             for forces, drop in zip(self._forces, self._drops, strict=True)
         ]
+
+
+def permanent_loads(condensed: Condensed, loads: GirderLoads) -> PermanentLoads:
+    """Prepare the permanent loads of a girder line, with a row for every kind that it has."""
+    kinds = tuple(dict.fromkeys(one.kind for one in loads.dead)) or (KINDS[0],)
+    return PermanentLoads(condensed, loads, kinds)
 
 
 def _joined(loads: GirderLoads, kind: str, *, continuous: bool) -> LoadCase:

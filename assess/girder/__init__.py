@@ -1,6 +1,8 @@
 """The continuous girder: its condensed form, responses, influence lines and envelopes."""
 
 from assess.girder.condensed import Condensed, SupportDerivatives, SupportState
+from assess.girder.contact import ContactState, Tips, contact, holds
+from assess.girder.contact_many import ManyStates, contact_many
 from assess.girder.distributed import Sweep
 from assess.girder.envelope import (
     Envelope,
@@ -11,6 +13,7 @@ from assess.girder.envelope import (
     extremes,
     governing_placement,
     influence_line,
+    passage_at,
     passages,
     train_forces,
 )
@@ -24,26 +27,35 @@ from assess.girder.response import (
     simple_forces_of,
     support_places,
 )
+from assess.girder.rolling import Rolling
 
 __all__ = [
     "REACTION",
     "RESPONSES",
     "Condensed",
+    "ContactState",
     "Envelope",
     "Girder",
+    "ManyStates",
     "Part",
     "Passage",
     "Piece",
     "Placement",
     "Places",
+    "Rolling",
     "SupportDerivatives",
     "SupportState",
     "Sweep",
+    "Tips",
+    "contact",
+    "contact_many",
     "envelope",
     "extremes",
     "forces_of",
     "governing_placement",
+    "holds",
     "influence_line",
+    "passage_at",
     "passages",
     "places",
     "simple_forces_of",

@@ -316,6 +316,11 @@ class Condensed:
         w, fw = self._weights(np.asarray(compliance, dtype=np.float64))
         return np.asarray(fw[..., :, None] * np.linalg.inv(self._system(w, fw)))
 
+    def reaction_by_rise(self, compliance: Floats) -> Floats:
+        """Reactions (..., n, n) per unit rise of each seat, kN/m: (I + K F)^-1 K, symmetric."""
+        w, fw = self._weights(np.asarray(compliance, dtype=np.float64))
+        return np.asarray(w[..., :, None] * np.linalg.solve(self._system(w, fw), self.K))
+
     def derivatives(self, compliance: Floats, state: SupportState) -> SupportDerivatives:
         """Exact derivatives of a support state (METHODS: dR/df_i = -(I + K F)^-1 K e_i R_i)."""
         f = np.asarray(compliance, dtype=np.float64)

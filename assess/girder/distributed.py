@@ -129,6 +129,15 @@ class Sweep:
         """The places it passes."""
         return self._place
 
+    @property
+    def cubics(self) -> Cubics:
+        """Those of the girder."""
+        return self._cubics
+
+    def allowances(self, one: Pattern, sense: int) -> tuple[Floats, Floats]:
+        """Factors (p,) on axles and on uniform parts, for the greatest (0) and the least (1) response."""
+        return self._on(one, sense, np.arange(self._place.x.size))
+
     def at(self, index: Ints) -> Sweep:
         """Return the sweep of some of its places."""
         return Sweep(self._place.at(index), self.load, step=self._most, cubics=self._cubics)

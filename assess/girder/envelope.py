@@ -193,9 +193,13 @@ class Passage:
             for best in (y.argmax(axis=1), y.argmin(axis=1)):
                 for beside in (-1, 0, 1):
                     chosen[index, np.clip(best + beside, 0, m - 1)] = True
+        return self.keep(chosen)
+
+    def keep(self, chosen: NDArray[np.bool_]) -> Passage:
+        """Keep some positions, (p, m); places with fewer than others keep some more."""
         width = int(chosen.sum(axis=1).max())
         keep = np.argsort(~chosen, axis=1, kind="stable")[:, :width]
-        forces = np.broadcast_to(self.forces, (count, *self.forces.shape[1:]))
+        forces = np.broadcast_to(self.forces, (self.place.x.size, *self.forces.shape[1:]))
         return Passage(
             place=self.place,
             leading=np.take_along_axis(self.leading, keep, axis=1),
@@ -230,14 +234,14 @@ def passages(place: Places, train: Train, *, both_ways: bool = True) -> list[Pas
         ways.append(train.reversed())
     result = []
     for way in ways:
-        result.append(_on_grid(place, way))
+        result.append(passage_at(place, way, leading_grid(place.condensed, way)))
         result.append(_on_places(place, way))
     return result
 
 
-def _on_grid(place: Places, train: Train) -> Passage:
+def passage_at(place: Places, train: Train, leading: Floats) -> Passage:
+    """Let a train stand with its leading axle at some positions (m,), ascending."""
     condensed = place.condensed
-    leading = leading_grid(condensed, train)
     ends, simple = _train_state(condensed, train, leading)
     forces = condensed.forces_from(ends, simple)
     shared = np.broadcast_to(leading, (place.x.size, leading.size))

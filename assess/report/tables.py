@@ -324,13 +324,15 @@ def reading_rows(readings: list[ReadingResult]) -> list[list[str]]:
         remark = "suspect: past 3.29" if r.suspect else "within 3.29"
         if r.standardised_residual is None and not r.suspect:
             remark = "unchecked"
+        if r.predicted is None:
+            remark = "not fitted: the girder is off a pad"
         rows.append(
             [
                 r.state,
                 r.quantity,
                 ", ".join(where) or words.not_determined("no place given"),
                 words.entered(r.observed, r.unit),
-                words.quantity(r.predicted, r.unit, "the fit gives none"),
+                words.quantity(r.predicted, r.unit, "not fitted"),
                 words.entered(r.sd, r.unit),
                 residual,
                 remark,
@@ -342,8 +344,11 @@ def reading_rows(readings: list[ReadingResult]) -> list[list[str]]:
 def fit_sentence(calibration: GirderCalibration) -> str:
     """Word the global test of a fit."""
     freedom = calibration.degrees_of_freedom
+    fitted = sum(r.predicted is not None for r in calibration.readings)
+    out = len(calibration.readings) - fitted
+    left_out = f" and {out} left out" if out else ""
     told = (
-        f"{len(calibration.readings)} readings, chi-square {words.number(calibration.chi_square)} on "
+        f"{fitted} readings{left_out}, chi-square {words.number(calibration.chi_square)} on "
         f"{freedom} degrees of freedom, p value "
         + words.quantity(calibration.p_value, "", "no degrees of freedom are left")
         + ". "

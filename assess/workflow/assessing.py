@@ -11,7 +11,8 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.calibrate import draw_normal
-from assess.capacity import Case, Row, RowDraws, evaluate, evaluate_draws, factored_steady
+from assess.capacity import AS_THEY_ARE, Case, Row, RowDraws, evaluate, evaluate_draws, factored_steady
+from assess.girder import REACTION
 from assess.results import (
     AssessmentResult,
     CalibratedCase,
@@ -20,10 +21,18 @@ from assess.results import (
     ReactionResult,
     SectionResult,
 )
-from assess.workflow import cautions, combination_cautions, hinge_cautions, pad_cautions, section_cautions
+from assess.workflow import (
+    cautions,
+    combination_cautions,
+    contact_cautions,
+    hinge_cautions,
+    pad_cautions,
+    section_cautions,
+)
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import GirderFit, VisitFit, from_kept
 from assess.workflow.combination import factors_of
+from assess.workflow.lifting import tipping_named
 from assess.workflow.pad_checks import check_pads
 from assess.workflow.sections import last_loss
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
@@ -137,12 +146,16 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
         progress(f"assessing {girder.id}", i, len(study.bridge.girders))
         model = study.model(girder.id, visit)
         supports, about = supports_of(study, model, fits, visit)
-        shown = _assess_girder(model, supports)
+        with tipping_named(model):
+            shown = _assess_girder(model, supports)
         pads, about_pads = check_pads(model, supports.log_stiffness, shown.reactions)
         girders.append(replace(shown, pads=pads))
         said += about
         said += pad_cautions.of_prior(model) + about_pads
-        said += cautions.uplift(girder.id, shown.reactions)
+        if model.permanent.given:
+            said += contact_cautions.of_reactions(girder.id, shown.reactions)
+        else:
+            said += [contact_cautions.unknown(girder.id), *cautions.uplift(girder.id, shown.reactions)]
         said += cautions.of_sections(girder.id, shown.sections)
         digests += [
             f"{s} {one.value!r} {one.sd!r} {one.date}" for s, one in sorted(supports.settlements.items())
@@ -369,18 +382,35 @@ def _reactions(model: GirderModel, calibrated: Floats, drops: Floats) -> list[Re
     firm = effects.steady_reactions(model.unyielding, np.zeros(model.n)).permanent
     steady = effects.steady_reactions(calibrated, drops)
     soft = steady.permanent
-    highest, lowest = effects.reactions(calibrated)
-    most = factored_steady(factors, steady, 1.0)[0] + factors.live * highest
-    least = factored_steady(factors, steady, -1.0)[0] + factors.live * lowest
+    plain = effects.passing(AS_THEY_ARE, calibrated[None], drops[None])
+    factored = effects.passing(factors, calibrated[None], drops[None])
+    live, worst = plain.envelope(REACTION), factored.envelope(REACTION)
+    lowest = live.minimum
+    most = factored_steady(factors, steady, 1.0)[0] + factors.live * worst.maximum
+    least = factored_steady(factors, steady, -1.0)[0] + factors.live * worst.minimum
+    lifts: list[str | None] = [None] * model.n
+    if model.permanent.given:
+        free = ~model.held_down
+        by_cause = {
+            "factored": free & (factored.lifted() | (least < 0.0)),
+            "live": free & plain.lifted(),
+            "permanent": effects.lifted(calibrated, drops),
+        }
+        for cause, lifted in by_cause.items():
+            lifts = [cause if lifted[i] else before for i, before in enumerate(lifts)]
+        # a pad that is left carries nothing, to the last digit
+        lowest = np.where(free, np.maximum(lowest, -soft), lowest)
+        least = np.where(free, np.maximum(least, 0.0), least)
     return [
         ReactionResult(
             support=support.id,
             unyielding_permanent_kN=float(firm[i]),
             calibrated_permanent_kN=float(soft[i]),
-            calibrated_live_max_kN=float(highest[i]),
+            calibrated_live_max_kN=float(live.maximum[i]),
             calibrated_live_min_kN=float(lowest[i]),
             calibrated_factored_max_kN=float(most[i]),
             calibrated_factored_min_kN=float(least[i]),
+            calibrated_lifts_under=lifts[i],
         )
         for i, support in enumerate(model.doc.supports)
     ]

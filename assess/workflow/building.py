@@ -9,7 +9,16 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.calibrate import PadPrior
-from assess.capacity import CheckPlan, Effects, Factors, GirderLoads, Resistance, plan_checks
+from assess.capacity import (
+    CheckPlan,
+    Effects,
+    Factors,
+    GirderLoads,
+    PermanentLoads,
+    Resistance,
+    permanent_loads,
+    plan_checks,
+)
 from assess.girder import Condensed, Girder, Piece
 from assess.loads import LoadCase, ModelLoad, Train
 from assess.pad import Pad
@@ -105,7 +114,17 @@ class GirderModel:
         """Compliances (n,) of supports that all hold their level."""
         return np.zeros(self.n)
 
+    @cached_property
+    def held_down(self) -> NDArray[np.bool_]:
+        """Supports (n,) that take tension."""
+        return np.array([support.takes_tension for support in self.doc.supports], dtype=bool)
+
     # loads -----------------------------------------------------------------------------------
+
+    @cached_property
+    def permanent(self) -> PermanentLoads:
+        """The permanent loads, as the supports see them."""
+        return permanent_loads(self.condensed, GirderLoads(dead=dead_loads(self.doc)))
 
     @cached_property
     def trains(self) -> tuple[Train, ...]:
@@ -158,7 +177,7 @@ class GirderModel:
             models=self.models,
             thermal=thermal_cases(self.bridge, self.doc),
         )
-        return Effects(self.condensed, self.plan, loads)
+        return Effects(self.condensed, self.plan, loads, self.held_down)
 
     def flexural_at(self, x: float) -> float:
         """EI at x, kN m2; at a change of section the piece to the right."""

@@ -11,8 +11,9 @@ from numpy.typing import NDArray
 
 from assess.calibrate import Z95, Fit, NotDetermined, Observation, ObservationModel, fit
 from assess.results import CalibrationResult, GirderCalibration, PadResult, ReadingResult
-from assess.workflow import cautions, pad_cautions
+from assess.workflow import cautions, contact_cautions, pad_cautions
 from assess.workflow.building import GirderModel
+from assess.workflow.lifting import Lifting, lifting_states
 from assess.workflow.study import VERSION, Progress, Study, is_test, quiet, test_readings
 from db.documents import ReadingDoc, VisitDoc
 from db.errors import BedstoneError
@@ -73,6 +74,8 @@ def calibrate(
         for i, one in enumerate(chosen):
             tell(f"calibrating {one.date.isoformat()}", i, len(chosen))
             done = calibrate_visit(study, one, prior=prior, left_out=left_out if one is chosen[-1] else [])
+            if not every:
+                _require_a_fit(done, one)
             record.keep(as_kept(study, done, prior=prior))
             results.append(done.result)
         tell("calibrated", len(chosen), len(chosen))
@@ -117,8 +120,12 @@ def calibrate_visit(
             said.append(cautions.no_pads(girder.id))
             continue
         readings = [r for r in visit.readings if r.girder == girder.id and is_test(visit, r.state)]
-        found = _fit(model, visit, readings, prior=prior)
-        shown.append(_shown(model, readings, found))
+        found, lifting = _fit_in_contact(model, visit, readings, prior=prior)
+        said += contact_cautions.of_states(girder.id, lifting, nothing_left=found is None)
+        said += [] if model.permanent.given else [contact_cautions.unknown(girder.id)]
+        shown.append(_shown(model, readings, found, lifting))
+        if found is None:
+            continue
         fits[girder.id] = GirderFit(
             girder=girder.id,
             supports=model.pad_ids,
@@ -128,7 +135,7 @@ def calibrate_visit(
             information_vector=found.information_vector,
             data_share=found.data_share,
         )
-        said += cautions.of_fit(girder.id, shown[-1], readings, found)
+        said += cautions.of_fit(girder.id, shown[-1], _without(readings, lifting), found)
         said += pad_cautions.of_prior(model) if prior else []
     said += cautions.of_visit(visit)
     said += [cautions.left_out(one.date) for one in left_out or []]
@@ -141,6 +148,19 @@ def calibrate_visit(
         cautions=[*said, *cautions.STANDING],
     )
     return VisitFit(visit=visit.date, result=result, fits=fits)
+
+
+def _require_a_fit(done: VisitFit, visit: VisitDoc) -> None:
+    """Refuse a visit of which no reading could be fitted because the girders leave their pads."""
+    if done.fits or not done.result.girders:
+        return
+    girders = ", ".join(f'"{one.girder}"' for one in done.result.girders)
+    states = ", ".join(dict.fromkeys(r.state for one in done.result.girders for r in one.readings))
+    raise BedstoneError(
+        f"no reading is left to fit: in every test state read ({states}) the girder is off a pad",
+        field=f"girder {girders}, visit {visit.date.isoformat()}",
+        remedy="stand the vehicle where the girder stays down; write hold_down = true at a support that is tied down",
+    )
 
 
 def observation_model(model: GirderModel, visit: VisitDoc, readings: list[ReadingDoc]) -> ObservationModel:
@@ -168,6 +188,33 @@ def _observation(model: GirderModel, state: int, reading: ReadingDoc) -> Observa
         height=reading.height or 0.0,
         flexural=model.flexural_at(x),
     )
+
+
+def _without(readings: list[ReadingDoc], lifting: Lifting) -> list[ReadingDoc]:
+    return [reading for reading in readings if reading.state not in lifting]
+
+
+def _fit_in_contact(
+    model: GirderModel, visit: VisitDoc, readings: list[ReadingDoc], *, prior: bool
+) -> tuple[Fit | None, Lifting]:
+    """Fit the readings of the states in which the girder stays on its pads, at nominal and at fitted stiffness.
+
+    None where no reading is left.
+    """
+    read = {reading.state for reading in readings}
+
+    def opens(log_stiffness: Floats) -> Lifting:
+        found = lifting_states(model, visit, log_stiffness)
+        return {state: supports for state, supports in found.items() if state in read}
+
+    lifting = opens(model.nominal)
+    while kept := _without(readings, lifting):
+        found = _fit(model, visit, kept, prior=prior)
+        more = opens(found.log_stiffness)
+        if more.keys() <= lifting.keys():
+            return found, lifting
+        lifting = more | lifting
+    return None, lifting
 
 
 def _fit(model: GirderModel, visit: VisitDoc, readings: list[ReadingDoc], *, prior: bool) -> Fit:
@@ -206,12 +253,27 @@ def _what_is_missing(model: GirderModel, missing: NotDetermined, where: str) -> 
     return BedstoneError(problem, field=where, remedy=remedy)
 
 
-def _shown(model: GirderModel, readings: list[ReadingDoc], found: Fit) -> GirderCalibration:
+def _shown(
+    model: GirderModel, readings: list[ReadingDoc], found: Fit | None, lifting: Lifting
+) -> GirderCalibration:
+    place = {id(reading): j for j, reading in enumerate(_without(readings, lifting))}
+    rows = [_reading(reading, found, place.get(id(reading))) for reading in readings]
+    return GirderCalibration(
+        girder=model.doc.id,
+        pads=[] if found is None else _pads(model, found),
+        chi_square=0.0 if found is None else found.chi_square,
+        degrees_of_freedom=0 if found is None else found.degrees_of_freedom,
+        p_value=None if found is None else _finite(found.p_value),
+        readings=rows,
+    )
+
+
+def _pads(model: GirderModel, found: Fit) -> list[PadResult]:
     sd = found.sd
     low, high = np.exp(found.log_stiffness - Z95 * sd), np.exp(found.log_stiffness + Z95 * sd)
     estimate = np.exp(found.log_stiffness)
     nominal = model.nominal_stiffness
-    pads = [
+    return [
         PadResult(
             support=support,
             stiffness_kN_per_m=float(estimate[i]),
@@ -223,28 +285,22 @@ def _shown(model: GirderModel, readings: list[ReadingDoc], found: Fit) -> Girder
         )
         for i, support in enumerate(model.pad_ids)
     ]
-    rows = [
-        ReadingResult(
-            state=reading.state,
-            quantity=reading.quantity,
-            support=reading.support,
-            at_m=reading.at,
-            observed=to_unit(reading.value, reading.unit),
-            predicted=to_unit(float(found.predicted[j]), reading.unit),
-            unit=reading.unit,
-            sd=to_unit(reading.sd, reading.unit),
-            standardised_residual=_finite(found.standardised[j]),
-            suspect=bool(found.suspect[j]),
-        )
-        for j, reading in enumerate(readings)
-    ]
-    return GirderCalibration(
-        girder=model.doc.id,
-        pads=pads,
-        chi_square=found.chi_square,
-        degrees_of_freedom=found.degrees_of_freedom,
-        p_value=_finite(found.p_value),
-        readings=rows,
+
+
+def _reading(reading: ReadingDoc, found: Fit | None, place: int | None) -> ReadingResult:
+    """A reading beside the fit; `place` is where it stands there, None if it was left out."""
+    beside = None if found is None or place is None else (found.predicted, found.standardised, found.suspect)
+    return ReadingResult(
+        state=reading.state,
+        quantity=reading.quantity,
+        support=reading.support,
+        at_m=reading.at,
+        observed=to_unit(reading.value, reading.unit),
+        predicted=None if beside is None else to_unit(float(beside[0][place]), reading.unit),
+        unit=reading.unit,
+        sd=to_unit(reading.sd, reading.unit),
+        standardised_residual=None if beside is None else _finite(float(beside[1][place])),
+        suspect=beside is not None and bool(beside[2][place]),
     )
 
 

@@ -51,7 +51,7 @@ def points_of(
     """Measured movements of a state that are lengths, each with its fitted value, in mm."""
     points = []
     for reading in readings:
-        if reading.state != state or reading.quantity not in _LENGTHS:
+        if reading.state != state or reading.quantity not in _LENGTHS or reading.predicted is None:
             continue
         at = reading.at_m
         if at is None:

@@ -12,7 +12,9 @@ from assess.workflow.building import GirderModel
 Floats = NDArray[np.float64]
 
 
-def governing_stands(model: GirderModel, compliance: Floats, lines: MomentLines) -> list[LoadStand]:
+def governing_stands(
+    model: GirderModel, compliance: Floats, drops: Floats, lines: MomentLines
+) -> list[LoadStand]:
     """Stand the live load for the most used sagging and hogging section on calibrated supports (n,).
 
     Without a given capacity the greatest factored moment counts as the most used.
@@ -21,12 +23,13 @@ def governing_stands(model: GirderModel, compliance: Floats, lines: MomentLines)
         ("sagging", 1.0, lines.calibrated_sagging, lines.capacity_sagging),
         ("hogging", -1.0, -lines.calibrated_hogging, -lines.capacity_hogging),
     )
+    passing = model.effects.passing(model.factors, compliance[None], drops[None])
     stands = []
     for effect, sense, moment, capacity in cases:
         station = _most_used(moment, capacity)
         if station is None:
             continue
-        found = model.effects.placement("moment", compliance, station, sense)
+        found = passing.placement("moment", station, sense)
         if found is not None:
             stands.append(_stand(effect, float(lines.x_m[station]), found))
     return stands

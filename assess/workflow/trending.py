@@ -26,6 +26,7 @@ from assess.workflow import cautions, pad_cautions, section_cautions
 from assess.workflow.assessing import Settlement, kept_fits, seat_histories
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import GirderFit, VisitFit, calibrate_visit
+from assess.workflow.lifting import tipping_named
 from assess.workflow.pads import cold_shift, corrected
 from assess.workflow.status import LIMIT, status_of
 from assess.workflow.study import SEED, Progress, Study, quiet, test_readings
@@ -297,7 +298,8 @@ def _spans(
     drops_now = np.zeros(model.n)
     for support, law in seats.items():
         drops_now[model.doc.support_index(support)] = law.last
-    rows = evaluate(model.effects, model.factors, model.compliance(found.now), drops_now)
+    with tipping_named(model):
+        rows = evaluate(model.effects, model.factors, model.compliance(found.now), drops_now)
     years = forecast_years(span_of_visits)
     if all(law.drift_weight == 0.0 for law in found.laws) and all(
         law.weight == 0.0 for law in seats.values()
@@ -310,7 +312,8 @@ def _spans(
     for support, law in seats.items():
         drops[:, :, model.doc.support_index(support)] = law.draws(years, FORECAST_DRAWS, rng)
     flat = (FORECAST_DRAWS * years.size, model.n)
-    drawn = evaluate_draws(model.effects, model.factors, compliances.reshape(flat), drops.reshape(flat))
+    with tipping_named(model, "carried forward"):
+        drawn = evaluate_draws(model.effects, model.factors, compliances.reshape(flat), drops.reshape(flat))
     result = []
     for row, draws in zip(rows, drawn, strict=True):
         check = row.check

@@ -136,7 +136,9 @@ def _girder(study: Study, girder: str, calibration: VisitFit | None, part: Girde
         states=_states(study, model, calibration),
         moments=lines,
         histories=_histories(model, part) if part is not None else [],
-        stands=governing_stands(model, model.compliance(supports.log_stiffness), lines),
+        stands=governing_stands(
+            model, model.compliance(supports.log_stiffness), supports.drops(model), lines
+        ),
         hinges_m=list(model.doc.hinges),
         lie=lie_of(model),
     )
@@ -180,7 +182,8 @@ def _states(study: Study, model: GirderModel, calibration: VisitFit | None) -> l
     visit: VisitDoc = study.visit(calibration.visit)
     states = []
     for state in visit.states:
-        if state.vehicle is None or not any(r.state == state.id for r in shown.readings):
+        read = any(r.state == state.id and r.predicted is not None for r in shown.readings)
+        if state.vehicle is None or not read:
             continue
         load = model.placed(state)
         x, fitted = line_of(model, fit.log_stiffness, load)

@@ -32,7 +32,7 @@ LARGEST_COEFFICIENT = 0.2  # 1/K
 
 _SPAN = "length section piece hinges"
 _PIECE = "start end section"
-_SUPPORT = "id kind stiffness stiffness_cv rotation temperature_coefficient pad"
+_SUPPORT = "id kind stiffness stiffness_cv rotation temperature_coefficient hold_down pad"
 _PERMANENT = "name uniform start end point at kind stage"
 
 
@@ -113,12 +113,13 @@ def _support(fields: Fields) -> SupportDoc:
     name = fields.id("id")
     kind = fields.one_of("kind", ("pad", "pin"))
     rotation = _rotation(fields)
+    hold_down = _hold_down(fields, rotation)
     if kind == "pin":
         for field in ("stiffness", "stiffness_cv", "temperature_coefficient", "pad"):
             if fields.has(field):
                 remedy = 'leave it out, or write kind = "pad"'
                 raise fields.error(field, "a pin holds its level and has none", remedy)
-        return SupportDoc(id=name, kind=kind, rotation=rotation)
+        return SupportDoc(id=name, kind=kind, rotation=rotation, hold_down=hold_down)
     geometry = pad(fields.subtable("pad", PAD, "its geometry")) if fields.has("pad") else None
     by_geometry = geometry is not None and not fields.has("stiffness")
     return SupportDoc(
@@ -129,6 +130,7 @@ def _support(fields: Fields) -> SupportDoc:
         pad=geometry,
         rotation=rotation,
         temperature_coefficient=_coefficient(fields),
+        hold_down=hold_down,
     )
 
 
@@ -150,6 +152,14 @@ def _rotation(fields: Fields) -> float:
     except BedstoneError as error:
         remedy = 'write "free", "fixed" or a stiffness such as "2e5 kN m / rad"'
         raise fields.error("rotation", error.problem, remedy) from error
+
+
+def _hold_down(fields: Fields, rotation: float) -> bool | None:
+    given = fields.flag("hold_down") if fields.has("hold_down") else None
+    if given is False and rotation > 0.0:
+        problem = "a support that holds rotation cannot let the girder lift off"
+        raise fields.error("hold_down", problem, 'leave it out, or write rotation = "free"')
+    return given
 
 
 def _coefficient(fields: Fields) -> float | None:

@@ -147,6 +147,7 @@ BESIDE_INSIDE = {
     "utilisation_without_relief",
     "calibrated_factored_max_kN",
     "calibrated_factored_min_kN",
+    "calibrated_lifts_under",
 }
 BESIDE = {"assess": {"version", "input_digest", "seed", "draws"}, "trend": {"next_visit_reason", "seats"}}
 

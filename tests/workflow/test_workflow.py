@@ -323,15 +323,28 @@ def test_a_pad_that_the_last_visit_does_not_tell_is_not_forgotten(record: str, t
     assert ratio == pytest.approx(0.4, rel=0.1)
 
 
-def test_uplift_and_overload_are_cautioned(record: str, tmp_path: Path) -> None:
-    path = write_visit(tmp_path, "2024-05-14", RATIOS, settled={"west abutment": 120.0})
-    log(record, path)
+def test_a_pad_left_under_permanent_load_carries_nothing_and_is_cautioned(
+    record: str, tmp_path: Path
+) -> None:
+    log(record, write_visit(tmp_path, "2024-05-14", RATIOS))
     workflow.calibrate(record, "quillmere")
+    log(record, write_visit(tmp_path, "2025-05-14", RATIOS, settled={"west abutment": 120.0}))
     result = workflow.assess(record, "quillmere")
-    assert result.girders[0].reactions[0].calibrated_permanent_kN < 0.0
-    said = " ".join(result.cautions)
-    assert 'uplift at "west abutment" under permanent load alone' in said
-    workflow.add_bridge(record, revised(tmp_path, "4700 kN m", "700 kN m"))
+    west = result.girders[0].reactions[0]
+    assert (west.calibrated_permanent_kN, west.calibrated_factored_min_kN) == (0.0, 0.0)
+    assert west.calibrated_lifts_under == "permanent"
+    assert 'north: "west abutment" lifts under permanent load alone' in " ".join(result.cautions)
+    # what is left of the two spans is a cantilever over pier 1 with the whole weight of the first span
+    hogging = next(
+        row for row in result.girders[0].sections if row.support == "pier 1" and row.effect == "hogging"
+    )
+    assert hogging.calibrated.permanent == pytest.approx(-36.5 * 12.0**2 / 2.0, rel=1e-9)
+
+
+def test_overload_is_cautioned(record: str, tmp_path: Path) -> None:
+    log(record, write_visit(tmp_path, "2024-05-14", RATIOS))
+    workflow.calibrate(record, "quillmere")
+    workflow.add_bridge(record, revised(tmp_path, "4700 kN m", "300 kN m"))
     assert "is over its factored capacity" in " ".join(workflow.assess(record, "quillmere").cautions)
 
 

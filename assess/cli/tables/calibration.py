@@ -131,12 +131,14 @@ def _reading_row(reading: ReadingResult) -> list[str]:
         number(reading.sd),
         reading.unit,
         number(reading.standardised_residual),
-        "suspect" if reading.suspect else "",
+        "suspect" if reading.suspect else "not fitted" if reading.predicted is None else "",
     ]
 
 
 def _fit_sentence(girder: GirderCalibration) -> str:
-    count = counted(len(girder.readings), "reading")
+    fitted = sum(reading.predicted is not None for reading in girder.readings)
+    left_out = len(girder.readings) - fitted
+    count = counted(fitted, "reading") + (f", {left_out} left out" if left_out else "")
     suspects = counted(_suspects(girder), "suspect reading")
     p_value = NOT_DETERMINED if girder.p_value is None else number(girder.p_value)
     return (

@@ -89,7 +89,7 @@ def _row(axes: Axes, reading: ReadingResult, y: float, reach: float) -> None:
         axes.text(
             _x(0.0, reach) + 6.0,
             y + 3.2,
-            "not determined: unchecked",
+            "not determined: " + ("unchecked" if reading.predicted is not None else "not fitted"),
             va="baseline",
             bbox={"fc": "white", "ec": "none", "pad": 1.0},
         )
