@@ -20,6 +20,7 @@ Floats = NDArray[np.float64]
 Bools = NDArray[np.bool_]
 
 _FINER = 16  # steps that a step of the grid is divided into where a support is left or met
+_FEW = 4  # sets of supports that tell which of them can lift
 _MOST_SETS = 12  # of lifted supports that are searched; a few are usual
 
 
@@ -81,14 +82,11 @@ def refined(
     compliance, settlement : (n,)
     """
     more = []
+    for sweep in dict.fromkeys(one.source for one in found if isinstance(one.source, Sweep)):
+        sets = [one.lifted for one in found if one.source is sweep]
+        on = np.where(np.array(sets), np.inf, compliance)
+        more += [Candidate(passage=p, source=p, lifted=sets[0]) for p in Rolling(sweep).passages(on)]
     for one in found:
-        if isinstance(one.source, Sweep):
-            on = np.where(one.lifted, np.inf, compliance)
-            more += [
-                Candidate(passage=passage, source=passage, lifted=one.lifted)
-                for passage in Rolling(one.source).passages(on)
-            ]
-            continue
         part = one.passage
         if part.train is None or part.forces.shape[0] != 1:
             continue
@@ -104,8 +102,9 @@ def refined(
 
 
 def occurring(passages: Sequence[Passage], uplift: Uplift, compliances: Floats, settlements: Floats) -> Bools:
-    """Sets of lifted supports (sets, n) that some positions bring on some sets of supports (s, n)."""
-    sets = [uplift.lifted_sets(passages, *one) for one in zip(compliances, settlements, strict=True)]
+    """Sets of lifted supports (sets, n) that some positions bring on some sets of supports (s, n), a few looked at."""
+    some = np.unique(np.linspace(0, len(compliances) - 1, _FEW).astype(np.intp))
+    sets = [uplift.lifted_sets(passages, compliances[i], settlements[i]) for i in some]
     return np.unique(np.concatenate(sets), axis=0)
 
 

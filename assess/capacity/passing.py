@@ -51,6 +51,7 @@ class Passing:
         self._parts, self._dead, self._uplift = parts, dead, uplift
         self._compliances, self._settlements, self._sample = compliances, settlements, sample
         self._made: dict[str, list[Candidate]] = {}
+        self._surely = np.zeros(compliances.shape[0], dtype=bool)  # without the margin; set by `opens`
 
     @cached_property
     def opens(self) -> Bools:
@@ -66,8 +67,10 @@ class Passing:
             low = extremes([p.governing(self._compliances[self._sample]) for p in parts], self._compliances)[
                 1
             ]
-        margin = _MARGIN if any(isinstance(part, Sweep) for part in parts) else 1.0
-        return self._uplift.opens(self._compliances, self._settlements, margin * low)
+        self._surely = self._uplift.opens(self._compliances, self._settlements, low)
+        if not any(isinstance(part, Sweep) for part in parts):
+            return self._surely
+        return self._uplift.opens(self._compliances, self._settlements, _MARGIN * low)
 
     def envelope(self, name: str) -> Envelope:
         """Live envelope (p,) at all places on the one set of supports there is."""
@@ -180,6 +183,8 @@ class Passing:
         """Whether some position of what passes the places lifts anything on the one set of supports there is."""
         if not self.opens[0]:
             return False
+        if self._surely[0]:
+            return True
         passages = [one.passage for one in self._candidates(name)]
         return bool(occurring(passages, self._uplift, self._compliances, self._settlements).any())
 

@@ -19,6 +19,7 @@ from assess.capacity.actions import Steady
 from assess.capacity.checks import Check, CheckPlan
 from assess.capacity.effects import Effects
 from assess.capacity.factors import Factors
+from assess.capacity.passing import Passing
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
@@ -221,9 +222,9 @@ def evaluate_draws(
     evaluated on those in one batch.
     """
     sample = _spread(compliances, settlements)
-    kept = _governing_stations(effects, factors, compliances[sample], settlements[sample])
-    used: dict[int, Floats] = {}
     passing = effects.passing(factors, compliances, settlements, sample)
+    kept = _governing_stations(effects, factors, compliances[sample], settlements[sample], passing)
+    used: dict[int, Floats] = {}
     for name in ("moment", "shear"):
         rows = [i for i, check in enumerate(effects.plan.checks) if response_of(check.effect) == name]
         stations = np.unique(np.concatenate([kept[i] for i in rows]))
@@ -255,11 +256,13 @@ def moment_draws(
 
 
 def _governing_stations(
-    effects: Effects, factors: Factors, compliances: Floats, settlements: Floats
+    effects: Effects, factors: Factors, compliances: Floats, settlements: Floats, passing: Passing
 ) -> list[Ints]:
-    """Stations that govern each row, in each sense, for at least one of some sets of supports (sets, n)."""
+    """Stations that govern each row, in each sense, for at least one of some sets of supports (sets, n).
+
+    They are the sample of `passing`.
+    """
     found: list[set[int]] = [set() for _ in effects.plan.checks]
-    passing = effects.passing(factors, compliances, settlements)
     sample = {name: passing.sampled(name) for name in ("moment", "shear")}
     for s, (compliance, settlement) in enumerate(zip(compliances, settlements, strict=True)):
         live = {name: (high[s], low[s]) for name, (high, low) in sample.items()}

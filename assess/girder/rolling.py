@@ -34,38 +34,35 @@ class Rolling:
 
     def __init__(self, sweep: Sweep) -> None:
         self._sweep, condensed = sweep, sweep.place.condensed
-        most = float(np.diff(condensed.positions).min()) / _FINE
+        alternatives = [one for one in sweep.load.model.alternatives if not (one.second or one.uses)]
+        adverse = all(one.uniform or one.leave_out for one in alternatives)
+        most = float(np.diff(condensed.positions).min()) / (GRID_PER_SPAN if adverse else _FINE)
         module = sweep.load.model.module
         step = most if np.isinf(module) else float(module / np.ceil(module / most))
         self._lattice = Lattice(sweep.place, sweep.cubics, step, at=0.0)
         nodes = self._lattice.nodes[0]
         self._at, self._over = sweep.cubics.forces_at(nodes), sweep.cubics.forces_over(nodes)
-        self._patterns = [
-            pattern(one, step) for one in sweep.load.model.alternatives if not (one.second or one.uses)
-        ]
+        self._patterns = [pattern(one, step) for one in alternatives]
 
-    def passages(self, compliance: Floats) -> list[Passage]:
-        """All stands, the adverse parts where the lines on supports (n,) ask for them."""
-        found = []
-        lines: Lines | None = None
-        for one in self._patterns:
-            adverse = bool(one.source.uniform or one.source.leave_out)
-            for mirrored in (False, True):
-                if mirrored and one.is_symmetric:
-                    continue
-                if not adverse and np.ptp(self._factors(one, 0)) == np.ptp(self._factors(one, 1)) == 0.0:
-                    found.append(self._shared(one, mirrored))
-                    continue
-                if lines is None:
-                    place = self._sweep.place
-                    lines = self._lattice.lines(
-                        place.rows @ place.condensed.displacement_operator(compliance)
-                    )
-                found += [self._own(one, mirrored, lines, sense) for sense in range(2)]
+    def passages(self, compliances: Floats) -> list[Passage]:
+        """All stands, the adverse parts where the lines on some supports (s, n) ask for them."""
+        place = self._sweep.place
+        own = [one for one in self._patterns if not self._is_shared(one)]
+        found = [
+            self._shared(one, way) for one in self._patterns if self._is_shared(one) for way in _ways(one)
+        ]
+        for compliance in compliances if own else ():
+            lines = self._lattice.lines(place.rows @ place.condensed.displacement_operator(compliance))
+            found += [
+                self._own(one, way, lines, sense) for one in own for way in _ways(one) for sense in range(2)
+            ]
         return found
 
-    def _factors(self, one: Pattern, sense: int) -> Floats:
-        return self._sweep.allowances(one, sense)[0]
+    def _is_shared(self, one: Pattern) -> bool:
+        """Whether it stands the same for all places."""
+        if one.source.uniform or one.source.leave_out:
+            return False
+        return all(np.ptp(f) == 0.0 for sense in range(2) for f in self._sweep.allowances(one, sense))
 
     def _nodes(self, one: Pattern, heads: Ints, behind: int, mirrored: bool) -> tuple[Ints, Bools]:
         """Node of what is `behind` the heads, and whether that is on the grid."""
@@ -139,6 +136,10 @@ class Rolling:
     def _leading(self, heads: Ints, mirrored: bool) -> Floats:
         node = self._at.shape[0] - 1 - heads if mirrored else heads
         return np.asarray(self._lattice.anchor[0] + self._lattice.step * node)
+
+
+def _ways(one: Pattern) -> tuple[bool, ...]:
+    return (False,) if one.is_symmetric else (False, True)
 
 
 def _running(cells: Floats) -> Floats:
