@@ -77,9 +77,10 @@ class Lines:
         return self._kept[sign]
 
     def _positive(self, sign: float) -> Floats:
+        broken = self.broken and not self.corners  # else the step is one of the corners
         left, right = sign * self.beyond[:, :-1], sign * self.before[:, 1:]
         whole = sign * np.diff(self.running, axis=1)
-        cells = _positive_part(left, right, whole, None if self.broken else self.step)
+        cells = _positive_part(left, right, whole, None if broken else self.step)
         rows = np.arange(cells.shape[0])
         for corner in self.corners:
             first, last = (sign * self.running[rows, corner.cell + i] for i in (0, 1))
