@@ -21,6 +21,7 @@ from assess.girder.response import REACTION, Places
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
 
+_ON_NODE = 1e-6  # of a cell
 FACE = 1e-7  # m; how far past a place a load stands to be on its other face
 _GAUSS = np.polynomial.legendre.leggauss(2)  # exact for cubics
 
@@ -104,6 +105,17 @@ def _positive_part(left: Floats, right: Floats, whole: Floats, width: Floats | f
     return np.where(mixed, part, np.where(top > 0.0, whole, 0.0))
 
 
+def _stepped(before: Floats, beyond: Floats, step: Corner, ends: Ints | None) -> tuple[Floats, Floats]:
+    """Put both faces of a step into values (p, m) before and beyond nodes, if on a node that is no end."""
+    node = step.cell + np.round(step.share).astype(np.intp)
+    falls = np.abs(step.share - np.round(step.share)) < _ON_NODE
+    rows = np.flatnonzero(falls if ends is None else falls & (node != ends))
+    nodes = node[rows]
+    before, beyond = before.copy(), beyond.copy()
+    before[rows, nodes], beyond[rows, nodes] = step.before[rows], step.beyond[rows]
+    return before, beyond
+
+
 class Lattice:
     """The grids of p places and what is needed for their influence lines on any supports.
 
@@ -162,6 +174,8 @@ class Lattice:
             before, beyond = self._faces(table, value)
         broken = self.place.quantity == "shear" and not self._on_place
         corners = tuple(self._corners(table)) if self.place.condensed.hinges.size else ()
+        if corners and broken:
+            before, beyond = _stepped(before, beyond, corners[-1], self.home if self.end else None)
         return Lines(
             before=before, beyond=beyond, running=running, step=self.step, broken=broken, corners=corners
         )
