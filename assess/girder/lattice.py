@@ -21,6 +21,7 @@ from assess.girder.response import REACTION, Places
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
 
+_ON_NODE = 1e-6  # of a cell
 FACE = 1e-7  # m; how far past a place a load stands to be on its other face
 _GAUSS = np.polynomial.legendre.leggauss(2)  # exact for cubics
 
@@ -77,9 +78,10 @@ class Lines:
         return self._kept[sign]
 
     def _positive(self, sign: float) -> Floats:
+        broken = self.broken and not self.corners  # else the step is one of the corners
         left, right = sign * self.beyond[:, :-1], sign * self.before[:, 1:]
         whole = sign * np.diff(self.running, axis=1)
-        cells = _positive_part(left, right, whole, None if self.broken else self.step)
+        cells = _positive_part(left, right, whole, None if broken else self.step)
         rows = np.arange(cells.shape[0])
         for corner in self.corners:
             first, last = (sign * self.running[rows, corner.cell + i] for i in (0, 1))
@@ -101,6 +103,17 @@ def _positive_part(left: Floats, right: Floats, whole: Floats, width: Floats | f
     height = np.where(mixed, np.abs(left - right), 1.0)
     part = np.maximum(whole, 0.0) if width is None else 0.5 * width * top**2 / height
     return np.where(mixed, part, np.where(top > 0.0, whole, 0.0))
+
+
+def _stepped(before: Floats, beyond: Floats, step: Corner, ends: Ints | None) -> tuple[Floats, Floats]:
+    """Put both faces of a step into values (p, m) before and beyond nodes, if on a node that is no end."""
+    node = step.cell + np.round(step.share).astype(np.intp)
+    falls = np.abs(step.share - np.round(step.share)) < _ON_NODE
+    rows = np.flatnonzero(falls if ends is None else falls & (node != ends))
+    nodes = node[rows]
+    before, beyond = before.copy(), beyond.copy()
+    before[rows, nodes], beyond[rows, nodes] = step.before[rows], step.beyond[rows]
+    return before, beyond
 
 
 class Lattice:
@@ -161,6 +174,8 @@ class Lattice:
             before, beyond = self._faces(table, value)
         broken = self.place.quantity == "shear" and not self._on_place
         corners = tuple(self._corners(table)) if self.place.condensed.hinges.size else ()
+        if corners and broken:
+            before, beyond = _stepped(before, beyond, corners[-1], self.home if self.end else None)
         return Lines(
             before=before, beyond=beyond, running=running, step=self.step, broken=broken, corners=corners
         )

@@ -10,6 +10,7 @@ from numpy.typing import NDArray
 
 from assess.girder import RESPONSES, Condensed, Girder, Piece, forces_of, places
 from assess.girder.cubics import Cubics
+from assess.girder.lattice import Lattice
 from assess.loads import LoadCase
 from tests.girder.strategies import (
     FEW,
@@ -227,6 +228,7 @@ def test_hinges_are_refused_exactly_where_the_parts_could_move(girder: Girder, d
         ((10.0, 10.0), [5.0, 15.0]),
         ((10.0, 12.0, 10.0), [12.0, 15.0, 18.0]),
         ((10.0, 12.0, 10.0), [5.0, 15.0, 25.0]),
+        ((10.0, 10.0, 10.0, 10.0), [3.0, 7.0]),
     ],
     ids=[
         "one span",
@@ -234,6 +236,7 @@ def test_hinges_are_refused_exactly_where_the_parts_could_move(girder: Girder, d
         "one in each of two spans",
         "three in a span",
         "one in each of three",
+        "two in an end span of four",
     ],
 )
 def test_a_mechanism_is_refused(lengths: tuple[float, ...], at: list[float]) -> None:
@@ -246,6 +249,27 @@ def test_a_clamp_lets_a_hinge_into_one_span() -> None:
     # simple span of 6 m on the tip of a cantilever of 4 m: 10 kN/m gives -(30 * 4 + 10 * 16 / 2) at the clamp
     loads = LoadCase(uniforms=((0.0, 10.0, 10.0),))
     assert value(Condensed(girder), "moment", 0.0, loads, np.zeros(2), np.zeros(2)) == pytest.approx([-200.0])
+
+
+def test_a_place_knows_how_far_it_is_along_its_span() -> None:
+    x = np.array([4.0, 11.0, 13.0, 15.0, 20.0, 31.0])
+    place = places(Condensed(GERBER), "shear", x)
+    assert list(place.span) == [0, 1, 1, 1, 1, 2]
+    assert list(place.segment) == [0, 1, 2, 2, 3, 4]
+    assert place.along == pytest.approx([4.0, 1.0, 3.0, 5.0, 10.0, 9.0])
+
+
+@pytest.mark.parametrize("at", [None, 13.0, 19.0], ids=["on the places", "on a hinge", "on the other hinge"])
+def test_adverse_areas_are_exact_on_a_coarse_lattice(at: float | None) -> None:
+    # shear at 5 m: falls to -1/2, jumps to 1/2, falls over the pier to -3/10 at the hinge and rises to 0 at the other;
+    # at 17 m: falls from the hinge at 13 m to -2/3, jumps to 1/3 and falls to 0
+    condensed, x = Condensed(GERBER), np.array([5.0, 17.0])
+    lattice = Lattice(places(condensed, "shear", x), Cubics(condensed), 0.7, at=at)
+    lines = lattice.level
+    assert lines.positive(1.0)[:, -1] == pytest.approx([5.0 * 0.5 / 2.0, 2.0 / 3.0 / 2.0], rel=1e-12)
+    assert lines.positive(-1.0)[:, -1] == pytest.approx(
+        [5.0 * 0.5 / 2.0 + 9.0 * 0.3 / 2.0, 4.0 / 3.0], rel=1e-12
+    )
 
 
 # the girder itself --------------------------------------------------------------------------------
