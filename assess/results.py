@@ -365,6 +365,10 @@ class GirderView:
     moments: MomentLines
     histories: list[PadHistory]
     stands: list[LoadStand] = field(default_factory=list)
+    hinges_m: list[float] = field(default_factory=list)  # internal hinges
+    lie: tuple[Floats, Floats] | None = (
+        None  # places (p,) in m, sinking there by unit drop of each seat (p, n)
+    )
 
 
 @dataclass(frozen=True, kw_only=True)

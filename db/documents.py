@@ -101,11 +101,12 @@ class PieceDoc:
 
 @dataclass(frozen=True, kw_only=True)
 class SpanDoc:
-    """A span: its length, its section, and the pieces that override it (sorted, no overlap)."""
+    """A span: its length, its section, the pieces that override it (sorted, no overlap), and its internal hinges."""
 
     length: float  # m
     section: str
     pieces: tuple[PieceDoc, ...] = ()
+    hinges: tuple[float, ...] = ()  # m from the span's left end, ascending
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -169,6 +170,12 @@ class GirderDoc:
         for span in self.spans:
             x.append(x[-1] + span.length)
         return tuple(x)
+
+    @property
+    def hinges(self) -> tuple[float, ...]:
+        """x of every internal hinge from the left end, m."""
+        starts = zip(self.support_positions, self.spans, strict=False)
+        return tuple(start + x for start, span in starts for x in span.hinges)
 
     def support_index(self, support_id: str) -> int:
         """Index of a support by id; KeyError if there is none."""

@@ -35,7 +35,10 @@ class PermanentLoads:
         self._later = [_joined(loads, kind, continuous=True) for kind in kinds]
         self._before = [_joined(loads, kind, continuous=False) for kind in kinds]
         self.forces: Floats = np.array([forces_of(condensed, one) for one in self._later])
-        self.simple_forces: Floats = np.array([simple_forces_of(condensed, one) for one in self._before])
+        none = np.zeros(condensed.n_supports)
+        self.simple_forces: Floats = np.array(
+            [simple_forces_of(condensed, one) if one.points or one.uniforms else none for one in self._before]
+        )
 
     @property
     def given(self) -> bool:
@@ -65,13 +68,13 @@ class ThermalCases:
     def __init__(self, condensed: Condensed, cases: Sequence[Thermal]) -> None:
         self._condensed = condensed
         self._drops = [case.drop for case in cases]
-        self._ends = [condensed.imposed_end_moments(case.curvatures) for case in cases]
-        nothing = np.zeros(condensed.n_supports)
+        self._ends = [condensed.imposed_ends(case.curvatures) for case in cases]
+        nothing = np.zeros(condensed.nodes.size)
         self._forces = [condensed.forces_from(ends, nothing) for ends in self._ends]
 
     def held(self, place: Places) -> list[Floats]:
         """Moments or shears (p,) of each case with all supports held level."""
-        return [(ends[place.span] * place.carry).sum(axis=-1) for ends in self._ends]
+        return [(ends[place.segment] * place.carry).sum(axis=-1) for ends in self._ends]
 
     def states(self, compliance: Floats) -> list[SupportState]:
         """What the supports do in each case."""

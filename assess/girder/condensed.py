@@ -2,14 +2,14 @@
 
     support forces   R(d) = P - K d              any response   y(d) = y0 + Y d
 
-Slope-deflection on whole spans: the spans' flexibilities are exact (`span.py`), the unknowns are
-the n support rotations, and what is left are the n support levels d. Pads then cost one n x n
-solve per stiffness set, batched over any leading dimensions:
+The segments' flexibilities are exact (`span.py`); rotations and moments (`elimination.py`) and the levels
+of internal hinges (`hinged.py`) are eliminated, and what is left are the n support levels d. Pads then
+cost one n x n solve per stiffness set, batched over any leading dimensions:
 
     d = s + F R,   (I + K F) R = P - K s,   F = diag(f).
 
 Source of the method: stiffness method with static condensation (any text on matrix structural
-analysis); unit-load theorem for the span flexibilities; Maxwell-Betti for the load terms.
+analysis); Maxwell-Betti for the load terms.
 """
 
 from __future__ import annotations
@@ -21,8 +21,10 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.girder.batch import WORTHWHILE, solve_many
-from assess.girder.model import Girder
-from assess.girder.span import REACH, SimpleSpan
+from assess.girder.elimination import chord_rotations, continuous
+from assess.girder.hinged import hinged
+from assess.girder.model import REACH, Girder
+from assess.girder.span import SimpleSpan
 
 Floats = NDArray[np.float64]
 
@@ -54,60 +56,49 @@ class SupportDerivatives:
 
 
 class Condensed:
-    """A girder in its condensed form.
+    """A girder in its condensed form: only the levels of the real supports are left.
+
+    Internal hinges are nodes of the girder beside the supports; their levels are eliminated with the moments
+    (`elimination.py`, `hinged.py`). What lies between two nodes is a segment, a whole span where there is no hinge.
 
     Attributes
     ----------
     girder : Girder
-    spans : list of SimpleSpan
+    positions : (n,) x of the supports, m
+    nodes : (segments + 1,) x of supports and hinges, m
+    hinges : (hinges,) index of each hinge among the nodes
+    segments : list of SimpleSpan
     K : (n, n) condensed stiffness, kN/m, symmetric positive semidefinite
-    moments_by_load : (spans, 2, spans, 2) span-end moments per end rotation a load gives the simple span
-    moments_by_drop : (spans, 2, n) span-end moments per unit support drop, kN
-    rotations_by_drop : (n, n) support rotations per unit support drop
+    state_by_load : (segments, c, segments, 2) segment-end state per end rotation a load gives the simple segment: the
+        two end moments, and where there are hinges (c = 4) the levels of the two ends
+    state_by_drop : (segments, c, n) segment-end state per unit support drop
+
+    Raises
+    ------
+    ValueError
+        where hinges make a mechanism of the girder.
     """
 
     def __init__(self, girder: Girder) -> None:
         self.girder = girder
-        self.spans = [SimpleSpan(pieces) for pieces in girder.spans]
-        self.positions = girder.support_positions
+        self.segments = [SimpleSpan(pieces) for pieces in girder.segments]
+        self.positions, self.nodes = girder.support_positions, girder.nodes
         self.tolerance = REACH * girder.length
-        n, m = girder.n_supports, len(self.spans)
-        lengths = np.array([span.length for span in self.spans])
-        k = np.array([span.stiffness for span in self.spans])  # (m, 2, 2)
-        s = np.arange(m)
-        by_rotation = np.zeros((m, 2, n))  # end rotations from the chord, (left, minus right)
-        by_rotation[s, 0, s] = 1.0
-        by_rotation[s, 1, s + 1] = -1.0
-        by_drop = np.zeros((m, 2, n))
-        by_drop[s, 0, s], by_drop[s, 0, s + 1] = 1.0 / lengths, -1.0 / lengths
-        by_drop[s, 1, s], by_drop[s, 1, s + 1] = -1.0 / lengths, 1.0 / lengths
-
-        free = np.isfinite(girder.rotation)
-        joint = np.einsum("sia,sij,sjb->ab", by_rotation, k, by_rotation)
-        joint[np.diag_indices(n)] += np.where(free, girder.rotation, 0.0)
-        drop = np.einsum("sia,sij,sjb->ab", by_rotation, k, by_drop)
-        load = np.einsum("sia,sij->asj", by_rotation, k).reshape(n, 2 * m)
-        solved = np.zeros((n, n + 2 * m))
-        if free.any():
-            right = np.concatenate([-drop, load], axis=1)[free]
-            solved[free] = np.linalg.solve(joint[np.ix_(free, free)], right)
-        self.rotations_by_drop: Floats = solved[:, :n]
-        rotations_by_load = solved[:, n:].reshape(n, m, 2)
-
-        self.moments_by_drop: Floats = np.einsum(
-            "sij,sjb->sib", k, by_rotation @ self.rotations_by_drop + by_drop
-        )
-        moments = np.einsum("sij,sja,atb->sitb", k, by_rotation, rotations_by_load)
-        moments[s, :, s, :] -= k
-        self.moments_by_load: Floats = moments
-        self._by_drop = by_drop
-        self._pieces = np.repeat(s, [len(pieces) for pieces in girder.spans])
-        cubics = np.concatenate([span.end_cubics for span in self.spans])
+        self.hinges: NDArray[np.intp] = np.searchsorted(self.nodes, girder.hinges)
+        self._supports = np.searchsorted(self.nodes, self.positions)
+        self._lengths = np.diff(self.nodes)
+        hinged_one = self.hinges.size > 0
+        ends = hinged(girder, self.segments, self.hinges) if hinged_one else continuous(girder, self.segments)
+        self.state_by_load, self.state_by_drop, self.K = ends.by_load, ends.by_drop, ends.stiffness
+        self._by_hinge = ends.by_hinge
+        lengths = np.array([one.length for one in self.segments])
+        self._by_drop = np.ascontiguousarray(chord_rotations(lengths)[:, :, self._supports])
+        self._pieces = sum(len(one.breaks) - 1 for one in self.segments)
+        cubics = np.concatenate([one.end_cubics for one in self.segments])
         self._cubics = np.ascontiguousarray(np.moveaxis(cubics, 0, -1))  # (2, 4, pieces)
-        stiffness = np.einsum("sia,sib->ab", by_drop, self.moments_by_drop)
-        self.K: Floats = (stiffness + stiffness.T) / 2.0
         # a stiffness of the girder's own size; K itself is nothing where the girder is statically determinate
-        self._scale = float(np.mean(np.trace(k, axis1=1, axis2=2) / lengths**2))
+        sizes = np.array([np.trace(one.stiffness) for one in self.segments]) / lengths**2
+        self._scale = float(np.median(sizes) if hinged_one else np.mean(sizes))
 
     @property
     def n_supports(self) -> int:
@@ -117,32 +108,56 @@ class Condensed:
     # places ---------------------------------------------------------------------------------
 
     def locate(self, x: Floats, side: NDArray[np.intp] | int = 1) -> tuple[NDArray[np.intp], Floats]:
-        """Span index and distance from the span's left end; `side` -1 / +1 picks the face at a support."""
+        """Segment index and distance from its left end; `side` -1 / +1 picks the face at a support or hinge."""
+        segment = self._between(self.nodes, x, side)
+        start, end = self.nodes[segment], self.nodes[segment + 1]
+        return segment, np.clip(x, start, end) - start
+
+    def span_of(self, x: Floats, side: NDArray[np.intp] | int = 1) -> NDArray[np.intp]:
+        """Span index (...) at x; `side` -1 / +1 picks the face at a support."""
+        return self._between(self.positions, x, side)
+
+    def _between(self, edges: Floats, x: Floats, side: NDArray[np.intp] | int) -> NDArray[np.intp]:
         faces = np.broadcast_to(np.asarray(side), np.shape(x))
-        right = np.searchsorted(self.positions - self.tolerance, x, side="right") - 1
-        left = np.searchsorted(self.positions + self.tolerance, x, side="left") - 1
-        span = np.clip(np.where(faces > 0, right, left), 0, len(self.spans) - 1)
-        start, end = self.positions[span], self.positions[span + 1]
-        return span, np.clip(x, start, end) - start
+        right = np.searchsorted(edges - self.tolerance, x, side="right") - 1
+        left = np.searchsorted(edges + self.tolerance, x, side="left") - 1
+        return np.clip(np.where(faces > 0, right, left), 0, edges.size - 2)
 
     def carries(self, a: Floats) -> NDArray[np.bool_]:
         """Tell which x (...) are on the girder."""
         return np.asarray((a >= -self.tolerance) & (a <= self.positions[-1] + self.tolerance))
 
-    # unit loads, supports held level ----------------------------------------------------------
+    # loads, supports held level ---------------------------------------------------------------
 
-    def unit_end_moments(self, a: Floats) -> Floats:
-        """Span-end moments (..., spans, 2) of a unit load at a (...), supports level; 0 off the girder."""
+    def ends_under(self, rotations: Floats, lever: Floats | None = None) -> Floats:
+        """Segment-end state (..., segments, c) of what turns the ends of simple segments and loads the hinges.
+
+        Parameters
+        ----------
+        rotations : (..., segments, 2) rotations that the ends of each segment would take as a simple span, rad, in the
+            sense of sagging end moments: of a load, or of a curvature imposed by a difference of temperature
+        lever : (..., nodes) lever-rule loads on the nodes, kN; those on hinges are carried on
+        """
+        flat = rotations.reshape(*rotations.shape[:-2], -1)
+        ends = flat @ self.state_by_load.reshape(-1, flat.shape[-1]).T
+        if lever is not None and self.hinges.size:
+            ends = ends + lever[..., self.hinges] @ self._by_hinge.reshape(-1, self.hinges.size).T
+        return np.asarray(ends.reshape(*flat.shape[:-1], len(self.segments), -1))
+
+    def unit_ends(self, a: Floats) -> Floats:
+        """Segment-end state (..., segments, c) of a unit load at a (...), supports level; 0 off the girder."""
         a = np.asarray(a, dtype=np.float64)
-        span, local = self.locate(a)
+        segment, local = self.locate(a)
         on = self.carries(a)
-        moments = np.zeros((*a.shape, len(self.spans), 2))
-        for j, one in enumerate(self.spans):
-            here = on & (span == j)
+        ends = np.zeros((*a.shape, *self.state_by_load.shape[:2]))
+        for j, one in enumerate(self.segments):
+            here = on & (segment == j)
             if here.any():
                 rotation = one.end_deflection(local[here])
-                moments[here] = np.einsum("sib,pb->psi", self.moments_by_load[:, :, j, :], rotation)
-        return moments
+                ends[here] = np.einsum("sib,pb->psi", self.state_by_load[:, :, j, :], rotation)
+        if self.hinges.size:
+            ends += np.einsum("sih,...h->...si", self._by_hinge, self._unit_lever(a)[..., self.hinges])
+        return ends
 
     def unit_forces(self, a: Floats) -> Floats:
         """Support forces (..., n) under a unit load at a (...), supports held level; 0 off the girder.
@@ -150,70 +165,82 @@ class Condensed:
         By Mueller-Breslau the influence lines of the reactions of the girder on unyielding supports.
         """
         a = np.asarray(a, dtype=np.float64)
-        return self.forces_from(self.unit_end_moments(a), self.unit_simple_forces(a))
+        return self.forces_from(self.unit_ends(a), self._unit_lever(a))
 
-    def unit_simple_forces(self, a: Floats) -> Floats:
-        """Lever-rule support forces (..., n) of a unit load at a (...), as if every span were simple."""
-        a = np.asarray(a, dtype=np.float64)
-        span, local = self.locate(a)
+    def simple_forces(self, a: Floats) -> Floats:
+        """Lever-rule support forces (..., n) of a unit load at a (...), as if every span were simple.
+
+        Raises
+        ------
+        ValueError
+            for a girder with internal hinges, whose spans do not stand by themselves.
+        """
+        if self.hinges.size:
+            raise ValueError("the spans of a girder with internal hinges do not stand by themselves")
+        return self._unit_lever(np.asarray(a, dtype=np.float64))
+
+    def _unit_lever(self, a: Floats) -> Floats:
+        """Lever-rule forces (..., nodes) of a unit load at a (...), as if every segment were a simple span."""
+        segment, local = self.locate(a)
         on = self.carries(a)
-        lengths = np.diff(self.positions)[span]
+        lengths = self._lengths[segment]
         share = np.where(on, local / lengths, 0.0)
-        forces = np.zeros((*a.shape, self.n_supports))
-        np.put_along_axis(forces, span[..., None], (on - share)[..., None], axis=-1)
-        np.put_along_axis(forces, span[..., None] + 1, share[..., None], axis=-1)
+        forces = np.zeros((*a.shape, self.nodes.size))
+        np.put_along_axis(forces, segment[..., None], (on - share)[..., None], axis=-1)
+        np.put_along_axis(forces, segment[..., None] + 1, share[..., None], axis=-1)
         return forces
 
     def row_state(self, axles: Floats, loads: Floats) -> tuple[Floats, Floats]:
-        """Span-end moments (rows, spans, 2) and lever-rule forces (rows, n) under rows of axles.
+        """Segment-end state (rows, segments, c) and lever-rule forces (rows, nodes) under rows of axles.
 
         Parameters
         ----------
         axles : (rows, axles) x of every axle; those off the girder do nothing
         loads : (axles,) kN
         """
-        rows, spans = axles.shape[0], len(self.spans)
-        span, local = self.locate(axles)
+        rows, count = axles.shape[0], len(self.segments)
+        segment, local = self.locate(axles)
         weight = np.where(self.carries(axles), loads, 0.0)
         breaks = self.girder.breakpoints
-        piece = np.clip(np.searchsorted(breaks, axles, side="right") - 1, 0, self._pieces.size - 1)
-        t = self.positions[span] + local - breaks[piece]
-        where = (np.arange(rows)[:, None] * spans + span).ravel()
+        piece = np.clip(np.searchsorted(breaks, axles, side="right") - 1, 0, self._pieces - 1)
+        t = self.nodes[segment] + local - breaks[piece]
+        where = (np.arange(rows)[:, None] * count + segment).ravel()
         turned = []
         for c in self._cubics:
             rotation = ((c[3][piece] * t + c[2][piece]) * t + c[1][piece]) * t + c[0][piece]
-            turned.append(np.bincount(where, (weight * rotation).ravel(), rows * spans))
-        ends = np.stack(turned, axis=-1).reshape(rows, -1) @ self.moments_by_load.reshape(2 * spans, -1).T
-        about = np.bincount(where, (weight * local).ravel(), rows * spans).reshape(rows, spans)
-        right = about / np.diff(self.positions)
-        left = np.bincount(where, weight.ravel(), rows * spans).reshape(rows, spans) - right
-        simple = np.zeros((rows, self.n_supports))
-        simple[:, :-1] += left
-        simple[:, 1:] += right
-        return ends.reshape(rows, spans, 2), simple
+            turned.append(np.bincount(where, (weight * rotation).ravel(), rows * count))
+        rotations = np.stack(turned, axis=-1, dtype=np.float64).reshape(rows, count, 2)
+        about = np.bincount(where, (weight * local).ravel(), rows * count).reshape(rows, count)
+        right = about / self._lengths
+        left = np.bincount(where, weight.ravel(), rows * count).reshape(rows, count) - right
+        lever = np.zeros((rows, self.nodes.size))
+        lever[:, :-1] += left
+        lever[:, 1:] += right
+        return self.ends_under(rotations, lever), lever
 
-    def forces_from(self, end_moments: Floats, simple: Floats) -> Floats:
-        """Support forces (..., n) from span-end moments (..., spans, 2) and lever-rule forces (..., n)."""
-        flat = end_moments.reshape(*end_moments.shape[:-2], -1)
+    def forces_from(self, ends: Floats, lever: Floats) -> Floats:
+        """Support forces (..., n) from segment-end state (..., segments, c) and lever-rule forces (..., nodes)."""
+        moments = ends[..., :2].reshape(*ends.shape[:-2], -1)
         by_drop: Floats = self._by_drop.reshape(-1, self.n_supports)
-        return np.asarray(simple - flat @ by_drop)
+        at_supports = lever[..., self._supports] if self.hinges.size else lever
+        return np.asarray(at_supports - moments @ by_drop)
 
-    def imposed_end_moments(self, curvatures: Sequence[tuple[float, float, float]]) -> Floats:
-        """Span-end moments (spans, 2) of imposed curvatures, supports held level.
+    def imposed_ends(self, curvatures: Sequence[tuple[float, float, float]]) -> Floats:
+        """Segment-end state (segments, c) of imposed curvatures, supports held level.
 
         Parameters
         ----------
         curvatures : (start m, end m, 1/m) stretches that would bend, sagging positive; a difference of temperature
             over the depth h bends a free girder by expansion * (bottom - top) / h
         """
-        rotation = np.zeros((len(self.spans), 2))
+        rotations = np.zeros((len(self.segments), 2))
         for start, end, curvature in curvatures:
-            edges = np.clip([start, end], self.positions[:-1, None], self.positions[1:, None])
-            local = edges - self.positions[:-1, None]
+            edges = np.clip([start, end], self.nodes[:-1, None], self.nodes[1:, None])
+            local = edges - self.nodes[:-1, None]
             length = local[:, 1] - local[:, 0]
-            share = local.mean(axis=1) / np.diff(self.positions)
-            rotation += curvature * length[:, None] * np.stack([1.0 - share, share], axis=-1)
-        return np.asarray(np.einsum("sitb,tb->si", self.moments_by_load, rotation))
+            share = local.mean(axis=1) / self._lengths
+            rotations += curvature * length[:, None] * np.stack([1.0 - share, share], axis=-1)
+        return self.ends_under(rotations)
 
     # yielding supports -----------------------------------------------------------------------
 

@@ -1,6 +1,6 @@
-"""Influence lines as what they are: cubics between the ends of pieces.
+"""Influence lines as what they are: cubics between the ends of pieces, at one of which every hinge stands.
 
-The support forces and the span-end moments under a unit load at a, supports held level, are cubic in a inside every
+The support forces and the segment-end state under a unit load at a, supports held level, are cubic in a inside every
 prismatic piece. Four places in a piece tell the cubic; its running integral is a quartic. An influence line of a place
 that the condensed girder does not carry locally is a combination of these, with or without yielding supports.
 """
@@ -28,7 +28,7 @@ class Cubics:
     breaks : (pieces + 1,) m
     lengths : (pieces,) m
     forces : (pieces, 4, n) support forces
-    ends : (pieces, 4, spans, 2) span-end moments, m
+    ends : (pieces, 4, segments, c) segment-end state
     """
 
     def __init__(self, condensed: Condensed) -> None:
@@ -36,7 +36,7 @@ class Cubics:
         self.lengths = np.diff(self.breaks)
         at = self.breaks[:-1, None] + self.lengths[:, None] * _AT
         self.forces: Floats = np.einsum("kt,jtn->jkn", _TO_POWERS, condensed.unit_forces(at))
-        self.ends: Floats = np.einsum("kt,jtsi->jksi", _TO_POWERS, condensed.unit_end_moments(at))
+        self.ends: Floats = np.einsum("kt,jtsi->jksi", _TO_POWERS, condensed.unit_ends(at))
         self._running = self.running(np.moveaxis(self.forces, 2, 0))  # (n, pieces)
         self._tolerance = condensed.tolerance
 

@@ -16,6 +16,7 @@ from itertools import pairwise
 import numpy as np
 from numpy.typing import NDArray
 
+from assess.girder.condensed import Condensed
 from assess.girder.cubics import Cubics
 from assess.girder.envelope import GRID_PER_SPAN, Passage, Peaks, Placement
 from assess.girder.lattice import FACE, Lattice, Lines
@@ -30,6 +31,9 @@ Bools = NDArray[np.bool_]
 SENSES = (1.0, -1.0)
 MOST_SEARCHED = 8  # sets of supports searched for a batch
 AT_ENDS = 4.0  # times the step, for grids whose axles stand on an end of the girder
+AT_HINGES = 2.0  # and on a hinge
+PER_SEGMENT = 100
+MOST_FINER = 4.0  # times, however short a segment
 ROUGH = 2.5  # times the step, an eightieth of the shortest span
 
 
@@ -103,18 +107,19 @@ class Sweep:
     ) -> None:
         condensed = place.condensed
         self._place, self.load = place, load
-        self._most = float(np.diff(condensed.positions).min()) / GRID_PER_SPAN if step is None else step
+        self._most = _finest(condensed) if step is None else step
         self._cubics = Cubics(condensed) if cubics is None else cubics
         module = load.model.module
-        self.lattices = [
-            Lattice(place, self._cubics, _step(module, self._most * (AT_ENDS if end else 1.0)), end=end)
-            for end in (0, -1, 1)
-        ]
-        self._spans = [condensed.locate(lattice.nodes)[0] for lattice in self.lattices]
+        corners = [(0.0, AT_ENDS), (float(condensed.positions[-1]), AT_ENDS)]
+        corners += [(x, AT_HINGES) for x in condensed.girder.hinges]
+        self.lattices = [Lattice(place, self._cubics, _step(module, self._most))]
+        for x, times in corners:
+            self.lattices.append(Lattice(place, self._cubics, _step(module, self._most * times), at=x))
+        self._spans = [condensed.span_of(lattice.nodes) for lattice in self.lattices]
         self._patterns: list[list[Pattern]] = [
             [pattern(a, lattice.step) for a in load.model.alternatives] for lattice in self.lattices
         ]
-        allowances = load.allowance.at(np.diff(condensed.positions), place.quantity, place.span, place.local)
+        allowances = load.allowance.at(np.diff(condensed.positions), place.quantity, place.span, place.along)
         self._factors = [1.0 + allowance for allowance in allowances]
         hogging = _hogging_near_supports(place)
         self._counts = [_counts(place, a, hogging) for a in load.model.alternatives]
@@ -192,6 +197,7 @@ class Sweep:
         """Worst places for the greatest and for the least response on one set of supports (n,)."""
         weights = self._place.rows @ self._place.condensed.displacement_operator(compliance)
         grids = [0] + [i for i, end in ((1, 0), (2, -1)) if compliance[end] > 0.0]
+        grids += range(3, len(self.lattices))
         lines = {i: self.lattices[i].lines(weights) for i in grids}
         high, low = (self._search(lines, i) for i in range(2))
         return high, low
@@ -304,6 +310,17 @@ class Sweep:
             uniform = one.edges[at, node][:, None] * self._cubics.forces_over(lattice.nodes[rows[at], node])
             np.add.at(forces, rows[at], uniform)
         return self._heads(worst), held, forces
+
+
+def _finest(condensed: Condensed) -> float:
+    """Step in m of the finest lattice: two hundred in the shortest span, and beside a hinge a hundred in a segment.
+
+    Lines fall off steeply over a short suspended span, and an axle at a free distance seldom meets its corner.
+    """
+    step = float(np.diff(condensed.positions).min()) / GRID_PER_SPAN
+    if not condensed.hinges.size:
+        return step
+    return float(np.clip(np.diff(condensed.nodes).min() / PER_SEGMENT, step / MOST_FINER, step))
 
 
 def _step(module: float, most: float) -> float:

@@ -107,7 +107,7 @@ def train_forces(condensed: Condensed, train: Train, leading: Floats) -> Floats:
 
 
 def _train_state(condensed: Condensed, train: Train, leading: Floats) -> tuple[Floats, Floats]:
-    """Span-end moments (..., spans, 2) and lever-rule forces (..., n) of the whole train."""
+    """Segment-end state (..., segments, c) and lever-rule forces (..., nodes) of the whole train."""
     rows = leading.reshape(-1)
     step = max(1, _AT_ONCE // train.loads.size)
     blocks = [
@@ -215,15 +215,16 @@ def grid_step(condensed: Condensed) -> float:
 
 
 def leading_grid(condensed: Condensed, train: Train) -> Floats:
-    """Leading-axle positions (m,), ascending: an even grid, and each axle just on and just off either end.
+    """Leading-axle positions (m,), ascending: an even grid, each axle just on and off either end and on a hinge.
 
-    An end that yields makes a step in every influence line where an axle comes on or goes off.
+    An end that yields makes a step in every influence line where an axle comes on or goes off; a hinge makes a corner.
     """
     length = condensed.positions[-1]
     end = length + train.length
     even = np.linspace(0.0, end, max(2, int(np.ceil(end / grid_step(condensed))) + 1))
     on, off = train.offsets, train.offsets + length
-    return np.unique(np.concatenate([even, on - _FACE, on, off, off + _FACE]))
+    corners = (condensed.nodes[condensed.hinges, None] + train.offsets).ravel()
+    return np.unique(np.concatenate([even, on - _FACE, on, off, off + _FACE, corners]))
 
 
 def passages(place: Places, train: Train, *, both_ways: bool = True) -> list[Passage]:
@@ -249,15 +250,15 @@ def passage_at(place: Places, train: Train, leading: Floats) -> Passage:
             place=place, leading=shared, held=forces.T[place.supports], forces=forces[None], train=train
         )
     held = np.empty(shared.shape)
-    for j, one in enumerate(condensed.spans):
-        here = np.flatnonzero(place.span == j)
+    for j, one in enumerate(condensed.segments):
+        here = np.flatnonzero(place.segment == j)
         if not here.size:
             continue
         block = place.carry[here] @ ends[:, j, :].T
-        start = condensed.positions[j]
+        start = condensed.nodes[j]
         x, side = place.local[here, None], place.side[here, None]
         for offset, load in zip(train.offsets, train.loads, strict=True):
-            # the leading grid ascends, so an axle is inside a span over one run of positions
+            # the leading grid ascends, so an axle is inside a segment over one run of positions
             first, last = np.searchsorted(leading, [start + offset, start + one.length + offset])
             if first < last:
                 a = np.clip(leading[None, first:last] - offset - start, 0.0, one.length)
@@ -276,7 +277,7 @@ def _on_places(place: Places, train: Train) -> Passage:
     if place.quantity == REACTION:
         held = forces[np.arange(place.x.size), :, place.supports]
         return Passage(place=place, leading=leading, held=held, forces=forces, train=train)
-    own = ends[np.arange(place.x.size), :, place.span, :]
+    own = ends[np.arange(place.x.size), :, place.segment, :]
     held = (own * place.carry[:, None, :]).sum(axis=-1)
     for offset, load in zip(train.offsets, train.loads, strict=True):
         held += load * place.local_unit(leading - offset)

@@ -3,11 +3,14 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
 
 Floats = NDArray[np.float64]
+
+REACH = 1e-11  # of a length: within this of a support or a place x stands on it, so rounding picks no face
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -29,16 +32,23 @@ class Piece:
 
 @dataclass(frozen=True)
 class Girder:
-    """A continuous girder line.
+    """A girder line: continuous, but for the internal hinges in it.
 
     Parameters
     ----------
     spans : tuple of tuples of Piece, from left to right; n - 1 spans stand on n supports
     rotation : (n,) rotational restraint of the supports, kN m/rad; 0 free (the default), inf fixed
+    hinges : x of the internal hinges (half-joints, ends of suspended spans), m; each at an end of a piece inside a span
+
+    Notes
+    -----
+    Supports and hinges are the nodes of the girder, and what lies between two of them is a segment: a whole span
+    where there is no hinge.
     """
 
     spans: tuple[tuple[Piece, ...], ...]
     rotation: Floats = field(default_factory=lambda: np.zeros(0))
+    hinges: tuple[float, ...] = ()
 
     def __post_init__(self) -> None:
         if not self.spans or any(not pieces for pieces in self.spans):
@@ -50,6 +60,26 @@ class Girder:
             raise ValueError(f"rotation needs one value of at least 0 for each of {self.n_supports} supports")
         rotation.setflags(write=False)
         object.__setattr__(self, "rotation", rotation)
+        if self.hinges:
+            object.__setattr__(self, "hinges", self._on_piece_ends())
+
+    def _on_piece_ends(self) -> tuple[float, ...]:
+        """Hinges, each exactly on its end of a piece."""
+        ends = self.breakpoints
+        at = [int(np.abs(ends - x).argmin()) for x in sorted(self.hinges)]
+        for i, x in zip(at, sorted(self.hinges), strict=True):
+            if not abs(ends[i] - x) <= REACH * ends[-1]:
+                raise ValueError(f"no piece ends at the hinge at {x:g} m")
+            if i in self._support_breaks:
+                raise ValueError(f"the hinge at {x:g} m stands on a support")
+        if len(set(at)) < len(at):
+            raise ValueError("two hinges stand on one place")
+        return tuple(float(ends[i]) for i in at)
+
+    @property
+    def _support_breaks(self) -> list[int]:
+        """Index of each support among the breakpoints."""
+        return [0, *(int(i) for i in np.cumsum([len(pieces) for pieces in self.spans]))]
 
     @property
     def n_supports(self) -> int:
@@ -64,8 +94,21 @@ class Girder:
     @property
     def support_positions(self) -> Floats:
         """x of the supports, (n_supports,), m."""
-        last = np.cumsum([len(pieces) for pieces in self.spans])
-        return np.asarray(self.breakpoints[np.concatenate([[0], last])])
+        return np.asarray(self.breakpoints[self._support_breaks])
+
+    @property
+    def nodes(self) -> Floats:
+        """x of the supports and hinges, ascending, (segments + 1,), m."""
+        return np.sort(np.concatenate([self.support_positions, self.hinges]))
+
+    @property
+    def segments(self) -> tuple[tuple[Piece, ...], ...]:
+        """The pieces from node to node."""
+        if not self.hinges:
+            return self.spans
+        pieces = [piece for span in self.spans for piece in span]
+        ends = np.searchsorted(self.breakpoints, self.nodes)
+        return tuple(tuple(pieces[a:b]) for a, b in pairwise(ends))
 
     @property
     def length(self) -> float:

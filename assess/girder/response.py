@@ -2,6 +2,7 @@
 
 Downward deflection and sagging moment are positive; slope is the rotation of the cross-section, positive
 where the girder goes down towards larger x; shear is dM/dx, so it is positive just right of a loaded support.
+At an internal hinge the slope jumps, and `side` says which face is meant.
 All values are exact for prismatic pieces: nothing is interpolated.
 """
 
@@ -31,9 +32,10 @@ class Places:
     ----------
     quantity : one of RESPONSES, or "reaction" (`support_places`)
     x : (p,) m from the girder's left end
-    side : (p,) -1 or +1, the face meant where x stands on a support or under a load
-    span, local : (p,) the span and the distance from its left end
-    carry : (p, 2) response per unit moment at the span's own two ends
+    side : (p,) -1 or +1, the face meant where x stands on a support or hinge or under a load
+    span : (p,) the span it is in
+    segment, local : (p,) the segment between supports or hinges, and the distance from its left end
+    carry : (p, c) response per unit of the state of the segment's two ends: moments, and levels where there are hinges
     rows : (p, n) response per unit support drop: Y of y = y0 + Y d
     """
 
@@ -42,6 +44,7 @@ class Places:
     x: Floats
     side: NDArray[np.intp]
     span: NDArray[np.intp]
+    segment: NDArray[np.intp]
     local: Floats
     carry: Floats
     rows: Floats
@@ -54,9 +57,19 @@ class Places:
             x=self.x[index],
             side=self.side[index],
             span=self.span[index],
+            segment=self.segment[index],
             local=self.local[index],
             carry=self.carry[index],
             rows=self.rows[index],
+        )
+
+    @property
+    def along(self) -> Floats:
+        """Distance (p,) from the left end of the span, m."""
+        if not self.condensed.hinges.size:
+            return self.local
+        return np.asarray(
+            self.condensed.nodes[self.segment] + self.local - self.condensed.positions[self.span]
         )
 
     @property
@@ -75,16 +88,16 @@ class Places:
         """Response (p, m) where place p has its own load positions a[p]; 0 for loads off the girder."""
         if self.quantity == REACTION:
             return np.asarray(self.condensed.unit_forces(a)[np.arange(self.x.size), :, self.supports])
-        ends = self.condensed.unit_end_moments(a)
-        own = ends[np.arange(self.x.size), :, self.span, :]
+        ends = self.condensed.unit_ends(a)
+        own = ends[np.arange(self.x.size), :, self.segment, :]
         return np.asarray((own * self.carry[:, None, :]).sum(axis=-1) + self.local_unit(a))
 
     def local_unit(self, a: Floats) -> Floats:
-        """The part of `unit_paired` a simple span carries, (p, m); 0 for loads in other spans."""
+        """The part of `unit_paired` a simple segment carries, (p, m); 0 for loads in other segments."""
         result = np.zeros(a.shape)
-        for j, one in enumerate(self.condensed.spans):
-            here = self.span == j
-            places = a[here] - self.condensed.positions[j]
+        for j, one in enumerate(self.condensed.segments):
+            here = self.segment == j
+            places = a[here] - self.condensed.nodes[j]
             reach = self.condensed.tolerance
             within = (places >= -reach) & (places <= one.length + reach)
             if within.any():
@@ -136,7 +149,7 @@ def forces_of(condensed: Condensed, loads: LoadCase) -> Floats:
 
 def simple_forces_of(condensed: Condensed, loads: LoadCase) -> Floats:
     """Support forces (n,) of a load case carried span by span: the lever rule, kN."""
-    return _forces(condensed, loads, condensed.unit_simple_forces)
+    return _forces(condensed, loads, condensed.simple_forces)
 
 
 def _forces(condensed: Condensed, loads: LoadCase, unit: Callable[[Floats], Floats]) -> Floats:
@@ -165,43 +178,56 @@ def places(condensed: Condensed, quantity: str, x: Floats, side: NDArray[np.intp
         raise ValueError(f"a place lies outside the girder of {condensed.positions[-1]:g} m")
     x = np.clip(x, 0.0, condensed.positions[-1])
     sides = np.broadcast_to(np.asarray(side, dtype=np.intp), x.shape)
-    span, local = condensed.locate(x, sides)
+    segment, local = condensed.locate(x, sides)
     carry = np.empty((x.size, 2))
-    for j, one in enumerate(condensed.spans):
-        here = span == j
+    for j, one in enumerate(condensed.segments):
+        here = segment == j
         carry[here] = one.end_response(quantity, local[here])
-    rigid = np.zeros((x.size, condensed.n_supports))
-    lengths = np.diff(condensed.positions)[span]
-    rows = np.arange(x.size)
-    if quantity == "deflection":
-        rigid[rows, span], rigid[rows, span + 1] = 1.0 - local / lengths, local / lengths
-    elif quantity == "slope":
-        rigid[rows, span], rigid[rows, span + 1] = -1.0 / lengths, 1.0 / lengths
-    drop_rows = np.einsum("pi,pin->pn", carry, condensed.moments_by_drop[span]) + rigid
+    carry, rows = _by_ends_and_drops(condensed, quantity, segment, local, carry)
     return Places(
         condensed=condensed,
         quantity=quantity,
         x=x,
         side=sides,
-        span=span,
+        span=condensed.span_of(x, sides) if condensed.hinges.size else segment,
+        segment=segment,
         local=local,
         carry=carry,
-        rows=drop_rows,
+        rows=rows,
     )
+
+
+def _by_ends_and_drops(
+    condensed: Condensed, quantity: str, segment: NDArray[np.intp], local: Floats, carry: Floats
+) -> tuple[Floats, Floats]:
+    """Response per unit of the segment's end state (p, c) and per unit support drop (p, n)."""
+    lengths = np.diff(condensed.nodes)[segment]
+    shares = np.zeros((local.size, 2))
+    if quantity == "deflection":
+        shares = np.stack([1.0 - local / lengths, local / lengths], axis=-1)
+    elif quantity == "slope":
+        shares = np.stack([-1.0 / lengths, 1.0 / lengths], axis=-1)
+    if condensed.hinges.size:
+        carry = np.concatenate([carry, shares], axis=1)
+        return carry, np.einsum("pi,pin->pn", carry, condensed.state_by_drop[segment])
+    rigid = np.zeros((local.size, condensed.n_supports))
+    np.put_along_axis(rigid, segment[:, None] + np.arange(2), shares, axis=1)
+    return carry, np.einsum("pi,pin->pn", carry, condensed.state_by_drop[segment]) + rigid
 
 
 def support_places(condensed: Condensed) -> Places:
     """Prepare the reactions of all supports (n,) as responses: R = P - K d, so Y is -K."""
     x, n = condensed.positions, condensed.n_supports
     side = np.ones(n, dtype=np.intp)
-    span, local = condensed.locate(x, side)
+    segment, local = condensed.locate(x, side)
     return Places(
         condensed=condensed,
         quantity=REACTION,
         x=x,
         side=side,
-        span=span,
+        span=condensed.span_of(x, side),
+        segment=segment,
         local=local,
-        carry=np.zeros((n, 2)),
+        carry=np.zeros((n, condensed.state_by_load.shape[1])),
         rows=-condensed.K,
     )

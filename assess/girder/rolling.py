@@ -39,7 +39,7 @@ class Rolling:
         most = float(np.diff(condensed.positions).min()) / (GRID_PER_SPAN if adverse else _FINE)
         module = sweep.load.model.module
         step = most if np.isinf(module) else float(module / np.ceil(module / most))
-        self._lattice = Lattice(sweep.place, sweep.cubics, step, end=-1)
+        self._lattice = Lattice(sweep.place, sweep.cubics, step, at=0.0)
         nodes = self._lattice.nodes[0]
         self._at, self._over = sweep.cubics.forces_at(nodes), sweep.cubics.forces_over(nodes)
         self._patterns = [pattern(one, step) for one in alternatives]

@@ -15,11 +15,9 @@ from collections.abc import Sequence
 import numpy as np
 from numpy.typing import NDArray
 
-from assess.girder.model import Piece
+from assess.girder.model import REACH, Piece
 
 Floats = NDArray[np.float64]
-
-REACH = 1e-11  # of a length: within this of a support or a place x stands on it, so rounding picks no face
 
 
 class SimpleSpan:

@@ -21,7 +21,14 @@ from assess.results import (
     ReactionResult,
     SectionResult,
 )
-from assess.workflow import cautions, combination_cautions, contact_cautions, pad_cautions, section_cautions
+from assess.workflow import (
+    cautions,
+    combination_cautions,
+    contact_cautions,
+    hinge_cautions,
+    pad_cautions,
+    section_cautions,
+)
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import GirderFit, VisitFit, from_kept
 from assess.workflow.combination import factors_of
@@ -154,6 +161,7 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
             f"{s} {one.value!r} {one.sd!r} {one.date}" for s, one in sorted(supports.settlements.items())
         ]
     said += [pad_cautions.FROM_MEMORY] if any(girder.pads for girder in girders) else []
+    said += hinge_cautions.of_bridge(study.bridge)
     said += section_cautions.of_bridge(study.bridge, visit)
     worn = last_loss(study.bridge, visit)
     digests += [] if worn is None else [f"losses up to {worn}"]

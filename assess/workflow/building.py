@@ -65,7 +65,8 @@ class GirderModel:
         """The girder as the mechanics know it."""
         states = self.section_states
         spans = tuple(tuple(_piece(length, states[s.id]) for length, s in span) for span in self.sections)
-        return Girder(spans, np.array([support.rotation for support in self.doc.supports]))
+        rotation = np.array([support.rotation for support in self.doc.supports])
+        return Girder(spans, rotation, self.doc.hinges)
 
     @cached_property
     def condensed(self) -> Condensed:

@@ -236,8 +236,17 @@ def _curvatures(
 
 def _refuse_stage(girder: GirderDoc, file: str) -> None:
     """Loads carried span by span ask for spans that stand by themselves."""
+    staged = any(p.stage == "span by span" for p in girder.permanent)
+    for j, span in enumerate(girder.spans):
+        if staged and span.hinges:
+            raise BedstoneError(
+                "loads that came on span by span ask for spans that stand by themselves, but this one has a hinge",
+                file=file,
+                field=f'girder "{shown(girder.id)}", span {j + 1}, hinges',
+                remedy='give the loads the stage "continuous"',
+            )
     for i, support in enumerate(girder.supports):
-        if support.rotation > 0.0 and any(p.stage == "span by span" for p in girder.permanent):
+        if support.rotation > 0.0 and staged:
             raise BedstoneError(
                 "loads that came on span by span ask for spans hinged at both ends, but this support holds rotation",
                 file=file,

@@ -45,6 +45,13 @@ def model_loads(bridge: BridgeDoc, girder: GirderDoc) -> tuple[ModelLoad, ...]:
     return tuple(loads)
 
 
+def models_by_length(bridge: BridgeDoc) -> list[str]:
+    """Names of the published models whose allowance follows from lengths of spans."""
+    named = [(live, _model(live, FILE)) for live in bridge.live if live.model is not None]
+    rules = ("en-rail", "loaded-length")
+    return [model.name for live, model in named if live.dynamic is None and model.rule in rules]
+
+
 def live_in_words(bridge: BridgeDoc) -> list[str]:
     """The live loads for a reader: what runs, by which document, with which dynamic allowance."""
     return [

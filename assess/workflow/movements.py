@@ -22,12 +22,27 @@ _LENGTHS = ("deflection", "compression", "settlement")
 
 def line_of(model: GirderModel, log_stiffness: Floats, load: LoadCase) -> tuple[Floats, Floats]:
     """Places (stations,) in m and fitted deflection there in mm, downward, seats standing still."""
-    condensed = model.condensed
-    x = np.unique(np.concatenate([np.linspace(0.0, model.doc.length, _STATIONS), condensed.positions]))
-    x = np.clip(x, 0.0, condensed.positions[-1])
+    condensed, x = model.condensed, _along(model)
     place = places(condensed, "deflection", x)
     level = condensed.solve(model.compliance(log_stiffness), forces_of(condensed, load)).displacement
     return x, 1e3 * (place.held(load) + place.rows @ level)
+
+
+def lie_of(model: GirderModel) -> tuple[Floats, Floats] | None:
+    """Places (p,) in m and how far the girder sinks there by unit drop of each seat (p, n); None without hinges.
+
+    A girder without hinges lies on its seats in a smooth line, which the drawing finds from the seats alone.
+    """
+    if not model.doc.hinges:
+        return None
+    x = _along(model)
+    return x, places(model.condensed, "deflection", x).rows
+
+
+def _along(model: GirderModel) -> Floats:
+    nodes = model.condensed.nodes
+    x = np.unique(np.concatenate([np.linspace(0.0, model.doc.length, _STATIONS), nodes]))
+    return np.asarray(np.clip(x, 0.0, nodes[-1]))
 
 
 def points_of(

@@ -27,7 +27,7 @@ from assess.workflow.calibrating import VisitFit, calibrate_visit
 from assess.workflow.combination import factors_in_words
 from assess.workflow.drivers import Driver, drivers
 from assess.workflow.live_loads import live_in_words
-from assess.workflow.movements import line_of, points_of
+from assess.workflow.movements import lie_of, line_of, points_of
 from assess.workflow.showing import section_views
 from assess.workflow.stands import governing_stands
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
@@ -139,6 +139,8 @@ def _girder(study: Study, girder: str, calibration: VisitFit | None, part: Girde
         stands=governing_stands(
             model, model.compliance(supports.log_stiffness), supports.drops(model), lines
         ),
+        hinges_m=list(model.doc.hinges),
+        lie=lie_of(model),
     )
 
 

@@ -10,6 +10,8 @@ from db.exchange.girder_toml import SLACK_M
 from db.exchange.reading_rules import each, undefined_state
 from db.wording import listed, shown, suggestion
 
+_BESIDE_A_HINGE = ("rotation", "strain")
+
 
 def check_visit(visit: VisitDoc, bridge: BridgeDoc, *, today: dt.date, file: str) -> None:
     """Check what a visit says against the bridge file.
@@ -91,6 +93,16 @@ def _check_reading(reading: ReadingDoc, visit: VisitDoc, bridge: BridgeDoc) -> N
         problem = f'{reading.at:g} m lies outside girder "{shown(girder.id)}" (0 to {girder.length:g} m)'
         remedy = f"write a place between 0 and {girder.length:g} m from its left end"
         raise BedstoneError(problem, file=reading.source, field="at", remedy=remedy)
+    if reading.at is not None and reading.quantity in _BESIDE_A_HINGE:
+        _refuse_on_hinge(reading.quantity, reading.at, girder, reading.source)
+
+
+def _refuse_on_hinge(quantity: str, at: float, girder: GirderDoc, source: str) -> None:
+    """Raise BedstoneError where a slope has two values, and a moment is always nothing."""
+    if any(abs(at - hinge) <= SLACK_M for hinge in girder.hinges):
+        problem = f"a {quantity} is read beside a hinge, not on it ({at:g} m)"
+        remedy = "write the place of the instrument, on the side of the hinge where it sits"
+        raise BedstoneError(problem, file=source, field="at", remedy=remedy)
 
 
 def _check_support(reading: ReadingDoc, girder: GirderDoc) -> None:

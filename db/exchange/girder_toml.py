@@ -1,4 +1,4 @@
-"""The `[[girder]]` tables of a bridge file: spans and pieces, supports, permanent loads."""
+"""The `[[girder]]` tables of a bridge file: spans with pieces and hinges, supports, permanent loads."""
 
 from __future__ import annotations
 
@@ -15,6 +15,7 @@ from db.documents import (
 )
 from db.errors import BedstoneError
 from db.exchange.fields import Fields, refuse_duplicates
+from db.exchange.hinges_toml import hinges, refuse_mechanism
 from db.exchange.pad_toml import PAD, pad
 from db.wording import shown
 
@@ -29,7 +30,7 @@ LARGEST_CV = 3.0
 DEFAULT_CV = 0.3
 LARGEST_COEFFICIENT = 0.2  # 1/K
 
-_SPAN = "length section piece"
+_SPAN = "length section piece hinges"
 _PIECE = "start end section"
 _SUPPORT = "id kind stiffness stiffness_cv rotation temperature_coefficient hold_down pad"
 _PERMANENT = "name uniform start end point at kind stage"
@@ -48,10 +49,12 @@ def girder(fields: Fields, sections: list[str]) -> GirderDoc:
     if share > LARGEST_SHARE:
         remedy = "write the share of one track or lane that this girder carries, for example 0.5"
         raise fields.error("live_share", f"{share:g} is no share", remedy)
-    spans = tuple(_span(f, sections) for f in fields.tables("span", "span", _SPAN))
+    tables = fields.tables("span", "span", _SPAN)
+    spans = tuple(_span(f, sections) for f in tables)
     if not spans:
         raise fields.error("span", "there is no span", "add a [[girder.span]] with length and section")
     supports = _supports(fields, len(spans))
+    refuse_mechanism(tables, spans, supports)
     length = sum(span.length for span in spans)
     permanent = tuple(_permanent(f, length) for f in fields.tables("permanent", "permanent", _PERMANENT))
     return GirderDoc(id=name, live_share=share, spans=spans, supports=supports, permanent=permanent)
@@ -73,7 +76,7 @@ def _span(fields: Fields, sections: list[str]) -> SpanDoc:
             problem = f"it starts at {piece.start:g} m, where another piece reaches to {end:g} m"
             raise where.error("start", problem, "let the pieces of a span not overlap")
         kept.append(PieceDoc(start=max(piece.start, end), end=piece.end, section=piece.section))
-    return SpanDoc(length=length, section=section, pieces=tuple(kept))
+    return SpanDoc(length=length, section=section, pieces=tuple(kept), hinges=hinges(fields, length))
 
 
 def _piece(fields: Fields, length: float, sections: list[str]) -> PieceDoc:

@@ -27,29 +27,46 @@ class Check:
 
 
 def check(
-    bridge: Bridge, effect: str, x: float, capacity: float | None, permanent: float, low: float, high: float
+    bridge: Bridge,
+    effect: str,
+    x: float,
+    capacity: float | None,
+    standing: tuple[float, float],
+    low: float,
+    high: float,
 ) -> Check:
-    """Factor the effects; the live load acts in the sense of the effect, shear in the worse of both senses."""
+    """Factor the effects; the live load acts in the sense of the effect, shear in the worse of both senses.
+
+    `standing` is what permanent loads and what seat drops do. A relief by seat drops does not count.
+    """
     senses = {"sagging": (1.0,), "hogging": (-1.0,), "shear": (1.0, -1.0)}[effect]
     return max(
-        (_one(bridge, s, x, capacity, permanent, high if s > 0 else low) for s in senses),
+        (_one(bridge, s, x, capacity, standing, high if s > 0 else low) for s in senses),
         key=lambda c: abs(c.factored) if np.sign(c.factored) in senses else -abs(c.factored),
     )
 
 
 def _one(
-    bridge: Bridge, sense: float, x: float, capacity: float | None, permanent: float, live: float
+    bridge: Bridge,
+    sense: float,
+    x: float,
+    capacity: float | None,
+    standing: tuple[float, float],
+    live: float,
 ) -> Check:
     on_permanent, on_live, resistance, relieving = bridge.factors
     relieving = min(1.0, on_permanent) if relieving is None else relieving
-    factor = on_permanent if permanent * sense >= 0 else relieving
-    factored = factor * permanent + on_live * live
+    dead, settled = standing
+    permanent = dead + settled
+    stands = (on_permanent if dead * sense >= 0 else relieving) * dead
+    stands += on_permanent * settled if settled * sense >= 0 else 0.0
+    factored = stands + on_live * live
     if capacity is None:
         return Check(x, None, permanent, live, factored, None, None)
     c = capacity * resistance
     acting = factored * sense
     load = on_live * live * sense
-    rating = None if load <= 0 else (c - factor * permanent * sense) / load
+    rating = None if load <= 0 else (c - stands * sense) / load
     return Check(x, c, permanent, live, factored, acting / c, rating)
 
 
@@ -87,9 +104,10 @@ class Rating:
             if (side < 0 and x < 1e-6) or (side > 0 and x > line.x[-1] - 1e-6):
                 continue
             row = line.row(ALONG[effect], x, side)
-            permanent = held.value(row, f, own, self.drop)
+            dead = held.value(row, f, own, 0.0 * self.drop)
+            standing = dead, held.value(row, f, own, self.drop) - dead
             low, high = self._live(held, row, x, step)
-            out.append(check(self.bridge, effect, x, self.capacity(effect, x, side), permanent, low, high))
+            out.append(check(self.bridge, effect, x, self.capacity(effect, x, side), standing, low, high))
         return out
 
     def _live(self, held: Held, row: Row, x: float | None, step: float) -> tuple[float, float]:
@@ -117,7 +135,8 @@ class Rating:
         )
         held = line.held_up(self.stiffness)
         f, own = line.permanent()
-        u = held.displacements(f, self.drop)
+        u0 = held.displacements(f, 0.0 * self.drop)
+        u1 = held.displacements(f, self.drop) - u0
         edges = [x for a, b, _ in self.girder.pieces() for x in (a, b)]
         grid = np.concatenate(
             [
@@ -137,11 +156,12 @@ class Rating:
         out: dict[tuple[str, int | None, int | None], Check] = {}
         for kind in "mv":
             rows = [line.row(kind, x, side) for x, side in places]
-            permanent = np.array([r.row @ u + r.sign * own[r.element, r.local] for r in rows])
+            dead = np.array([r.row @ u0 + r.sign * own[r.element, r.local] for r in rows])
+            settled = np.array([r.row @ u1 for r in rows])
             low, high = self._envelope(held, rows)
-            for (x, side), d, lo, hi in zip(places, permanent, low, high, strict=True):
+            for (x, side), *standing, lo, hi in zip(places, dead, settled, low, high, strict=True):
                 for effect in ("sagging", "hogging") if kind == "m" else ("shear",):
-                    c = check(self.bridge, effect, x, self.capacity(effect, x, side), d, lo, hi)
+                    c = check(self.bridge, effect, x, self.capacity(effect, x, side), tuple(standing), lo, hi)
                     for key in self._rows(effect, x, side):
                         if key not in out or _more(c, out[key]):
                             out[key] = c

@@ -105,6 +105,26 @@ def test_a_simple_span_is_free_to_arch() -> None:
     assert np.abs(steady.hot - steady.cold).max() < 1e-9
 
 
+def test_hinges_that_make_a_girder_determinate_leave_no_moment_to_temperature() -> None:
+    pieces = tuple(
+        tuple(Piece(length=length, flexural=EI) for length in span)
+        for span in ((10.0,), (3.0, 6.0, 3.0), (10.0,))
+    )
+    thermal = Thermal(curvatures=((0.0, 32.0, -1e-4),), drop=np.array([0.0, -0.003, 0.0, 0.0]))
+    for hinges, most in (((13.0, 19.0), 1e-9), ((13.0,), None)):
+        girder = Girder(pieces, hinges=hinges)
+        resistances = [[Resistance(sagging=900.0, hogging=500.0, shear=300.0)] * len(s) for s in girder.spans]
+        effects = Effects(
+            Condensed(girder),
+            plan_checks(girder, resistances, FACTORS),
+            GirderLoads(dead=(), thermal=(thermal,)),
+        )
+        steady = effects.steady("moment", np.array([1e-5, 2e-5, 1e-5, 0.0]), np.zeros(4))
+        reach = float(np.abs(steady.hot - steady.cold).max())
+        assert reach < most if most else reach > 10.0
+        assert np.abs(steady.hot[effects.plan.x == 13.0]).max(initial=0.0) < 1e-9  # nothing on a hinge
+
+
 def test_a_warm_pier_acts_like_a_seat_that_rises() -> None:
     thermal = Thermal(curvatures=(), drop=np.array([0.0, -0.003, 0.0]))
     effects = effects_of((10.0, 10.0), GirderLoads(dead=(), thermal=(thermal,)))

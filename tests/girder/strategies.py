@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from collections.abc import Sequence
+from dataclasses import dataclass, replace
+from itertools import pairwise
 
 import numpy as np
-from hypothesis import settings
+from hypothesis import assume, settings
 from hypothesis import strategies as st
 from numpy.typing import NDArray
 
@@ -71,6 +73,65 @@ def girders(
     return Girder(tuple(row), rotation)
 
 
+def with_hinges(girder: Girder, at: Sequence[float]) -> Girder:
+    """The same girder with hinges at x (m): the pieces are cut there."""
+    marks, start, row = sorted(at), 0.0, []
+    for span in girder.spans:
+        pieces = []
+        for piece in span:
+            end = start + piece.length
+            edges = [start, *(x for x in marks if start + 1e-6 < x < end - 1e-6), end]
+            pieces += [replace(piece, length=b - a) for a, b in pairwise(edges)]
+            start = end
+        row.append(tuple(pieces))
+    return Girder(tuple(row), girder.rotation, tuple(marks))
+
+
+def moves_freely(girder: Girder) -> bool:
+    """Whether the rigid parts between hinges can move with all supports held: a mechanism, told by kinematics."""
+    x = girder.support_positions
+    edges = np.array([-1.0, *girder.hinges, girder.length + 1.0])
+    part = np.searchsorted(edges, x) - 1
+    parts = edges.size - 1
+    rows = []
+    for at, i, turn in zip(x, part, girder.rotation, strict=True):
+        rows += [_part(parts, i, 1.0, at)] + [_part(parts, i, 0.0, 1.0)] * bool(turn > 0.0)
+    rows += [_part(parts, i, 1.0, at) - _part(parts, i + 1, 1.0, at) for i, at in enumerate(girder.hinges)]
+    return int(np.linalg.matrix_rank(np.array(rows), tol=1e-9)) < 2 * parts
+
+
+def _part(parts: int, i: int, level: float, slope: float) -> Floats:
+    row = np.zeros(2 * parts)
+    row[2 * i], row[2 * i + 1] = level, slope
+    return row
+
+
+@st.composite
+def hinged_girders(
+    draw: st.DrawFn,
+    *,
+    shear: bool = False,
+    slivers: bool = False,
+    restrained: bool = False,
+    least: int = 1,
+    most: int = 8,
+) -> Girder:
+    """A girder with one to six internal hinges that is no mechanism; some of them near a support."""
+    girder = draw(
+        girders(shear=shear, slivers=slivers, restrained=restrained, least=max(least, 2), most=most)
+    )
+    edges, kept = girder.support_positions, girder
+    for _ in range(draw(st.integers(1, 6))):
+        j, share = draw(st.integers(0, len(girder.spans) - 1)), draw(st.integers(4, 996)) / 1000.0
+        x = float(edges[j] + share * (edges[j + 1] - edges[j]))
+        if np.abs(kept.breakpoints - x).min() < 1e-3:
+            continue
+        tried = with_hinges(kept, [*kept.hinges, x])
+        kept = kept if moves_freely(tried) else tried
+    assume(kept.hinges)
+    return kept
+
+
 pads = logs(1e-7, 1e-4)  # m/kN: stiffness 1e4 to 1e7 kN/m
 
 
@@ -112,11 +173,13 @@ def cases(
     restrained: bool = False,
     absent: bool = False,
     settled: bool = True,
+    hinged: bool = False,
     least: int = 1,
     most: int = 8,
 ) -> Case:
     """A whole case; seats drop by up to 50 mm either way."""
-    girder = draw(girders(shear=shear, slivers=slivers, restrained=restrained, least=least, most=most))
+    make = hinged_girders if hinged else girders
+    girder = draw(make(shear=shear, slivers=slivers, restrained=restrained, least=least, most=most))
     n = girder.n_supports
     drop = st.floats(-0.05, 0.05) if settled else st.just(0.0)
     return Case(

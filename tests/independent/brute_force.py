@@ -1,7 +1,7 @@
 """Reference by another method: a train rolled over a finite element girder in steps of one millimetre.
 
-Hermite elements with a node at every support, end of a piece and station; a load inside an element
-enters by its exact fixed-end forces. One inverse of the assembled girder, no condensation, and every
+Hermite elements with a node at every support, end of a piece and station, with two slopes at a hinge; a load inside
+an element enters by its exact fixed-end forces. One inverse of the assembled girder, no condensation, and every
 millimetre of the girder is a load position.
 """
 
@@ -41,11 +41,18 @@ def influence_lines(girder: Girder, compliance: Floats, stations: Floats) -> Lin
     h = np.diff(nodes)
     ei = np.array([pieces[i].flexural for i in np.searchsorted(breaks, nodes[:-1] + h / 2.0) - 1])
     elements = np.array([_element(e, length) for e, length in zip(ei, h, strict=True)])
-    size = 2 * nodes.size
+    level = 2 * np.arange(nodes.size) + np.searchsorted(
+        np.round(girder.hinges, 6), nodes
+    )  # one more past a hinge
+    parted = np.isin(nodes, np.round(girder.hinges, 6))
+    own = np.stack(
+        [level[:-1], level[:-1] + 1 + parted[:-1], level[1:], level[1:] + 1], axis=1
+    )  # (elements, 4)
+    size = int(level[-1]) + 2
     matrix = np.zeros((size, size))
     for e, k in enumerate(elements):
-        matrix[2 * e : 2 * e + 4, 2 * e : 2 * e + 4] += k
-    at = 2 * np.searchsorted(nodes, np.round(girder.support_positions, 6))
+        matrix[np.ix_(own[e], own[e])] += k
+    at = level[np.searchsorted(nodes, np.round(girder.support_positions, 6))]
     matrix[at, at] += 1.0 / compliance
     count = round(girder.length / MILLIMETRE) + 1
     a = np.minimum(np.arange(count) * MILLIMETRE, nodes[-1])
@@ -53,9 +60,9 @@ def influence_lines(girder: Girder, compliance: Floats, stations: Floats) -> Lin
     shape = _shapes(a - nodes[inside], h[inside])  # (4, m)
     load = np.zeros((size, count))
     for i in range(4):
-        load[2 * inside + i, np.arange(count)] += shape[i]
+        load[own[inside, i], np.arange(count)] += shape[i]
     u = np.linalg.solve(matrix, load)
-    ends = np.stack([elements[e] @ u[2 * e : 2 * e + 4] for e in range(h.size)])  # (elements, 4, m)
+    ends = np.stack([elements[e] @ u[own[e]] for e in range(h.size)])  # (elements, 4, m)
     ends[inside, :, np.arange(count)] -= shape.T
     where = np.searchsorted(nodes, np.round(stations, 6))
     right = np.minimum(where, h.size - 1)
@@ -68,7 +75,7 @@ def influence_lines(girder: Girder, compliance: Floats, stations: Floats) -> Lin
     shear = np.stack([shear + last[:, None, :], shear + (last - before)[:, None, :]], axis=2)
     shear[where == 0, 0] = 0.0
     shear[where == h.size, 1] = 0.0
-    return Lines(moment=moment, shear=shear, deflection=u[2 * where], reaction=u[at] / compliance[:, None])
+    return Lines(moment=moment, shear=shear, deflection=u[level[where]], reaction=u[at] / compliance[:, None])
 
 
 def roll(line: Floats, train: Train) -> tuple[Floats, Floats]:

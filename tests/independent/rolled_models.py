@@ -12,6 +12,7 @@ from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
+from scipy.ndimage import maximum_filter1d
 
 Floats = NDArray[np.float64]
 
@@ -76,11 +77,13 @@ def lm1(line: Floats, _: object) -> Floats:
 
 
 def truck(line: Floats) -> Floats:
-    best = np.zeros(line.shape[0])
-    for gap in np.linspace(14.0, 30.0, 33):
-        rows = [(0.0, 8.0 * KIP), (14.0 * FT, 32.0 * KIP), ((14.0 + gap) * FT, 32.0 * KIP)]
-        best = np.maximum(best, axles(line, rows, line.shape[1] + round(44 * FT)).max(axis=1))
-    return best
+    # the last axle at the best of all whole millimetres 14 to 30 ft behind the middle one
+    width, gap, free = line.shape[1] + round(44 * FT), round(28 * FT), round(16 * FT)
+    last = axles(line, [(0.0, 32.0 * KIP)], width)
+    best = maximum_filter1d(last, free + 1, axis=1, origin=free // 2, mode="constant", cval=0.0)
+    total = axles(line, [(0.0, 8.0 * KIP), (14.0 * FT, 32.0 * KIP)], width)
+    total[:, gap:] += best[:, : width - gap]
+    return np.asarray(total.max(axis=1))
 
 
 def two_trucks(line: Floats) -> Floats:

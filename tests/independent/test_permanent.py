@@ -80,6 +80,25 @@ def test_rotational_restraints_agree(case: Case) -> None:
     agrees(case)
 
 
+@PLAIN
+@given(cases(hinged=True))
+def test_internal_hinges_agree_with_a_frame_that_has_them(case: Case) -> None:
+    agrees(case)
+
+
+@FEW
+@given(cases(hinged=True, shear=True, slivers=True, restrained=True))
+def test_hinges_beside_slivers_shear_and_restraints_agree(case: Case) -> None:
+    agrees(case)
+
+
+@pytest.mark.campaign
+@CAMPAIGN
+@given(cases(hinged=True, shear=True, slivers=True, restrained=True))
+def test_every_kind_of_hinged_case_agrees(case: Case) -> None:
+    agrees(case)
+
+
 @pytest.mark.campaign
 @CAMPAIGN
 @given(cases(shear=True, slivers=True, restrained=True, absent=True))

@@ -59,6 +59,32 @@ def test_the_elevation_says_its_factor_spans_ratios_and_drops(view_of):
         assert words in drawn
 
 
+def test_hinges_are_drawn_in_elevation_and_moments_and_named(view_of):
+    girder = view_of("example").girders[0]
+    hinged = replace(girder, hinges_m=[15.0, 24.25])
+    for draw in (
+        lambda one: elevation.full(one, one.states[1], key="k", zero="west"),
+        lambda one: moments.envelopes(one, key="k", zero="west", basis="calibrated pads"),
+    ):
+        plain, drawn = draw(girder), draw(hinged)
+        assert "hinge" in drawn
+        assert "hinge" not in plain
+    assert "Internal hinges at 15.00 m, 24.25 m." in elevation.full(hinged, None, key="k", zero="west")
+
+
+def test_a_hinged_girder_lies_on_its_seats_as_the_mechanics_say(view_of):
+    girder = view_of("example").girders[0]
+    supports = [
+        replace(s, seat_drop_mm=5.0 if i == 1 else 0.0, seat_drop_sd_mm=0.1)
+        for i, s in enumerate(girder.supports)
+    ]
+    x = np.array([0.0, 12.0, 15.0, 24.0, 27.0, 39.0])
+    by_drop = np.zeros((x.size, 4))
+    by_drop[:, 1] = [0.0, 1.0, 1.25, 0.0, 0.0, 0.0]
+    lie = seats.lie(replace(girder, supports=supports, hinges_m=[15.0, 24.0], lie=(x, by_drop)))
+    assert lie.at(np.array([6.0, 15.0, 19.5, 30.0])) == pytest.approx([2.5, 6.25, 3.125, 0.0])
+
+
 def test_a_pad_is_drawn_as_wide_as_it_is_stiff_and_no_wider_than_twice(view_of):
     girder = view_of("example").girders[0]
 

@@ -156,6 +156,17 @@ def test_a_support_that_holds_rotation_has_no_spans_to_stand_by_themselves(tmp_p
         workflow.add_bridge(url, path)
 
 
+def test_a_span_with_a_hinge_does_not_stand_by_itself(tmp_path: Path) -> None:
+    base = text(load='stage = "span by span"').replace(
+        'length = "15 m"', 'length = "15 m"\n  hinges = ["3 m"]'
+    )
+    path, url = tmp_path / "bridge.toml", str(tmp_path / "record.sqlite")
+    path.write_text(base)
+    workflow.init_record(url)
+    with pytest.raises(BedstoneError, match=r"span 2, hinges: loads that came on span by span"):
+        workflow.add_bridge(url, path)
+
+
 def test_an_unknown_stage_or_kind_is_refused(tmp_path: Path) -> None:
     assert "stage" in refusal(tmp_path, load='stage = "propped"')
     other = tmp_path / "other"

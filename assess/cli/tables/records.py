@@ -38,6 +38,10 @@ def show_bridge_taken(bridge: BridgeDoc, taken: Taken, view: BridgeView) -> None
         ],
         words=2,
     )
+    for girder in bridge.girders:
+        if girder.hinges:
+            plural = "s" if len(girder.hinges) > 1 else ""
+            click.echo(f"Hinge{plural} in {girder.id} at {listed(f'{x:g} m' for x in girder.hinges)}.")
     click.echo()
     _show_pads(view)
     click.echo()

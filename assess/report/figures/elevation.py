@@ -17,6 +17,7 @@ from assess.results import ElevationState, GirderView, MeasuredPoint, SupportVie
 
 _DEPTH = 15.0  # pt, girder
 _STONE = 6.0
+_HINGE = 2.6  # pt, radius
 _DATUM = (0, (1.0, 1.6))
 _STEPS = (1.0, 1.5, 2.0, 2.5, 3.0, 4.0, 5.0, 6.0, 8.0)
 
@@ -104,6 +105,8 @@ def full(girder: GirderView, state: ElevationState | None, *, key: str, zero: st
             _movement(axes, sheet, state, label=True)
             _key(axes, state)
         _notes(axes, factor, lie, foot=foot, zero=zero)
+        if girder.hinges_m:
+            _hinge_key(axes, foot=foot)
         return svg.to_svg(
             figure,
             key=key,
@@ -164,7 +167,11 @@ def _sheet(
 def _girder(axes: Axes, sheet: _Sheet, girder: GirderView) -> None:
     """Draw the girder as it lies on its pads; where seats moved, its level at the datum as a dotted line."""
     end = float(sum(girder.span_lengths_m))
-    at = np.linspace(0.0, end, 101) if sheet.lie.moved else np.array([0.0, end])
+    at = (
+        np.unique([*np.linspace(0.0, end, 101), *girder.hinges_m])
+        if sheet.lie.moved
+        else np.array([0.0, end])
+    )
     xs = sheet.left + sheet.per_m * at
     soffit = sheet.soffit + sheet.per_mm * sheet.lie.at(at)
     outline = np.concatenate([np.stack([xs, soffit], 1), np.stack([xs, soffit - _DEPTH], 1)[::-1]])
@@ -173,6 +180,14 @@ def _girder(axes: Axes, sheet: _Sheet, girder: GirderView) -> None:
         axes.plot(xs, soffit - inset, color=svg.INK, lw=0.5, zorder=2.1)
     if sheet.lie.moved:
         axes.plot(xs[[0, -1]], [sheet.soffit] * 2, color=svg.SECOND, lw=1.0, ls=_DATUM, zorder=3.5)
+    for x_m in girder.hinges_m:
+        _hinge(axes, sheet.x(x_m), sheet.under(x_m))
+
+
+def _hinge(axes: Axes, x: float, soffit: float) -> None:
+    """Draw an internal hinge: the girder parted, with a small open circle between the parts."""
+    axes.plot([x, x], [soffit, soffit - _DEPTH], color=svg.INK, lw=0.9, zorder=2.2)
+    axes.add_patch(Circle((x, soffit - _DEPTH / 2.0), _HINGE, fc="white", ec=svg.INK, lw=1.1, zorder=2.3))
 
 
 def _piers(axes: Axes, sheet: _Sheet, supports: list[SupportView], *, full: bool) -> None:
@@ -332,9 +347,19 @@ def _notes(axes: Axes, factor: float | None, lie: seats.Lie, *, foot: float, zer
         axes.text(2.0, foot + 3 * LINE_PT, third, ha="left", va="baseline", color=svg.SECOND)
 
 
+def _hinge_key(axes: Axes, *, foot: float) -> None:
+    """Say what the small circle in the girder is, at the right end of the first note."""
+    x = svg.FULL_WIDTH - 2.0 - svg.text_width("hinge")
+    axes.add_patch(Circle((x - 7.0, foot + LINE_PT - 3.0), _HINGE, fc="white", ec=svg.INK, lw=1.1))
+    axes.text(x, foot + LINE_PT, "hinge", ha="left", va="baseline")
+
+
 def _supports_in_words(girder: GirderView) -> str:
     spans = ", ".join(words.span_length(v) for v in girder.span_lengths_m)
     parts = [f"Spans {spans}."]
+    if girder.hinges_m:
+        where = ", ".join(words.place(x) for x in girder.hinges_m)
+        parts.append(f"Internal hinge{'s' if len(girder.hinges_m) > 1 else ''} at {where}.")
     for support in girder.supports:
         told = "pin"
         if support.kind != "pin":

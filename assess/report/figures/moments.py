@@ -169,9 +169,12 @@ def _axes(figure: Figure, girder: GirderView, *, head: float, foot: float, heigh
     axes.axhline(0.0, color=svg.INK, lw=0.9, zorder=2)
     axes.yaxis.set_major_formatter(lambda v, _: words.entered(v) if abs(v) > 1e-9 else "0")
     axes.xaxis.set_major_formatter(lambda v, _: words.entered(v) if abs(v) > 1e-9 else "0")
-    axes.set_xlabel(fitted(f"m from {zero}; triangles mark supports", width - _LEFT - _RIGHT))
+    marks = "triangles mark supports" + (", circles hinges" if girder.hinges_m else "")
+    axes.set_xlabel(fitted(f"m from {zero}; {marks}", width - _LEFT - _RIGHT))
     for x in np.concatenate([[0.0], np.cumsum(girder.span_lengths_m)]):
         axes.plot([x], [0.0], marker="^", ms=5.5, mfc="white", mec=svg.INK, mew=0.9, clip_on=False, zorder=6)
+    for x in girder.hinges_m:
+        axes.plot([x], [0.0], marker="o", ms=4.6, mfc="white", mec=svg.INK, mew=0.9, zorder=6)
     return axes
 
 

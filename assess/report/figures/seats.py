@@ -16,17 +16,24 @@ class Lie:
     """How far the girder lies below its level at the datum, in mm, all along.
 
     A natural cubic spline through the seats: how a uniform girder bends when its supports are moved, so it
-    touches every pad. A seat that has not moved beyond twice its sd, or that nobody levelled, holds its level.
+    touches every pad; a girder with hinges lies as the mechanics say. A seat that has not moved beyond twice its sd, or
+    that nobody levelled, holds its level.
     """
 
     x_m: Floats  # (supports,), rising
     drop_mm: Floats  # (supports,)
+    hinged: tuple[Floats, Floats] | None = (
+        None  # with hinges: places (p,) in m, sinking by unit drop (p, supports)
+    )
 
     def at(self, x_m: Floats | float) -> Floats:
         """Return the drop at the places given; beyond the end supports the girder goes on straight."""
         x = np.asarray(x_m, dtype=float)
         if not self.drop_mm.any():
             return np.zeros_like(x)
+        if self.hinged is not None:
+            places, by_drop = self.hinged
+            return np.asarray(np.interp(x, places, by_drop @ self.drop_mm))
         if self.x_m.size < 3:
             first, last = self.x_m[0], self.x_m[-1]
             return np.asarray(
@@ -54,9 +61,8 @@ def lie(girder: GirderView) -> Lie:
     supports = sorted(girder.supports, key=lambda s: s.x_m)
     if len(supports) < 2:
         return Lie(x_m=np.zeros(1), drop_mm=np.zeros(1))
-    return Lie(
-        x_m=np.array([s.x_m for s in supports]), drop_mm=np.array([drop_mm(s) for s in supports], dtype=float)
-    )
+    drops = np.array([drop_mm(s) for s in supports], dtype=float)
+    return Lie(x_m=np.array([s.x_m for s in supports]), drop_mm=drops, hinged=girder.lie)
 
 
 def flat() -> Lie:
