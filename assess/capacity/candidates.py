@@ -14,7 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.capacity.uplift import Uplift
-from assess.girder import Part, Passage, Placement, Rolling, Sweep, holds, passage_at
+from assess.girder import Part, Passage, Placement, Rolling, Sweep, holds, kinds, passage_at
 
 Floats = NDArray[np.float64]
 Bools = NDArray[np.bool_]
@@ -105,7 +105,7 @@ def occurring(passages: Sequence[Passage], uplift: Uplift, compliances: Floats, 
     """Sets of lifted supports (sets, n) that some positions bring on some sets of supports (s, n), a few looked at."""
     some = np.unique(np.linspace(0, len(compliances) - 1, _FEW).astype(np.intp))
     sets = [uplift.lifted_sets(passages, compliances[i], settlements[i]) for i in some]
-    return np.unique(np.concatenate(sets), axis=0)
+    return kinds(np.concatenate(sets))[0]
 
 
 def placement_of(one: Candidate, compliance: Floats, index: int, sense: float, position: int) -> Placement:

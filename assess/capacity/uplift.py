@@ -22,7 +22,7 @@ from numpy.typing import NDArray
 from assess.capacity.contact import loads_on, standing_on
 from assess.capacity.factors import Factors
 from assess.capacity.standing import PermanentLoads
-from assess.girder import Condensed, Passage, contact_many
+from assess.girder import Condensed, Passage, contact_many, kinds
 
 Floats = NDArray[np.float64]
 Bools = NDArray[np.bool_]
@@ -118,8 +118,8 @@ class Uplift:
         for part in parts:
             forces = part.forces.reshape(-1, self._held_down.size)
             lifted = self.moved(compliance[None], settlement[None], forces)[1]
-            found.append(np.unique(lifted.reshape(-1, self._held_down.size), axis=0))
-        return np.unique(np.concatenate(found), axis=0)
+            found.append(kinds(lifted.reshape(-1, self._held_down.size))[0])
+        return kinds(np.concatenate(found))[0]
 
     def responses(self, part: Passage, compliance: Floats, settlement: Floats) -> Floats:
         """Live effects (c, s, p, m) of a passage at its places on supports (s, n)."""

@@ -1,7 +1,7 @@
 """The continuous girder: its condensed form, responses, influence lines and envelopes."""
 
 from assess.girder.condensed import Condensed, SupportDerivatives, SupportState
-from assess.girder.contact import ContactState, Tips, contact, holds
+from assess.girder.contact import ContactState, Tips, contact, holds, kinds
 from assess.girder.contact_many import ManyStates, contact_many
 from assess.girder.distributed import Sweep
 from assess.girder.envelope import (
@@ -55,6 +55,7 @@ __all__ = [
     "governing_placement",
     "holds",
     "influence_line",
+    "kinds",
     "passage_at",
     "passages",
     "places",

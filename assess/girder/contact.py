@@ -177,10 +177,21 @@ def _gaps(by_gap: Floats, reaction: Floats, off: Bools) -> Floats:
     return np.asarray(np.linalg.solve(system, np.where(off, -reaction, 0.0)[..., None])[..., 0])
 
 
+def kinds(off: Bools) -> tuple[Bools, NDArray[np.intp]]:
+    """Sets of supports that occur among rows (rows, n), and which of them each row is (rows,)."""
+    n = off.shape[1]
+    if n > 62:
+        sets, which = np.unique(off, axis=0, return_inverse=True)
+        return sets, which.ravel()
+    codes = off @ (1 << np.arange(n, dtype=np.int64))  # far cheaper to sort than rows
+    _, first, which = np.unique(codes, return_index=True, return_inverse=True)
+    return off[first], which.ravel()
+
+
 def _held(condensed: Condensed, off: Bools) -> Bools:
     """Tell in which rows (rows, n) the supports that are not off hold the girder."""
-    sets, which = np.unique(off, axis=0, return_inverse=True)
-    return np.array([holds(condensed, one) for one in sets], dtype=bool)[which.ravel()]
+    sets, which = kinds(off)
+    return np.array([holds(condensed, one) for one in sets], dtype=bool)[which]
 
 
 def holds(condensed: Condensed, off: Bools) -> bool:

@@ -12,7 +12,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.girder.condensed import Condensed
-from assess.girder.contact import TOLERANCE, contact, holds
+from assess.girder.contact import TOLERANCE, contact, holds, kinds
 
 Floats = NDArray[np.float64]
 Bools = NDArray[np.bool_]
@@ -91,8 +91,9 @@ def _settle(
     """Put levels and lifted supports of the entries into `level` and `lifted`, starting from the sets `off` (e, n)."""
     for _ in range(_ROUNDS):
         left, following = [], []
-        for one in np.unique(off, axis=0):
-            index = np.flatnonzero((off == one).all(axis=1))
+        sets, which = kinds(off)
+        for i, one in enumerate(sets):
+            index = np.flatnonzero(which == i)
             some = entries.at(index)
             if not holds(condensed, one | np.isinf(compliance[some.pads]).all(axis=0)):
                 left.append(index)
