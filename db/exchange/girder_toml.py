@@ -7,7 +7,8 @@ import math
 from db.documents import GirderDoc, PermanentDoc, PieceDoc, SpanDoc, SupportDoc
 from db.errors import BedstoneError
 from db.exchange.fields import Fields, refuse_duplicates
-from db.exchange.pad_toml import PAD, pad
+from db.exchange.pad_toml import PAD, pad, refuse_idle
+from db.pad_doc import PadDoc
 from db.wording import shown
 
 GIRDER = "id live_share span support permanent"
@@ -108,7 +109,7 @@ def _support(fields: Fields) -> SupportDoc:
                 remedy = 'leave it out, or write kind = "pad"'
                 raise fields.error(field, "a pin holds its level and has none", remedy)
         return SupportDoc(id=name, kind=kind, rotation=rotation)
-    geometry = pad(fields.subtable("pad", PAD, "its geometry")) if fields.has("pad") else None
+    geometry = _geometry(fields)
     by_geometry = geometry is not None and not fields.has("stiffness")
     return SupportDoc(
         id=name,
@@ -119,6 +120,15 @@ def _support(fields: Fields) -> SupportDoc:
         rotation=rotation,
         temperature_coefficient=_coefficient(fields),
     )
+
+
+def _geometry(support: Fields) -> PadDoc | None:
+    if not support.has("pad"):
+        return None
+    fields = support.subtable("pad", PAD, "its geometry")
+    made = pad(fields)
+    refuse_idle(fields, support)
+    return made
 
 
 def _variation(fields: Fields) -> float:
