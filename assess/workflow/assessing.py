@@ -157,7 +157,7 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
         seed=SEED,
         draws=DRAWS,
         girders=girders,
-        cautions=[*said, cautions.PERMANENT_STIFFNESS, *cautions.STANDING],
+        cautions=[*dict.fromkeys(said), cautions.PERMANENT_STIFFNESS, *cautions.STANDING],
     )
 
 

@@ -117,7 +117,11 @@ def _rate(pad: PadTrend) -> str:
 
 
 def cautions_beside(girder: str, said: list[str]) -> list[str]:
-    """Cautions that change a girder's first sentence: its own that speak of doubt in the numbers."""
+    """Cautions that change a girder's first sentence: its own that speak of doubt in the numbers.
+
+    What is believed of pads before anything is read stays with the other cautions: where it still tells a pad, the
+    fit says so.
+    """
     words = (
         "suspect",
         "misfit",
@@ -129,8 +133,18 @@ def cautions_beside(girder: str, said: list[str]) -> list[str]:
         "was due",
         "the seat at",
         "seat level",
+        "over its limit",
+        "likely wrong",
     )
-    return [one for one in said if one.startswith(f"{girder}:") and any(word in one for word in words)] + [
+    before = (
+        "computed from geometry by",
+        "share a prior",
+        "its geometry serves the checks",
+        "creep not determined",
+    )
+    own = [one for one in said if one.startswith(f"{girder}:") and any(word in one for word in words)]
+    kept = [one for one in own if "likely wrong" in one or not any(word in one for word in before)]
+    return kept + [
         one
         for one in said
         if "was due by" in one or ("two visits only" in one and one.startswith(f"{girder}:"))

@@ -56,15 +56,26 @@ def show_bridge_taken(bridge: BridgeDoc, taken: Taken, view: BridgeView, models:
 
 
 def _show_pads(view: BridgeView) -> None:
+    made = {
+        (pad.girder, pad.support): f"geometry, {pad.formula}"
+        for pad in view.pads
+        if pad.nominal_from == "geometry"
+    }
     print_table(
-        ["girder", "pad", "nominal, kN/mm", "coefficient\nof variation"],
+        ["girder", "pad", "nominal from", "nominal,\nkN/mm", "coefficient\nof variation"],
         [
-            [girder.girder, pad.support, f"{pad.nominal_kN_per_m / 1e3:.4g}", f"{pad.cv:.3g}"]
+            [
+                girder.girder,
+                pad.support,
+                made.get((girder.girder, pad.support), "as given"),
+                f"{pad.nominal_kN_per_m / 1e3:.4g}",
+                f"{pad.cv:.3g}",
+            ]
             for girder in view.shown.girders
             for pad in girder.supports
             if pad.nominal_kN_per_m is not None and pad.cv is not None
         ],
-        words=2,
+        words=3,
     )
 
 

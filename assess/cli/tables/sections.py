@@ -10,7 +10,7 @@ from assess.cli.tables.screen import print_cautions, print_heading, print_table,
 from assess.cli.tables.words import NOT_DETERMINED, number
 
 if TYPE_CHECKING:
-    from assess.shown import BridgeView, CapacityShown, GirderShown, PlateShown, SectionView
+    from assess.shown import BridgeView, CapacityShown, GirderShown, PadShown, PlateShown, SectionView
 
 _GOVERNS = {"given": "as given", "plates": "from plates", "": ""}
 
@@ -27,6 +27,7 @@ def show_bridge(view: BridgeView) -> None:
     for girder in view.shown.girders:
         print_heading(f"Girder {girder.girder}")
         _show_supports(girder)
+        _show_pads([pad for pad in view.pads if pad.girder == girder.girder])
     print_cautions(view.cautions)
 
 
@@ -114,6 +115,38 @@ def _show_supports(girder: GirderShown) -> None:
                 "none" if support.cv is None else number(support.cv),
             ]
             for support in girder.supports
+        ],
+        words=2,
+    )
+
+
+def _show_pads(pads: list[PadShown]) -> None:
+    if not pads:
+        return
+    click.echo()
+    print_table(
+        [
+            "pad from its geometry",
+            "formula",
+            "shape\nfactor",
+            "rubber in\nall, mm",
+            "layer\nmodulus, MPa",
+            "by geometry,\nkN/mm",
+            "batch",
+            "nominal",
+        ],
+        [
+            [
+                pad.support,
+                pad.formula,
+                number(pad.shape_factor),
+                f"{pad.rubber_mm:.4g}",
+                number(pad.layer_modulus_MPa),
+                number(pad.geometry_kN_per_m / 1e3),
+                pad.batch or "none",
+                "from geometry" if pad.nominal_from == "geometry" else "as given",
+            ]
+            for pad in pads
         ],
         words=2,
     )
