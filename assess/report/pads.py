@@ -21,8 +21,7 @@ def rows(pads: list[PadCheck]) -> list[list[str]]:
     return [
         [
             pad.support,
-            f"{pad.formula}, shape factor {words.number(pad.shape_factor)}: "
-            f"{words.quantity(pad.geometry_kN_per_m / 1e3, 'kN/mm')}",
+            _by_geometry(pad),
             _listed([pad.permanent_pressure_MPa, pad.total_pressure_MPa, pad.minimum_pressure_MPa], "MPa"),
             _listed([100.0 * pad.permanent_strain, 100.0 * pad.total_strain], "%"),
             words.quantity(pad.permanent_compression_mm, "mm"),
@@ -30,6 +29,11 @@ def rows(pads: list[PadCheck]) -> list[list[str]]:
         ]
         for pad in pads
     ]
+
+
+def _by_geometry(pad: PadCheck) -> str:
+    stiffness = words.quantity(pad.geometry_kN_per_m / 1e3, "kN/mm")
+    return f"{pad.formula}, shape factor {words.number(pad.shape_factor)}: {stiffness}"
 
 
 def limit_rows(pads: list[PadCheck]) -> list[list[str]]:
