@@ -42,6 +42,11 @@ def show_bridge_taken(bridge: BridgeDoc, taken: Taken, view: BridgeView, models:
     _show_pads(view)
     click.echo()
     _show_sections(bridge, view)
+    plated = [section for section in view.sections if section.plates]
+    if plated:
+        worn = "with all measured losses" if any(section.losses for section in plated) else "as built"
+        names = listed(f'"{section.section}"' for section in plated)
+        print_wrapped(f"From plates, {worn}: {names}; more: bedstone bridge show {bridge.id}")
     if bridge.vehicles:
         click.echo()
         _show_vehicles(bridge)

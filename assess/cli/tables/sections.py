@@ -17,10 +17,7 @@ _GOVERNS = {"given": "as given", "plates": "from plates", "": ""}
 
 def show_bridge(view: BridgeView) -> None:
     """Print the sections and the supports of a bridge."""
-    losses = (
-        "with all measured losses" if view.as_of is None else f"with the losses measured up to {view.as_of}"
-    )
-    click.echo(f"Bridge {view.shown.bridge}, {losses}")
+    click.echo(f"Bridge {view.shown.bridge}{_losses(view)}")
     for section in view.sections:
         print_heading(f"Section {section.section}")
         _show_section(section)
@@ -29,6 +26,14 @@ def show_bridge(view: BridgeView) -> None:
         _show_supports(girder)
         _show_pads([pad for pad in view.pads if pad.girder == girder.girder])
     print_cautions(view.cautions)
+
+
+def _losses(view: BridgeView) -> str:
+    if not any(section.plates for section in view.sections):
+        return ""
+    if view.as_of is not None:
+        return f", with the losses measured up to {view.as_of}"
+    return ", with all measured losses" if any(section.losses for section in view.sections) else ", as built"
 
 
 def _show_section(section: SectionView) -> None:
@@ -43,7 +48,7 @@ def _show_section(section: SectionView) -> None:
     click.echo()
     print_table(
         ["capacity", "unit", "value", "as given", "from plates", "governs"],
-        [_capacity_row(one) for one in section.capacities],
+        [_capacity_row(one, bool(section.plates)) for one in section.capacities],
         words=2,
     )
     if section.plates:
@@ -85,13 +90,14 @@ def _plate_row(plate: PlateShown) -> list[str]:
     ]
 
 
-def _capacity_row(one: CapacityShown) -> list[str]:
+def _capacity_row(one: CapacityShown, plated: bool) -> list[str]:
+    missing = NOT_DETERMINED if plated else "no plates"
     return [
         one.effect,
         "kN" if one.effect == "shear" else "kN m",
         NOT_DETERMINED if one.value is None else _four(one.value),
         "not given" if one.given is None else _four(one.given),
-        NOT_DETERMINED if one.built is None else _four(one.built),
+        missing if one.built is None else _four(one.built),
         _GOVERNS[one.source],
     ]
 
