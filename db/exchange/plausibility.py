@@ -5,7 +5,7 @@ The limits are common practice, no source: they are set so that a slip of a unit
 
 from __future__ import annotations
 
-from collections import defaultdict
+from collections import Counter, defaultdict
 
 from db.documents import BridgeDoc, ReadingDoc, VisitDoc
 
@@ -20,7 +20,7 @@ RISE = 3.29  # standard deviations by which a seat has to stand above its datum
 
 def bridge_queries(bridge: BridgeDoc) -> list[str]:
     """What to look at again in a bridge file."""
-    return [*_pads(bridge), *_vehicles(bridge), *_live(bridge), *_factors(bridge)]
+    return [*_pads(bridge), *_batches(bridge), *_vehicles(bridge), *_live(bridge), *_factors(bridge)]
 
 
 def _pads(bridge: BridgeDoc) -> list[str]:
@@ -31,6 +31,22 @@ def _pads(bridge: BridgeDoc) -> list[str]:
         for girder in bridge.girders
         for support in girder.supports
         if support.stiffness is not None and not low <= support.stiffness <= high
+    ]
+
+
+def _batches(bridge: BridgeDoc) -> list[str]:
+    pads = [
+        (g.id, s.id, s.pad.batch)
+        for g in bridge.girders
+        for s in g.supports
+        if s.pad is not None and s.pad.batch
+    ]
+    count = Counter(batch for _, _, batch in pads)
+    return [
+        f'girder "{girder}", support "{support}": batch "{batch}" has this one pad, so that there is nothing to share; '
+        "check the name"
+        for girder, support, batch in pads
+        if count[batch] == 1
     ]
 
 

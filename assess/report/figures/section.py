@@ -279,7 +279,15 @@ def _write(
 
 
 def _remarks(view: SectionView) -> list[str]:
-    told = ["to scale, width × height as built; places across the section are not in the file"]
+    told = [
+        "to scale, width × height as built; places across the section are not in the file",
+        "axes: heights above the underside of the plates",
+    ]
     if any(plate.loss_mm > 0.0 for plate in view.plates):
         told.append("hatched edge: plate that has lost metal; the width of the hatching is not to scale")
+    if view.holes:
+        each = ", ".join(
+            f"{words.entered(round(width, 3), 'mm')} in {plate}" for plate, _, width in view.holes
+        )
+        told.append(f"holes, width in all: {each}")
     return told
