@@ -267,15 +267,27 @@ def _write(
     foot: float,
 ) -> None:
     """The names at the right, each with a leader to its plate."""
-    anchors = [sheet.y((plate.top_mm + plate.bottom_mm) / 2.0) for plate, _ in labels]
+    anchors = _anchors(sheet, [plate for plate, _ in labels])
     ys = spread(anchors, [LINE_PT + 1.0] * len(labels), low=1.0, high=max(foot, 26.0 * len(labels)))
     for (plate, lines), anchor, y in zip(labels, anchors, ys, strict=True):
         edge = sheet.x(max(box.left + box.width for box in boxes if box.plate == plate))
         x = _LEFT + _ROOM[0] + 6.0
         axes.plot([edge, x, x + 9.0, _RIGHT + 2.0], [anchor, anchor, y, y], color=svg.NEUTRAL, lw=0.6)
+        axes.plot([edge], [anchor], color=svg.NEUTRAL, marker="o", markersize=2.0)
         axes.text(_RIGHT + 5.0, y - 1.0, lines[0], va="bottom")
         colour = svg.SECOND if plate.lost else svg.INK
         axes.text(_RIGHT + 5.0, y + 0.5, lines[1], va="top", color=colour)
+
+
+def _anchors(sheet: _Sheet, plates: list[PlateShown]) -> list[float]:
+    """Where the leaders leave the plates: at mid-height, side by side plates one below the other."""
+    level = [plate.top_mm + plate.bottom_mm for plate in plates]
+    anchors = []
+    for i, plate in enumerate(plates):
+        count, before = level.count(level[i]), level[:i].count(level[i])
+        share = (before + 1.0) / (count + 1.0)
+        anchors.append(sheet.y(plate.top_mm - share * plate.height_mm))
+    return anchors
 
 
 def _remarks(view: SectionView) -> list[str]:
