@@ -158,6 +158,8 @@ def bridge_text(bridge: Bridge, rng: np.random.Generator | None = None) -> str:
                 out += [f"stiffness = {w(s.k, 'stiffness')}", f"stiffness_cv = {s.cv!r}"]
                 if s.per_kelvin is not None:
                     out += [f'temperature_coefficient = "{s.per_kelvin * 100!r} percent / K"']
+            # the reference knows no contact
+            out += ["hold_down = true"]
             if np.isinf(s.rotation):
                 out += ['rotation = "fixed"']
             elif s.rotation:

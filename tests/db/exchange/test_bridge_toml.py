@@ -225,6 +225,35 @@ def test_the_optional_fields_are_read(bridge_text: str) -> None:
     assert doc.factors.permanent_relieving == 0.95
 
 
+def test_pins_hold_down_and_pads_do_not_unless_the_file_says_otherwise(bridge_text: str) -> None:
+    plain = parse_bridge(bridge_text, file="bridge.toml").girders[0].supports
+    assert [s.hold_down for s in plain] == [None] * 4
+    assert [s.takes_tension for s in plain] == [False, False, False, True]
+    text = changed(
+        bridge_text,
+        'stiffness = "150 kN/mm"',
+        'stiffness = "150 kN/mm"\n  hold_down = true',
+        'kind = "pin"',
+        'kind = "pin"\n  hold_down = false',
+        'stiffness = "220 kN/mm"',
+        'stiffness = "220 kN/mm"\n  rotation = "2e5 kN m / rad"',
+    )
+    told = parse_bridge(text, file="bridge.toml").girders[0].supports
+    assert [s.takes_tension for s in told] == [True, True, False, False]
+
+
+@pytest.mark.parametrize(
+    ("new", "said"),
+    [
+        ('hold_down = "yes"', 'hold_down: "yes" is neither true nor false; write hold_down = true'),
+        ('hold_down = false\n  rotation = "fixed"', "hold_down: a support that holds rotation cannot let"),
+    ],
+)
+def test_a_wrong_hold_down_is_refused(new: str, said: str, bridge_text: str) -> None:
+    text = changed(bridge_text, 'stiffness = "150 kN/mm"', f'stiffness = "150 kN/mm"\n  {new}')
+    assert said in line_of(lambda: parse_bridge(text, file="bridge.toml"))
+
+
 def test_what_is_left_out_takes_its_default(bridge_text: str) -> None:
     text = changed(bridge_text, "stiffness_cv = 0.3", "", "resistance = 1.0", "", "count = 3", "")
     doc = parse_bridge(text, file="bridge.toml")
