@@ -128,6 +128,7 @@ _SUPERSCRIPTS = str.maketrans({"²": "^2", "³": "^3", "⁴": "^4", "¹": "^1", 
 _SPACES = str.maketrans({"\u00a0": " ", "\u202f": " ", "\u2009": " "})
 _NUMBER = re.compile(r"[+-]?(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][+-]?[0-9]+)?")
 _FACTOR = re.compile(r"(?P<name>[A-Za-zµμε°%]+)(?:\^?(?P<power>[1-46])|\^(?P<negative>-[1-46]))?")
+_PER = re.compile("1? */")  # "1.2e-5 / K", "0.005 1/K"
 _JOIN = re.compile(r" *([*·⋅/ ]|(?<=[A-Za-z])-(?=[A-Za-z])) *")
 
 
@@ -334,7 +335,7 @@ def _powers(unit: str) -> dict[str, int]:
                     f'"{shown(unit)}" can be read in two ways', remedy="put one unit after each /"
                 )
             sign = -1 if part == "/" else 1
-        elif not (part in ("1", "") and i == 0 and plain.startswith(("1/", "1 /", "/"))):
+        elif i > 0 or not _PER.match(plain):
             for name, power in _factor(part, unit):
                 powers[name] = powers.get(name, 0) + sign * power
     return powers
