@@ -118,11 +118,27 @@ class SectionView:
 
 
 @dataclass(frozen=True, kw_only=True)
+class PadShown:
+    """A pad as its geometry gives it; `nominal_from` is "geometry" or "stiffness"."""
+
+    girder: str
+    support: str
+    nominal_from: str
+    formula: str
+    shape_factor: float
+    rubber_mm: float  # all layers and covers
+    layer_modulus_MPa: float  # of an inner layer
+    geometry_kN_per_m: float
+    batch: str | None
+
+
+@dataclass(frozen=True, kw_only=True)
 class BridgeView:
-    """`bridge show` for a person; losses up to `as_of`, all of them for None."""
+    """`bridge show` for a person; losses up to `as_of`, all of them for None; `pads` are those with a geometry."""
 
     shown: BridgeShown
     sections: list[SectionView]
+    pads: list[PadShown]
     as_of: dt.date | None
     models: list[str]  # published live loads, in words
     temperature: list[str]  # temperature cases, in words

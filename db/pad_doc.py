@@ -7,7 +7,7 @@ from dataclasses import dataclass
 PAD_SHAPES = ("rectangular", "circular", "plain")
 PAD_FORMULAS = ("en1337-3", "aashto-lrfd", "gent-lindley", "pressure-solution")
 PAD_COMPOUNDS = ("natural rubber", "chloroprene")
-PAD_LIMITS = ("en1337-3", "aashto-lrfd", "texas")
+PAD_LIMITS = ("en1337-3", "aashto-lrfd", "aashto-lrfd-b-stress", "texas")
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -53,6 +53,7 @@ DIMENSIONS = {
         Dimension(name="temperature", si="degC", example="13 degC"),
         Dimension(name="temperature difference", si="K", example="10 K"),
         Dimension(name="temperature coefficient", si="1/K", example="0.5 percent / K"),
+        Dimension(name="thermal expansion", si="1/K", example="12e-6 / K"),
         Dimension(name="duration", si="year", example="24 months"),
     )
 }
@@ -127,6 +128,7 @@ _SUPERSCRIPTS = str.maketrans({"²": "^2", "³": "^3", "⁴": "^4", "¹": "^1", 
 _SPACES = str.maketrans({"\u00a0": " ", "\u202f": " ", "\u2009": " "})
 _NUMBER = re.compile(r"[+-]?(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][+-]?[0-9]+)?")
 _FACTOR = re.compile(r"(?P<name>[A-Za-zµμε°%]+)(?:\^?(?P<power>[1-46])|\^(?P<negative>-[1-46]))?")
+_PER = re.compile("1? */")  # "1.2e-5 / K", "0.005 1/K"
 _JOIN = re.compile(r" *([*·⋅/ ]|(?<=[A-Za-z])-(?=[A-Za-z])) *")
 
 
@@ -268,7 +270,11 @@ def _unit_of(unit: str, dimension: str, right: str) -> _Unit:
     made = _compile(unit.strip())
     wanted = _compile(DIMENSIONS[dimension].si)
     ratios = made.names & _RATIOS
-    fits = not ratios or dimension == "strain" or ratios == {"percent"} == made.names - {"K", "F_step"}
+    fits = (
+        not ratios
+        or dimension in ("strain", "thermal expansion")
+        or ratios == {"percent"} == made.names - {"K", "F_step"}
+    )
     if made.dimensionality == wanted.dimensionality and fits:
         return made
     slope = dimension == "angle" and not made.dimensionality and made.names <= _LENGTHS
@@ -329,7 +335,7 @@ def _powers(unit: str) -> dict[str, int]:
                     f'"{shown(unit)}" can be read in two ways', remedy="put one unit after each /"
                 )
             sign = -1 if part == "/" else 1
-        elif not (part == "1" and i == 0 and plain.startswith(("1/", "1 /"))):
+        elif i > 0 or not _PER.match(plain):
             for name, power in _factor(part, unit):
                 powers[name] = powers.get(name, 0) + sign * power
     return powers

@@ -93,7 +93,7 @@ def check_limits(
     Raises
     ------
     PadError
-        for an unknown set or an unknown limit of the owner's.
+        for an unknown set, one without a limit for such a pad, or an unknown limit of the owner's.
     """
     rules = default_set(pad.formula) if rules is None else rules
     if rules not in limit_sets():
@@ -111,6 +111,12 @@ def check_limits(
         for row in published["limit"]
         if row["pads"] in ("all", pads) and row["name"] not in own
     ]
+    if not checks and not own:
+        raise PadError(
+            "limits",
+            f'the set "{rules}" has no limit for a {pads} pad',
+            f"write one of {', '.join(limit_sets())} that has, or limits of your own",
+        )
     for name, value in own.items():
         load, kind = _OWN[name]
         row = {"name": name, "load": load, "kind": kind, "given": value}

@@ -6,7 +6,7 @@ from dataclasses import dataclass, field
 
 from markupsafe import Markup
 
-from assess.report import cautions, sections, tables, words
+from assess.report import cautions, pads, sections, tables, words
 from assess.report.figures import elevation, history, moments, residuals, utilisation
 from assess.results import GirderAssessment, GirderCalibration, GirderView, ReportView
 
@@ -40,6 +40,7 @@ class GirderPage:
     reaction_heads: list[str] = field(default_factory=list)
     reactions: list[list[str]] = field(default_factory=list)
     pad_checks: list[list[str]] = field(default_factory=list)
+    pad_limits: list[list[str]] = field(default_factory=list)
     histories: list[Figure] = field(default_factory=list)
     histories_caption: str = ""
     pad_trends: list[list[str]] = field(default_factory=list)
@@ -59,9 +60,10 @@ def build(view: ReportView) -> dict[str, object]:
         "next_visit": _next_visit(view),
         "girders": [_girder(view, name, f"g{i + 1}") for i, name in enumerate(_names(view))],
         "sections": sections.pages(view.sections),
-        "pad_check_heads": tables.PAD_CHECK_HEADS,
         "factors": view.factors,
         "section_heads": list(sections.HEADS),
+        "pad_heads": list(pads.HEADS),
+        "pad_limit_heads": list(pads.LIMIT_HEADS),
         "visits": [
             [
                 words.date(day),
@@ -137,7 +139,8 @@ def _girder(view: ReportView, name: str, key: str) -> GirderPage:
         sections=[] if assessed is None else tables.section_rows(assessed, key, stands_on),
         reaction_heads=tables.reaction_heads(stands_on),
         reactions=[] if assessed is None else tables.reaction_rows(assessed.reactions),
-        pad_checks=[] if assessed is None else tables.pad_check_rows(assessed.pads),
+        pad_checks=[] if assessed is None else pads.rows(assessed.pads),
+        pad_limits=[] if assessed is None else pads.limit_rows(assessed.pads),
         histories=[] if drawn is None else _histories(view, drawn, key),
         histories_caption="" if drawn is None else _histories_caption(drawn),
         pad_trends=[] if view.trend is None else tables.pad_trend_rows(view.trend, name),

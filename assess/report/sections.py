@@ -58,7 +58,9 @@ def _numbers(view: SectionView) -> str:
         f"{name} {words.number(scale * value, 4)}{_NB}{unit}" for name, value, scale, unit in values if value
     )
     how = "plastic moments, as the bridge file says" if view.method == "plastic" else "elastic moments"
-    return f"With the losses: {told}. Capacities from plates: {how}, before the factor on resistance."
+    when = "With the losses" if view.losses else "As built"
+    holes = "; moduli net of holes" if view.holes else ""
+    return f"{when}: {told}{holes}. Capacities from plates: {how}, before the factor on resistance."
 
 
 def _row(one: CapacityShown) -> list[str]:

@@ -14,8 +14,6 @@ from assess.results import (
     CaseResult,
     GirderAssessment,
     GirderCalibration,
-    PadCheck,
-    PadLimit,
     ReactionResult,
     ReadingResult,
     SectionResult,
@@ -75,17 +73,6 @@ def reaction_heads(stands_on: str) -> list[str]:
         "Live, least, kN",
         "Contact",
     ]
-
-
-PAD_CHECK_HEADS = [
-    "Pad",
-    "Permanent, MPa",
-    "Total, MPa",
-    "Least, MPa",
-    "Strain, total",
-    "Creep in 25 years",
-    "Limits",
-]
 
 
 def section_rows(girder: GirderAssessment, key: str, stands_on: str) -> list[SectionRow]:
@@ -198,29 +185,6 @@ def _contact(reaction: ReactionResult) -> str:
     if least < 0.0:
         return f"uplift when live load lifts: least {words.number(least)} kN"
     return f"stays in contact: least {words.number(least)} kN"
-
-
-def pad_check_rows(pads: list[PadCheck]) -> list[list[str]]:
-    """Return the pads that give their geometry: pressures in MPa, strain, creep, and every limit beside its value."""
-    return [
-        [
-            pad.support,
-            words.number(pad.permanent_pressure_MPa),
-            words.number(pad.total_pressure_MPa),
-            words.number(pad.minimum_pressure_MPa),
-            f"{words.number(100.0 * pad.total_strain)} %",
-            words.quantity(
-                pad.creep_compression_25_years_mm, "mm", "hardness not known or outside the table"
-            ),
-            "; ".join(_limit(limit) for limit in pad.limits) or words.not_determined("no limit given"),
-        ]
-        for pad in pads
-    ]
-
-
-def _limit(limit: PadLimit) -> str:
-    unit = f"\N{NO-BREAK SPACE}{limit.unit}" if limit.unit else ""
-    return f"{limit.name} {words.number(limit.value)} of {words.number(limit.limit)}{unit}: {limit.status}"
 
 
 def pad_rows(supports: list[SupportView], calibration: GirderCalibration | None) -> list[list[str]]:

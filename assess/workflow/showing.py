@@ -11,6 +11,7 @@ from assess.shown import (
     BridgeView,
     CapacityShown,
     GirderShown,
+    PadShown,
     PlateShown,
     SectionShown,
     SectionView,
@@ -21,7 +22,7 @@ from assess.workflow.building import GirderModel
 from assess.workflow.combination import factors_in_words, temperature_in_words
 from assess.workflow.live_loads import models_in_words
 from assess.workflow.sections import EFFECTS, SectionState, section_on
-from db.documents import BridgeDoc, GirderDoc
+from db.documents import BridgeDoc
 from db.store import open_record
 
 MM = 1e3
@@ -37,13 +38,15 @@ def show_bridge(url: str, bridge: str, *, visit: dt.date | None = None) -> Bridg
 def bridge_view(document: BridgeDoc, visit: dt.date | None = None) -> BridgeView:
     """What a bridge file comes to, its sections with the losses measured up to a day (None: all)."""
     views = section_views(document, visit)
+    models = [GirderModel(document, girder) for girder in document.girders]
     return BridgeView(
         shown=BridgeShown(
             bridge=document.id,
             sections=[view.shown for view in views],
-            girders=[_girder(document, girder) for girder in document.girders],
+            girders=[_girder(model) for model in models],
         ),
         sections=views,
+        pads=[pad for model in models for pad in _pads(model)],
         as_of=visit,
         models=models_in_words(document),
         temperature=temperature_in_words(document),
@@ -57,8 +60,8 @@ def section_views(bridge: BridgeDoc, day: dt.date | None) -> list[SectionView]:
     return [_section(section_on(section, day)) for section in bridge.sections]
 
 
-def _girder(bridge: BridgeDoc, girder: GirderDoc) -> GirderShown:
-    model = GirderModel(bridge, girder)
+def _girder(model: GirderModel) -> GirderShown:
+    girder = model.doc
     nominal = dict(zip(model.pad_ids, np.exp(model.nominal), strict=True))
     spread = dict(zip(model.pad_ids, np.sqrt(np.expm1(model.prior.sd**2)), strict=True))
     rows = [
@@ -72,6 +75,25 @@ def _girder(bridge: BridgeDoc, girder: GirderDoc) -> GirderShown:
         for support, x in zip(girder.supports, girder.support_positions, strict=True)
     ]
     return GirderShown(girder=girder.id, supports=rows)
+
+
+def _pads(model: GirderModel) -> list[PadShown]:
+    pairs = zip((model.doc.supports[i] for i in model.pads), model.pad_models, strict=True)
+    return [
+        PadShown(
+            girder=model.doc.id,
+            support=support.id,
+            nominal_from="geometry" if support.stiffness is None else "stiffness",
+            formula=pad.formula,
+            shape_factor=pad.shape_factor,
+            rubber_mm=MM * pad.geometry.rubber_thickness,
+            layer_modulus_MPa=1e-3 * pad.layer_modulus,
+            geometry_kN_per_m=pad.stiffness,
+            batch=None if support.pad is None else support.pad.batch,
+        )
+        for support, pad in pairs
+        if pad is not None
+    ]
 
 
 def _first(given: float | None, found: float | None) -> float | None:

@@ -18,10 +18,6 @@ from assess.workflow.cautions import section_name
 from assess.workflow.drivers import Driver
 
 _TELLS = 0.005  # of a utilisation: what a support must add to be named
-_OF_NOMINAL = (
-    ": the nominal stiffness of the pads at",
-    ": pads of one batch share a prior",
-)  # change no sentence alone
 _ORDER = {"over": 0, "watch": 1, "within": 2, "unknown": 3}
 
 
@@ -121,7 +117,11 @@ def _rate(pad: PadTrend) -> str:
 
 
 def cautions_beside(girder: str, said: list[str]) -> list[str]:
-    """Cautions that change a girder's first sentence: its own that speak of doubt in the numbers."""
+    """Cautions that change a girder's first sentence: its own that speak of doubt in the numbers.
+
+    What is believed of pads before anything is read stays with the other cautions: where it still tells a pad, the
+    fit says so.
+    """
     words = (
         "suspect",
         "misfit",
@@ -133,9 +133,18 @@ def cautions_beside(girder: str, said: list[str]) -> list[str]:
         "was due",
         "the seat at",
         "seat level",
+        "over its limit",
+        "likely wrong",
     )
-    said = [one for one in said if not any(mark in one for mark in _OF_NOMINAL)]
-    return [one for one in said if one.startswith(f"{girder}:") and any(word in one for word in words)] + [
+    before = (
+        "computed from geometry by",
+        "share a prior",
+        "its geometry serves the checks",
+        "creep not determined",
+    )
+    own = [one for one in said if one.startswith(f"{girder}:") and any(word in one for word in words)]
+    kept = [one for one in own if "likely wrong" in one or not any(word in one for word in before)]
+    return kept + [
         one
         for one in said
         if "was due by" in one or ("two visits only" in one and one.startswith(f"{girder}:"))

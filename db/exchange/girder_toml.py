@@ -16,7 +16,8 @@ from db.documents import (
 from db.errors import BedstoneError
 from db.exchange.fields import Fields, refuse_duplicates
 from db.exchange.hinges_toml import hinges, refuse_mechanism
-from db.exchange.pad_toml import PAD, pad
+from db.exchange.pad_toml import PAD, pad, refuse_idle
+from db.pad_doc import PadDoc
 from db.wording import shown
 
 GIRDER = "id live_share span support permanent"
@@ -120,7 +121,7 @@ def _support(fields: Fields) -> SupportDoc:
                 remedy = 'leave it out, or write kind = "pad"'
                 raise fields.error(field, "a pin holds its level and has none", remedy)
         return SupportDoc(id=name, kind=kind, rotation=rotation, hold_down=hold_down)
-    geometry = pad(fields.subtable("pad", PAD, "its geometry")) if fields.has("pad") else None
+    geometry = _geometry(fields)
     by_geometry = geometry is not None and not fields.has("stiffness")
     return SupportDoc(
         id=name,
@@ -132,6 +133,15 @@ def _support(fields: Fields) -> SupportDoc:
         temperature_coefficient=_coefficient(fields),
         hold_down=hold_down,
     )
+
+
+def _geometry(support: Fields) -> PadDoc | None:
+    if not support.has("pad"):
+        return None
+    fields = support.subtable("pad", PAD, "its geometry")
+    made = pad(fields)
+    refuse_idle(fields, support)
+    return made
 
 
 def _variation(fields: Fields) -> float:

@@ -41,6 +41,9 @@ def pad(fields: Fields) -> PadDoc:
     _refuse_thick(fields, sides, side_cover, thickness, cover)
     plate, height = (fields.optional_positive(name, "length") for name in ("plate_thickness", "height"))
     rubber = layers * thickness + 2.0 * cover
+    if plate is not None and height is None:
+        problem = "it checks the layers against the height, and there is none"
+        raise fields.error("plate_thickness", problem, 'add the height of the whole pad, for example "72 mm"')
     _refuse_height(fields, shape, layers, rubber, plate, height)
     own, least = _own_limits(fields)
     return PadDoc(
@@ -226,4 +229,25 @@ def _own_limits(fields: Fields) -> tuple[tuple[tuple[str, float], ...], float | 
         value = table.optional_positive(name, dimension, example=example)
         if value is not None:
             own.append((name.replace("_", " "), value))
+    if table.has("least_permanent_pressure") and fields.flag("fixed"):
+        problem = "a pad that is fixed needs none"
+        raise table.error("least_permanent_pressure", problem, "leave it out, or fixed = true")
     return tuple(own), table.optional_positive("least_permanent_pressure", "stress", example="3 MPa")
+
+
+def refuse_idle(pad_fields: Fields, support: Fields) -> None:
+    """Refuse fields of a pad that others of its support leave without effect.
+
+    Raises
+    ------
+    BedstoneError
+        For the first of them.
+    """
+    for name in ("shear_modulus_tolerance", "height_tolerance"):
+        own = "stiffness_cv" if support.has("stiffness_cv") else "stiffness"
+        if pad_fields.has(name) and support.has(own):
+            problem = f"the doubt of this pad is that of its {own}, and not that of its geometry"
+            raise pad_fields.error(name, problem, f"leave it out, or leave {own} out")
+    if pad_fields.has("compound") and support.has("temperature_coefficient"):
+        problem = "the support has its own temperature_coefficient"
+        raise pad_fields.error("compound", problem, "leave out the one or the other")

@@ -5,12 +5,14 @@ The limits are common practice, no source: they are set so that a slip of a unit
 
 from __future__ import annotations
 
-from collections import defaultdict
+import math
+from collections import Counter, defaultdict
 
-from db.documents import BridgeDoc, ReadingDoc, VisitDoc
+from db.documents import BridgeDoc, ReadingDoc, SectionDoc, VisitDoc
 
 PAD_STIFFNESS = (1e4, 1e7)  # kN/m
 AXLE_LOAD = (5.0, 500.0)  # kN
+LEVEL_SLACK = 5e-4  # m: levels on drawings are written in whole or half millimetres
 EFFECT_FACTOR = (0.9, 2.5)
 MOST_DYNAMIC = 1.0
 MOST_COMPRESSION = 0.020  # m, under a test load
@@ -20,7 +22,48 @@ RISE = 3.29  # standard deviations by which a seat has to stand above its datum
 
 def bridge_queries(bridge: BridgeDoc) -> list[str]:
     """What to look at again in a bridge file."""
-    return [*_pads(bridge), *_vehicles(bridge), *_live(bridge), *_factors(bridge)]
+    return [
+        *_sections(bridge),
+        *_pads(bridge),
+        *_batches(bridge),
+        *_vehicles(bridge),
+        *_live(bridge),
+        *_factors(bridge),
+    ]
+
+
+def _sections(bridge: BridgeDoc) -> list[str]:
+    return [
+        f'section "{s.id}": {one}'
+        for s in bridge.sections
+        for one in (*_clear_of_each_other(s), *_cut_into(s))
+    ]
+
+
+def _clear_of_each_other(section: SectionDoc) -> list[str]:
+    """Plates that touch nothing of the rest."""
+    said, reached = [], -math.inf
+    for plate in sorted(section.plates, key=lambda p: p.bottom):
+        if reached != -math.inf and plate.bottom > reached + LEVEL_SLACK:
+            gap = f"{1e3 * (plate.bottom - reached):.6g} mm"
+            said.append(f'plate "{plate.name}" stands {gap} clear of the plates below it; check its bottom')
+        reached = max(reached, plate.bottom + plate.height)
+    return said
+
+
+def _cut_into(section: SectionDoc) -> list[str]:
+    """Upright plates that end inside the thickness of a flat one."""
+    flat = [plate for plate in section.plates if plate.height <= plate.width]
+    return [
+        f'plate "{one.name}" ends within the thickness of "{other.name}", where both are counted; check its bottom'
+        for one in section.plates
+        if one.height > one.width
+        for other in flat
+        if any(
+            other.bottom + LEVEL_SLACK < end < other.bottom + other.height - LEVEL_SLACK
+            for end in (one.bottom, one.bottom + one.height)
+        )
+    ]
 
 
 def _pads(bridge: BridgeDoc) -> list[str]:
@@ -31,6 +74,22 @@ def _pads(bridge: BridgeDoc) -> list[str]:
         for girder in bridge.girders
         for support in girder.supports
         if support.stiffness is not None and not low <= support.stiffness <= high
+    ]
+
+
+def _batches(bridge: BridgeDoc) -> list[str]:
+    pads = [
+        (g.id, s.id, s.pad.batch)
+        for g in bridge.girders
+        for s in g.supports
+        if s.pad is not None and s.pad.batch
+    ]
+    count = Counter(batch for _, _, batch in pads)
+    return [
+        f'girder "{girder}", support "{support}": batch "{batch}" has this one pad, so that there is nothing to share; '
+        "check the name"
+        for girder, support, batch in pads
+        if count[batch] == 1
     ]
 
 

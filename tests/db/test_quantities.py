@@ -80,6 +80,8 @@ GOOD = [
     ("0.5 %/°C", "temperature coefficient", 0.005),
     ("0.9 percent/degF", "temperature coefficient", 0.9e-2 * 1.8),
     ("0.005 1/K", "temperature coefficient", 0.005),
+    ("1.2e-5 / K", "temperature coefficient", 1.2e-5),  # what the error about an expansion says to write
+    ("1.2e-5/K", "temperature coefficient", 1.2e-5),
     ("0.005 K^-1", "temperature coefficient", 0.005),
     ("24 months", "duration", 2.0),
     ("2 years", "duration", 2.0),

@@ -1,270 +1,323 @@
-"""Pads from geometry against published numbers (CHECKS: laminated bearings, rubber creep).
+"""Elastomeric pads against published formulas, tables and one worked example.
 
-EN 1337-3:2005, AASHTO LRFD 14.7, the Gent and Lindley constants and the pressure solution are from memory where they
-are marked so, to be confirmed against the texts; "derived" values were recomputed by an independent method.
+Where a clause is "from memory" it was not read in a copy of the text and is to be confirmed against it. "Derived"
+values have no printed number: they are the published formula worked out by hand, apart from this code. Tolerances are
+half of the last digit written, unless a test says why not.
 """
 
 from __future__ import annotations
 
 import math
 
-import numpy as np
 import pytest
-from scipy import integrate, special
-from scipy.sparse import diags, eye, kron
-from scipy.sparse.linalg import spsolve
 
 from assess.pad import (
+    LimitCheck,
     Pad,
     PadGeometry,
     PadLoads,
     check_limits,
+    cold_curve,
+    compounds,
     creep_per_decade,
     creep_share,
     decades,
     disc_modulus,
     elastomer,
-    rectangle_modulus,
+    least_permanent_pressure,
+    limit_sets,
     strip_modulus,
 )
 
-KSI = 6894.757293168361  # kN/m2
-INCH = 0.0254
-KIP = 4.4482216152605
-MPA = 1000.0
+INCH, KIP, KSI = 0.0254, 4.4482216152605, 6894.757293168361  # m, kN, kN/m2: exact by definition
+MPA = 1e3
 
 
-def laminated(
-    formula: str, a_mm: float, b_mm: float, t_mm: float, n: int, *, cover_mm: float = 4.0, shear: float = 0.9
-) -> Pad:
-    """Steel plates some way inside every edge, all layers taken as inner ones."""
+def square(shape_factor: float, formula: str, **rubber: float) -> Pad:
+    """One layer of 10 mm with the shape factor wanted."""
+    side = 4.0 * 0.010 * shape_factor
+    geometry = PadGeometry(length=side, width=side, layer_thickness=0.010)
+    return Pad(geometry=geometry, rubber=elastomer(formula, **rubber), formula=formula)
+
+
+def by_name(checks: list[LimitCheck]) -> dict[str, LimitCheck]:
+    return {check.name: check for check in checks}
+
+
+# EN 1337-3 -----------------------------------------------------------------------------------
+
+EN_BEARINGS = {  # a, b, ti mm; layers; F kN; S; v mm; k kN/mm
+    "300 x 400": (300, 400, 8, 5, 1000.0, 10.4591, 0.8846, 1130.43),
+    "400 x 500": (400, 500, 11, 4, 2000.0, 9.9169, 1.2592, 1588.36),
+}
+
+
+def en_bearing(a: float, b: float, ti: float, layers: int) -> Pad:
     geometry = PadGeometry(
-        length=a_mm / 1e3,
-        width=b_mm / 1e3,
-        side_cover=cover_mm / 1e3,
-        layers=n,
-        layer_thickness=t_mm / 1e3,
+        length=b / 1e3, width=a / 1e3, side_cover=0.004, layers=layers, layer_thickness=ti / 1e3
     )
-    return Pad(geometry=geometry, rubber=elastomer(formula, shear_modulus=shear * MPA), formula=formula)
+    rubber = elastomer("en1337-3", shear_modulus=0.9 * MPA)
+    return Pad(geometry=geometry, rubber=rubber, formula="en1337-3")
 
 
-def layer(formula: str, s: float, **rubber: float) -> float:
-    """Modulus of a square layer of a shape factor, MPa."""
-    side = 0.4
-    geometry = PadGeometry(
-        length=side, width=side, side_cover=0.0, layers=1, layer_thickness=side / (4.0 * s)
-    )
-    given = {name: value * MPA if name.endswith("modulus") else value for name, value in rubber.items()}
-    return Pad(geometry=geometry, rubber=elastomer(formula, **given), formula=formula).layer_modulus / MPA
+@pytest.mark.parametrize("case", EN_BEARINGS.values(), ids=EN_BEARINGS)
+def test_two_bearings_of_en_1337_3(case: tuple[float, ...]):
+    """EN 1337-3:2005, v = sum of F ti / A1 (1 / (5 Gd S2) + 1 / Eb), from memory; numbers derived.
+
+    Gd 0.9 MPa, Eb 2000 MPa, plates 4 mm inside every edge, all layers inner ones.
+    """
+    a, b, ti, layers, force, s, v, k = case
+    pad = en_bearing(a, b, ti, int(layers))
+    assert pad.shape_factor == pytest.approx(s, abs=5e-5)
+    assert 1e3 * force / pad.stiffness == pytest.approx(v, abs=5e-5)
+    assert pad.stiffness / 1e3 == pytest.approx(k, abs=5e-3)
 
 
-# EN 1337-3 ----------------------------------------------------------------------------------------
-
-
-@pytest.mark.parametrize(
-    ("a", "b", "t", "n", "force", "shape", "shortening", "stiffness"),
-    [
-        (300.0, 400.0, 8.0, 5, 1000.0, 10.4591, 0.8846, 1130.43),
-        (400.0, 500.0, 11.0, 4, 2000.0, 9.9169, 1.2592, 1588.36),
-    ],
-)
-def test_en_1337_3_compresses_two_bearings_as_derived(
-    a: float, b: float, t: float, n: int, force: float, shape: float, shortening: float, stiffness: float
-) -> None:
-    """EN 1337-3:2005, v = sum F t / A1 (1 / (5 G S^2) + 1 / Eb), Eb 2000 MPa: formula from memory, values derived."""
-    pad = laminated("en1337-3", a, b, t, n)
-    assert pad.shape_factor == pytest.approx(shape, abs=5e-5)
-    assert 1e3 * force / pad.stiffness == pytest.approx(shortening, abs=5e-5)
-    assert pad.stiffness / 1e3 == pytest.approx(stiffness, abs=5e-3)
-
-
-def test_en_1337_3_compression_strain_of_the_first_bearing() -> None:
-    """EN 1337-3:2005, eps_c = 1.5 F / (G A S), no shear: 1.39215; from memory, derived."""
-    pad = laminated("en1337-3", 300.0, 400.0, 8.0, 5)
+def test_shear_strain_by_compression_of_en_1337_3():
+    """EN 1337-3:2005, 1.5 F / (Gd Ar S), limit 7 for all strains together; from memory; number derived."""
     loads = PadLoads(permanent=0.0, total=0.0, minimum=0.0, factored=1000.0)
-    strain = next(c for c in check_limits(pad, loads) if c.kind == "shear strain")
+    strain = by_name(check_limits(en_bearing(300, 400, 8, 5), loads))["compression shear strain"]
     assert strain.value == pytest.approx(1.39215, abs=5e-6)
     assert strain.limit == 7.0
 
 
-def test_en_1337_3_thin_outer_layers_are_left_out_and_thick_ones_count_more() -> None:
-    """EN 1337-3:2005: te is 1.4 times the thickness of an outer layer of 3 mm and more; from memory."""
-    bare = laminated("en1337-3", 300.0, 400.0, 8.0, 5)
-
-    def covered(cover: float) -> Pad:
-        geometry = PadGeometry(
-            length=0.3, width=0.4, side_cover=0.004, layers=5, layer_thickness=0.008, top_bottom_cover=cover
-        )
-        return Pad(geometry=geometry, rubber=bare.rubber, formula="en1337-3")
-
-    assert covered(0.0025).stiffness == bare.stiffness
-    plan = bare.plan
-    shape = plan.shape_factor(1.4 * 0.004)
-    outer = 2.0 * 0.004 * (1.0 / (5.0 * 900.0 * shape**2) + 1.0 / 2e6)
-    assert plan.area / covered(0.004).stiffness == pytest.approx(plan.area / bare.stiffness + outer)
+def test_stability_pressure_of_en_1337_3():
+    """EN 1337-3:2005, F / Ar < 2 Gd a' S / (3 Te), from memory; 2 x 0.9 x 292 x 10.4591 / (3 x 40) = 45.811 MPa."""
+    loads = PadLoads(permanent=0.0, total=0.0, minimum=0.0, factored=1000.0)
+    stability = by_name(check_limits(en_bearing(300, 400, 8, 5), loads))["stability pressure"]
+    assert stability.value / MPA == pytest.approx(1000.0 / 114.464, rel=1e-12)
+    assert stability.limit / MPA == pytest.approx(45.811, abs=5e-4)
 
 
-# AASHTO -------------------------------------------------------------------------------------------
+@pytest.mark.parametrize(("cover", "counts"), [(2.5, False), (3.0, True)])
+def test_outer_layers_of_en_1337_3_count_from_3_mm_on_with_1_4_times_their_thickness(
+    cover: float, counts: bool
+):
+    """EN 1337-3:2005, effective thickness te = 1.4 ti of outer layers of 3 mm and more; from memory."""
+    inner = en_bearing(300, 400, 8, 5)
+    geometry = PadGeometry(
+        length=0.4,
+        width=0.3,
+        side_cover=0.004,
+        layers=5,
+        layer_thickness=0.008,
+        top_bottom_cover=cover / 1e3,
+    )
+    pad = Pad(geometry=geometry, rubber=inner.rubber, formula="en1337-3")
+    give = 1e3 / pad.stiffness - 1e3 / inner.stiffness  # mm under 1 MN, in m per MN
+    s = 114464.0 / (2.0 * 684.0 * 1.4 * cover)
+    by_hand = 2.0 * cover / 114464.0 * (1.0 / (5.0 * 0.9 * s * s) + 1.0 / 2000.0) * 1e3
+    assert give == pytest.approx(by_hand if counts else 0.0, rel=1e-9, abs=1e-12)
 
 
-def test_aashto_reckons_4_8_g_s_squared_without_a_bulk_term() -> None:
-    """AASHTO LRFD 14.7.6 commentary, eps = sigma / (4.8 G S^2), from memory: 432 MPa at S 10, G 0.9 MPa (derived)."""
-    assert layer("aashto-lrfd", 10.0, shear_modulus=0.9) == pytest.approx(432.0)
+@pytest.mark.parametrize(("hardness", "g"), [(50, 0.7), (60, 0.9), (70, 1.15)])
+def test_nominal_shear_moduli_of_en_1337_3(hardness: float, g: float):
+    """EN 1337-3:2005, nominal classes of G; their hardnesses are those of earlier drafts; from memory."""
+    rubber = elastomer("en1337-3", hardness=hardness)
+    assert rubber.shear == pytest.approx(g * MPA)
+    assert rubber.bulk == pytest.approx(2000.0 * MPA)
+
+
+# AASHTO LRFD and the manual of a state -----------------------------------------------------------
+
+
+def test_compressive_strain_of_aashto_lrfd():
+    """AASHTO LRFD 14.7.5 (commentary) and 14.7.6, strain = stress / (4.8 G S2), from memory: 432 MPa at G 0.9, S 10."""
+    pad = square(10.0, "aashto-lrfd", shear_modulus=0.9 * MPA)
+    assert pad.layer_modulus / MPA == pytest.approx(432.0)
+    assert pad.layer_strain(pad.plan.area * 4.32 * MPA) == pytest.approx(0.01)
 
 
 @pytest.mark.parametrize(
     ("hardness", "low", "high"), [(50, 0.095, 0.130), (60, 0.130, 0.200), (70, 0.200, 0.300)]
 )
-def test_aashto_shear_moduli_by_hardness(hardness: float, low: float, high: float) -> None:
-    """AASHTO LRFD 14.7.6 table, G at 73 degF, from memory; the middle of the range, half of it as tolerance."""
+def test_shear_moduli_by_hardness_of_aashto_lrfd(hardness: float, low: float, high: float):
+    """AASHTO LRFD 14.7.6, table of G at 73 degF by hardness, ksi; from memory. The tolerance spans the range."""
     rubber = elastomer("aashto-lrfd", hardness=hardness)
-    assert rubber.shear == pytest.approx((low + high) / 2.0 * KSI)
-    assert rubber.shear_tolerance == pytest.approx((high - low) / 2.0 * KSI)
+    assert (rubber.shear - rubber.shear_tolerance) / KSI == pytest.approx(low)
+    assert (rubber.shear + rubber.shear_tolerance) / KSI == pytest.approx(high)
 
 
-def girder_example(shear_ksi: float) -> Pad:
-    """FHWA LRFD steel girder example, step 6 (from memory): 14 x 15 in, 8 layers of 0.375 in, covers 0.25 in."""
+def test_the_shear_modulus_of_60_durometer_lies_in_the_range_of_a_published_design_example():
+    """FHWA prestressed concrete design example, step 6, seen: 60 +- 5 durometer, G about 80 to 180 psi."""
+    shear = elastomer("aashto-lrfd", hardness=60).shear
+    assert 0.080 < shear / KSI < 0.180
+
+
+@pytest.mark.parametrize(("hardness", "share"), [(50, 0.25), (60, 0.35), (70, 0.45)])
+def test_creep_of_aashto_lrfd_after_25_years(hardness: float, share: float):
+    """AASHTO LRFD 14.7.6, creep deflection over initial deflection at 25 years by hardness; from memory."""
+    assert creep_share(hardness) == pytest.approx(share)
+
+
+def test_limits_of_method_a_of_aashto_lrfd():
+    """AASHTO LRFD 14.7.6, steel-reinforced: 1.25 G S and 1.25 ksi, strain 0.09, live 1/8 in; from memory."""
+    loads = PadLoads(permanent=100.0, total=180.0, minimum=100.0, factored=250.0)
+    weak = square(5.0, "aashto-lrfd", shear_modulus=0.1 * KSI)
+    strong = square(12.0, "aashto-lrfd", shear_modulus=0.15 * KSI)
+    found = by_name(check_limits(weak, loads))
+    assert found["total pressure"].limit / KSI == pytest.approx(1.25 * 0.1 * 5.0)
+    assert found["total strain"].limit == 0.09
+    assert found["live compression"].limit == pytest.approx(INCH / 8.0)
+    assert found["live compression"].value == pytest.approx(80.0 / weak.stiffness)
+    assert by_name(check_limits(strong, loads))["total pressure"].limit / KSI == pytest.approx(1.25)
+
+
+@pytest.mark.parametrize(
+    ("name", "load", "factor", "cap"),
+    [("permanent pressure", "permanent", 1.2, 1.20), ("total pressure", "total", 1.5, 1.50)],
+)
+def test_limits_of_a_bridge_design_manual_of_texas(name: str, load: str, factor: float, cap: float):
+    """TxDOT Bridge Design Manual (LRFD), seen: dead load 1.20 ksi and 1.2 G S, total 1.50 ksi and 1.5 G S."""
+    loads = PadLoads(permanent=100.0, total=180.0, minimum=100.0, factored=250.0)
+    weak = square(6.0, "aashto-lrfd", shear_modulus=0.100 * KSI)
+    strong = square(12.0, "aashto-lrfd", shear_modulus=0.175 * KSI)  # G at 0 degF of the same manual
+    found = by_name(check_limits(weak, loads, rules="texas"))[name]
+    assert found.load == load
+    assert found.limit / KSI == pytest.approx(factor * 0.1 * 6.0)
+    assert by_name(check_limits(strong, loads, rules="texas"))[name].limit / KSI == pytest.approx(cap)
+
+
+# Gent and Lindley -----------------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize(
+    ("hardness", "e0", "k", "bulk"), [(50, 2.20, 0.73, 1030), (60, 4.45, 0.57, 1150), (70, 7.35, 0.53, 1270)]
+)
+def test_elastic_constants_of_lindley_by_hardness(hardness: float, e0: float, k: float, bulk: float):
+    """Lindley, Engineering Design with Natural Rubber, table of elastic constants, MPa; from memory."""
+    rubber = elastomer("gent-lindley", hardness=hardness)
+    assert (rubber.youngs / MPA, rubber.k, rubber.bulk / MPA) == pytest.approx((e0, k, bulk))
+
+
+@pytest.mark.parametrize(
+    ("hardness", "s", "without", "with_bulk"),
+    [(50, 6.0, 117.83, 105.74), (60, 6.0, 187.08, 160.90), (60, 10.0, 511.75, 354.15)],
+)
+def test_compression_moduli_of_gent_and_lindley(hardness: float, s: float, without: float, with_bulk: float):
+    """Ea = E (1 + 2 k S2), 1 / E' = 1 / Ea + 1 / B, MPa; form seen in Strojniski vestnik 60 (2014) p. 506; derived."""
+    assert square(s, "gent-lindley", hardness=hardness).layer_modulus / MPA == pytest.approx(
+        with_bulk, abs=5e-3
+    )
+    stiff = square(s, "gent-lindley", hardness=hardness, bulk_modulus=math.inf)
+    assert stiff.layer_modulus / MPA == pytest.approx(without, abs=5e-3)
+
+
+# pressure solution ---------------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize(("s", "strip", "disc"), [(10.0, 296.18, 398.17), (20.0, 775.91, 903.99)])
+def test_strip_and_disc_of_the_pressure_solution(s: float, strip: float, disc: float):
+    """Chalhoub and Kelly 1990, 1991, closed forms with K, from memory; MPa, G 0.9, K 2000; derived."""
+    assert strip_modulus(0.9, 2.0 * s, 1.0, 2000.0) == pytest.approx(strip, abs=5e-3)
+    assert disc_modulus(0.9, 4.0 * s, 1.0, 2000.0) == pytest.approx(disc, abs=5e-3)
+
+
+def test_the_choice_of_formula_spans_half_of_the_stiffness():
+    """G 0.9, K 2000 MPa, S 10: EN 367.35, AASHTO 432; 6 G S2 without bulk 540 (disc), i.e. + 47 %; derived."""
+    en = square(10.0, "en1337-3", shear_modulus=0.9 * MPA).layer_modulus / MPA
+    assert en == pytest.approx(367.35, abs=5e-3)
+    assert square(10.0, "aashto-lrfd", shear_modulus=0.9 * MPA).layer_modulus / MPA == pytest.approx(432.0)
+    incompressible = disc_modulus(0.9, 40.0, 1.0)
+    assert incompressible == pytest.approx(540.0)
+    assert incompressible / en - 1.0 == pytest.approx(0.47, abs=5e-3)
+
+
+# worked example ------------------------------------------------------------------------------------
+
+
+def worked(shear_ksi: float) -> Pad:
+    """FHWA LRFD steel girder design example, step 6 (numbers from memory).
+
+    14 x 15 in, covers of 0.25 in, eight inner layers of 0.375 in, hardness 50.
+    """
     geometry = PadGeometry(
-        length=14.0 * INCH,
-        width=15.0 * INCH,
-        side_cover=0.0,
+        length=15.0 * INCH,
+        width=14.0 * INCH,
         layers=8,
         layer_thickness=0.375 * INCH,
         top_bottom_cover=0.25 * INCH,
     )
-    return Pad(
-        geometry=geometry,
-        rubber=elastomer("aashto-lrfd", shear_modulus=shear_ksi * KSI),
-        formula="aashto-lrfd",
-    )
+    rubber = elastomer("aashto-lrfd", shear_modulus=shear_ksi * KSI)
+    return Pad(geometry=geometry, rubber=rubber, formula="aashto-lrfd")
 
 
-def test_the_girder_examples_shape_factors_and_pressures_recompute() -> None:
-    pad = girder_example(0.095)
-    assert pad.plan.shape_factor(0.25 * INCH) == pytest.approx(14.48, abs=5e-3)
-    assert pad.shape_factor == pytest.approx(9.66, abs=6e-3)
-    assert 188.8 * KIP / pad.plan.area / KSI == pytest.approx(0.899, abs=5e-4)
-    assert 110.4 * KIP / pad.plan.area / KSI == pytest.approx(0.526, abs=5e-4)
-    assert 1.66 * 0.095 * pad.shape_factor == pytest.approx(1.523, abs=1e-3)
-    assert 0.66 * 0.095 * pad.shape_factor == pytest.approx(0.605, abs=1e-3)
+DEAD, LIVE = 78.4 * KIP, 110.4 * KIP
+WORKED_LOADS = PadLoads(permanent=DEAD, total=DEAD + LIVE, minimum=DEAD, factored=1.25 * DEAD + 1.75 * LIVE)
 
 
-@pytest.mark.parametrize(("shear_ksi", "inches"), [(0.130, 0.050), (0.095, 0.068)])
-def test_the_formula_gives_less_than_the_chart_of_the_girder_example(shear_ksi: float, inches: float) -> None:
-    """The chart's strain of 0.04 gives 0.140 in; 4.8 G S^2 gives 0.050 to 0.068 in (derived)."""
-    shortening = 188.8 * KIP / girder_example(shear_ksi).stiffness / INCH
-    assert shortening == pytest.approx(inches, abs=6e-4)
-    assert 2.0 < 0.04 * 3.5 / shortening < 3.0
+def test_shape_factors_of_a_worked_example():
+    pad = worked(0.095)
+    assert pad.shape_factor == pytest.approx(9.66, abs=5e-3)
+    assert pad.plan.shape_factor(pad.geometry.top_bottom_cover) == pytest.approx(14.48, abs=5e-3)
+    assert pad.geometry.rubber_thickness / INCH == pytest.approx(3.5)
 
 
-def test_method_a_limits_the_total_pressure_and_the_strain() -> None:
-    """AASHTO LRFD 14.7.6: sigma <= 1.25 G S and 1.25 ksi, strain <= 0.09, live part <= 1/8 in; from memory."""
-    pad = girder_example(0.095)
-    loads = PadLoads(permanent=78.4 * KIP, total=188.8 * KIP, minimum=78.4 * KIP, factored=0.0)
-    found = {c.name: c for c in check_limits(pad, loads)}
-    assert found["total pressure"].limit / KSI == pytest.approx(min(1.25 * 0.095 * pad.shape_factor, 1.25))
-    assert found["total strain"].limit == 0.09
-    assert found["live compression"].limit == pytest.approx(0.125 * INCH)
-    assert found["total pressure"].value / KSI == pytest.approx(0.899, abs=5e-4)
+def test_stresses_and_limits_of_a_worked_example():
+    """Total 0.899 ksi against 1.66 G S = 1.523; live 0.526 against 0.66 G S = 0.605; G 0.095 (Method B)."""
+    found = by_name(check_limits(worked(0.095), WORKED_LOADS, rules="aashto-lrfd-b-stress"))
+    total, live = found["total pressure"], found["live pressure"]
+    assert (total.value / KSI, total.limit / KSI) == pytest.approx((0.899, 1.523), abs=5e-4)
+    assert (live.value / KSI, live.limit / KSI) == pytest.approx((0.526, 0.605), abs=6e-4)
 
 
-def test_texas_limits_permanent_and_total_pressure() -> None:
-    """TxDOT bridge design manual, seen: permanent <= min(1.20 ksi, 1.2 G S), total <= min(1.50 ksi, 1.5 G S)."""
-    pad = girder_example(0.095)
-    loads = PadLoads(permanent=78.4 * KIP, total=188.8 * KIP, minimum=78.4 * KIP, factored=0.0)
-    found = {c.load: c.limit / KSI for c in check_limits(pad, loads, rules="texas") if c.kind == "pressure"}
-    gs = 0.095 * pad.shape_factor
-    assert found == pytest.approx({"permanent": min(1.20, 1.2 * gs), "total": min(1.50, 1.5 * gs)})
+def test_the_chart_of_a_worked_example_is_softer_than_the_formula():
+    """A strain of 0.04 read from a chart: 0.140 in; the formula: 0.050 (G 0.130) to 0.068 in (G 0.095)."""
+    chart = 0.04 * worked(0.095).geometry.rubber_thickness / INCH
+    assert chart == pytest.approx(0.140)
+    assert chart * (1.0 + creep_share(50.0)) == pytest.approx(0.175)
+    for g, inches in ((0.130, 0.050), (0.095, 0.068)):
+        assert (DEAD + LIVE) / worked(g).stiffness / INCH == pytest.approx(inches, abs=5e-4)
 
 
-# Gent and Lindley ---------------------------------------------------------------------------------
+# creep and cold ------------------------------------------------------------------------------------
 
 
-@pytest.mark.parametrize(
-    ("hardness", "shape", "without", "with_bulk"),
-    [(50, 6.0, 117.83, 105.74), (60, 6.0, 187.08, 160.90), (60, 10.0, 511.75, 354.15)],
-)
-def test_gent_and_lindley_moduli_by_hardness(
-    hardness: float, shape: float, without: float, with_bulk: float
-) -> None:
-    """Ea = E0 (1 + 2 k S^2), 1/E = 1/Ea + 1/B: seen in Strojniski vestnik 60 (2014) p. 506; constants from memory."""
-    rubber = elastomer("gent-lindley", hardness=hardness)
-    apparent = rubber.youngs * (1.0 + 2.0 * rubber.k * shape**2) / MPA
-    assert apparent == pytest.approx(without, abs=6e-3)
-    assert layer("gent-lindley", shape, hardness=hardness) == pytest.approx(with_bulk, abs=6e-3)
+@pytest.mark.parametrize(("hardness", "percent"), [(50, 3.51), (60, 4.92), (70, 6.32)])
+def test_creep_per_decade_that_the_25_year_shares_imply(hardness: float, percent: float):
+    """AASHTO's 25-year shares (from memory) over the 7.1189 decades since the first minute; derived."""
+    assert 100.0 * creep_per_decade(hardness) == pytest.approx(percent, abs=5e-3)
 
 
-# the pressure solution ----------------------------------------------------------------------------
+@pytest.mark.parametrize(("years", "count"), [(25.0, 7.1189), (10.0, 6.7210)])
+def test_decades_since_the_first_minute(years: float, count: float):
+    """Creep = A log10(t / t1), Derham and Lindley, from memory; decades derived, of 365.25 days a year."""
+    assert decades(years) == pytest.approx(count, abs=5e-5)
 
 
-@pytest.mark.parametrize(("shape", "strip", "disc"), [(10.0, 296.18, 398.17), (20.0, 775.91, 903.99)])
-def test_the_pressure_solution_of_strip_and_disc(shape: float, strip: float, disc: float) -> None:
-    """Chalhoub and Kelly 1990/1991, closed forms from memory, G 0.9 and K 2000 MPa; values derived."""
-    t = 0.01
-    assert strip_modulus(0.9, 2.0 * shape * t, t, 2000.0) == pytest.approx(strip, abs=5e-3)
-    assert disc_modulus(0.9, 4.0 * shape * t, t, 2000.0) == pytest.approx(disc, abs=5e-3)
-
-
-def test_a_long_rectangle_tends_to_the_strip_and_a_square_is_stiffer_than_the_disc_of_its_shape_factor() -> (
-    None
-):
-    long = rectangle_modulus(0.9, 40.0, 0.2, 0.01, 2000.0)
-    assert long == pytest.approx(strip_modulus(0.9, 0.2, 0.01, 2000.0), rel=0.01)
-    assert rectangle_modulus(0.9, 0.4, 0.4, 0.01, 2000.0) > disc_modulus(0.9, 0.4, 0.01, 2000.0)
-    # without change of volume a square has about 6.75 G S^2, a disc 6 G S^2 (derived)
-    assert rectangle_modulus(0.9, 0.4, 0.4, 0.01) == pytest.approx(6.748 * 0.9 * 100.0, rel=1e-3)
-    assert disc_modulus(0.9, 0.4, 0.01) == pytest.approx(6.0 * 0.9 * 100.0)
-
-
-def test_the_rectangle_series_solves_the_pressure_equation() -> None:
-    """Against finite differences of the same equation, an independent method."""
-    a, b, t, g, k, cells = 0.4, 0.3, 0.01, 0.9, 2000.0, 160
-    dx, dy = a / cells, b / cells
-    n = cells - 1
-    second = diags([1.0, -2.0, 1.0], [-1, 0, 1], shape=(n, n))
-    operator = (
-        kron(second / dx**2, eye(n)) + kron(eye(n), second / dy**2) - 12.0 * g / (k * t**2) * eye(n * n)
-    )
-    pressure = spsolve(operator.tocsc(), np.full(n * n, -12.0 * g / t**2))
-    mean = pressure.sum() * dx * dy / (a * b)
-    assert rectangle_modulus(g, a, b, t, k) == pytest.approx(mean, rel=5e-4)
-
-
-def test_the_disc_is_the_mean_of_its_pressure() -> None:
-    """p(r) = K (1 - I0(lr) / I0(lR)), integrated numerically."""
-    g, k, d, t = 0.9, 2000.0, 0.4, 0.01
-    rate = math.sqrt(12.0 * g / k) / t
-
-    def ring(r: float) -> float:
-        return k * (1.0 - float(special.i0(rate * r) / special.i0(rate * d / 2.0))) * 2.0 * r / (d / 2.0) ** 2
-
-    total, _ = integrate.quad(ring, 0.0, d / 2.0)
-    assert disc_modulus(g, d, t, k) == pytest.approx(total, rel=1e-9)
-
-
-def test_the_choice_of_formula_spans_47_per_cent() -> None:
-    """G 0.9, K 2000 MPa, S 10: EN 367.35, AASHTO 432, 6 G S^2 540 MPa (derived)."""
-    assert layer("en1337-3", 10.0, shear_modulus=0.9) == pytest.approx(367.35, abs=5e-3)
-    assert layer("aashto-lrfd", 10.0, shear_modulus=0.9) == pytest.approx(432.0)
-    assert disc_modulus(0.9, 4.0 * 10.0 * 0.01, 0.01) == pytest.approx(6.0 * 0.9 * 100.0)
-    assert pytest.approx(1.47, abs=5e-3) == 540.0 / 367.35
-
-
-# creep --------------------------------------------------------------------------------------------
-
-
-@pytest.mark.parametrize(
-    ("hardness", "share", "per_decade"), [(50, 0.25, 0.0351), (60, 0.35, 0.0492), (70, 0.45, 0.0632)]
-)
-def test_creep_after_25_years_by_hardness(hardness: float, share: float, per_decade: float) -> None:
-    """AASHTO LRFD 14.7.5/14.7.6 shares from memory; per decade from a reference of one minute (derived)."""
-    assert creep_share(hardness) == share
-    assert creep_per_decade(hardness) == pytest.approx(per_decade, abs=5e-5)
-
-
-def test_creep_runs_on_log_time_from_its_reference() -> None:
-    """Derham and Lindley's law, from memory: 2 % a decade from 1 min to 10 years is 13.44 % (derived)."""
-    assert decades(25.0) == pytest.approx(7.1189, abs=5e-5)
-    assert decades(10.0) == pytest.approx(6.7210, abs=5e-5)
+def test_two_percent_a_decade_make_thirteen_in_ten_years():
+    """A about 2 % a decade for lightly filled natural rubber of 50 IRHD, from memory: 13.44 % in 10 years; derived."""
     assert 2.0 * decades(10.0) == pytest.approx(13.44, abs=5e-3)
-    assert creep_share(50.0, 10.0) == pytest.approx(0.25 * 6.7210 / 7.1189, rel=1e-4)
+
+
+@pytest.mark.parametrize("pressure", [7.5, 8.37])
+def test_creep_of_a_thousand_hours_lies_within_tests_of_bearings(pressure: float):
+    """Oh and Kim 2017, seen: 0.3 to 1.92 % of the rubber in 1000 h at 7.5 and 8.37 MPa. A range check only."""
+    years = 1000.0 / (24.0 * 365.25)
+    for hardness in (50.0, 60.0, 70.0):
+        pad = square(8.0, "en1337-3", hardness=hardness)
+        strain = pressure * MPA / pad.layer_modulus
+        assert 0.3 <= 100.0 * creep_share(hardness, years) * strain <= 1.92
+
+
+@pytest.mark.parametrize("compound", compounds())
+def test_cold_stiffening_stays_within_what_acceptance_tests_allow(compound: str):
+    """G at -25 degC up to 3 G (EN 1337-3:2005, 7 days), low-temperature stiffness up to 4 times (AASHTO); from memory.
+
+    The curves are for hours of cold and so must lie below both.
+    """
+    curve = cold_curve(compound)
+    assert 1.0 < curve.factor(max(-25.0, curve.temperature[0])) < 3.0
+
+
+def test_every_set_of_limits_names_its_text():
+    assert set(limit_sets()) == {"en1337-3", "aashto-lrfd", "aashto-lrfd-b-stress", "texas"}
+    for rules in limit_sets():
+        checks = check_limits(worked(0.095), WORKED_LOADS, rules=rules)
+        assert checks
+        assert all(check.source.endswith(("the standard", "seen")) for check in checks)
+
+
+def test_the_least_permanent_pressure_is_3_mpa():
+    """Common practice, no source: 3 N/mm2 under permanent load where friction alone holds a pad."""
+    assert least_permanent_pressure() == pytest.approx(3.0 * MPA)

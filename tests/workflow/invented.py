@@ -42,14 +42,15 @@ def write_visit(
     places: Sequence[float] = (6.0, 19.5, 33.0),
     settled: Mapping[str, float] | None = None,
     temperature: str | None = "20 degC",
-    colder: float = 0.0,
+    colder: float | Sequence[float] = 0.0,
     unit: str = "mm",
+    girder: GirderModel | None = None,
 ) -> Path:
     """Write a visit on which the pads have `ratios` of nominal; no seed, no noise. Settlements in mm.
 
-    `colder` is what the cold of the day adds to every ln k.
+    `colder` is what the cold of the day adds to every ln k. The girder is that of the contract's bridge unless given.
     """
-    girder = model()
+    girder = model() if girder is None else girder
     chosen = [LoadStateDoc(id=s, vehicle="ballast wagon", leading_axle_at=STATES[s]) for s in states]
     read = [
         Observation(quantity="compression", state=j, value=0.0, sd=1.0, support=girder.doc.support_index(pad))
@@ -62,7 +63,7 @@ def write_visit(
         for x in places
     ]
     equations = ObservationModel(girder.condensed, girder.pads, [girder.placed(s) for s in chosen], read)
-    true = 1e3 * equations.predict(girder.nominal + np.log(np.array(ratios)) + colder)
+    true = 1e3 * equations.predict(girder.nominal + np.log(np.array(ratios)) + np.asarray(colder))
     rng = np.random.default_rng(seed)
     scale = 1.0 / MM_PER_IN if unit == "in" else 1.0
     rows = [HEADER]
@@ -73,13 +74,18 @@ def write_visit(
         at = "" if o.support >= 0 else f"{o.x:g}"
         state = chosen[o.state].id
         rows.append(
-            f"north,{state},{o.quantity},{support},{at},{noisy * scale:.12g},{sd * scale:.12g},{unit},,"
+            f"{girder.doc.id},{state},{o.quantity},{support},{at},{noisy * scale:.12g},{sd * scale:.12g},{unit},,"
         )
     for support, drop in (settled or {}).items():
-        rows.append(f"north,permanent,settlement,{support},,{drop:g},0.3,mm,,")
+        rows.append(f"{girder.doc.id},permanent,settlement,{support},,{drop:g},0.3,mm,,")
     name = f"{date}-{unit}"
     (folder / f"{name}.csv").write_text("\n".join(rows) + "\n")
-    head = ["format = 1", "[visit]", 'bridge = "quillmere"', f"date = {dt.date.fromisoformat(date)}"]
+    head = [
+        "format = 1",
+        "[visit]",
+        f'bridge = "{girder.bridge.id}"',
+        f"date = {dt.date.fromisoformat(date)}",
+    ]
     if temperature is not None:
         head.append(f'pad_temperature = "{temperature}"')
     head += [f'readings = "{name}.csv"', "[[load_state]]", 'id = "permanent"']

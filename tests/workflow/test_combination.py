@@ -198,6 +198,13 @@ def test_degrees_of_a_difference_are_steps_in_any_scale() -> None:
     assert moment("18 degF") == pytest.approx(moment("10 K"))
 
 
+@pytest.mark.parametrize("written", ["12e-6 / K", "12e-6 1/K", "12 microstrain / K", "0.0012 percent / K"])
+def test_expansion_may_be_written_in_any_of_its_ways(written: str) -> None:
+    warm = f'{WARM}expansion = "{written}"\n'
+    bridge = parsed(OWN + "temperature = 0.9\n", temperature=warm, section='depth = "1 m"')
+    assert bridge.temperature[0].expansion == pytest.approx(12e-6)
+
+
 def test_a_warm_pier_is_a_seat_that_rises(tmp_path: Path) -> None:
     warm = (
         '[[temperature]]\nid = "sun on pier 1"\n'

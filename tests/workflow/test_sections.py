@@ -1,184 +1,265 @@
-"""Sections from plates through files, record, assessment, trend and report; losses as they are measured."""
+"""Sections from plates and their losses, through file, record, workflow, command line and report."""
 
 from __future__ import annotations
 
 import datetime as dt
+from itertools import pairwise
 from pathlib import Path
 from typing import Any
 
+import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from assess import workflow
-from assess.workflow.building import GirderModel
-from db.errors import BedstoneError
+from assess.capacity import rows
+from assess.report import page
+from assess.workflow import assessing, trending
+from assess.workflow.sections import EFFECTS, section_on
 from db.exchange import parse_bridge
+from tests.workflow.ashbeck import added, log, model, text_with
 from tests.workflow.conftest import call
-from tests.workflow.invented import bridge_text, write_visit
+from tests.workflow.invented import BRIDGE
 
-PLATES = """
-yield_strength = "250 MPa"
-  [[section.plate]]
-  name = "top flange"
-  width = "400 mm"
-  height = "30 mm"
-  [[section.plate]]
-  name = "web"
-  width = "12 mm"
-  height = "1150 mm"
-  [[section.plate]]
-  name = "bottom flange"
-  width = "400 mm"
-  height = "30 mm"
-"""
-LOSS = '  [[section.loss]]\n  plate = "{}"\n  faces = {}\n  depth = "{} mm"\n  visit = {}\n'
+STEADY = [0.95, 0.85, 0.60, 0.90]
+MID = 'id = "mid"\nE = "205 GPa"\nyield_strength = "235 MPa"\n'
+WEB_LOSS = '  plate = "web"\n  faces = 2\n  depth = "1 mm"\n  visit = 2022-05-16\n'
 
 
-def text_with(*losses: str, given_: str = "", method: str = "elastic") -> str:
-    """The contract's bridge with its section "mid" from plates; `given_` are lines of resistances beside them."""
-    text = bridge_text()
-    start, end = text.index('I = "0.0118 m^4"'), text.index("[[section]]", text.index('id = "mid"'))
-    how = f'moment_resistance = "{method}"\n'
-    return f"{text[:start]}{given_}{how}{PLATES}{''.join(losses)}\n{text[end:]}"
+@pytest.fixture(autouse=True)
+def few_draws(monkeypatch: pytest.MonkeyPatch) -> None:
+    """Nothing here hangs on the number of draws."""
+    monkeypatch.setattr(trending, "FORECAST_DRAWS", 60)
+    monkeypatch.setattr(rows, "_SAMPLE", 3)
+    monkeypatch.setattr(assessing, "DRAWS", 200)
 
 
-def added(folder: Path, text: str) -> str:
-    folder.mkdir(exist_ok=True)
-    path, url = folder / "own.toml", str(folder / "own.sqlite")
-    path.write_text(text)
+def shown(url: str, *words: str) -> dict[str, dict[str, Any]]:
+    document: Any = call(url, "bridge", "show", "ashbeck", *words, "--json").document
+    return {section["id"]: section for section in document["sections"]}
+
+
+def second_moment(top: float, bottom: float, web: float) -> tuple[float, float]:
+    """I (m4) and centroid (m) of the middle section by hand: flange thicknesses left and web width, mm.
+
+    Flanges wear on both faces alike, so that their middles stay at 1180 and 20 mm.
+    """
+    parts = [(400.0 * top, 1180.0, top), (web * 1120.0, 600.0, 1120.0), (400.0 * bottom, 20.0, bottom)]
+    area = sum(a for a, _, _ in parts)
+    middle = sum(a * y for a, y, _ in parts) / area
+    return 1e-12 * sum(a * (h * h / 12.0 + (y - middle) ** 2) for a, y, h in parts), 1e-3 * middle
+
+
+def test_a_bridge_is_shown_as_built_and_with_its_losses(tmp_path: Path) -> None:
+    url = added(tmp_path)
+    new, worn = shown(url, "--visit", "2017-01-01")["mid"], shown(url)["mid"]
+    assert new["second_moment_m4"] == pytest.approx(second_moment(40.0, 40.0, 14.0)[0])
+    second, middle = second_moment(40.0, 34.0, 12.0)
+    assert worn["second_moment_m4"] == pytest.approx(second)
+    assert worn["elastic_modulus_bottom_m3"] == pytest.approx(second / (middle - 0.003))
+    assert worn["sagging_capacity_kNm"] == pytest.approx(235e3 * second / (middle - 0.003))
+    assert worn["shear_capacity_kN"] == pytest.approx(235e3 * 0.012 * 1.12 / np.sqrt(3.0))
+    assert worn["area_m2"] == pytest.approx(0.4 * 0.074 + 0.012 * 1.12)
+    assert shown(url, "--visit", "2017-01-01")["pier"] == shown(url)["pier"]
+
+
+def test_the_newest_measurement_of_a_plate_stands_in_the_place_of_the_older(tmp_path: Path) -> None:
+    url = added(tmp_path)
+    assert shown(url, "--visit", "2018-05-14")["mid"]["second_moment_m4"] == pytest.approx(
+        second_moment(40, 38, 14)[0]
+    )
+    assert shown(url, "--visit", "2022-05-15")["mid"]["second_moment_m4"] == pytest.approx(
+        second_moment(40, 38, 14)[0]
+    )
+    newest = shown(url, "--visit", "2022-05-16")["mid"]
+    assert newest["second_moment_m4"] == pytest.approx(second_moment(40, 34, 12)[0])
+    assert newest == shown(url)["mid"]
+
+
+def test_the_lower_of_a_given_capacity_and_that_of_the_plates_governs(tmp_path: Path) -> None:
+    url = added(tmp_path)
+    assert shown(url)["pier"]["shear_capacity_kN"] == 1700.0
+    told = call(url, "bridge", "show", "ashbeck").out
+    assert next(line for line in told.splitlines() if line.startswith("shear     kN     1700")).endswith(
+        "as given"
+    )
+    high = added(tmp_path, ('shear_capacity = "1700 kN"', 'shear_capacity = "9000 kN"'))
+    assert shown(high)["pier"]["shear_capacity_kN"] == pytest.approx(235e3 * 0.014 * 1.12 / np.sqrt(3.0))
+
+
+def test_a_bridge_without_plates_is_shown_by_its_numbers(tmp_path: Path) -> None:
+    url = str(tmp_path / "record.sqlite")
     workflow.init_record(url)
-    workflow.add_bridge(url, path)
+    workflow.add_bridge(url, BRIDGE)
+    document: Any = call(url, "bridge", "show", "quillmere", "--json").document
+    mid = document["sections"][0]
+    assert (mid["area_m2"], mid["plastic_modulus_m3"]) == (None, None)
+    assert (mid["second_moment_m4"], mid["sagging_capacity_kNm"]) == (pytest.approx(0.0118), 5100.0)
+    told = call(url, "bridge", "show", "quillmere").out
+    assert told.splitlines()[0] == "Bridge quillmere"
+    row = next(line for line in told.splitlines() if line.startswith("sagging   kN m   5100"))
+    assert row.split() == ["sagging", "kN", "m", "5100", "5100", "no", "plates", "as", "given"]
+    assert "Losses" not in told
+
+
+def utilisations(url: str, *words: str) -> dict[tuple[Any, ...], dict[str, Any]]:
+    document: Any = call(url, "assess", "ashbeck", *words, "--json").document
+    (girder,) = document["girders"]
+    return {(s["effect"], s["span"], s["support"]): s["calibrated"] for s in girder["sections"]}
+
+
+@pytest.fixture(scope="module")
+def visited(tmp_path_factory: pytest.TempPathFactory) -> str:
+    """Visits before the losses, between them, and after."""
+    folder = tmp_path_factory.mktemp("ashbeck")
+    url = added(folder)
+    for date in ("2014-05-12", "2018-05-14", "2024-05-14"):
+        log(url, folder, date, STEADY, seed=None)
+    assert call(url, "calibrate", "ashbeck", "--all").code == 0
     return url
 
 
-def shown(url: str, *words: str) -> dict[str, Any]:
-    document = call(url, "bridge", "show", "quillmere", *words, "--json").document
-    assert list(document) == ["bridge", "sections", "girders"]
-    section: dict[str, Any] = document["sections"][0]
-    return section
+def test_a_visit_is_calibrated_with_the_losses_of_its_day(visited: str) -> None:
+    """The readings are made with them: with the section as built the pads would come out otherwise."""
+    document: Any = call(visited, "calibrate", "ashbeck", "--all", "--json").document
+    for visit in document["visits"]:
+        found = [pad["ratio_to_nominal"] for pad in visit["girders"][0]["pads"]]
+        assert found == pytest.approx(STEADY, rel=0.02), visit["visit"]
+        assert visit["girders"][0]["chi_square"] < 0.1
 
 
-SECTION_KEYS = [
-    "id",
-    "area_m2",
-    "second_moment_m4",
-    "elastic_modulus_top_m3",
-    "elastic_modulus_bottom_m3",
-    "plastic_modulus_m3",
-    "sagging_capacity_kNm",
-    "hogging_capacity_kNm",
-    "shear_capacity_kN",
-]
-
-
-def test_bridge_show_gives_the_numbers_of_the_plates(tmp_path: Path) -> None:
-    """By hand: two flanges 400 x 30 and a web 12 x 1150, yield 250 MPa; shear by the web at yield / sqrt(3)."""
-    section = shown(added(tmp_path, text_with()))
-    assert list(section) == SECTION_KEYS
-    second = 0.012 * 1.15**3 / 12.0 + 2.0 * (0.4 * 0.03**3 / 12.0 + 0.4 * 0.03 * 0.59**2)
-    plastic = 2.0 * 0.4 * 0.03 * 0.59 + 0.012 * 1.15**2 / 4.0
-    assert section["area_m2"] == pytest.approx(2.0 * 0.012 + 0.0138)
-    assert section["second_moment_m4"] == pytest.approx(second)
-    assert section["elastic_modulus_top_m3"] == pytest.approx(second / 0.605)
-    assert section["plastic_modulus_m3"] == pytest.approx(plastic)
-    assert section["sagging_capacity_kNm"] == pytest.approx(250e3 * second / 0.605)
-    assert section["shear_capacity_kN"] == pytest.approx(250e3 / 3**0.5 * 0.0138)
-
-
-def test_a_section_without_plates_has_no_area_and_keeps_its_resistances(tmp_path: Path) -> None:
-    document = call(added(tmp_path, bridge_text()), "bridge", "show", "quillmere", "--json").document
-    section = document["sections"][0]
-    assert section["area_m2"] is None
-    assert section["plastic_modulus_m3"] is None
-    assert section["second_moment_m4"] == pytest.approx(0.0118)
-    assert section["sagging_capacity_kNm"] == pytest.approx(5100.0)
-
-
-def test_the_lower_of_given_and_plates_governs_and_is_said(tmp_path: Path) -> None:
-    plates = shown(added(tmp_path / "plates", text_with()))["sagging_capacity_kNm"]
-    low = added(tmp_path / "low", text_with(given_='sagging_capacity = "3000 kN m"\n'))
-    assert shown(low)["sagging_capacity_kNm"] == pytest.approx(3000.0)
-    assert "as given" in call(low, "bridge", "show", "quillmere").out
-    high = added(tmp_path / "high", text_with(given_='sagging_capacity = "9000 kN m"\n'))
-    assert shown(high)["sagging_capacity_kNm"] == pytest.approx(plates)
-
-
-def test_a_plastic_moment_is_yield_times_the_plastic_modulus(tmp_path: Path) -> None:
-    section = shown(added(tmp_path, text_with(method="plastic")))
-    assert section["sagging_capacity_kNm"] == pytest.approx(250e3 * section["plastic_modulus_m3"])
-
-
-# losses -------------------------------------------------------------------------------------------
-
-
-def test_capacity_and_stiffness_change_on_the_day_a_loss_was_measured(tmp_path: Path) -> None:
-    url = added(tmp_path, text_with(LOSS.format("bottom flange", 1, 4, "2022-06-01")))
-    visits = ("2020-06-01", "2022-06-01")
-    for date in visits:
-        assert call(url, "visit", "log", str(write_visit(tmp_path, date, [1.0, 1.0, 1.0]))).code == 0
-        assert call(url, "calibrate", "quillmere", "--visit", date).code == 0
-    before, after = (
-        call(url, "assess", "quillmere", "--visit", date, "--json").document["girders"][0]["sections"][0]
-        for date in visits
+def test_an_assessment_of_a_day_has_the_losses_of_that_day(visited: str) -> None:
+    before, between, after = (
+        utilisations(visited, "--visit", d) for d in ("2014-05-12", "2018-05-14", "2024-05-14")
     )
-    assert after["calibrated"]["capacity"] < 0.95 * before["calibrated"]["capacity"]
-    assert after["calibrated"]["utilisation"] > before["calibrated"]["utilisation"]
-    assert shown(url, "--visit", "2020-06-01")["second_moment_m4"] > shown(url)["second_moment_m4"]
-    now = call(url, "assess", "quillmere", "--json").document
-    assert now["girders"][0]["sections"][0]["calibrated"]["capacity"] == after["calibrated"]["capacity"]
-    assert any("wear since then is not in them" in one for one in now["cautions"])
+    span = ("sagging", 1, None)
+    assert before[span]["capacity"] == pytest.approx(235e3 * second_moment(40, 40, 14)[0] / 0.6, rel=1e-6)
+    assert before[span]["capacity"] > between[span]["capacity"] > after[span]["capacity"]
+    assert before[span]["utilisation"] < between[span]["utilisation"] < after[span]["utilisation"]
+    shear = ("shear", 1, "west abutment")
+    assert before[shear]["capacity"] == between[shear]["capacity"] > after[shear]["capacity"]
+    assert utilisations(visited)[span]["capacity"] == after[span]["capacity"]
 
 
-def test_each_visit_is_calibrated_with_the_section_of_its_day(tmp_path: Path) -> None:
-    bridge = parse_bridge(text_with(LOSS.format("web", 2, 3, "2022-06-01")), file="own.toml")
-    early = GirderModel(bridge, bridge.girders[0], dt.date(2020, 1, 1))
-    late = GirderModel(bridge, bridge.girders[0], dt.date(2023, 1, 1))
-    assert late.flexural_at(1.0) < early.flexural_at(1.0)
+def test_losses_are_said_and_held_in_the_forecast(visited: str) -> None:
+    document: Any = call(visited, "assess", "ashbeck", "--json").document
+    told = 'Section "mid": stiffness and capacity hold the losses measured up to 2022-05-16'
+    assert [c for c in document["cautions"] if c.startswith(told)]
+    early: Any = call(visited, "assess", "ashbeck", "--visit", "2014-05-12", "--json").document
+    assert not [c for c in early["cautions"] if "hold the losses" in c]
+    assert [c for c in early["cautions"] if c.startswith("Capacities from plates are strength times section")]
+    trend: Any = call(visited, "trend", "ashbeck", "--json").document
+    assert [c for c in trend["cautions"] if c.startswith('Losses of the plates (section "mid") are held')]
+    now = {(s["effect"], s["span"]): s["utilisation_now"] for s in trend["spans"]}
+    assert now["sagging", 1] == pytest.approx(
+        utilisations(visited)["sagging", 1, None]["utilisation"], rel=0.01
+    )
 
 
-@settings(max_examples=60)
-@given(
-    plate=st.sampled_from(["top flange", "web", "bottom flange"]),
-    faces=st.sampled_from([1, 2]),
-    depth=st.integers(1, 45),
-    more=st.integers(1, 10),
-    method=st.sampled_from(["elastic", "plastic"]),
+def test_the_report_draws_every_section_from_plates(visited: str) -> None:
+    html = page.render(workflow.report_view(visited, "ashbeck"))
+    for told in (
+        "Section mid: losses measured: web 2 × 1 mm (2022-05-16); bottom flange 1 × 6 mm (2022-05-16).",
+        "Section pier: no loss measured.",
+        "400 × 40 mm, lost 1 × 6 mm",
+        "Capacities of section pier",
+        "top cover plate 360 × 12 mm, lower edge at 1212 mm",
+        "holes, width in all: 44 mm in top flange",
+    ):
+        assert told in html, told
+
+
+@pytest.mark.parametrize(
+    ("change", "told"),
+    [
+        (('depth = "6 mm"', 'depth = "40 mm"'), "loss 2, depth: plate"),
+        (('depth = "1 mm"', 'depth = "7 mm"'), "a loss of 14 mm takes the whole plate, 14 mm thick"),
+        (('depth = "6 mm"', 'depth = "6"'), "loss 2, depth:"),
+        (("visit = 2022-05-16", "visit = 2122-05-16"), "lies in the future"),
+        (("visit = 2018-05-14", "visit = 1980-05-14"), "before the bridge was built"),
+        (('plate = "web"', 'plate = "wep"'), 'there is no plate "wep" (did you mean "web"'),
+    ],
 )
-def test_capacity_falls_with_every_tenth_of_a_millimetre_lost(
-    plate: str, faces: int, depth: int, more: int, method: str
+def test_a_loss_that_cannot_be_is_one_line_and_nothing_is_kept(
+    tmp_path: Path, change: tuple[str, str], told: str
 ) -> None:
-    def capacities(tenths: int) -> list[float]:
-        text = text_with(LOSS.format(plate, faces, tenths / 10.0, "2022-06-01"), method=method)
-        model = GirderModel(bridge := parse_bridge(text, file="own.toml"), bridge.girders[0])
-        state = model.section_states["mid"]
-        return [c.value for c in state.capacities.values() if c.value is not None] + [state.second_moment]
-
-    worn, worse = capacities(depth), capacities(depth + more)
-    assert all(b <= a for a, b in zip(worn, worse, strict=True))
-    assert any(b < a for a, b in zip(worn, worse, strict=True))
-
-
-def test_a_loss_thicker_than_its_plate_is_refused_and_nothing_is_kept(tmp_path: Path) -> None:
-    path, url = tmp_path / "own.toml", str(tmp_path / "own.sqlite")
-    path.write_text(text_with(LOSS.format("web", 2, 7, "2022-06-01")))
+    url, path = str(tmp_path / "record.sqlite"), tmp_path / "bridge.toml"
     workflow.init_record(url)
-    with pytest.raises(BedstoneError) as caught:
-        workflow.add_bridge(url, path)
-    assert "takes the whole plate, 12 mm thick" in str(caught.value)
-    assert workflow.list_bridges(url) == []
+    path.write_text(text_with(change))
+    said = call(url, "bridge", "add", str(path))
+    assert (said.code, said.out) == (2, "")
+    assert said.err.count("\n") == 1
+    assert f'{path}, section "mid"' in said.err
+    assert told in said.err
+    assert call(url, "bridge", "list", "--json").document == {"bridges": []}
 
 
-def test_the_report_draws_the_section_and_the_forecast_says_that_losses_stand_still(tmp_path: Path) -> None:
-    url = added(tmp_path, text_with(LOSS.format("bottom flange", 1, 4, "2022-06-01")))
-    for date in ("2020-06-01", "2023-06-01"):
-        assert call(url, "visit", "log", str(write_visit(tmp_path, date, [1.0, 1.0, 1.0]))).code == 0
-    assert call(url, "calibrate", "quillmere", "--all").code == 0
-    said = call(url, "trend", "quillmere", "--json").document["cautions"]
-    assert any("held at their last measured values" in one for one in said)
-    page = tmp_path / "page.html"
-    assert call(url, "report", "quillmere", "-o", str(page)).code == 0
-    html = page.read_text()
-    assert "Section mid" in html
-    assert "losses measured" in html
-    assert "equal-area axis" in html
+def test_a_new_loss_is_a_new_revision_and_the_older_day_stands(visited: str, tmp_path: Path) -> None:
+    url = added(tmp_path)
+    log(url, tmp_path, "2018-05-14", STEADY, seed=None)
+    call(url, "calibrate", "ashbeck")
+    before = utilisations(url, "--visit", "2018-05-14")
+    more = (
+        WEB_LOSS
+        + '  [[section.loss]]\n  plate = "top flange"\n  faces = 2\n  depth = "4 mm"\n  visit = 2024-05-14\n'
+    )
+    added(tmp_path, (WEB_LOSS, more))
+    assert utilisations(url, "--visit", "2018-05-14") == before
+    assert shown(url)["mid"]["sagging_capacity_kNm"] < 4000.0
+
+
+# capacity falls with loss ----------------------------------------------------------------------------
+
+LOSS = '  [[section.loss]]\n  plate = "{}"\n  faces = {}\n  depth = "{} mm"\n  visit = {}\n'
+DAYS = [dt.date(2000 + i, 5, 14) for i in range(4)]
+PLATES = {
+    "top cover plate": 12.0,
+    "top flange": 40.0,
+    "web": 14.0,
+    "bottom flange": 40.0,
+    "bottom cover plate": 12.0,
+}
+
+
+@st.composite
+def wear(draw: st.DrawFn) -> str:
+    """Measurements of the pier section's plates, each at least as deep as the one before."""
+    text = ""
+    for plate, thick in PLATES.items():
+        faces = draw(st.integers(1, 2))
+        depths = sorted(draw(st.lists(st.floats(0.1, 0.98 * thick / faces), max_size=len(DAYS))))
+        for depth, day in zip(depths, DAYS, strict=False):
+            text += LOSS.format(plate, faces, f"{depth:.9f}", day)
+    return text
+
+
+@settings(max_examples=60, deadline=None, derandomize=True)
+@given(wear(), st.sampled_from(["elastic", "plastic"]))
+def test_capacity_and_stiffness_fall_with_every_loss(losses: str, method: str) -> None:
+    hole = '  [[section.hole]]\n  plate = "top flange"\n'
+    text = text_with(
+        (hole, losses + hole),
+        ('id = "pier"\nE = "205 GPa"\n', f'id = "pier"\nE = "205 GPa"\nmoment_resistance = "{method}"\n'),
+        ('shear_capacity = "1700 kN"\n', ""),
+    )
+    section = parse_bridge(text, file="bridge.toml").section("pier")
+    states = [section_on(section, day) for day in (dt.date(1999, 1, 1), *DAYS)]
+    slack = 1.0 + 1e-9
+    for old, new in pairwise(states):
+        assert new.second_moment <= old.second_moment * slack
+        assert new.shear_area is not None
+        assert old.shear_area is not None
+        assert new.shear_area <= old.shear_area * slack
+        for effect in EFFECTS:
+            before, after = old.capacities[effect].value, new.capacities[effect].value
+            assert before is not None
+            assert after is not None
+            assert after <= before * slack, effect
+    assert (section_on(section, None).second_moment < states[0].second_moment) is bool(losses)
+
+
+def test_the_girder_softens_with_its_losses() -> None:
+    new, worn = model(as_of=dt.date(2017, 1, 1)), model()
+    assert worn.flexural_at(5.0) < new.flexural_at(5.0)
+    assert worn.flexural_at(12.0) == new.flexural_at(12.0)

@@ -11,7 +11,7 @@ from assess.cli.tables.screen import print_cautions, print_heading, print_table
 from assess.cli.tables.words import chance, interval, number, section_name
 
 if TYPE_CHECKING:
-    from assess.results import AssessmentResult, GirderAssessment, ReactionResult, SectionResult
+    from assess.results import AssessmentResult, GirderAssessment, PadCheck, ReactionResult, SectionResult
 
 
 def show_assessment(result: AssessmentResult) -> None:
@@ -35,7 +35,45 @@ def show_assessment(result: AssessmentResult) -> None:
             ],
             [_reaction_row(reaction) for reaction in girder.reactions],
         )
+        _show_pads(girder)
     print_cautions(result.cautions)
+
+
+def _show_pads(girder: GirderAssessment) -> None:
+    """The pads that give their geometry, each with its most used limit."""
+    if not girder.pads:
+        return
+    click.echo()
+    print_table(
+        [
+            "pad from its geometry",
+            "pressure, MPa,\npermanent",
+            "pressure, MPa,\ntotal",
+            "layer strain, %,\ntotal",
+            "most used limit",
+            "value",
+            "limit",
+            "utilisation",
+            "status",
+        ],
+        [_pad_row(pad) for pad in girder.pads],
+    )
+
+
+def _pad_row(pad: PadCheck) -> list[str]:
+    worst = max(pad.limits, key=lambda limit: limit.utilisation)
+    unit = f" {worst.unit}" if worst.unit else ""
+    return [
+        pad.support,
+        number(pad.permanent_pressure_MPa),
+        number(pad.total_pressure_MPa),
+        number(100.0 * pad.total_strain),
+        worst.name if worst.load in worst.name else f"{worst.name}, {worst.load}",
+        f"{number(worst.value)}{unit}",
+        f"{number(worst.limit)}{unit}",
+        number(worst.utilisation),
+        worst.status,
+    ]
 
 
 def _show_sections(girder: GirderAssessment) -> None:

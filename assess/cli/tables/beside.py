@@ -1,4 +1,4 @@
-"""What stands beside the governing sections: settlement, temperature, rating levels, pads."""
+"""What stands beside the governing sections: settlement, temperature, rating levels."""
 
 from __future__ import annotations
 
@@ -10,7 +10,7 @@ from assess.cli.tables.screen import print_table
 from assess.cli.tables.words import number, section_name
 
 if TYPE_CHECKING:
-    from assess.results import GirderAssessment, PadCheck, SectionResult
+    from assess.results import GirderAssessment, SectionResult
 
 
 def show_beside(girder: GirderAssessment) -> None:
@@ -22,9 +22,6 @@ def show_beside(girder: GirderAssessment) -> None:
     if any(s.calibrated.rating_levels for s in girder.sections):
         click.echo()
         _show_levels(girder.sections)
-    if girder.pads:
-        click.echo()
-        _show_pads(girder.pads)
 
 
 def _show_moved(sections: list[SectionResult]) -> None:
@@ -65,31 +62,3 @@ def _show_levels(sections: list[SectionResult]) -> None:
             for s in sections
         ],
     )
-
-
-def _show_pads(pads: list[PadCheck]) -> None:
-    print_table(
-        [
-            "pad",
-            "permanent,\nMPa",
-            "total,\nMPa",
-            "least,\nMPa",
-            "total\nstrain, %",
-            "share of\nits limits",
-            "nearest limit",
-        ],
-        [_pad_row(pad) for pad in pads],
-    )
-
-
-def _pad_row(pad: PadCheck) -> list[str]:
-    nearest = max(pad.limits, key=lambda limit: limit.utilisation, default=None)
-    return [
-        pad.support,
-        number(pad.permanent_pressure_MPa),
-        number(pad.total_pressure_MPa),
-        number(pad.minimum_pressure_MPa),
-        number(100.0 * pad.total_strain),
-        number(None if nearest is None else nearest.utilisation),
-        "no limit" if nearest is None else f"{nearest.name}, {pad.status}",
-    ]

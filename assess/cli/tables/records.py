@@ -46,6 +46,11 @@ def show_bridge_taken(bridge: BridgeDoc, taken: Taken, view: BridgeView) -> None
     _show_pads(view)
     click.echo()
     _show_sections(bridge, view)
+    plated = [section for section in view.sections if section.plates]
+    if plated:
+        worn = "with all measured losses" if any(section.losses for section in plated) else "as built"
+        names = listed(f'"{section.section}"' for section in plated)
+        print_wrapped(f"From plates, {worn}: {names}; more: bedstone bridge show {bridge.id}")
     if bridge.vehicles:
         click.echo()
         _show_vehicles(bridge)
@@ -66,15 +71,26 @@ def show_actions(view: BridgeView) -> None:
 
 
 def _show_pads(view: BridgeView) -> None:
+    made = {
+        (pad.girder, pad.support): f"geometry, {pad.formula}"
+        for pad in view.pads
+        if pad.nominal_from == "geometry"
+    }
     print_table(
-        ["girder", "pad", "nominal, kN/mm", "coefficient\nof variation"],
+        ["girder", "pad", "nominal from", "nominal,\nkN/mm", "coefficient\nof variation"],
         [
-            [girder.girder, pad.support, f"{pad.nominal_kN_per_m / 1e3:.4g}", f"{pad.cv:.3g}"]
+            [
+                girder.girder,
+                pad.support,
+                made.get((girder.girder, pad.support), "as given"),
+                f"{pad.nominal_kN_per_m / 1e3:.4g}",
+                f"{pad.cv:.3g}",
+            ]
             for girder in view.shown.girders
             for pad in girder.supports
             if pad.nominal_kN_per_m is not None and pad.cv is not None
         ],
-        words=2,
+        words=3,
     )
 
 

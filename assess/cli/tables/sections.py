@@ -11,25 +11,31 @@ from assess.cli.tables.screen import print_cautions, print_heading, print_table,
 from assess.cli.tables.words import NOT_DETERMINED, number
 
 if TYPE_CHECKING:
-    from assess.shown import BridgeView, CapacityShown, GirderShown, PlateShown, SectionView
+    from assess.shown import BridgeView, CapacityShown, GirderShown, PadShown, PlateShown, SectionView
 
 _GOVERNS = {"given": "as given", "plates": "from plates", "": ""}
 
 
 def show_bridge(view: BridgeView) -> None:
     """Print the sections and the supports of a bridge."""
-    losses = (
-        "with all measured losses" if view.as_of is None else f"with the losses measured up to {view.as_of}"
-    )
-    click.echo(f"Bridge {view.shown.bridge}, {losses}")
+    click.echo(f"Bridge {view.shown.bridge}{_losses(view)}")
     for section in view.sections:
         print_heading(f"Section {section.section}")
         _show_section(section)
     for girder in view.shown.girders:
         print_heading(f"Girder {girder.girder}")
         _show_supports(girder)
+        _show_pads([pad for pad in view.pads if pad.girder == girder.girder])
     show_actions(view)
     print_cautions(view.cautions)
+
+
+def _losses(view: BridgeView) -> str:
+    if not any(section.plates for section in view.sections):
+        return ""
+    if view.as_of is not None:
+        return f", with the losses measured up to {view.as_of}"
+    return ", with all measured losses" if any(section.losses for section in view.sections) else ", as built"
 
 
 def _show_section(section: SectionView) -> None:
@@ -44,7 +50,7 @@ def _show_section(section: SectionView) -> None:
     click.echo()
     print_table(
         ["capacity", "unit", "value", "as given", "from plates", "governs"],
-        [_capacity_row(one) for one in section.capacities],
+        [_capacity_row(one, bool(section.plates)) for one in section.capacities],
         words=2,
     )
     if section.plates:
@@ -86,13 +92,14 @@ def _plate_row(plate: PlateShown) -> list[str]:
     ]
 
 
-def _capacity_row(one: CapacityShown) -> list[str]:
+def _capacity_row(one: CapacityShown, plated: bool) -> list[str]:
+    missing = NOT_DETERMINED if plated else "no plates"
     return [
         one.effect,
         "kN" if one.effect == "shear" else "kN m",
         NOT_DETERMINED if one.value is None else _four(one.value),
         "not given" if one.given is None else _four(one.given),
-        NOT_DETERMINED if one.built is None else _four(one.built),
+        missing if one.built is None else _four(one.built),
         _GOVERNS[one.source],
     ]
 
@@ -116,6 +123,38 @@ def _show_supports(girder: GirderShown) -> None:
                 "none" if support.cv is None else number(support.cv),
             ]
             for support in girder.supports
+        ],
+        words=2,
+    )
+
+
+def _show_pads(pads: list[PadShown]) -> None:
+    if not pads:
+        return
+    click.echo()
+    print_table(
+        [
+            "pad from its geometry",
+            "formula",
+            "shape\nfactor",
+            "rubber in\nall, mm",
+            "layer\nmodulus, MPa",
+            "by geometry,\nkN/mm",
+            "batch",
+            "nominal",
+        ],
+        [
+            [
+                pad.support,
+                pad.formula,
+                number(pad.shape_factor),
+                f"{pad.rubber_mm:.4g}",
+                number(pad.layer_modulus_MPa),
+                number(pad.geometry_kN_per_m / 1e3),
+                pad.batch or "none",
+                "from geometry" if pad.nominal_from == "geometry" else "as given",
+            ]
+            for pad in pads
         ],
         words=2,
     )

@@ -267,19 +267,39 @@ def _write(
     foot: float,
 ) -> None:
     """The names at the right, each with a leader to its plate."""
-    anchors = [sheet.y((plate.top_mm + plate.bottom_mm) / 2.0) for plate, _ in labels]
+    anchors = _anchors(sheet, [plate for plate, _ in labels])
     ys = spread(anchors, [LINE_PT + 1.0] * len(labels), low=1.0, high=max(foot, 26.0 * len(labels)))
     for (plate, lines), anchor, y in zip(labels, anchors, ys, strict=True):
         edge = sheet.x(max(box.left + box.width for box in boxes if box.plate == plate))
         x = _LEFT + _ROOM[0] + 6.0
         axes.plot([edge, x, x + 9.0, _RIGHT + 2.0], [anchor, anchor, y, y], color=svg.NEUTRAL, lw=0.6)
+        axes.plot([edge], [anchor], color=svg.NEUTRAL, marker="o", markersize=2.0)
         axes.text(_RIGHT + 5.0, y - 1.0, lines[0], va="bottom")
         colour = svg.SECOND if plate.lost else svg.INK
         axes.text(_RIGHT + 5.0, y + 0.5, lines[1], va="top", color=colour)
 
 
+def _anchors(sheet: _Sheet, plates: list[PlateShown]) -> list[float]:
+    """Where the leaders leave the plates: at mid-height, side by side plates one below the other."""
+    level = [plate.top_mm + plate.bottom_mm for plate in plates]
+    anchors = []
+    for i, plate in enumerate(plates):
+        count, before = level.count(level[i]), level[:i].count(level[i])
+        share = (before + 1.0) / (count + 1.0)
+        anchors.append(sheet.y(plate.top_mm - share * plate.height_mm))
+    return anchors
+
+
 def _remarks(view: SectionView) -> list[str]:
-    told = ["to scale, width × height as built; places across the section are not in the file"]
+    told = [
+        "to scale, width × height as built; places across the section are not in the file",
+        "axes: heights above the underside of the plates",
+    ]
     if any(plate.loss_mm > 0.0 for plate in view.plates):
         told.append("hatched edge: plate that has lost metal; the width of the hatching is not to scale")
+    if view.holes:
+        each = ", ".join(
+            f"{words.entered(round(width, 3), 'mm')} in {plate}" for plate, _, width in view.holes
+        )
+        told.append(f"holes, width in all: {each}")
     return told

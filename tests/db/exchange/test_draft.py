@@ -54,12 +54,15 @@ def test_a_draft_as_it_comes_is_refused() -> None:
 
 def test_every_optional_field_of_the_draft_is_read_when_its_comment_sign_goes() -> None:
     text = filled(draft_bridge("12 m, 15 m"))
-    optional = re.compile(r"^( *)# (?=(?:\[\[)?[\w.]+(?:\]\]| = ))", re.MULTILINE)
+    optional = re.compile(r"^( *)# (?=\[{0,2}[\w.]+(?:\]{1,2}| = ))", re.MULTILINE)
     doc = parse_bridge(optional.sub(r"\1", text), file="my-bridge.toml")
     assert doc.visit_interval_years == 2.0
     assert doc.girders[0].spans[-1].pieces
     assert doc.girders[0].supports[-1].temperature_coefficient is not None
     assert len(doc.girders[0].permanent) == 2
+    assert [(p.name, p.yield_strength) for p in doc.sections[0].plates] == [("flange", pytest.approx(235e3))]
+    assert doc.sections[0].losses
+    assert doc.girders[0].supports[-1].pad is not None
 
 
 def test_every_value_has_its_comment() -> None:

@@ -9,6 +9,7 @@ import pytest
 from db.documents import BridgeDoc, DeckDoc, LossDoc, SectionDoc
 from db.errors import BedstoneError
 from db.exchange import check_losses, parse_bridge
+from db.exchange.plausibility import bridge_queries
 from tests.db.conftest import changed
 
 PLATES = """[[section]]
@@ -234,3 +235,20 @@ def test_a_loss_lies_between_building_and_today(bridge_text: str, day: str, told
     with pytest.raises(BedstoneError, match=told):
         check_losses(document, today=dt.date(2030, 1, 1), file="bridge.toml")
     check_losses(read(bridge_text), today=dt.date(2030, 1, 1), file="bridge.toml")
+
+
+def test_plates_that_stand_as_drawn_are_not_queried(bridge_text: str):
+    assert not [q for q in bridge_queries(read(bridge_text)) if q.startswith("section")]
+
+
+def test_a_web_that_ends_within_a_flange_is_looked_at_again(bridge_text: str):
+    """The slip of a box girder: the second web stands on the underside of the wrong flange."""
+    (query,) = bridge_queries(read(bridge_text, ('name = "web"', 'name = "web"\n  bottom = "20 mm"')))
+    assert query.startswith('section "mid": plate "web" ends within the thickness of "bottom flange"')
+
+
+def test_a_plate_clear_of_the_others_is_looked_at_again(bridge_text: str):
+    (query,) = bridge_queries(
+        read(bridge_text, ('height = "25 mm"', 'height = "25 mm"\n  bottom = "1190 mm"'))
+    )
+    assert query.startswith('section "mid": plate "top flange" stands 10 mm clear of the plates below it')
