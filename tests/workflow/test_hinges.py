@@ -136,9 +136,23 @@ def test_a_mechanism_is_refused_and_leaves_nothing(tmp_path: Path) -> None:
 
 def test_hinges_bring_their_cautions(tmp_path: Path) -> None:
     path, url = tmp_path / "bridge.toml", str(tmp_path / "record.sqlite")
-    path.write_text(text_with(SUSPENDED, 'model = "lm71"'))
+    # LM71 on the suspended span takes the anchor arm off its abutment, if nothing holds that down
+    tied = 'stiffness = "150 kN/mm"\n  hold_down = true'
+    text = text_with(SUSPENDED, 'model = "lm71"')
+    path.write_text(text.replace('stiffness = "150 kN/mm"', tied, 1))
     workflow.init_record(url)
     workflow.add_bridge(url, path)
     said = " ".join(call(url, "assess", "quillmere", "--json").document["cautions"])
     assert 'Girder "north" has internal hinges at 15.5 m, 23.5 m' in said
     assert "as if the girder ran on over its hinges" in said
+
+
+def test_an_anchor_arm_that_nothing_holds_down_is_refused_in_one_line(tmp_path: Path) -> None:
+    path, url = tmp_path / "bridge.toml", str(tmp_path / "record.sqlite")
+    path.write_text(text_with(SUSPENDED, 'model = "lm71"'))
+    workflow.init_record(url)
+    workflow.add_bridge(url, path)
+    said = call(url, "assess", "quillmere", "--json")
+    assert (said.code, said.out) == (2, "")
+    assert 'girder "north": the girder would tip: it lifts off "west abutment"' in said.err
+    assert "write hold_down = true" in said.err
