@@ -160,7 +160,7 @@ def test_contact_that_does_not_bite_costs_a_linear_solve() -> None:
     assert not state.lifted.any() and np.array_equal(state.reaction, linear.reaction)
     plain = seconds(lambda: condensed.solve(sets, forces, drops), 25)
     ours = seconds(lambda: contact(condensed, sets, forces, drops, none), 25)
-    far = np.array([0.0, 0.11, 0.0, 0.0])
+    far = np.array([0.0, 0.55, 0.0, 0.0])
     lifting = contact(condensed, sets, forces, far, none).lifted.any(axis=1).mean()
     biting = seconds(lambda: contact(condensed, sets, forces, far, none), 9)
     print(
