@@ -83,7 +83,11 @@ class CaseResult:
     factored: float
     utilisation: float | None
     rating_factor: float | None
-    rating_levels: dict[str, float | None] = field(default_factory=dict)  # by the levels of a rating set
+    least_rating_factor: float | None = None  # of the row, wherever in it that is
+    least_rating_x_m: float | None = None  # where that is
+    rating_levels: dict[str, float | None] = field(
+        default_factory=dict
+    )  # least of the row, by levels of the set
     temperature: float = 0.0  # of the worst temperature case, unfactored; in `factored`
 
 

@@ -1,10 +1,11 @@
 """The rows of an assessment: which station governs, how far it is used, and how surely.
 
 Utilisation is the factored effect over the factored resistance. The rating factor has the form of the AASHTO
-Manual for Bridge Evaluation (6A.4.2), RF = (C - g_D D) / (g_L L), with the dynamic allowance and the live share
-in L. A permanent effect of the other sign than the checked one relieves and takes its own factor; each kind of
-permanent load does so by itself, and so does what settlements add. A relief by settlement can reverse, so that a
-section is also taken without it, and the worse of the two governs unless the owner lets relief count.
+Manual for Bridge Evaluation (6A.4.2), RF = (C - g_D D) / (g_L L), with the dynamic allowance and the live share in L.
+The least of a row is not always where the row is used most, and is told beside. A permanent effect of the other
+sign than the checked one relieves and takes its own factor; each kind of permanent load does so by itself, and so
+does what settlements add. A relief by settlement can reverse, so that a section is also taken without it, and the
+worse of the two governs unless the owner lets relief count.
 """
 
 from __future__ import annotations
@@ -38,7 +39,9 @@ class Case:
     live: float
     factored: float
     utilisation: float  # NaN where the resistance is not given
-    rating_factor: float  # NaN where there is no adverse live effect or no resistance
+    rating_factor: float  # at x; NaN where there is no adverse live effect or no resistance
+    least_rating: float = np.nan  # of the row, wherever in it that is
+    least_rating_x: float = np.nan  # m, where that is
     settled: float = 0.0  # the part of `permanent` that seat drops add
     temperature: float = 0.0  # of the worst temperature case, unfactored; in `factored`
     with_relief: float = np.nan  # utilisation with relief by settlement
@@ -182,12 +185,10 @@ def _govern(plan: CheckPlan, check: Check, demands: list[Demand], factors: Facto
     relief = float(chosen.relief[station])
     bare = factored - relief if factors.relief_counts else factored
     capacity = float(plan.resistance(check.effect)[station])
+    governing = int(sense), int(place)
     adverse = sign * factors.live * live
     steady = sign * factored - adverse
-
-    def rating(level: float) -> float:
-        most = sign * level * live
-        return (capacity - steady) / most if most > _NO_LIVE * capacity else np.nan
+    least, least_x = _least_rating(plan, check, demands, factors, factors.live, governing)
 
     return Case(
         x=float(plan.x[station]),
@@ -196,13 +197,45 @@ def _govern(plan: CheckPlan, check: Check, demands: list[Demand], factors: Facto
         live=live,
         factored=factored,
         utilisation=max(0.0, sign * factored) / capacity,
-        rating_factor=rating(factors.live),
+        rating_factor=(capacity - steady) / adverse if adverse > _NO_LIVE * capacity else np.nan,
+        least_rating=least,
+        least_rating_x=least_x,
         settled=float(chosen.steady.settled[station]),
         temperature=float(chosen.temperature[station]),
         with_relief=max(0.0, sign * (bare + relief)) / capacity,
         without_relief=max(0.0, sign * bare) / capacity,
-        ratings=tuple((name, rating(level)) for name, level in factors.levels),
+        ratings=tuple(
+            (name, _least_rating(plan, check, demands, factors, level, governing)[0])
+            for name, level in factors.levels
+        ),
     )
+
+
+def _least_rating(
+    plan: CheckPlan,
+    check: Check,
+    demands: list[Demand],
+    factors: Factors,
+    level: float,
+    governing: tuple[int, int],
+) -> tuple[float, float]:
+    """Least rating factor of a row at a live factor, and its x in m; both NaN where nothing rates.
+
+    A station with less permanent and more live effect can rate lower than `governing` (sense, station), which is used
+    most. Where permanent effects alone exceed the resistance there, that station keeps its own: how far below zero
+    another one is says nothing. Without a resistance there the row is not rated.
+    """
+    stations = check.stations
+    capacity = plan.resistance(check.effect)[stations]
+    live = np.array([d.sign * d.live[stations] for d in demands])  # (senses, c)
+    steady = np.array([d.sign * d.factored[stations] for d in demands]) - factors.live * live
+    rates = level * live > _NO_LIVE * capacity
+    rating = np.where(rates, (capacity - steady) / np.where(rates, level * live, 1.0), np.nan)
+    if not rates.any() or np.isnan(capacity[governing[1]]):
+        return np.nan, np.nan
+    sense, place = np.unravel_index(int(np.nanargmin(rating)), rating.shape)
+    at = governing if rating[governing] < 0.0 else (int(sense), int(place))
+    return float(rating[at]), float(plan.x[stations[at[1]]])
 
 
 def evaluate_draws(

@@ -113,12 +113,12 @@ def _cell(case: CaseResult, unit: str, told: str) -> CaseCell:
     of = "" if case.capacity is None else f" of {words.number(case.capacity)}"
     lines = [
         f"at {words.place(case.x_m)}",
-        f"rating factor {words.quantity(case.rating_factor, '', no_factor)}",
+        f"rating factor {words.quantity(case.rating_factor, '', no_factor)}{_elsewhere(case)}",
         f"factored {words.number(case.factored)}{of}\N{NO-BREAK SPACE}{unit}",
         f"permanent {words.number(case.permanent)}, live {words.number(case.live)}\N{NO-BREAK SPACE}{unit}",
     ]
     lines += [
-        f"rating factor {level} {words.quantity(value, '', no_factor)}"
+        f"least rating factor, {level}: {words.quantity(value, '', no_factor)}"
         for level, value in case.rating_levels.items()
     ]
     if case.temperature:
@@ -126,6 +126,14 @@ def _cell(case: CaseResult, unit: str, told: str) -> CaseCell:
     if isinstance(case, CalibratedCase) and case.settlement:
         lines += _relief(case, unit)
     return CaseCell(utilisation=told, lines=lines)
+
+
+def _elsewhere(case: CaseResult) -> str:
+    """The least rating factor of the row, where it is another one."""
+    here, least, at = case.rating_factor, case.least_rating_factor, case.least_rating_x_m
+    if least is None or at is None or (here is not None and least > here - 0.005 * abs(here)):
+        return ""
+    return f", least {words.number(least)} at {words.place(at)}"
 
 
 def _relief(case: CalibratedCase, unit: str) -> list[str]:

@@ -367,6 +367,8 @@ def _case(case: Case) -> dict[str, Any]:
         "factored": case.factored,
         "utilisation": _known(case.utilisation),
         "rating_factor": _known(case.rating_factor),
+        "least_rating_factor": _known(case.least_rating),
+        "least_rating_x_m": _known(case.least_rating_x),
         "rating_levels": {name: _known(value) for name, value in case.ratings},
         "temperature": case.temperature,
     }

@@ -171,6 +171,25 @@ def test_a_relieving_permanent_moment_takes_its_own_factor() -> None:
     assert case.rating_factor == pytest.approx((900.0 + relief) / (case.factored + relief), rel=1e-9)
 
 
+def test_the_least_rating_factor_of_a_row_is_told_where_a_weaker_piece_is_used_more() -> None:
+    # two spans of 10 m under 40 kN/m: -500 over the pier, -270 at 9 m. An axle brings at most
+    # M_B = P L / (6 sqrt 3) = 96.2 over the pier and nine tenths of it at 9 m. With 560 over the pier and 335 beyond:
+    # used 744.3 / 560 = 1.329 there and 453.9 / 335 = 1.355 at 9 m, which governs; but rated
+    # (335 - 324) / 129.9 = 0.085 at 9 m and (560 - 600) / 144.3 = -0.277 over the pier.
+    strong, weak = (Resistance(sagging=900.0, hogging=h, shear=900.0) for h in (560.0, 335.0))
+    girder = Girder((
+        (Piece(length=9.0, flexural=1e6), Piece(length=1.0, flexural=1e6)),
+        (Piece(length=1.0, flexural=1e6), Piece(length=9.0, flexural=1e6)),
+    ))  # fmt: skip
+    effects = effects_of(girder, uniform(girder, 40.0), [AXLE], [[weak, strong], [strong, weak]])
+    case = find(rows_of(effects), "hogging", support=1)
+    assert min(case.x, 20.0 - case.x) == pytest.approx(9.0)
+    assert case.utilisation == pytest.approx(1.355, rel=1e-3)
+    assert case.rating_factor == pytest.approx(11.0 / 129.9, rel=2e-2)
+    assert case.least_rating == pytest.approx(-40.0 / 144.34, rel=2e-3)
+    assert case.least_rating_x == pytest.approx(10.0)
+
+
 def test_a_weaker_piece_short_of_the_pier_governs_the_hogging_row() -> None:
     # strong within 1 m of the pier (900), weak beyond (260): at 9 m the moment is
     # M = 75 x 9 - 20 x 81 / 2 = -135 of the 250 over the pier: 1.2 x 135 / 260 = 0.623 against 300 / 900 = 0.333

@@ -89,6 +89,7 @@ def assessment(
         "factored": 3302.0,
         "utilisation": 0.6474 if known else None,
         "rating_factor": 1.642 if known else None,
+        "least_rating_factor": 1.642 if known else None,
     }
     section = SectionResult(
         effect="sagging",

@@ -141,6 +141,8 @@ TREND = {
 BESIDE_INSIDE = {
     "pads",
     "rating_levels",
+    "least_rating_factor",
+    "least_rating_x_m",
     "temperature",
     "settlement",
     "utilisation_with_relief",

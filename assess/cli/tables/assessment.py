@@ -87,7 +87,7 @@ def _show_sections(girder: GirderAssessment) -> None:
             "utilisation,\nunyielding",
             "utilisation,\nnominal",
             "utilisation, calibrated\n(95 % band)",
-            "rating\nfactor",
+            "rating factor,\nleast",
             "probability\nover 1, %",
         ],
         [_section_row(section) for section in girder.sections],
@@ -106,7 +106,7 @@ def _section_row(section: SectionResult) -> list[str]:
         number(section.unyielding.utilisation),
         number(section.nominal.utilisation),
         interval(case.utilisation, case.utilisation_low95, case.utilisation_high95),
-        number(case.rating_factor),
+        number(case.least_rating_factor),
         chance(case.probability_over_1),
     ]
 

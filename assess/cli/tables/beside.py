@@ -53,7 +53,7 @@ def _show_moved(sections: list[SectionResult]) -> None:
 def _show_levels(sections: list[SectionResult]) -> None:
     levels = list(sections[0].calibrated.rating_levels)
     print_table(
-        ["rating factor (calibrated case)", *levels],
+        ["least rating factor (calibrated case)", *levels],
         [
             [
                 section_name(s.effect, s.span, s.support),
