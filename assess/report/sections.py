@@ -51,14 +51,20 @@ def _numbers(view: SectionView) -> str:
         ("second moment", shown.second_moment_m4, 1e8, "cm⁴"),
         ("elastic moduli top", shown.elastic_modulus_top_m3, 1e6, "cm³"),
         ("bottom", shown.elastic_modulus_bottom_m3, 1e6, "cm³"),
-        ("plastic modulus", shown.plastic_modulus_m3, 1e6, "cm³"),
+        (
+            "plastic modulus" + ("" if view.deck is None else " (steel alone)"),
+            shown.plastic_modulus_m3,
+            1e6,
+            "cm³",
+        ),
         ("shear area", view.shear_area_m2, 1e4, "cm²"),
     )
     told = ", ".join(
         f"{name} {words.number(scale * value, 4)}{_NB}{unit}" for name, value, scale, unit in values if value
     )
     how = "plastic moments, as the bridge file says" if view.method == "plastic" else "elastic moments"
-    return f"With the losses: {told}. Capacities from plates: {how}, before the factor on resistance."
+    opening = "With the losses" if view.losses else "Without losses"
+    return f"{opening}: {told}. Capacities from plates: {how}, before the factor on resistance."
 
 
 def _row(one: CapacityShown) -> list[str]:

@@ -126,19 +126,24 @@ def _cell(case: CaseResult, unit: str, told: str) -> CaseCell:
     of = "" if case.capacity is None else f" of {words.number(case.capacity)}"
     lines = [
         f"at {words.place(case.x_m)}",
-        f"rating factor {words.quantity(case.rating_factor, '', no_factor)}",
+        f"rating factor {_rating(case, no_factor)}",
         f"factored {words.number(case.factored)}{of}\N{NO-BREAK SPACE}{unit}",
         f"permanent {words.number(case.permanent)}, live {words.number(case.live)}\N{NO-BREAK SPACE}{unit}",
-    ]
-    lines += [
-        f"rating factor {level} {words.quantity(value, '', no_factor)}"
-        for level, value in case.rating_levels.items()
     ]
     if case.temperature:
         lines.append(f"temperature {words.number(case.temperature)}\N{NO-BREAK SPACE}{unit}")
     if isinstance(case, CalibratedCase) and case.settlement:
         lines += _relief(case, unit)
     return CaseCell(utilisation=told, lines=lines)
+
+
+def _rating(case: CaseResult, reason: str) -> str:
+    """Word the rating factor, or those of all levels, of which it is one."""
+    if not case.rating_levels:
+        return words.quantity(case.rating_factor, "", reason)
+    return ", ".join(
+        f"{level} {words.quantity(value, '', reason)}" for level, value in case.rating_levels.items()
+    )
 
 
 def _relief(case: CalibratedCase, unit: str) -> list[str]:

@@ -71,9 +71,9 @@ def _show_pads(pads: list[PadCheck]) -> None:
     print_table(
         [
             "pad",
-            "permanent,\nMPa",
-            "total,\nMPa",
-            "least,\nMPa",
+            "permanent\npressure, MPa",
+            "total\npressure, MPa",
+            "least\npressure, MPa",
             "total\nstrain, %",
             "share of\nits limits",
             "nearest limit",
