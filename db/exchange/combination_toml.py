@@ -97,10 +97,10 @@ def _case(fields: Fields, girders: Sequence[GirderDoc]) -> TemperatureDoc:
         raise fields.error(
             "difference", problem, 'write for example "10 K", or "-5 K" where the top is colder'
         )
-    expansion = fields.optional_positive("expansion", "temperature coefficient", example="1.2e-5 / K")
+    expansion = fields.optional_positive("expansion", "temperature coefficient", example="1.2e-5 1/K")
     if expansion is not None and expansion > GREATEST_EXPANSION:
         problem = f'"{shown(fields.table["expansion"])}" is no thermal expansion of a girder'
-        raise fields.error("expansion", problem, 'write for example "1.2e-5 / K"')
+        raise fields.error("expansion", problem, 'write for example "1.2e-5 1/K"')
     seats = tuple(_seat(f, girders) for f in fields.tables("seat", "seat", _SEAT, by_number=True))
     if difference == 0.0 and not seats:
         raise fields.error(
