@@ -51,7 +51,12 @@ def _numbers(view: SectionView) -> str:
         ("second moment", shown.second_moment_m4, 1e8, "cm⁴"),
         ("elastic moduli top", shown.elastic_modulus_top_m3, 1e6, "cm³"),
         ("bottom", shown.elastic_modulus_bottom_m3, 1e6, "cm³"),
-        ("plastic modulus", shown.plastic_modulus_m3, 1e6, "cm³"),
+        (
+            "plastic modulus" + ("" if view.deck is None else " (steel alone)"),
+            shown.plastic_modulus_m3,
+            1e6,
+            "cm³",
+        ),
         ("shear area", view.shear_area_m2, 1e4, "cm²"),
     )
     told = ", ".join(

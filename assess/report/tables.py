@@ -113,13 +113,9 @@ def _cell(case: CaseResult, unit: str, told: str) -> CaseCell:
     of = "" if case.capacity is None else f" of {words.number(case.capacity)}"
     lines = [
         f"at {words.place(case.x_m)}",
-        f"rating factor {words.quantity(case.rating_factor, '', no_factor)}{_elsewhere(case)}",
+        f"rating factor {_rating(case, no_factor)}{_elsewhere(case)}",
         f"factored {words.number(case.factored)}{of}\N{NO-BREAK SPACE}{unit}",
         f"permanent {words.number(case.permanent)}, live {words.number(case.live)}\N{NO-BREAK SPACE}{unit}",
-    ]
-    lines += [
-        f"least rating factor, {level}: {words.quantity(value, '', no_factor)}"
-        for level, value in case.rating_levels.items()
     ]
     if case.temperature:
         lines.append(f"temperature {words.number(case.temperature)}\N{NO-BREAK SPACE}{unit}")
@@ -130,10 +126,21 @@ def _cell(case: CaseResult, unit: str, told: str) -> CaseCell:
 
 def _elsewhere(case: CaseResult) -> str:
     """The least rating factor of the row, where it is another one."""
+    if case.rating_levels:  # these are the least of the row already
+        return ""
     here, least, at = case.rating_factor, case.least_rating_factor, case.least_rating_x_m
     if least is None or at is None or (here is not None and least > here - 0.005 * abs(here)):
         return ""
     return f", least {words.number(least)} at {words.place(at)}"
+
+
+def _rating(case: CaseResult, reason: str) -> str:
+    """Word the rating factor, or those of all levels, of which it is one."""
+    if not case.rating_levels:
+        return words.quantity(case.rating_factor, "", reason)
+    return ", ".join(
+        f"{level} {words.quantity(value, '', reason)}" for level, value in case.rating_levels.items()
+    )
 
 
 def _relief(case: CalibratedCase, unit: str) -> list[str]:

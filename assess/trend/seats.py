@@ -80,7 +80,7 @@ def fit_seat(times: Floats, settlements: Floats, sd: Floats) -> SeatLaw:
     middle = float(weight @ times / weight.sum())
     lever = weight * (times - middle)
     lever = lever / (lever @ times)
-    rate = float(lever @ settlements)
+    rate = float(lever @ (settlements - last))  # the lever sums to nought: an unmoved seat has no rate at all
     line = float(weight @ settlements / weight.sum()) + rate * (times - middle)
     chi_square, freedom = float((((settlements - line) / sd) ** 2).sum()), times.size - 2
     scatter = 1.0

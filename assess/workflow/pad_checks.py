@@ -25,6 +25,7 @@ from db.documents import SupportDoc
 
 Floats = NDArray[np.float64]
 
+_ROUNDING = 1e-9  # of the permanent reaction: less than it is none
 _UNITS = {  # of a limit's kind: unit shown, and how many of it make one in SI
     "pressure": ("MPa", 1e-3),
     "stability": ("MPa", 1e-3),
@@ -53,20 +54,22 @@ def check_pads(
         if pad is None or support.pad is None:
             continue
         softness = pad.stiffness / float(np.exp(log_stiffness[i]))
-        loads = _loads(reactions[index])
+        loads = loads_of(reactions[index])
         row = _check(model, i, support, pad, loads, softness)
         rows.append(row)
         said += pad_cautions.of_check(model.doc.id, row, _least(support))
     return rows, said
 
 
-def _loads(reaction: ReactionResult) -> PadLoads:
+def loads_of(reaction: ReactionResult) -> PadLoads:
+    """Forces of a pad, kN: calibrated and unfactored, but for the factored one; the least one cleared of rounding."""
     permanent = reaction.calibrated_permanent_kN
     live = max(reaction.calibrated_live_max_kN, 0.0)
+    least = permanent + min(reaction.calibrated_live_min_kN, 0.0)
     return PadLoads(
         permanent=permanent,
         total=permanent + live,
-        minimum=permanent + min(reaction.calibrated_live_min_kN, 0.0),
+        minimum=0.0 if abs(least) < _ROUNDING * abs(permanent) else least,
         factored=reaction.calibrated_factored_max_kN,
     )
 

@@ -105,10 +105,10 @@ def _cause(girder: str, trend: TrendResult, one: Driver) -> str:
         seat = next(s for s in trend.seats if (s.girder, s.support) == (girder, one.support))
         way = "down" if seat.settlement_mm >= 0.0 else "up"
         moving = f", moving by {seat.rate_mm_per_year:+.2g} mm a year" if seat.moving else ""
-        return f'the seat at "{one.support}", {abs(seat.settlement_mm):.3g} mm {way}{moving}: it adds {one.adds:.2g}'
+        return f'the seat at "{one.support}", {abs(seat.settlement_mm):.3g} mm {way}{moving}: it adds {one.adds:.2g} to the utilisation'
     pad = next((p for p in trend.pads if (p.girder, p.support) == (girder, one.support)), None)
     moving = f", whose {_rate(pad)}" if pad is not None and pad.law != "steady" else ""
-    return f'the pad at "{one.support}"{moving}: it adds {one.adds:.2g}'
+    return f'the pad at "{one.support}"{moving}: it adds {one.adds:.2g} to the utilisation'
 
 
 def _rate(pad: PadTrend) -> str:

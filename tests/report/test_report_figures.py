@@ -11,6 +11,7 @@ from itertools import combinations
 import numpy as np
 import pytest
 
+from assess.report import svg
 from assess.report.figures import elevation, history, moments, residuals, seats, utilisation
 from assess.report.figures.layout import pack, spread
 
@@ -226,3 +227,14 @@ def test_the_bar_is_filled_in_proportion_and_framed_dashed_when_unknown():
     assert "stroke-dasharray" not in utilisation_mark(0.5)
     assert '<path d="M' in utilisation_mark(4.0)
     assert filled(4.0) == filled(1.3)
+
+
+@pytest.mark.parametrize("day", [dt.date(2032, 1, 1), dt.date(2032, 1, 9), dt.date(2032, 12, 31)])
+def test_the_years_under_a_pad_are_not_cut_at_the_edge_of_the_paper(day: dt.date) -> None:
+    limits = ((float(dt.date(2022, 1, 1).toordinal()), float(day.toordinal())), (-0.7, 0.2))
+    with svg.drawing(svg.SMALL_WIDTH, 160.0) as figure:
+        axes = history._axes(figure, limits)
+        figure.canvas.draw()
+        years = [label for label in axes.get_xticklabels() if label.get_text()]
+        assert years[-1].get_text() == "2032"
+        assert max(label.get_window_extent().x1 for label in years) <= figure.bbox.x1

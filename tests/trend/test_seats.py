@@ -22,6 +22,13 @@ def test_a_line_is_the_weighted_least_squares_of_numpy() -> None:
     assert law.moving
 
 
+@pytest.mark.parametrize("visits", range(2, 7))
+def test_a_seat_that_reads_the_same_at_every_visit_has_no_rate_at_all(visits: int) -> None:
+    law = fit_seat(TIMES[:visits], np.full(visits, -0.4e-3), SD[:visits])
+    assert law.rate == 0.0
+    assert not law.moving
+
+
 def test_exact_levels_give_their_rate() -> None:
     law = fit_seat(TIMES, 2e-3 + 1e-3 * TIMES, SD)
     assert law.rate == pytest.approx(1e-3, rel=1e-12)

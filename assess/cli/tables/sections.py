@@ -64,15 +64,16 @@ def _show_section(section: SectionView) -> None:
 
 def _show_properties(section: SectionView) -> None:
     shown = section.shown
+    steel = "" if section.deck is None else ", steel alone"
     rows = [
         ("area", "cm2", shown.area_m2, 1e4),
         ("second moment (stiffness)", "cm4", shown.second_moment_m4, 1e8),
         ("shear area (stiffness)", "cm2", section.shear_area_m2, 1e4),
         ("elastic modulus, top", "cm3", shown.elastic_modulus_top_m3, 1e6),
         ("elastic modulus, bottom", "cm3", shown.elastic_modulus_bottom_m3, 1e6),
-        ("plastic modulus", "cm3", shown.plastic_modulus_m3, 1e6),
+        ("plastic modulus" + steel, "cm3", shown.plastic_modulus_m3, 1e6),
         ("elastic axis above the underside", "mm", section.elastic_axis_mm, 1.0),
-        ("plastic axis above the underside", "mm", section.plastic_axis_mm, 1.0),
+        ("plastic axis above the underside" + steel, "mm", section.plastic_axis_mm, 1.0),
     ]
     print_table(
         ["property", "unit", "value"],

@@ -14,7 +14,7 @@ from assess.report import svg, words
 from assess.results import PadHistory
 
 _HEIGHT = 190.0
-_LEFT, _RIGHT, _FOOT, _HEAD = 40.0, 8.0, 58.0, 16.0
+_LEFT, _RIGHT, _FOOT, _HEAD = 40.0, 15.0, 58.0, 16.0  # right: half a year's label
 _TICKS = (
     0.01,
     0.02,
