@@ -150,6 +150,7 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
             shown = _assess_girder(model, supports)
         pads, about_pads = check_pads(model, supports.log_stiffness, shown.reactions)
         girders.append(replace(shown, pads=pads))
+        said += contact_cautions.tipping(girder.id, model.tips_off)
         said += about
         said += pad_cautions.of_prior(model) + about_pads
         if model.permanent.given:
@@ -392,7 +393,7 @@ def _reactions(model: GirderModel, calibrated: Floats, drops: Floats) -> list[Re
     least = factored_steady(factors, steady, -1.0)[0] + factors.live * worst.minimum
     lifts: list[str | None] = [None] * model.n
     if model.permanent.given:
-        free = ~model.held_down
+        free = ~model.effects.held_down
         by_cause = {
             "factored": free & (factored.lifted() | (least < 0.0)),
             "live": free & plain.lifted(),

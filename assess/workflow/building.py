@@ -16,10 +16,11 @@ from assess.capacity import (
     GirderLoads,
     PermanentLoads,
     Resistance,
+    evaluate,
     permanent_loads,
     plan_checks,
 )
-from assess.girder import Condensed, Girder, Piece
+from assess.girder import REACTION, Condensed, Girder, Piece, Tips
 from assess.loads import LoadCase, ModelLoad, Train
 from assess.pad import Pad
 from assess.workflow import pads
@@ -38,7 +39,8 @@ _END_SLACK_M = 1e-6  # an axle this close to an end of the girder stands on it
 class GirderModel:
     """One girder line of a bridge file, ready to compute with; everything costly is made once, when first asked for.
 
-    Its sections have the losses measured up to `as_of`; None: all of them.
+    Its sections have the losses measured up to `as_of`; None: all of them. Where it would tip under the loads it is
+    assessed for, it is taken as held down everywhere and `tips_off` names the supports that it would leave.
     """
 
     def __init__(self, bridge: BridgeDoc, girder: GirderDoc, as_of: dt.date | None = None) -> None:
@@ -53,6 +55,7 @@ class GirderModel:
         )
         self.pad_ids = [girder.supports[i].id for i in self.pads]
         self.n = len(girder.supports)
+        self.tips_off: list[str] = []
 
     @cached_property
     def section_states(self) -> dict[str, SectionState]:
@@ -177,7 +180,23 @@ class GirderModel:
             models=self.models,
             thermal=thermal_cases(self.bridge, self.doc),
         )
-        return Effects(self.condensed, self.plan, loads, self.held_down)
+        made = Effects(self.condensed, self.plan, loads, self.held_down)
+        try:
+            if self._may_tip:  # what holds a girder is a matter of equilibrium alone: any pads tell
+                evaluate(made, self.factors, self.compliance(self.nominal), np.zeros(self.n))
+                made.passing(
+                    self.factors, self.compliance(self.nominal)[None], np.zeros((1, self.n))
+                ).envelope(REACTION)
+        except Tips as error:
+            self.tips_off = [self.doc.supports[i].id for i in sorted(error.lifted)]
+            return Effects(self.condensed, self.plan, loads)
+        return made
+
+    @property
+    def _may_tip(self) -> bool:
+        """Whether hinges or upward loads may tip it; else a girder under its loads stands on two supports at least."""
+        upward = any((p.uniform or p.point or 0.0) < 0.0 for p in self.doc.permanent)
+        return not bool(self.held_down.all()) and (upward or any(span.hinges for span in self.doc.spans))
 
     def flexural_at(self, x: float) -> float:
         """EI at x, kN m2; at a change of section the piece to the right."""

@@ -29,6 +29,18 @@ def of_states(girder: str, lifting: Mapping[str, Sequence[str]], *, nothing_left
     return [said]
 
 
+def tipping(girder: str, supports: Sequence[str]) -> list[str]:
+    """Caution on a girder that would tip under the factored loads; `supports` are those it lifts off."""
+    if not supports:
+        return []
+    said = (
+        f"{girder}: would tip under factored loads: it lifts off {_listed(supports)}, and what is left does not hold it. Its figures "
+        "are those of a girder held down at every support and hold for no other: find out on site what ties it down, and "
+        "write hold_down = true there, or have a licensed engineer decide now on the load."
+    )
+    return [said]
+
+
 def of_reactions(girder: str, reactions: Sequence[ReactionResult]) -> list[str]:
     """Cautions on supports that lift, or are pulled, under the loads assessed for."""
     return [f'{girder}: "{row.support}" {told}' for row in reactions if (told := _of_support(row))]

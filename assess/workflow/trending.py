@@ -22,11 +22,11 @@ from assess.trend import (
     fit_trend,
     pad_future,
 )
-from assess.workflow import cautions, pad_cautions, section_cautions
+from assess.workflow import cautions, contact_cautions, pad_cautions, section_cautions
 from assess.workflow.assessing import Settlement, kept_fits, seat_histories
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import GirderFit, VisitFit, calibrate_visit
-from assess.workflow.lifting import tipping_named
+from assess.workflow.lifting import draws_worth, tipping_named
 from assess.workflow.pads import cold_shift, corrected
 from assess.workflow.status import LIMIT, status_of
 from assess.workflow.study import SEED, Progress, Study, quiet, test_readings
@@ -92,7 +92,7 @@ def trend_study(study: Study, *, progress: Progress) -> tuple[TrendResult, list[
             continue
         part, about = _girder(study, model, own)
         parts.append(part)
-        said += about
+        said += contact_cautions.tipping(girder.id, model.tips_off) + about
     progress("carried forward", len(study.bridge.girders), len(study.bridge.girders))
     said += _doubts(fits)
     said += _temperatures(study, fits)
@@ -311,9 +311,10 @@ def _spans(
     rng = np.random.default_rng([SEED, 1])
     for support, law in seats.items():
         drops[:, :, model.doc.support_index(support)] = law.draws(years, FORECAST_DRAWS, rng)
-    flat = (FORECAST_DRAWS * years.size, model.n)
     with tipping_named(model, "carried forward"):
-        drawn = evaluate_draws(model.effects, model.factors, compliances.reshape(flat), drops.reshape(flat))
+        count = draws_worth(model, compliances, drops)
+        some = (x[:count].reshape(-1, model.n) for x in (compliances, drops))
+        drawn = evaluate_draws(model.effects, model.factors, *some)
     result = []
     for row, draws in zip(rows, drawn, strict=True):
         check = row.check
@@ -323,7 +324,7 @@ def _spans(
                 effect=check.effect,
                 span=check.span + 1 if check.span >= 0 else None,
                 support=model.doc.supports[check.support].id if check.support >= 0 else None,
-                **_outlook(row.case.utilisation, draws.utilisation.reshape(FORECAST_DRAWS, -1), years, last),
+                **_outlook(row.case.utilisation, draws.utilisation.reshape(count, -1), years, last),
             )
         )
     return result

@@ -134,6 +134,7 @@ def cautions_beside(girder: str, said: list[str]) -> list[str]:
         "the seat at",
         "seat level",
         "over its limit",
+        "would tip",
         "likely wrong",
     )
     before = (
