@@ -129,6 +129,7 @@ _SPACES = str.maketrans({"\u00a0": " ", "\u202f": " ", "\u2009": " "})
 _NUMBER = re.compile(r"[+-]?(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][+-]?[0-9]+)?")
 _FACTOR = re.compile(r"(?P<name>[A-Za-zµμε°%]+)(?:\^?(?P<power>[1-46])|\^(?P<negative>-[1-46]))?")
 _PER = re.compile("1? */")  # "1.2e-5 / K", "0.005 1/K"
+_COMMA = re.compile(r",\s*[0-9]")
 _JOIN = re.compile(r" *([*·⋅/ ]|(?<=[A-Za-z])-(?=[A-Za-z])) *")
 
 
@@ -248,6 +249,10 @@ def _read(value: object, dimension: str, right: str) -> Quantity:
     unit = text[number.end() :].strip()
     if not unit:
         raise BedstoneError(f'"{shown(text)}" has no unit', remedy=right)
+    if _COMMA.match(unit):
+        raise BedstoneError(
+            f'"{shown(text)}" has a comma in its number', remedy=f"put a point there; {right}"
+        )
     try:
         si = to_si(amount, unit, dimension)
     except BedstoneError as error:

@@ -177,6 +177,12 @@ def test_a_mass_per_length_is_not_a_line_load() -> None:
     assert "mass" in line_of(lambda: read_quantity("600 kg/m", "line load"))
 
 
+def test_a_decimal_comma_is_named() -> None:
+    with pytest.raises(BedstoneError) as caught:
+        read_quantity("1,5 mm", "length")
+    assert str(caught.value).startswith('"1,5 mm" has a comma in its number; put a point there')
+
+
 def test_a_near_spelling_is_suggested() -> None:
     assert "percent" in line_of(lambda: to_si(1.0, "percnt / K", "temperature coefficient"))
 
