@@ -176,7 +176,15 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
         seed=SEED,
         draws=DRAWS,
         girders=girders,
-        cautions=list(dict.fromkeys([*said, cautions.PERMANENT_STIFFNESS, *cautions.STANDING])),
+        cautions=list(
+            dict.fromkeys(
+                [
+                    *sorted(said, key=pad_cautions.is_assumption),
+                    cautions.PERMANENT_STIFFNESS,
+                    *cautions.STANDING,
+                ]
+            )
+        ),
     )
 
 

@@ -20,6 +20,19 @@ FROM_MEMORY = (
 _APART = 1.5
 
 
+_ASSUMPTIONS = (
+    "computed from geometry by",
+    "share a prior",
+    "its geometry serves the checks",
+    "creep not determined",
+)
+
+
+def is_assumption(caution: str) -> bool:
+    """Tell a caution on what is assumed of pads from one on what was found: it changes no first sentence."""
+    return any(mark in caution for mark in _ASSUMPTIONS)
+
+
 def of_prior(model: GirderModel) -> list[str]:
     """Cautions on what is believed of a girder's pads before anything is read."""
     name, said = model.doc.id, []

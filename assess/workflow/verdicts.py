@@ -14,6 +14,7 @@ from assess.results import (
     SpanTrend,
     TrendResult,
 )
+from assess.workflow import pad_cautions
 from assess.workflow.cautions import section_name
 from assess.workflow.drivers import Driver
 
@@ -137,14 +138,8 @@ def cautions_beside(girder: str, said: list[str]) -> list[str]:
         "would tip",
         "likely wrong",
     )
-    before = (
-        "computed from geometry by",
-        "share a prior",
-        "its geometry serves the checks",
-        "creep not determined",
-    )
     own = [one for one in said if one.startswith(f"{girder}:") and any(word in one for word in words)]
-    kept = [one for one in own if "likely wrong" in one or not any(word in one for word in before)]
+    kept = [one for one in own if "likely wrong" in one or not pad_cautions.is_assumption(one)]
     return kept + [
         one
         for one in said
