@@ -23,7 +23,7 @@ _TOLD = sorted(
 
 
 def test_the_examples_of_the_bridge_file_are_found() -> None:
-    assert ("temperature coefficient", "1.2e-5 1/K") in _TOLD
+    assert ("thermal expansion", "12e-6 / K") in _TOLD
     assert len(_TOLD) > len(DIMENSIONS) + 5
 
 
