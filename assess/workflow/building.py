@@ -104,7 +104,8 @@ class GirderModel:
 
         Pads of one batch are correlated.
         """
-        return pads.prior_of([self.doc.supports[i] for i in self.pads], self.pad_models)
+        supports = [self.doc.supports[i] for i in self.pads]
+        return pads.prior_of(supports, self.nominal, self.stiffness_cv)
 
     def compliance(self, log_stiffness: Floats) -> Floats:
         """Support compliances (..., n) from ln k of the pads (..., q); the other supports hold their level."""

@@ -95,12 +95,16 @@ def variation_of(support: SupportDoc, pad: Pad | None) -> float:
     return stiffness_doubt(pad, support.pad.height_tolerance).cv
 
 
-def prior_of(supports: Sequence[SupportDoc], pads: Sequence[Pad | None]) -> PadPrior:
-    """ln k ~ N(ln k_nominal, tau), tau^2 = ln(1 + cv^2) (the lognormal of that cv), batches correlated in ln k."""
-    pairs = list(zip(supports, pads, strict=True))
-    cv = np.array([variation_of(*pair) for pair in pairs], dtype=np.float64)
-    mean = np.log(np.array([nominal_of(*pair) for pair in pairs], dtype=np.float64))
-    return PadPrior(mean=mean, sd=np.sqrt(np.log1p(cv**2)), correlation=_correlation(supports))
+def prior_of(supports: Sequence[SupportDoc], nominal: Floats, cv: Floats) -> PadPrior:
+    """ln k ~ N(nominal, tau), tau^2 = ln(1 + cv^2) (the lognormal of that cv), batches correlated in ln k.
+
+    Parameters
+    ----------
+    supports : of the pads
+    nominal : (q,) ln k
+    cv : (q,) coefficient of variation of k
+    """
+    return PadPrior(mean=nominal, sd=np.sqrt(np.log1p(cv**2)), correlation=_correlation(supports))
 
 
 def batches(supports: Sequence[SupportDoc]) -> dict[str, list[int]]:
