@@ -1,8 +1,8 @@
-"""Back-analysis: weighted least squares on ln k, with what the readings can and cannot tell.
+"""Back-analysis: weighted least squares on ln k and what else is unknown, with what the readings can and cannot tell.
 
-Minimises sum ((y - h(theta)) / sigma)^2 + sum ((ln k - ln k_nominal) / tau)^2 with the exact Jacobian
-(`minimise.py`); a prior that correlates pads is whitened with its Cholesky factor (`prior.py`). The covariance is
-(J'J)^-1 at the solution, prior rows included. Redundancy numbers and standardised residuals follow Baarda (1968):
+Minimises sum ((y - h(theta)) / sigma)^2 + sum ((theta - prior) / tau)^2 with the exact Jacobian (`minimise.py`); a
+prior that correlates pads is whitened with its Cholesky factor (`prior.py`). The covariance is (J'J)^-1 at the
+solution, prior rows included. Redundancy numbers and standardised residuals follow Baarda (1968):
 r = 1 - diag(J C J'), w = v / (sigma sqrt r); a reading is suspect past 3.29 (alpha 0.001).
 """
 
@@ -16,7 +16,7 @@ from scipy import special, stats
 
 from assess.calibrate.minimise import minimise
 from assess.calibrate.observations import ObservationModel
-from assess.calibrate.prior import PadPrior
+from assess.calibrate.prior import PadPrior, Prior
 
 Floats = NDArray[np.float64]
 
@@ -32,15 +32,17 @@ class NotDetermined(ValueError):
     Attributes
     ----------
     pads : positions (in the model's list of pads) that are not told
+    others : places in theta of other unknowns that are not told
     readings, unknowns : counts
     unbounded : the pads are read, but no finite stiffness fits best (a pad read to lengthen under load)
     """
 
     def __init__(
-        self, reason: str, *, pads: list[int], readings: int, unknowns: int, unbounded: bool = False
+        self, reason: str, *, places: list[int], q: int, readings: int, unknowns: int, unbounded: bool = False
     ) -> None:
         super().__init__(reason)
-        self.pads = pads
+        self.pads = [place for place in places if place < q]
+        self.others = [place for place in places if place >= q]
         self.readings = readings
         self.unknowns = unknowns
         self.unbounded = unbounded
@@ -54,26 +56,32 @@ class Fit:
     ----------
     log_stiffness : (q,) estimate of ln k, k in kN/m
     covariance : (q, q) of ln k
-    information : (q, q) inverse variance of ln k from the readings alone; singular where they tell nothing
+    theta, joint : (size,) all unknowns in the model's order, and their covariance (size, size)
+    information : (q, q) inverse variance of ln k from the readings alone; singular where they tell nothing. The other
+        unknowns are eliminated, with what is believed of them.
     information_vector : (q,) so that the readings' own likelihood is -x' information x / 2 + information_vector' x
-    seat_drops : (r,) drops in m of the seats read in test states
     predicted : (m,) in the readings' SI units
-    redundancy : (m,) share of each reading that the others check, 0 to 1
+    redundancy : (m,) share of each reading that the others check, 0 to 1; 1 - redundancy is its leverage
     standardised : (m,) v / (sigma sqrt r); NaN where nothing checks the reading
     suspect : (m,) |standardised| > 3.29
     chi_square, degrees_of_freedom, p_value : global test of the readings; p NaN without a degree of freedom.
         With a prior the unknowns count as far as the readings tell them: readings less the trace of the hat
         matrix, rounded.
+    effective_unknowns : the trace of the hat matrix
     data_share : (q,) 1 - posterior variance / prior variance; 1 without a prior. Where the prior correlates pads, what
         the readings would tell without that correlation: a pad told by its sisters is told by an assumption.
+    shares : (size,) the same of every unknown
+    singular_values : (min(m, size),) of the whitened Jacobian of the readings, in prior standard deviations of the
+        unknowns (in their own length where nothing is believed); below 1 a direction is told by the assumption
     evaluations : function evaluations used
     """
 
     log_stiffness: Floats
     covariance: Floats
+    theta: Floats
+    joint: Floats
     information: Floats
     information_vector: Floats
-    seat_drops: Floats
     predicted: Floats
     redundancy: Floats
     standardised: Floats
@@ -81,13 +89,21 @@ class Fit:
     chi_square: float
     degrees_of_freedom: int
     p_value: float
+    effective_unknowns: float
     data_share: Floats
+    shares: Floats
+    singular_values: Floats
     evaluations: int
 
     @property
     def sd(self) -> Floats:
         """Standard deviations of ln k, (q,)."""
         return np.sqrt(np.diag(self.covariance))
+
+    @property
+    def seat_drops(self) -> Floats:
+        """All unknowns after the pads, (size - q,)."""
+        return self.theta[self.log_stiffness.size :]
 
     def draws(self, count: int, seed: int) -> Floats:
         """Seeded draws of ln k, (count, q), from the normal approximation."""
@@ -102,82 +118,111 @@ def draw_normal(mean: Floats, covariance: Floats, count: int, seed: int) -> Floa
     return np.asarray(mean + noise @ root.T)
 
 
-def fit(model: ObservationModel, *, start: Floats, prior: PadPrior | None) -> Fit:
-    """Fit the pads of one girder.
+class Problem:
+    """The least-squares problem of a model and what is believed of its unknowns.
 
     Parameters
     ----------
     model : ObservationModel with m readings and q pads
-    start : (q,) ln k to start from, the nominal stiffnesses
-    prior : PadPrior, or None to let the readings speak alone
+    prior : of all unknowns, of the pads alone, or None
+    """
+
+    def __init__(self, model: ObservationModel, prior: Prior | PadPrior | None) -> None:
+        self.model = model
+        self.prior = whole(prior, model)
+        self.rows = self.prior.rows(model.size)
+
+    def linearise(self, theta: Floats) -> tuple[Floats, Floats]:
+        """Whitened residuals (m + k,) and their Jacobian, readings first."""
+        predicted, jacobian = self.model.linearise(theta)
+        weight = 1.0 / self.model.sd
+        residual = np.concatenate([(predicted - self.model.value) * weight, self.prior.residual(theta)])
+        return residual, np.concatenate([jacobian * weight[:, None], self.rows])
+
+    def cost(self, theta: Floats) -> Floats:
+        """Sum of squared whitened residuals (...), prior included, for theta (..., size): -2 ln posterior."""
+        residual = (self.model.predict(theta) - self.model.value) / self.model.sd
+        return np.asarray((residual**2).sum(axis=-1) + (self.prior.residual(theta) ** 2).sum(axis=-1))
+
+    def begin(self, start: Floats) -> Floats:
+        """Where to start (size,): ln k (q,) given, the others where they are believed to be."""
+        return start if start.size == self.model.size else np.concatenate([start, self.prior.mean])
+
+
+def whole(prior: Prior | PadPrior | None, model: ObservationModel) -> Prior:
+    """The prior of all unknowns, from one of the pads alone."""
+    if isinstance(prior, Prior):
+        return prior
+    others = model.size - model.pads.size
+    return Prior(pads=prior, mean=np.zeros(others), sd=np.full(others, np.inf))
+
+
+def fit(model: ObservationModel, *, start: Floats, prior: Prior | PadPrior | None) -> Fit:
+    """Fit the unknowns of one girder.
+
+    Parameters
+    ----------
+    model : ObservationModel with m readings and q pads
+    start : (q,) ln k to start from, the nominal stiffnesses; or (size,)
+    prior : of all unknowns, of the pads alone, or None to let the readings speak alone
 
     Raises
     ------
     NotDetermined
-        without a prior, where the readings do not fix every pad.
+        where neither readings nor prior fix every unknown.
     RuntimeError
         if the minimisation does not converge.
     """
-    q = start.size
-    weight = 1.0 / model.sd
-    begin = np.concatenate([start, np.zeros(len(model.seats))])
-    if prior is None:
-        _require_rank(model.jacobian(begin) * weight[:, None], q)
-    prior_rows = np.zeros((0, model.size))
-    if prior is not None:
-        prior_rows = prior.rows(model.size)
-
-    def linearise(theta: Floats) -> tuple[Floats, Floats]:
-        predicted, jacobian = model.linearise(theta)
-        residual = (predicted - model.value) * weight
-        if prior is not None:
-            residual = np.concatenate([residual, prior.residual(theta[:q])])
-        return residual, np.concatenate([jacobian * weight[:, None], prior_rows])
-
-    found = minimise(linearise, begin)
-    return _summarise(model, found.theta, start, prior, prior_rows, found.evaluations)
+    problem = Problem(model, prior)
+    begin = problem.begin(start)
+    if not problem.prior.holds_all:
+        _require_rank(problem.linearise(begin)[1], model)
+    found = minimise(problem.linearise, begin)
+    return _summarise(problem, found.theta, begin, found.evaluations)
 
 
-def _summarise(
-    model: ObservationModel,
-    theta: Floats,
-    start: Floats,
-    prior: PadPrior | None,
-    prior_rows: Floats,
-    evaluations: int,
-) -> Fit:
-    q = start.size
+def _summarise(problem: Problem, theta: Floats, start: Floats, evaluations: int) -> Fit:
+    model, prior, prior_rows = problem.model, problem.prior, problem.rows
+    q = model.pads.size
     predicted, data = model.linearise(theta)
     data = data / model.sd[:, None]
-    if prior is None:
-        _require_bounds(np.abs(theta[:q] - start), model)  # a pad that ran away no longer changes any reading
-        _require_rank(data, q)
+    if prior.pads is None:
+        _require_bounds(
+            np.abs(theta[:q] - start[:q]), model
+        )  # a pad that ran away changes no reading any more
+    if not prior.holds_all:
+        _require_rank(np.concatenate([data, prior_rows]), model)
     full = data.T @ data + prior_rows.T @ prior_rows
     scale = 1.0 / np.sqrt(np.diag(full))
-    covariance = scale[:, None] * np.linalg.inv(scale[:, None] * full * scale) * scale
-    if prior is None:
-        _require_bounds(np.sqrt(np.diag(covariance)[:q]), model)
+    joint = scale[:, None] * np.linalg.inv(scale[:, None] * full * scale) * scale
+    if prior.pads is None:
+        _require_bounds(np.sqrt(np.diag(joint)[:q]), model)
     residual = (model.value - predicted) / model.sd
-    hat = ((data @ covariance) * data).sum(axis=1)
+    hat = ((data @ joint) * data).sum(axis=1)
     redundancy = np.clip(1.0 - hat, 0.0, 1.0)
     checked = redundancy > 1e-6
     standardised = np.full(residual.shape, np.nan)
     standardised[checked] = residual[checked] / np.sqrt(redundancy[checked])
     chi_square = float(residual @ residual)
-    told = model.size if prior is None else round(float(hat.sum()))
-    freedom = max(0, model.value.size - told)
-    pads = covariance[:q, :q]
-    information = _information(data, q)
+    told = float(hat.sum()) if prior_rows.size else float(model.size)
+    freedom = max(0, model.value.size - round(told))
+    pads = joint[:q, :q]
+    information = _information(data, prior_rows, q)
     vector = information @ theta[:q]
-    if prior is not None:  # at the optimum the readings pull as hard as the prior holds
-        vector = vector + prior.pull(theta[:q])
-    share = np.ones(q) if prior is None else prior.share(pads, information)
+    if prior.pads is not None:  # at the optimum the readings pull as hard as the prior holds
+        vector = vector + prior.pads.pull(theta[:q])
+    variances = prior.variances(model.size)
+    shares = 1.0 - np.diag(joint) / variances
+    if prior.pads is not None:
+        shares[:q] = prior.pads.share(pads, information)
+    shares = np.clip(shares, 0.0, 1.0)
     return Fit(
         log_stiffness=theta[:q],
         covariance=pads,
+        theta=theta,
+        joint=joint,
         information=information,
         information_vector=vector,
-        seat_drops=theta[q:],
         predicted=predicted,
         redundancy=redundancy,
         standardised=standardised,
@@ -185,30 +230,46 @@ def _summarise(
         chi_square=chi_square,
         degrees_of_freedom=freedom,
         p_value=float(special.chdtrc(freedom, chi_square)) if freedom else np.nan,
-        data_share=np.clip(share, 0.0, 1.0),
+        effective_unknowns=told,
+        data_share=shares[:q],
+        shares=shares,
+        singular_values=_singular_values(data, variances),
         evaluations=evaluations,
     )
 
 
-def _information(data: Floats, q: int) -> Floats:
-    """Inverse variance of the pads from the readings alone, the seat drops eliminated."""
-    pads, seats = data[:, :q], data[:, q:]
-    if seats.shape[1]:
-        pads = pads - seats @ (np.linalg.pinv(seats) @ pads)
+def _singular_values(data: Floats, variances: Floats) -> Floats:
+    length = np.linalg.norm(data, axis=0)
+    own = 1.0 / np.where(length > 0.0, length, 1.0)
+    scale = np.where(np.isfinite(variances), np.sqrt(variances), own)
+    return np.asarray(np.linalg.svd(data * scale, compute_uv=False))
+
+
+def _information(data: Floats, prior_rows: Floats, q: int) -> Floats:
+    """Inverse variance of the pads by the readings alone, the others eliminated with what is believed of them."""
+    pads, others = data[:, :q], data[:, q:]
+    if others.shape[1]:
+        held = prior_rows[~prior_rows[:, :q].any(axis=1)][:, q:]
+        others = np.concatenate([others, held])
+        pads = np.concatenate([pads, np.zeros((held.shape[0], q))])
+        pads = pads - others @ (np.linalg.pinv(others) @ pads)
     return np.asarray(pads.T @ pads)
 
 
-def _require_rank(whitened: Floats, q: int) -> None:
-    readings, unknowns = whitened.shape
+def _require_rank(whitened: Floats, model: ObservationModel) -> None:
+    rows, unknowns = whitened.shape
     length = np.linalg.norm(whitened, axis=0)
-    silent = [int(i) for i in np.flatnonzero(length[:q] <= 1e-12 * max(length.max(initial=0.0), 1e-300))]
-    if readings >= unknowns and not silent:
+    silent = [int(i) for i in np.flatnonzero(length <= 1e-12 * max(length.max(initial=0.0), 1e-300))]
+    if rows >= unknowns and not silent:
         _, values, vectors = np.linalg.svd(whitened / length)
         if values[-1] > _RANK * values[0]:
             return
-        silent = [int(i) for i in np.flatnonzero(np.abs(vectors[-1][:q]) > 0.3)]
-    reason = "too few readings" if readings < unknowns else "the readings do not tell the pads apart"
-    raise NotDetermined(reason, pads=silent, readings=readings, unknowns=unknowns)
+        silent = [int(i) for i in np.flatnonzero(np.abs(vectors[-1]) > 0.3)]
+    reason = "too few readings" if rows < unknowns else "the readings do not tell the pads apart"
+    believed = rows - model.value.size
+    raise NotDetermined(
+        reason, places=silent, q=model.pads.size, readings=model.value.size, unknowns=unknowns - believed
+    )
 
 
 def _require_bounds(reach: Floats, model: ObservationModel) -> None:
@@ -217,7 +278,8 @@ def _require_bounds(reach: Floats, model: ObservationModel) -> None:
     if loose.size:
         raise NotDetermined(
             "the readings do not bound the stiffness",
-            pads=[int(i) for i in loose],
+            places=[int(i) for i in loose],
+            q=model.pads.size,
             readings=model.value.size,
             unknowns=model.size,
             unbounded=True,

@@ -69,10 +69,10 @@ class PadPrior:
         return np.concatenate([self._root, np.zeros((q, size - q))], axis=1)
 
     def residual(self, log_stiffness: Floats) -> Floats:
-        """Whitened distance (q,) of ln k from the mean."""
+        """Whitened distance (..., q) of ln k (..., q) from the mean."""
         if self.correlation is None:
             return np.asarray((log_stiffness - self.mean) / self.sd)
-        return np.asarray(self._root @ (log_stiffness - self.mean))
+        return np.asarray((log_stiffness - self.mean) @ self._root.T)
 
     def pull(self, log_stiffness: Floats) -> Floats:
         """How hard the prior holds (q,): precision times the distance from the mean."""
@@ -95,3 +95,47 @@ class PadPrior:
             return np.asarray(1.0 - np.diag(covariance) / self.sd**2)
         scaled = np.eye(self.sd.size) + information * np.outer(self.sd, self.sd)
         return np.asarray(1.0 - np.diag(np.linalg.inv(scaled)))
+
+
+@dataclass(frozen=True, kw_only=True)
+class Prior:
+    """What is believed of all unknowns: the pads as they are, the others each for itself.
+
+    Parameters
+    ----------
+    pads : None where nothing is believed of them
+    mean, sd : (r,) of the unknowns after the pads; sd infinite where nothing is believed
+    """
+
+    pads: PadPrior | None
+    mean: Floats
+    sd: Floats
+
+    @property
+    def _held(self) -> NDArray[np.bool_]:
+        return np.isfinite(self.sd)
+
+    @property
+    def holds_all(self) -> bool:
+        """Whether something is believed of every unknown."""
+        return self.pads is not None and bool(self._held.all())
+
+    def rows(self, size: int) -> Floats:
+        """Whitened rows (k, size) in a least squares of `size` unknowns."""
+        q = size - self.sd.size
+        others = np.eye(self.sd.size, size, q)[self._held] / self.sd[self._held, None]
+        return others if self.pads is None else np.concatenate([self.pads.rows(size), others])
+
+    def residual(self, theta: Floats) -> Floats:
+        """Whitened distance (..., k) of theta (..., size) from the mean."""
+        q = theta.shape[-1] - self.sd.size
+        others = ((theta[..., q:] - self.mean) / self.sd)[..., self._held]
+        if self.pads is None:
+            return np.asarray(others)
+        return np.concatenate([self.pads.residual(theta[..., :q]), others], axis=-1)
+
+    def variances(self, size: int) -> Floats:
+        """Prior variances (size,), infinite where nothing is believed."""
+        q = size - self.sd.size
+        pads = np.full(q, np.inf) if self.pads is None else self.pads.sd**2
+        return np.concatenate([pads, self.sd**2])

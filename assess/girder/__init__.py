@@ -17,6 +17,7 @@ from assess.girder.envelope import (
     passages,
     train_forces,
 )
+from assess.girder.imposed import imposed, imposed_forces
 from assess.girder.model import Girder, Piece
 from assess.girder.response import (
     REACTION,
@@ -54,6 +55,8 @@ __all__ = [
     "forces_of",
     "governing_placement",
     "holds",
+    "imposed",
+    "imposed_forces",
     "influence_line",
     "kinds",
     "passage_at",

@@ -42,8 +42,7 @@ class Curve:
     ) -> None:
         self.x, self.value, self.sd = x, y, np.ones(y.size)
         self.function, self.gradient, self.logarithmic = function, gradient, logarithmic
-        self.seats: list[tuple[int, int]] = []
-        self.size = 2
+        self.pads, self.size = np.arange(2), 2
 
     def b(self, theta: Floats) -> Floats:
         return np.exp(theta) if self.logarithmic else theta
