@@ -71,8 +71,8 @@ class Fit:
     data_share : (q,) 1 - posterior variance / prior variance; 1 without a prior. Where the prior correlates pads, what
         the readings would tell without that correlation: a pad told by its sisters is told by an assumption.
     shares : (size,) the same of every unknown
-    singular_values : (min(m, size),) of the whitened Jacobian of the readings, in prior standard deviations of the
-        unknowns (in their own length where nothing is believed); below 1 a direction is told by the assumption
+    slopes : (m, size) derivatives of the readings by the unknowns, in standard deviations of the readings
+    believed : (size,) prior variances, infinite where nothing is believed
     evaluations : function evaluations used
     """
 
@@ -92,13 +92,25 @@ class Fit:
     effective_unknowns: float
     data_share: Floats
     shares: Floats
-    singular_values: Floats
+    slopes: Floats
+    believed: Floats
     evaluations: int
 
     @property
     def sd(self) -> Floats:
         """Standard deviations of ln k, (q,)."""
         return np.sqrt(np.diag(self.covariance))
+
+    @property
+    def singular_values(self) -> Floats:
+        """Singular values (min(m, size),) of `slopes`, in prior standard deviations of the unknowns.
+
+        In their own length where nothing is believed of them. Below 1 a direction is told by the assumption.
+        """
+        length = np.linalg.norm(self.slopes, axis=0)
+        own = 1.0 / np.where(length > 0.0, length, 1.0)
+        scale = np.where(np.isfinite(self.believed), np.sqrt(self.believed), own)
+        return np.asarray(np.linalg.svd(self.slopes * scale, compute_uv=False))
 
     @property
     def seat_drops(self) -> Floats:
@@ -233,16 +245,10 @@ def _summarise(problem: Problem, theta: Floats, start: Floats, evaluations: int)
         effective_unknowns=told,
         data_share=shares[:q],
         shares=shares,
-        singular_values=_singular_values(data, variances),
+        slopes=data,
+        believed=variances,
         evaluations=evaluations,
     )
-
-
-def _singular_values(data: Floats, variances: Floats) -> Floats:
-    length = np.linalg.norm(data, axis=0)
-    own = 1.0 / np.where(length > 0.0, length, 1.0)
-    scale = np.where(np.isfinite(variances), np.sqrt(variances), own)
-    return np.asarray(np.linalg.svd(data * scale, compute_uv=False))
 
 
 def _information(data: Floats, prior_rows: Floats, q: int) -> Floats:

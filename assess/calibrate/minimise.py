@@ -12,6 +12,7 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
+from scipy.linalg.lapack import dgels
 from scipy.optimize import least_squares
 
 Floats = NDArray[np.float64]
@@ -57,11 +58,12 @@ def _gauss_newton(linearise: Linearised, start: Floats) -> Minimum | None:
         scale = np.sqrt((jacobian * jacobian).sum(axis=0))
         if not np.all(scale > 0.0) or not np.isfinite(cost):
             return None
-        q, r = np.linalg.qr(jacobian / scale)
-        if np.abs(np.diag(r)).min() < 1e-12:
+        factors, solution, info = dgels(jacobian / scale, residual)  # one small QR
+        if info or np.abs(factors.diagonal()).min() < 1e-12:
             return None
-        gain = q.T @ residual
-        step = -np.linalg.solve(r, gain) / scale
+        solution = solution[: theta.size].ravel()
+        gain = np.triu(factors[: theta.size]) @ solution
+        step = -solution / scale
         done = bool(gain @ gain <= _SMALL**2 * max(cost, 1e-12))
         if done or float(np.abs(step).max()) <= _SMALL * max(1.0, float(np.abs(theta).max())):
             return Minimum(theta=theta + step, evaluations=used, trust_region=False)

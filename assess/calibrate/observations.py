@@ -257,9 +257,11 @@ class ObservationModel:
     def _test_setting(self, theta: Floats) -> Setting:
         layout, lead, cases = self.layout, theta.shape[:-1], len(self._tests)
         compliance = self._compliance(theta[..., : self.pads.size])
-        drops = np.zeros((*lead, cases, self.condensed.n_supports))
-        for j, (which, support) in zip(layout.places("seats"), self._seat_places, strict=True):
-            drops[..., which, support] = theta[..., j]
+        drops = None
+        if self._seat_places:
+            drops = np.zeros((*lead, cases, self.condensed.n_supports))
+            for j, (which, support) in zip(layout.places("seats"), self._seat_places, strict=True):
+                drops[..., which, support] = theta[..., j]
         share = None
         if "share" in layout:
             share = np.ones((*lead, cases))
@@ -294,8 +296,7 @@ class ObservationModel:
     def _built_setting(self, theta: Floats) -> Setting:
         """The girder at a datum that was taken with the permanent loads on."""
         compliance = self._compliance(theta[..., self.layout.of("as built")])
-        drops = np.zeros((*theta.shape[:-1], 1, self.condensed.n_supports))
-        return Setting(compliance=compliance, joined=compliance, drops=drops, factor=self._factor(theta))
+        return Setting(compliance=compliance, joined=compliance, factor=self._factor(theta))
 
     def _group(
         self,

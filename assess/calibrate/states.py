@@ -57,7 +57,7 @@ class Setting:
     ----------
     compliance : (..., n) F of the pads in these states
     joined : (..., n) F0 of the pads when the spans were joined
-    drops : (..., c, n) seat drops
+    drops : (..., c, n) seat drops; None: the seats stand still
     factor : (...) phi; None: 1
     share : (..., c) eta; None: 1
     warmer : (...) t in K; None: 0
@@ -65,7 +65,7 @@ class Setting:
 
     compliance: Floats
     joined: Floats
-    drops: Floats
+    drops: Floats | None = None
     factor: Floats | None = None
     share: Floats | None = None
     warmer: Floats | None = None
@@ -73,7 +73,10 @@ class Setting:
 
 @dataclass(frozen=True, kw_only=True)
 class Slopes:
-    """Values (m,) and derivatives by ln F and ln F0 (m, n), seats (m, n), ln phi, ln eta and t (m,)."""
+    """Values (m,) and derivatives by ln F and ln F0 (m, n), seats (m, n), ln phi, ln eta and t (m,).
+
+    Those by ln F0, ln phi, ln eta and t are empty where nothing of the kind is there.
+    """
 
     value: Floats
     by_compliance: Floats
@@ -91,11 +94,13 @@ class Group:
         self._condensed = condensed
         self.rows = rows
         self._staged = bool(np.any(rows.stage_forces))
+        self._still = np.zeros_like(rows.forces)
 
     def predict(self, setting: Setting) -> Floats:
         """Values (..., m)."""
         rows = self.rows
-        compliance, drops = setting.compliance[..., None, :], setting.drops
+        compliance = setting.compliance[..., None, :]
+        drops: Floats = self._still if setting.drops is None else setting.drops
         held: Floats = rows.held
         forces: Floats = rows.forces
         if setting.share is not None:
@@ -115,7 +120,8 @@ class Group:
             level = self._condensed.solve(phi * compliance, forces, phi * drops).displacement / phi
             held = held / phi[..., 0]
         value = held + (rows.by_level * level[..., rows.state, :]).sum(axis=-1)
-        value = value + (rows.by_seat * setting.drops[..., rows.state, :]).sum(axis=-1)
+        if setting.drops is not None:
+            value = value + (rows.by_seat * setting.drops[..., rows.state, :]).sum(axis=-1)
         if setting.warmer is not None:
             value = value + setting.warmer[..., None] * rows.thermal
         if self._staged:
@@ -127,7 +133,8 @@ class Group:
     def linearise(self, setting: Setting) -> Slopes:
         """Values and derivatives at one setting, by one solve."""
         rows, f, state = self.rows, setting.compliance, self.rows.state
-        drops, forces, held = setting.drops, rows.forces, rows.held
+        forces, held = rows.forces, rows.held
+        drops: Floats = self._still if setting.drops is None else setting.drops
         phi = 1.0 if setting.factor is None else float(setting.factor)
         if setting.share is not None:
             forces, held = setting.share[:, None] * forces, setting.share[state] * held
@@ -138,11 +145,11 @@ class Group:
             drops = drops + (f - setting.joined) * rows.stage_forces
         level, reaction, by_seat = self._condensed.sensitivity(phi * f, forces, phi * drops)
         moved = rows.by_level @ by_seat  # (m, n): readings by seats, what the girder hands on
-        shortening = f * reaction
+        by_compliance = by_pads = moved * (f * reaction)[state]
         value = held / phi + (rows.by_level * (level / phi)[state]).sum(axis=1)
-        value += (rows.by_seat * setting.drops[state]).sum(axis=1)
-        by_joined = _NONE
-        by_compliance = moved * shortening[state]
+        if setting.drops is not None:
+            value += (rows.by_seat * setting.drops[state]).sum(axis=1)
+        by_joined = by_factor = by_share = by_warmth = _NONE
         if self._staged:
             later, before = f * rows.stage_forces, setting.joined * rows.stage_forces
             by_compliance = by_compliance + moved * later[state]
@@ -150,15 +157,18 @@ class Group:
             value += (rows.by_stage * before[state]).sum(axis=1)
         if setting.warmer is not None:
             value += float(setting.warmer) * rows.thermal
-        by_load = (moved * (f * moving)[state]).sum(axis=1)
+            by_warmth = rows.thermal + phi * (moved @ (f * rows.thermal_forces))
+        if setting.factor is not None or setting.share is not None:
+            by_share = (moved * (f * moving)[state]).sum(axis=1) + held / phi
+            by_factor = by_pads.sum(axis=1) - by_share
         return Slopes(
             value=value,
             by_compliance=by_compliance,
             by_joined=by_joined,
             by_drop=moved + rows.by_seat,
-            by_factor=(moved * shortening[state]).sum(axis=1) - by_load - held / phi,
-            by_share=by_load + held / phi,
-            by_warmth=rows.thermal + phi * (moved @ (f * rows.thermal_forces)),
+            by_factor=by_factor,
+            by_share=by_share,
+            by_warmth=by_warmth,
         )
 
 

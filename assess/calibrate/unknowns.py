@@ -66,4 +66,5 @@ class Layout:
 
     def places(self, block: str) -> range:
         """Indices in theta of a block."""
-        return range(self.size)[self.of(block)]
+        found = self.of(block)
+        return range(found.start, found.stop)

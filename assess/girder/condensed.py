@@ -19,6 +19,7 @@ from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
+from scipy.linalg.lapack import dgesv
 
 from assess.girder.batch import WORTHWHILE, solve_many
 from assess.girder.elimination import chord_rotations, continuous
@@ -304,7 +305,7 @@ class Condensed:
         """
         w, fw = self._weights(compliance)
         right = np.concatenate([(forces - settlement @ self.K).T, self.K], axis=1)
-        z = np.linalg.solve(self._system(w, fw), right)
+        z = np.ascontiguousarray(dgesv(self._system(w, fw), right)[2])
         cases = forces.shape[0]
         by_seat = -fw[:, None] * z[:, cases:]
         by_seat.ravel()[:: self.n_supports + 1] += 1.0
