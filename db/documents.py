@@ -11,6 +11,8 @@ import datetime as dt
 from dataclasses import dataclass, field
 
 from db.pad_doc import PadDoc
+from db.prior_doc import GaugeDoc, PriorDoc
+from db.raw_doc import BenchmarkDoc, RawDoc
 
 PERMANENT = "permanent"
 """The id of the load state measured from the as-built datum under permanent load."""
@@ -22,6 +24,12 @@ STAGES = ("continuous", "span by span")
 """Carried by the continuous girder, or by each span as a simple one before the spans were joined."""
 
 QUANTITIES = ("compression", "deflection", "settlement", "rotation", "strain")
+
+UNKNOWNS = ("pads", "sustained", "settlements", "girder", "datum", "share", "gradient")
+"""What a calibration may ask of the readings; "pads" is always among it."""
+
+DATUM_LOADS = ("none", "permanent")
+"""The permanent load that was there when the as-built datum was taken."""
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -157,6 +165,8 @@ class GirderDoc:
     spans: tuple[SpanDoc, ...]
     supports: tuple[SupportDoc, ...]
     permanent: tuple[PermanentDoc, ...] = ()
+    unknowns: tuple[str, ...] | None = None  # of UNKNOWNS; None: what the readings can carry
+    gauges: tuple[GaugeDoc, ...] = ()
 
     @property
     def length(self) -> float:
@@ -191,6 +201,7 @@ class VehicleDoc:
 
     id: str
     axles: tuple[tuple[float, float], ...]
+    plan_positions: tuple[float, ...] = ()  # m, where the leading axle can stand at a visit
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -267,6 +278,7 @@ class BridgeDoc:
     live: tuple[LiveDoc, ...] = ()
     temperature: tuple[TemperatureDoc, ...] = ()
     factors: FactorsDoc
+    prior: PriorDoc = field(default_factory=PriorDoc)
     text: str = field(repr=False)  # the file as read
     digest: str  # sha256 of the text
 
@@ -304,7 +316,10 @@ class LoadStateDoc:
 
 @dataclass(frozen=True, kw_only=True)
 class ReadingDoc:
-    """One reading: the SI value beside the value as entered."""
+    """One reading: the SI value beside the value as entered.
+
+    Where `raw` is there, value and sd are what it was reduced to, and the entered texts begin with them.
+    """
 
     girder: str
     state: str
@@ -321,6 +336,9 @@ class ReadingDoc:
     remark: str = ""
     source: str = ""  # where it stands: "visit.toml, reading 2" or "visit.csv, row 7"
     row: int | None = None  # the record's own number, once kept
+    benchmark: str = ""  # id of the benchmark it was levelled from
+    raw: RawDoc | None = None  # what it was reduced from
+    derived: bool = False  # a second value from readings that another reading was reduced from
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -338,6 +356,9 @@ class VisitDoc:
     text: str = field(repr=False)  # the TOML as read
     table_text: str = field(default="", repr=False)  # the readings table as read, if there is one
     digest: str  # sha256 over both
+    unknowns: tuple[tuple[str, tuple[str, ...]], ...] = ()  # by girder; "" for all girders
+    datum_load: str = "none"  # one of DATUM_LOADS
+    benchmarks: tuple[BenchmarkDoc, ...] = ()
 
     def state(self, state_id: str) -> LoadStateDoc:
         """Return a load state by id; KeyError if there is none."""
@@ -345,3 +366,15 @@ class VisitDoc:
             if state.id == state_id:
                 return state
         raise KeyError(state_id)
+
+    def unknowns_of(self, girder: str) -> tuple[str, ...] | None:
+        """Return what is asked for of a girder: its own, else that of all; None if the file says nothing."""
+        given = dict(self.unknowns)
+        return given.get(girder, given.get(""))
+
+    def benchmark(self, benchmark_id: str) -> BenchmarkDoc:
+        """Return a benchmark by id; KeyError if there is none."""
+        for benchmark in self.benchmarks:
+            if benchmark.id == benchmark_id:
+                return benchmark
+        raise KeyError(benchmark_id)
