@@ -14,7 +14,8 @@ from matplotlib.figure import Figure
 from assess.report import svg, words
 from assess.report.figures import silhouette
 from assess.report.figures.layout import Block, fitted, pack, row_heights, write
-from assess.results import Floats, GirderView, MomentLines
+from assess.results import GirderView, MomentLines
+from assess.results.view import Floats
 
 _LEFT, _RIGHT, _FOOT = 52.0, 8.0, 40.0
 _DOTTED = (0, (1.0, 2.2))

@@ -8,7 +8,8 @@ import numpy as np
 from scipy.interpolate import CubicSpline
 
 from assess.report import words
-from assess.results import ElevationState, Floats, GirderView, SupportView
+from assess.results import ElevationState, GirderView, SupportView
+from assess.results.view import Floats
 
 
 @dataclass(frozen=True, kw_only=True)

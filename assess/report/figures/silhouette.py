@@ -11,7 +11,8 @@ from matplotlib.patches import Circle
 
 from assess.report import svg, words
 from assess.report.figures.layout import fitted
-from assess.results import Floats, LoadStand
+from assess.results import LoadStand
+from assess.results.view import Floats
 
 STRIP_PT = 44.0
 """Height of a strip with one line of words."""
