@@ -16,13 +16,13 @@ def unknown(girder: str) -> str:
 
 
 def of_states(girder: str, lifting: Mapping[str, Sequence[str]], *, nothing_left: bool) -> list[str]:
-    """Caution: test states that are not fitted because a support lifts."""
+    """Caution: load states that are not fitted because a support lifts."""
     if not lifting:
         return []
     each = "; ".join(f"{state} (lifts at {_listed(supports)})" for state, supports in lifting.items())
     left = "no reading is left, and its pads are not calibrated" if nothing_left else "the rest is fitted"
     said = (
-        f"{girder}: left out of the fit, because the girder is off a pad under permanent load and the vehicle: "
+        f"{girder}: left out of the fit, because the girder is off a pad under permanent load and the vehicle, if there is one: "
         f"{each}; {left}. Look there for a gap, stand the vehicle elsewhere, or write hold_down = true at a support "
         "that is tied down."
     )
