@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import dataclasses
+import math
 from collections import defaultdict
 from collections.abc import Iterable, Mapping
 from dataclasses import dataclass, field
@@ -158,8 +159,8 @@ def _rotation(reading: ReadingDoc, made: Reduced) -> ReadingDoc:
         quantity="rotation",
         value=made.value,
         sd=made.sd,
-        value_entered=f"{_text(made.value, ROTATION_UNIT)} (from four gaps)",
-        sd_entered=_text(made.sd, ROTATION_UNIT, digits=3),
+        value_entered=f"{_text(made.value, made.sd, ROTATION_UNIT)} (from four gaps)",
+        sd_entered=_text(made.sd, made.sd, ROTATION_UNIT, digits=3),
         unit=ROTATION_UNIT,
         source=f"{reading.source}, rotation",
         raw=raw,
@@ -184,12 +185,15 @@ def _values(raw: RawDoc, unit: str) -> Values:
     return Values(
         value=made.value,
         sd=made.sd,
-        value_entered=f"{_text(made.value, unit)} ({how})",
-        sd_entered=f"{_text(made.sd, unit, digits=3)} (of one {raw.sd_entered})",
+        value_entered=f"{_text(made.value, made.sd, unit)} ({how})",
+        sd_entered=f"{_text(made.sd, made.sd, unit, digits=3)} (of one {raw.sd_entered})",
         unit=unit,
         raw=raw,
     )
 
 
-def _text(value: float, unit: str, *, digits: int = 4) -> str:
-    return f"{to_unit(value, unit):.{digits}g} {unit}"
+def _text(value: float, sd: float, unit: str, *, digits: int = 2) -> str:
+    """A value in a unit, to so many digits of its standard deviation."""
+    decimals = max(0, digits - 1 - math.floor(math.log10(to_unit(sd, unit))))
+    shown = round(to_unit(value, unit), decimals) + 0.0  # no minus before nothing
+    return f"{shown:.{decimals}f} {unit}"
