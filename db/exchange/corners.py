@@ -35,7 +35,7 @@ def _turned(reading: ReadingDoc, raw: RawDoc) -> list[str]:
     if reading.value <= 0.0 or not rows_exchanged(raw):
         return []
     one = (
-        "one side opens while the pad as a whole closes, and would not if near and far were exchanged in one of its lists; "
+        "one side opens while the pad as a whole closes, and would not if near and far were exchanged in one list; "
         "near is towards x = 0"
     )
     return [one]
