@@ -2,13 +2,16 @@
 
 from __future__ import annotations
 
+import datetime as dt
 import math
+import re
 from collections.abc import Callable
+from pathlib import Path
 
 import pytest
 
 from db.documents import ReadingDoc, VisitDoc
-from db.exchange import parse_visit, visit_queries
+from db.exchange import check_visit, parse_visit, read_bridge, visit_queries
 from db.exchange.readings_csv import parse_readings
 from tests.db.conftest import changed, line_of
 
@@ -266,3 +269,20 @@ def test_near_and_far_exchanged_are_to_be_looked_at_again(with_values: Callable[
     gaps = 'gaps = ["33 mm", "33 mm", "29 mm", "29 mm"]\ngaps_before = ["30 mm", "30 mm", "34 mm", "34 mm"]'
     (said,) = visit_queries(with_values(gaps))
     assert "if near and far were exchanged" in said
+
+
+def test_the_raw_readings_of_the_readme_are_taken() -> None:
+    root = Path(__file__).parents[3]
+    readme = (root / "README.md").read_text(encoding="utf-8")
+    head, raw = (
+        next(block for block in re.findall(r"```toml\n(.*?)```", readme, re.DOTALL) if word in block)
+        for word in ("[[load_state]]", "gaps_before")
+    )
+    text = re.sub(r"^readings = .*$", "", head, flags=re.MULTILINE) + raw
+    visit = parse_visit(text, file="visit.toml")
+    assert [r.quantity for r in visit.readings[1:]] == ["deflection", "compression", "rotation", "settlement"]
+    assert visit.readings[1].value == pytest.approx(2.4075e-3)
+    assert visit.benchmark(visit.readings[-1].benchmark).sd == pytest.approx(3e-4)
+    bridge = read_bridge(root / "sample_data" / "hollin-water.toml")
+    check_visit(visit, bridge, today=dt.date(2030, 1, 1), file="visit.toml")
+    assert visit_queries(visit) == []
