@@ -80,7 +80,7 @@ def _rows(text: str, file: str) -> list[Row]:
 def _cells(text: str, file: str) -> list[list[str]]:
     import pandas as pd
 
-    head = text.partition("\n")[0]
+    head = re.split("[\r\n]", text, maxsplit=1)[0]
     if "," not in head and head.count(";") + head.count("\t") > 1:
         raise BedstoneError("its columns are not parted by commas", file=file, remedy="save it with commas")
     try:
