@@ -22,7 +22,7 @@ def of_states(girder: str, lifting: Mapping[str, Sequence[str]], *, nothing_left
     each = "; ".join(f"{state} (lifts at {_listed(supports)})" for state, supports in lifting.items())
     left = "no reading is left, and its pads are not calibrated" if nothing_left else "the rest is fitted"
     said = (
-        f"{girder}: left out of the fit, because the girder is off a pad under permanent load and the vehicle, if there is one: "
+        f"{girder}: left out of the fit, because the girder is off a pad under permanent load and the vehicle: "
         f"{each}; {left}. Look there for a gap, stand the vehicle elsewhere, or write hold_down = true at a support "
         "that is tied down."
     )

@@ -94,7 +94,8 @@ def fit_girder(model: GirderModel, visit: VisitDoc, readings: list[ReadingDoc], 
     lifting = opens(model.nominal)
     setup, found = None, None
     asked = asked_of(model, visit, usable, options.unknowns)
-    while kept := [reading for reading in usable if not _off(reading, lifting)]:
+    while any(_tells(visit, reading) for reading in usable if not _off(reading, lifting)):
+        kept = [reading for reading in usable if not _off(reading, lifting)]
         asked = asked_of(model, visit, kept, options.unknowns)
         setup = Setup(model, visit, kept, asked.names)
         found = _fit(setup, prior=options.prior)
@@ -116,6 +117,11 @@ def fit_girder(model: GirderModel, visit: VisitDoc, readings: list[ReadingDoc], 
         left_out=left_out,
         by_hand=by_hand,
     )
+
+
+def _tells(visit: VisitDoc, reading: ReadingDoc) -> bool:
+    """Whether a reading can tell a stiffness; the level of a seat in the permanent state cannot."""
+    return reading.quantity != "settlement" or visit.state(reading.state).vehicle is not None
 
 
 def _off(reading: ReadingDoc, lifting: Lifting) -> bool:

@@ -19,6 +19,9 @@ from db.records import KeptResult
 Floats = NDArray[np.float64]
 
 
+_TIED = 1e-9  # correlation past which a seat was told together with something else
+
+
 @dataclass(frozen=True, kw_only=True)
 class Settlement:
     """A seat drop: m, with its standard deviation and the visit it was last measured on."""
@@ -235,8 +238,11 @@ def _fitted_seats(
     told = {s.support for s in shown.settlements_mm if s.data_share >= cautions.TOLD}
     if all(s.moment_relevant_data_share >= cautions.TOLD for s in shown.settlements_mm):
         told = {s.support for s in shown.settlements_mm}
+    tied = np.abs(fit.joint) > _TIED * np.sqrt(np.outer(np.diag(fit.joint), np.diag(fit.joint)))
     found = {}
     for place, support in zip(fit.places("settlements"), fit.seats, strict=True):
+        if tied[place].sum() < 2:
+            continue  # nothing but its own level speaks of it: the reading stands
         later = support in measured and measured[support].date > visit_fit.visit
         if support in told and not later:
             sd = float(np.sqrt(fit.joint[place, place]))
