@@ -74,8 +74,9 @@ class CorrelationResult:
 class RivalResult:
     """Another explanation of the same readings.
 
-    `told` says whether the readings tell its extra unknown at all; `told_apart_by` names the reading that would
-    decide between it and the calibration, None where none of the usual kinds would.
+    `told` says whether the readings tell its extra unknown at all; `simpler` that it asks for less than the
+    calibration and for nothing else; `told_apart_by` names the reading that would decide between it and the
+    calibration, None where none of the usual kinds would.
     """
 
     name: str
@@ -85,16 +86,22 @@ class RivalResult:
     log_likelihood: float
     effective_unknowns: float
     told: bool
+    simpler: bool
     told_apart_by: str | None
 
 
 @dataclass(frozen=True, kw_only=True)
 class CauseResult:
-    """What moved at a support: "pad" | "seat" | "pad and seat" | "neither" | "cannot be told"."""
+    """What moved at a support: "pad" | "seat" | "pad and seat" | "neither" | "cannot be told".
+
+    `off_if_seat_still_sd` and `off_if_pad_nominal_sd` say how far off the readings would be, in standard deviations,
+    with the seat at rest and with the pad within its nominal scatter; None where nothing was read of the seat.
+    """
 
     support: str
     cause: str
-    because: str
+    off_if_seat_still_sd: float | None
+    off_if_pad_nominal_sd: float
 
 
 @dataclass(frozen=True, kw_only=True)
