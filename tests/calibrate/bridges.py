@@ -92,7 +92,7 @@ def vehicles(bridge: Bridge) -> list[LoadCase]:
     return states
 
 
-def tested(bridge: Bridge, first: int) -> list[Observation]:
+def read_under(bridge: Bridge, first: int) -> list[Observation]:
     """Deflections in midspan and compressions at every pad, under the vehicle in every place."""
     edges = bridge.condensed.positions
     middles = (edges[1:] + edges[:-1]) / 2.0
@@ -114,14 +114,20 @@ def visited(
     read = list(lasting)
     if test:
         states += vehicles(bridge)
-        read += tested(bridge, 1)
+        read += read_under(bridge, 1)
     asked = unknowns or Unknowns(sustained=True, settlements=tuple(range(bridge.n)))
     return ObservationModel(bridge.condensed, np.arange(bridge.n), states, read, asked)
 
 
 # truth -------------------------------------------------------------------------------------------
 
-SDS = {"sustained": SUSTAINED_SD, "settlements": SETTLEMENT_SD, "girder": 0.10, "share": 0.10}
+SDS = {
+    "sustained": SUSTAINED_SD,
+    "settlements": SETTLEMENT_SD,
+    "girder": 0.10,
+    "share": 0.10,
+    "seats": np.inf,
+}
 """Of what is believed beside the pads, as in a bridge file that says nothing of it."""
 
 
@@ -146,10 +152,10 @@ def believed(bridge: Bridge, model: ObservationModel, *, shared_sd: float = 0.5 
 
 
 def drawn_truth(prior: Prior, rng: np.random.Generator) -> Floats:
-    """Unknowns (size,) drawn from what is believed of them."""
+    """Unknowns (size,) drawn from what is believed of them; by 0.5 mm where nothing is."""
     assert prior.pads is not None
     mean = np.concatenate([prior.pads.mean, prior.mean])
-    sd = np.concatenate([prior.pads.sd, prior.sd])
+    sd = np.concatenate([prior.pads.sd, np.where(np.isfinite(prior.sd), prior.sd, 0.5 * MM)])
     return np.asarray(mean + sd * rng.standard_normal(mean.size))
 
 
