@@ -257,3 +257,15 @@ def test_an_ensemble_that_has_no_time_says_that_it_did_not_settle(monkeypatch: p
     assert not found.converged
     assert "did not settle in 300 steps" in found.reason
     assert found.draws.shape == (200, 2)
+
+
+def test_where_hardly_a_proposal_is_possible_the_ensemble_starts_about_the_mean() -> None:
+    """A box far narrower than the normal picture: uniform, of variance width^2 / 12."""
+
+    def cost(theta: Floats) -> Floats:
+        return np.where(np.abs(theta).max(axis=1) < 0.02, 0.0, np.inf)
+
+    found = posterior(cost, np.zeros(2), np.eye(2), seed=3)
+    assert (found.kind, found.converged) == ("ensemble", True)
+    assert np.abs(found.draws).max() < 0.02
+    assert np.diag(found.covariance) == pytest.approx([0.04**2 / 12.0] * 2, rel=0.1)
