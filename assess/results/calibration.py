@@ -115,11 +115,15 @@ class RobustPad:
 
 @dataclass(frozen=True, kw_only=True)
 class ProposedRemoval:
-    """A reading that snooping proposes to look at; nothing is removed. `p_value` is that of the fit without it."""
+    """A reading that snooping proposes to look at; nothing is removed.
+
+    `p_value` is that of the fit without it and those before; `alike` are readings that could as well be the wrong one.
+    """
 
     reading: str
     standardised_residual: float
     p_value: float | None
+    alike: list[str] = field(default_factory=list)
 
 
 @dataclass(frozen=True, kw_only=True)
