@@ -1,7 +1,7 @@
 """How often the true explanation is among the close rivals, on bridges drawn at random. All seeded.
 
-By AICc a true explanation loses to one unknown more when noise alone gains it enough, and to one less when its effect is
-small; so the share is well below one for the plainest truths, and one for a settled pier or a shifted datum.
+By AICc a true explanation loses to one unknown more when noise alone gains it enough, and to one less when its effect
+is small; so the share is well below one for the plainest truths, and one for a settled pier or a shifted datum.
 """
 
 from __future__ import annotations
