@@ -28,7 +28,7 @@ from sqlalchemy import (
 )
 from sqlalchemy.orm import DeclarativeBase, Mapped, mapped_column
 
-SCHEMA_HEAD = "0002"
+SCHEMA_HEAD = "0003"
 """The newest migration; equal to Alembic's head."""
 
 NAMING = {
@@ -214,6 +214,7 @@ class KeptRow(Base):
     version: Mapped[str] = mapped_column(ID)
     result: Mapped[dict[str, Any]]
     made_at: Mapped[dt.datetime] = mapped_column(default=now)
+    evidence: Mapped[str | None] = mapped_column(DIGEST)  # what the record held when it was made; see `evidence.py`
 
 
 class CalibrationRow(KeptRow):
@@ -231,3 +232,81 @@ class AssessmentRow(KeptRow):
 
     __tablename__ = "assessments"
     __table_args__ = (Index(None, "bridge_id", "visit_id"),)
+
+
+class TrendRow(KeptRow):
+    """A trend over the calibrated visits up to one."""
+
+    __tablename__ = "trends"
+    __table_args__ = (Index(None, "bridge_id", "visit_id"),)
+
+
+class InterventionRow(Written, Base):
+    """What was done to a pad on a day; a withdrawal is a row of its own that supersedes it with a reason."""
+
+    __tablename__ = "interventions"
+    __table_args__ = (
+        CheckConstraint("kind IN ('replaced', 'jacked', 'shimmed')", name="kind"),
+        CheckConstraint("withdrawn = (supersedes_id IS NOT NULL)", name="withdrawn"),
+        CheckConstraint("(supersedes_id IS NULL) = (reason IS NULL)", name="reason"),
+    )
+
+    id: Mapped[int] = mapped_column(primary_key=True)
+    bridge_id: Mapped[int] = mapped_column(ForeignKey("bridges.id"), index=True)
+    support_id: Mapped[int] = mapped_column(ForeignKey("supports.id"))
+    date: Mapped[dt.date]
+    kind: Mapped[str] = mapped_column(String(20))
+    remark: Mapped[str] = mapped_column(Text)
+    supersedes_id: Mapped[int | None] = mapped_column(ForeignKey("interventions.id"), unique=True)
+    withdrawn: Mapped[bool] = mapped_column(default=False, server_default=false())
+    reason: Mapped[str | None] = mapped_column(Text)
+
+
+class ActionRow(Written, Base):
+    """Something to decide: one exceedance at one place, from its opening to its closing.
+
+    `subject` says what and where; `turn` counts how often it was opened there, so that two programs that
+    find the same thing at once cannot both open it.
+    """
+
+    __tablename__ = "actions"
+    __table_args__ = (
+        UniqueConstraint("bridge_id", "subject", "turn"),
+        CheckConstraint("turn >= 1", name="turn"),
+        CheckConstraint("(turn = 1) = (reopens_id IS NULL)", name="reopens"),
+    )
+
+    id: Mapped[int] = mapped_column(primary_key=True)
+    bridge_id: Mapped[int] = mapped_column(ForeignKey("bridges.id"))
+    subject: Mapped[str] = mapped_column(String(400))
+    turn: Mapped[int]
+    reopens_id: Mapped[int | None] = mapped_column(ForeignKey("actions.id"))
+    details: Mapped[dict[str, Any]]
+
+
+class ActionEventRow(Written, Base):
+    """What became of an action, numbered from 1, its opening; rows are only ever added."""
+
+    __tablename__ = "action_events"
+    __table_args__ = (
+        UniqueConstraint("action_id", "number"),
+        UniqueConstraint("action_id", "closes"),
+        CheckConstraint("number >= 1", name="number"),
+        CheckConstraint("kind IN ('opened', 'found', 'noted', 'closed')", name="kind"),
+        CheckConstraint("(kind = 'opened') = (number = 1)", name="opened"),
+        CheckConstraint("(kind = 'closed') = (closes IS NOT NULL)", name="closes"),
+        CheckConstraint("closes IS NULL OR closes = 1", name="closed_once"),
+    )
+
+    id: Mapped[int] = mapped_column(primary_key=True)
+    action_id: Mapped[int] = mapped_column(ForeignKey("actions.id"))
+    number: Mapped[int]
+    kind: Mapped[str] = mapped_column(String(20))
+    date: Mapped[dt.date]
+    closes: Mapped[int | None]  # 1 in the one event that closes; nothing elsewhere
+    visit_id: Mapped[int | None] = mapped_column(ForeignKey("visits.id"))
+    evidence: Mapped[str] = mapped_column(DIGEST)
+    severity: Mapped[str | None] = mapped_column(String(20))
+    due: Mapped[dt.date | None]
+    text: Mapped[str] = mapped_column(Text)
+    figures: Mapped[dict[str, Any]]
