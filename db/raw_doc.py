@@ -16,6 +16,7 @@ class RawDoc:
     """
 
     sd: float  # of one reading or of one gap, as given
+    sd_entered: str = ""  # the same as written, e.g. "0.05 mm"
     repeats: tuple[float, ...] = ()
     zero_before: tuple[float, ...] = ()  # unloaded, before
     zero_after: tuple[float, ...] = ()  # unloaded, after

@@ -24,10 +24,11 @@ from sqlalchemy import (
     Text,
     TypeDecorator,
     UniqueConstraint,
+    false,
 )
 from sqlalchemy.orm import DeclarativeBase, Mapped, mapped_column
 
-SCHEMA_HEAD = "0001"
+SCHEMA_HEAD = "0002"
 """The newest migration; equal to Alembic's head."""
 
 NAMING = {
@@ -141,6 +142,9 @@ class VisitRow(Written, Base):
     text: Mapped[str] = mapped_column(Text)
     table_text: Mapped[str] = mapped_column(Text)
     digest: Mapped[str] = mapped_column(DIGEST)
+    setup: Mapped[dict[str, Any] | None] = mapped_column(
+        JSON(none_as_null=True)
+    )  # unknowns, benchmarks, datum
 
 
 class LoadStateRow(Base):
@@ -190,6 +194,9 @@ class ReadingRow(Written, Base):
     supersedes_id: Mapped[int | None] = mapped_column(ForeignKey("readings.id"), unique=True)
     withdrawn: Mapped[bool] = mapped_column(default=False)
     reason: Mapped[str | None] = mapped_column(Text)
+    benchmark: Mapped[str] = mapped_column(ID, default="", server_default="")
+    raw: Mapped[dict[str, Any] | None] = mapped_column(JSON(none_as_null=True))  # what value and sd come from
+    derived: Mapped[bool] = mapped_column(default=False, server_default=false())
 
 
 class KeptRow(Base):

@@ -15,8 +15,10 @@ from db.errors import BedstoneError
 from db.exchange.combination_toml import factors, temperatures
 from db.exchange.fields import Fields, refuse_duplicates
 from db.exchange.files import digest_of, parse_toml, read_text, refuse_controls
+from db.exchange.gauges_toml import plan_positions
 from db.exchange.girder_toml import GIRDER, girder
 from db.exchange.plates_toml import PLATES, with_plates
+from db.exchange.prior_toml import prior
 from db.quantities import read_quantity
 from db.wording import printable, shown
 
@@ -25,10 +27,10 @@ STIFFEST_KN_PER_M2 = 1e9  # 1000 GPa
 SOFTEST_KN_PER_M2 = 1e6  # 1 GPa
 MOST_VEHICLES = 1000
 
-_TOP = "format bridge section girder vehicle live temperature factors"
+_TOP = "format bridge section girder vehicle live temperature factors prior"
 _BRIDGE = "id name carries built zero visit_interval"
 _SECTION = f"id E I shear_area G depth sagging_capacity hogging_capacity shear_capacity {PLATES}"
-_VEHICLE = "id axles"
+_VEHICLE = "id axles plan_positions"
 _LIVE = "id vehicle count pitch dynamic model track"
 _TRACKS = ("careful", "standard")
 
@@ -69,8 +71,8 @@ def parse_bridge(text: str, *, file: str) -> BridgeDoc:
     name = head.id("id")
     interval = head.optional_positive("visit_interval", "duration")
     sections = _sections(top)
-    vehicles = _vehicles(top)
     girders = _girders(top, [section.id for section in sections])
+    vehicles = _vehicles(top, max(one.length for one in girders))
     return BridgeDoc(
         id=name,
         name=head.text("name", name),
@@ -84,6 +86,7 @@ def parse_bridge(text: str, *, file: str) -> BridgeDoc:
         live=_live(top, [vehicle.id for vehicle in vehicles]),
         temperature=temperatures(top, girders),
         factors=factors(top),
+        prior=prior(top),
         text=text,
         digest=digest_of(text),
     )
@@ -128,11 +131,18 @@ def _girders(top: Fields, sections: list[str]) -> tuple[GirderDoc, ...]:
     return girders
 
 
-def _vehicles(top: Fields) -> tuple[VehicleDoc, ...]:
+def _vehicles(top: Fields, reach: float) -> tuple[VehicleDoc, ...]:
     tables = top.tables("vehicle", "vehicle", _VEHICLE)
-    vehicles = tuple(VehicleDoc(id=fields.id("id"), axles=_axles(fields)) for fields in tables)
+    vehicles = tuple(_vehicle(fields, reach) for fields in tables)
     refuse_duplicates(((f, v.id) for f, v in zip(tables, vehicles, strict=True)), "vehicle")
     return vehicles
+
+
+def _vehicle(fields: Fields, reach: float) -> VehicleDoc:
+    axles = _axles(fields)
+    return VehicleDoc(
+        id=fields.id("id"), axles=axles, plan_positions=plan_positions(fields, axles, reach=reach)
+    )
 
 
 def _axles(fields: Fields) -> tuple[tuple[float, float], ...]:

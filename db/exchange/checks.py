@@ -33,6 +33,7 @@ def check_visit(visit: VisitDoc, bridge: BridgeDoc, *, today: dt.date, file: str
         The first thing that does not fit, and how many readings more do not.
     """
     _check_head(visit, bridge, today, file)
+    _check_unknowns(visit, bridge, file)
     each(visit.states, lambda state: _check_state(state, visit, bridge, file))
     each(visit.readings, lambda reading: _check_reading(reading, visit, bridge))
 
@@ -56,6 +57,15 @@ def _check_head(visit: VisitDoc, bridge: BridgeDoc, today: dt.date, file: str) -
         problem = f"{visit.date} lies before the bridge was built ({bridge.built})"
         remedy = "mend the date of the visit, or built in the bridge file"
         raise BedstoneError(problem, file=file, field="visit, date", remedy=remedy)
+
+
+def _check_unknowns(visit: VisitDoc, bridge: BridgeDoc, file: str) -> None:
+    girders = [girder.id for girder in bridge.girders]
+    for girder, _ in visit.unknowns:
+        if girder and girder not in girders:
+            problem = f'there is no girder "{shown(girder)}"{suggestion(girder, girders)}'
+            remedy = f"known to the bridge: {listed(girders)}"
+            raise BedstoneError(problem, file=file, field="visit, unknowns", remedy=remedy)
 
 
 def _check_state(state: LoadStateDoc, visit: VisitDoc, bridge: BridgeDoc, file: str) -> None:

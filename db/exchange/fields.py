@@ -25,20 +25,20 @@ class Fields:
     file, path : str
         Where it stands, for errors; `path` is a path a person can follow.
     known : str
-        The fields it may have, space-separated.
+        The fields it may have, space-separated; None where the names are the user's own.
     """
 
-    def __init__(self, table: object, *, file: str, path: str, known: str) -> None:
+    def __init__(self, table: object, *, file: str, path: str, known: str | None) -> None:
         self.file = file
         self.path = path
+        names = [] if known is None else known.split()
         if not isinstance(table, dict):
             raise self.error(
-                "", "it is not a table", f"write it as a table with the fields {', '.join(known.split())}"
+                "", "it is not a table", f"write it as a table with the fields {', '.join(names)}"
             )
         self.table: dict[str, Any] = table
-        names = known.split()
         for name in table:
-            if name not in names:
+            if known is not None and name not in names:
                 hint = suggestion(name, names)
                 raise self.error(
                     "", f'unknown field "{shown(name)}"{hint}', f"known here: {', '.join(names)}"

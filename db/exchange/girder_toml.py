@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+from dataclasses import replace
 
 from db.documents import (
     PERMANENT_KINDS,
@@ -15,12 +16,14 @@ from db.documents import (
 )
 from db.errors import BedstoneError
 from db.exchange.fields import Fields, refuse_duplicates
+from db.exchange.gauges_toml import gauges
 from db.exchange.hinges_toml import hinges, refuse_mechanism
 from db.exchange.pad_toml import PAD, pad, refuse_idle
+from db.exchange.prior_toml import unknowns
 from db.pad_doc import PadDoc
 from db.wording import shown
 
-GIRDER = "id live_share span support permanent"
+GIRDER = "id live_share span support permanent unknowns gauge"
 SLACK_M = 1e-9
 """How far a piece may reach past its span or its neighbour: rounding, not meaning."""
 
@@ -58,7 +61,15 @@ def girder(fields: Fields, sections: list[str]) -> GirderDoc:
     refuse_mechanism(tables, spans, supports)
     length = sum(span.length for span in spans)
     permanent = tuple(_permanent(f, length) for f in fields.tables("permanent", "permanent", _PERMANENT))
-    return GirderDoc(id=name, live_share=share, spans=spans, supports=supports, permanent=permanent)
+    made = GirderDoc(
+        id=name,
+        live_share=share,
+        spans=spans,
+        supports=supports,
+        permanent=permanent,
+        unknowns=unknowns(fields, "unknowns") if fields.has("unknowns") else None,
+    )
+    return replace(made, gauges=gauges(fields, supports, length=length, hinges=made.hinges))
 
 
 def _span(fields: Fields, sections: list[str]) -> SpanDoc:

@@ -9,6 +9,7 @@ import math
 from collections import Counter, defaultdict
 
 from db.documents import BridgeDoc, ReadingDoc, SectionDoc, VisitDoc
+from db.exchange.corners import corner_queries
 
 PAD_STIFFNESS = (1e4, 1e7)  # kN/m
 AXLE_LOAD = (5.0, 500.0)  # kN
@@ -144,8 +145,8 @@ def _factors(bridge: BridgeDoc) -> list[str]:
 
 def visit_queries(visit: VisitDoc, earlier: VisitDoc | None = None) -> list[str]:
     """What to look at again in a visit file; `earlier` is the visit before it, if there is one."""
-    tested = [r for r in visit.readings if visit.state(r.state).vehicle is not None]
-    said = [*_spreads(tested), *_compressions(tested), *_seats(visit)]
+    tested = [r for r in visit.readings if visit.state(r.state).vehicle is not None and not r.derived]
+    said = [*_spreads(tested), *_compressions(tested), *_seats(visit), *corner_queries(visit)]
     if (
         earlier is not None
         and earlier.datum.strip() != visit.datum.strip()

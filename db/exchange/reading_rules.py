@@ -7,6 +7,7 @@ from typing import TypeVar
 
 from db.documents import ReadingDoc
 from db.errors import BedstoneError
+from db.prior_doc import GaugeDoc
 from db.wording import listed, shown, suggestion
 
 T = TypeVar("T")
@@ -33,10 +34,11 @@ EXAMPLE_OF = {
 _LARGEST = {"length": 2.0, "angle": 0.5, "strain": 0.05}  # m, rad, 1: past these it is a slip of unit
 _TALLEST_M = 50.0
 _AT_SUPPORT_ONLY = ("compression", "settlement")
+_LEVELLED = ("settlement", "deflection")
 
 
-def refuse_misplaced(reading: ReadingDoc, *, file: str, place: str) -> None:
-    """Raise BedstoneError if support, at and height do not fit the quantity."""
+def refuse_misplaced(reading: ReadingDoc | GaugeDoc, *, file: str, place: str) -> None:
+    """Raise BedstoneError if support, at, height and benchmark do not fit the quantity."""
 
     def wrong(field: str, problem: str, remedy: str) -> BedstoneError:
         return BedstoneError(problem, file=file, field=f"{place}, {field}", remedy=remedy)
@@ -55,13 +57,17 @@ def refuse_misplaced(reading: ReadingDoc, *, file: str, place: str) -> None:
         raise wrong("height", "a strain needs the height of the gauge", remedy)
     if what != "strain" and reading.height is not None:
         raise wrong("height", f"a {what} has none", "leave it out")
+    if isinstance(reading, ReadingDoc) and reading.benchmark and what not in _LEVELLED:
+        raise wrong("benchmark", f"a {what} is not levelled from one", "leave it out")
 
 
 def refuse_absurd(reading: ReadingDoc, *, file: str, place: str) -> None:
     """Raise BedstoneError if a value is so large that its unit must be wrong."""
     largest = _LARGEST[DIMENSION_OF[reading.quantity]]
+    raw = reading.raw
+    given = "value" if raw is None else "gaps" if raw.gaps else "repeats" if len(raw.repeats) > 1 else "value"
     for field, value, entered in (
-        ("value", reading.value, reading.value_entered),
+        (given, reading.value, reading.value_entered),
         ("sd", reading.sd, reading.sd_entered),
     ):
         if abs(value) > largest:
@@ -81,6 +87,14 @@ def undefined_state(reading: ReadingDoc, states: list[str]) -> BedstoneError:
     return BedstoneError(
         problem, file=reading.source, field="state", remedy=f"defined here: {listed(states)}"
     )
+
+
+def undefined_benchmark(reading: ReadingDoc, benchmarks: list[str]) -> BedstoneError:
+    """Return the error for a reading that is levelled from a benchmark which the visit does not define."""
+    hint = suggestion(reading.benchmark, benchmarks)
+    problem = f'there is no benchmark "{shown(reading.benchmark)}"{hint}'
+    remedy = f"defined here: {listed(benchmarks)}; each is a [[benchmark]] of the visit file, with id and sd"
+    return BedstoneError(problem, file=reading.source, field="benchmark", remedy=remedy)
 
 
 def each(things: Iterable[T], read: Callable[[T], R]) -> list[R]:

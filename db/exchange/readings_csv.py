@@ -10,12 +10,21 @@ from db.documents import QUANTITIES, ReadingDoc
 from db.errors import BedstoneError
 from db.exchange.fields import LONGEST_ID, LONGEST_TEXT
 from db.exchange.files import refuse_controls, shown_reason
+from db.exchange.raw_readings import (
+    GAPS,
+    LISTS,
+    SPACING,
+    Measured,
+    refuse_mixed,
+    refuse_odd,
+    values_of,
+)
 from db.exchange.reading_rules import DIMENSION_OF, EXAMPLE_OF, each, refuse_absurd, refuse_misplaced
-from db.quantities import read_number, read_quantity
+from db.quantities import Quantity, read_number, read_quantity
 from db.wording import listed, shown, suggestion
 
 REQUIRED = ("girder", "state", "quantity", "value", "sd", "unit")
-OPTIONAL = ("support", "at", "height", "instrument", "remark")
+OPTIONAL = ("support", "at", "height", "instrument", "remark", "benchmark", *LISTS, SPACING)
 COLUMNS = "girder,state,quantity,support,at,value,sd,unit,instrument,remark"
 WHAT = "table of readings"
 _SD_NAMES = ("stdev", "std", "stddev", "sigma", "s.d.", "standard deviation", "uncertainty")
@@ -30,8 +39,8 @@ def parse_readings(text: str, *, file: str) -> list[ReadingDoc]:
     Parameters
     ----------
     text : str
-        CSV: a line of column names, then a row a reading. `at` and `height` are in m;
-        `unit` holds for `value` and `sd`.
+        CSV: a line of column names, then a row a reading. `at`, `height` and `corner_spacing` are in m;
+        `unit` holds for all values and for `sd`; several values stand in one cell with semicolons between them.
     file : str
         Its name, for errors and for where each reading stands.
 
@@ -71,7 +80,7 @@ def _rows(text: str, file: str) -> list[Row]:
 def _cells(text: str, file: str) -> list[list[str]]:
     import pandas as pd
 
-    head = text.partition("\n")[0]
+    head = re.split("[\r\n]", text, maxsplit=1)[0]
     if "," not in head and head.count(";") + head.count("\t") > 1:
         raise BedstoneError("its columns are not parted by commas", file=file, remedy="save it with commas")
     try:
@@ -115,7 +124,8 @@ def _check_names(names: list[str], file: str) -> None:
         if names.count(name) > 1:
             problem = f'two columns are called "{name}"'
             raise BedstoneError(problem, file=file, field="row 1", remedy="keep one of them")
-    missing = [name for name in REQUIRED if name not in names]
+    several = any(name in names for name in ("repeats", GAPS[0]))
+    missing = [name for name in REQUIRED if name not in names and not (name == "value" and several)]
     if missing:
         problem = f"there is no column {listed(missing)}"
         raise BedstoneError(problem, file=file, field="row 1", remedy=f"write the names {COLUMNS}")
@@ -141,32 +151,51 @@ def _reading(row: Row, file: str) -> ReadingDoc:
         problem = f'"{shown(quantity)}" is not known here{suggestion(quantity, QUANTITIES)}'
         remedy = f"write one of {listed(QUANTITIES)}"
         raise BedstoneError(problem, file=file, field=f"{place}, quantity", remedy=remedy)
-    value, sd = (_measured(cells, column, quantity, file, place) for column in ("value", "sd"))
+    state = name("state")
+    given = [column for column in ("value", *LISTS, SPACING) if cells.get(column)]
+    refuse_mixed(given, quantity=quantity, state=state, file=file, place=place)
+    several = "repeats" in given or GAPS[0] in given
+    measured = Measured(
+        value=None if several else _measured(cells, "value", quantity, file, place),
+        sd=_measured(cells, "sd", quantity, file, place),
+        lists={c: _several(cells, c, quantity, file, place) for c in LISTS if c in given},
+        corner_spacing=metres(SPACING),
+    )
+    refuse_odd(measured, file=file, place=place)
     reading = ReadingDoc(
         girder=name("girder"),
-        state=name("state"),
+        state=state,
         quantity=quantity,
         support=name("support") if cells.get("support") else None,
         at=metres("at"),
         height=metres("height"),
-        value=value[0],
-        sd=sd[0],
-        value_entered=value[1],
-        sd_entered=sd[1],
-        unit=cells["unit"],
         instrument=_free(cells, "instrument", file, place),
         remark=_free(cells, "remark", file, place),
         source=f"{shown(file)}, {place}",
+        benchmark=name("benchmark") if cells.get("benchmark") else "",
+        **vars(values_of(measured)),
     )
     refuse_misplaced(reading, file=file, place=place)
     refuse_absurd(reading, file=file, place=place)
     return reading
 
 
-def _measured(cells: dict[str, str], column: str, quantity: str, file: str, place: str) -> tuple[float, str]:
-    """The SI value of a cell with the unit of its row, and both as written."""
+def _measured(cells: dict[str, str], column: str, quantity: str, file: str, place: str) -> Quantity:
+    """The value of a cell with the unit of its row."""
+    return _one(cells.get(column, ""), cells, column, quantity, file, place)
+
+
+def _several(
+    cells: dict[str, str], column: str, quantity: str, file: str, place: str
+) -> tuple[Quantity, ...]:
+    """The values of a cell, semicolons between them."""
+    numbers = [number.strip() for number in cells[column].split(";")]
+    return tuple(_one(number, cells, column, quantity, file, place) for number in numbers)
+
+
+def _one(number: str, cells: dict[str, str], column: str, quantity: str, file: str, place: str) -> Quantity:
     field = f"{place}, {column}"
-    number, unit = cells.get(column, ""), cells.get("unit", "")
+    unit = cells.get("unit", "")
     if not number:
         remedy = f"write a number such as {EXAMPLE_OF[quantity].split()[0]}"
         raise BedstoneError("it is empty", file=file, field=field, remedy=remedy)
@@ -183,10 +212,9 @@ def _measured(cells: dict[str, str], column: str, quantity: str, file: str, plac
         remedy = f"write for example {example}"
         raise BedstoneError("it is empty", file=file, field=f"{place}, unit", remedy=remedy)
     entered = f"{number} {unit}"
-    made = read_quantity(
+    return read_quantity(
         entered, DIMENSION_OF[quantity], file=file, field=field, example=EXAMPLE_OF[quantity]
     )
-    return made.si, entered
 
 
 def _free(cells: dict[str, str], column: str, file: str, place: str) -> str:

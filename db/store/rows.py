@@ -7,6 +7,7 @@ from collections.abc import Iterable, Mapping
 
 from db.documents import BridgeDoc, LoadStateDoc, ReadingDoc, VisitDoc
 from db.schema import LoadStateRow, ReadingRow, VisitRow
+from db.store.setups import raw_doc, raw_json, setup_fields, setup_json
 
 
 def writer() -> str:
@@ -30,6 +31,7 @@ def visit_row(doc: VisitDoc, *, bridge_id: int, revision_id: int) -> VisitRow:
         text=doc.text,
         table_text=doc.table_text,
         digest=doc.digest,
+        setup=setup_json(doc),
         written_by=writer(),
     )
 
@@ -70,6 +72,9 @@ def reading_row(
         instrument=doc.instrument,
         remark=doc.remark,
         source=doc.source,
+        benchmark=doc.benchmark,
+        raw=raw_json(doc.raw),
+        derived=doc.derived,
         written_by=writer(),
     )
 
@@ -99,6 +104,9 @@ def reading_doc(row: ReadingRow, *, state: str, girder: str, support: str | None
         remark=row.remark,
         source=row.source,
         row=row.id,
+        benchmark=row.benchmark,
+        raw=raw_doc(row.raw),
+        derived=row.derived,
     )
 
 
@@ -118,6 +126,7 @@ def visit_doc(
         text=row.text,
         table_text=row.table_text,
         digest=row.digest,
+        **setup_fields(row.setup),
     )
 
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 import datetime as dt
 import math
 import re
+from pathlib import Path
 
 import pytest
 from cli_results import CAUTION, assessment, calibration, pad, reading, trend
@@ -12,6 +13,7 @@ from cli_results import CAUTION, assessment, calibration, pad, reading, trend
 from assess.cli.tables.calibration import gathered_cautions
 from assess.cli.tables.words import chance, counted, interval, listed, number, section_name
 from db.documents import LoadStateDoc, ReadingDoc, VisitDoc
+from db.exchange import parse_visit
 from db.records import BridgeSummary, Taken, VisitSummary
 
 LONG = "the north-eastern intermediate pier of the second approach viaduct, downstream line"
@@ -245,6 +247,53 @@ def test_logging_a_visit_says_what_was_taken_in(bedstone, workflow):
     assert any(row[:3] == ["permanent", "settlement", "1"] for row in cells)
     assert "Seat settlements kept for the assessment" in said.out
     assert ["north", "pier 1", "down 3.1 mm", "0.1 mm"] in cells
+
+
+RAW = """
+[[reading]]
+girder = "north"
+state = "T1"
+quantity = "deflection"
+at = "20 m"
+repeats = ["1.3 mm", "1.2 mm", "1.4 mm", "1.3 mm", "1.3 mm", "1.3 mm"]
+zero_before = "0.1 mm"
+zero_after = "0.14 mm"
+sd = "0.01 mm"
+
+[[reading]]
+girder = "north"
+state = "T1"
+quantity = "compression"
+support = "pier 2"
+gaps = ["30.0 mm", "30.2 mm", "29.5 mm", "29.7 mm"]
+gaps_before = ["31.0 mm", "31.2 mm", "31.0 mm", "31.2 mm"]
+corner_spacing = "320 mm"
+sd = "0.05 mm"
+"""
+
+
+def test_what_was_reduced_is_shown_with_how_it_repeats_and_drifts(bedstone, workflow):
+    text = (Path(__file__).parents[1] / "data" / "visit-example.toml").read_text(encoding="utf-8") + RAW
+    document = parse_visit(text, file="visit.toml")
+    workflow(log_visit=lambda url, path, **_: (document, Taken(added=False, tried=True)))
+    said = bedstone("visit", "log", "--dry-run", "visit.toml")
+    cells = [split_row(line) for line in said.out.splitlines()]
+    assert ["deflection", "repeats less zeros", "1", "6", "0.01 mm", "0.0632 mm", "0.0400 mm"] in cells
+    assert ["compression", "four gaps", "1", "4", "0.05 mm", "not known", "not known"] in cells
+    assert ["T1", "rotation", "1", "1.56 mrad", "0.221 mrad"] in cells
+    assert "A rotation from four gaps is that of the girder against the seat." in said.out
+    assert "told by 5 degrees" not in said.out
+
+
+def test_how_readings_repeat_is_not_guessed_from_a_few(bedstone, workflow):
+    text = (Path(__file__).parents[1] / "data" / "visit-example.toml").read_text(encoding="utf-8")
+    document = parse_visit(text.replace('value = "2.31 mm"', 'repeats = ["2.3 mm", "2.4 mm"]'), file="v.toml")
+    workflow(log_visit=lambda url, path, **_: (document, Taken(added=True)))
+    said = bedstone("visit", "log", "visit.toml")
+    cells = [split_row(line) for line in said.out.splitlines()]
+    assert ["deflection", "repeats", "1", "2", "0.1 mm", "not known", "not known"] in cells
+    assert "told by 5 degrees of freedom at least" in " ".join(said.out.split())
+    assert ["T1", "deflection", "1", "2.350 mm", "0.0707 mm"] in cells
 
 
 def test_a_trial_run_says_that_nothing_was_kept_and_shows_what_to_look_at_again(bedstone, workflow):

@@ -1,5 +1,7 @@
 from __future__ import annotations
 
+from dataclasses import replace
+
 import pytest
 
 from db.documents import BridgeDoc, VisitDoc
@@ -23,3 +25,9 @@ def test_what_is_not_there_is_a_key_error(bridge: BridgeDoc, visit: VisitDoc) ->
         with pytest.raises(KeyError):
             look("nowhere")
     assert visit.state("T1").vehicle == "ballast wagon"
+
+
+def test_a_girder_has_its_own_unknowns_or_those_of_all(visit: VisitDoc) -> None:
+    asked = replace(visit, unknowns=(("", ("pads",)), ("north", ("pads", "datum"))))
+    assert asked.unknowns_of("north") == ("pads", "datum")
+    assert asked.unknowns_of("south") == ("pads",)

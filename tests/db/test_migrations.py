@@ -1,5 +1,8 @@
 from __future__ import annotations
 
+import datetime as dt
+import shutil
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -10,9 +13,12 @@ from sqlalchemy import Connection, create_engine, inspect
 from sqlalchemy.dialects import postgresql
 from sqlalchemy.schema import CreateTable
 
+from db.exchange import read_bridge, read_visit
 from db.migrations import known_versions, upgrade
 from db.schema import SCHEMA_HEAD, Base
 from db.store import open_record
+
+DATA = Path(__file__).parents[1] / "data"
 
 
 def differences(connection: Connection) -> list[object]:
@@ -72,6 +78,31 @@ def test_upgrading_twice_is_harmless() -> None:
 def test_every_version_has_one_parent_and_a_file() -> None:
     files = list((Path(__file__).parents[2] / "db" / "migrations" / "versions").glob("r*.py"))
     assert len(files) == len(known_versions())
+
+
+def test_a_record_of_the_first_version_is_migrated_with_its_values(tmp_path: Path) -> None:
+    location = tmp_path / "old.sqlite"
+    shutil.copy(DATA / "record-0001.sqlite", location)
+    with create_engine(f"sqlite:///{location}").connect() as connection:
+        assert connection.exec_driver_sql("SELECT version_num FROM alembic_version").scalar_one() == "0001"
+    with open_record(str(location)) as record:
+        assert not record.created
+        old = record.visit("quillmere", dt.date(2024, 5, 14))
+        bridge = record.bridge("quillmere").document
+    new = read_visit(DATA / "visit-example.toml")
+    assert replace(old, readings=()) == replace(new, readings=())
+    assert [(r.support, r.at, r.value, r.sd, r.value_entered) for r in old.readings] == [
+        ("pier 1", None, 1.42e-3, 5e-5, "1.42 mm"),
+        (None, 6.0, 2.31e-3, 1e-4, "2.31 mm"),
+    ]
+    assert {(r.benchmark, r.raw, r.derived) for r in old.readings} == {("", None, False)}
+    assert bridge == read_bridge(DATA / "bridge-example.toml")
+    with create_engine(f"sqlite:///{location}").connect() as connection:
+        assert (
+            connection.exec_driver_sql("SELECT version_num FROM alembic_version").scalar_one() == SCHEMA_HEAD
+        )
+        assert connection.exec_driver_sql("SELECT setup FROM visits").scalar_one() is None
+        assert differences(connection) == []
 
 
 def test_tables_made_halfway_are_not_kept(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:

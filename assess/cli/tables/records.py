@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 import click
 
+from assess.cli.tables.reduced import entered, show_reduced
 from assess.cli.tables.screen import print_heading, print_table, print_wrapped
 from assess.cli.tables.words import counted, listed, number
 
@@ -161,6 +162,7 @@ def show_visit_taken(visit: VisitDoc, taken: Taken) -> None:
             _by_state(visit.readings),
             words=2,
         )
+    show_reduced(visit.readings)
     settlements = [
         r for r in visit.readings if r.quantity == "settlement" and visit.state(r.state).vehicle is None
     ]
@@ -169,14 +171,14 @@ def show_visit_taken(visit: VisitDoc, taken: Taken) -> None:
         click.echo("Seat settlements kept for the assessment")
         print_table(
             ["girder", "support", "since the datum", "sd"],
-            [[r.girder, str(r.support), _settlement(r), r.sd_entered] for r in settlements],
+            [[r.girder, str(r.support), _settlement(r), entered(r.sd_entered)] for r in settlements],
             words=2,
         )
     _look_again(taken)
 
 
 def _settlement(reading: ReadingDoc) -> str:
-    return f"{'up' if reading.value < 0.0 else 'down'} {reading.value_entered.lstrip('+-−')}"
+    return f"{'up' if reading.value < 0.0 else 'down'} {entered(reading.value_entered).lstrip('+-−')}"
 
 
 def show_visits(bridge: str, visits: Sequence[VisitSummary]) -> None:
@@ -203,5 +205,5 @@ def _by_state(readings: Sequence[ReadingDoc]) -> list[list[str]]:
 def _range(readings: Sequence[ReadingDoc], what: str) -> str:
     """Smallest to largest, as they were written."""
     ordered = sorted(readings, key=lambda reading: float(getattr(reading, what)))
-    least, most = (str(getattr(reading, f"{what}_entered")) for reading in (ordered[0], ordered[-1]))
+    least, most = (entered(getattr(reading, f"{what}_entered")) for reading in (ordered[0], ordered[-1]))
     return least if least == most else f"{least} to {most}"

@@ -21,6 +21,11 @@ BAD = {
     "unknown girder": ('girder = "north"', 'girder = "nort"', 'no girder "nort" (did you mean "north"'),
     "unknown support": ('"pier 1"', '"pier 9"', 'girder "north" has no support "pier 9"'),
     "a pin compressed": ('"pier 1"', '"east abutment"', "is a pin, which has nothing to compress"),
+    "unknowns of an unknown girder": (
+        "[visit]",
+        '[visit]\nunknowns = { nort = ["pads"] }',
+        'visit, unknowns: there is no girder "nort" (did you mean "north"',
+    ),
     "past the end": ('at = "6 m"', 'at = "39.1 m"', "visit.toml, reading 2, at: 39.1 m lies outside girder"),
     "before the start": ('at = "6 m"', 'at = "-1 mm"', "reading 2, at"),
 }

@@ -6,6 +6,7 @@ import tomllib
 import pytest
 
 from db.exchange import draft_bridge, parse_bridge
+from db.prior_doc import PriorDoc
 from tests.db.conftest import line_of
 
 EXAMPLES = {
@@ -63,6 +64,10 @@ def test_every_optional_field_of_the_draft_is_read_when_its_comment_sign_goes() 
     assert [(p.name, p.yield_strength) for p in doc.sections[0].plates] == [("flange", pytest.approx(235e3))]
     assert doc.sections[0].losses
     assert doc.girders[0].supports[-1].pad is not None
+    assert doc.girders[0].unknowns == ("pads", "settlements")
+    assert [(g.quantity, g.support) for g in doc.girders[0].gauges] == [("compression", "abutment 1")]
+    assert doc.vehicles[0].plan_positions == (4.0, 8.0)
+    assert doc.prior == PriorDoc(sustained_ratio=0.7)
 
 
 def test_every_value_has_its_comment() -> None:

@@ -12,10 +12,13 @@ from db.documents import BridgeDoc
 from db.errors import BedstoneError
 from db.exchange import check_visit, read_bridge, read_visit
 
-TABLE = """girder,state,quantity,support,at,height,value,sd,unit,instrument,remark
-north,T1,compression,pier 1,,,1.42,0.05,mm,gap gauge,
-north,T1,deflection,,6,,2.31,0.1,mm,,"dial gauge 3, rusty"
-north,T1,strain,,6,-0.62,120,2,microstrain,,
+NAMES = "girder,state,quantity,support,at,height,value,sd,unit,instrument,remark,repeats,zero_after,gaps"
+TABLE = f"""{NAMES},gaps_before,corner_spacing
+north,T1,compression,pier 1,,,1.42,0.05,mm,gap gauge,,,,,,
+north,T1,deflection,,6,,2.31,0.1,mm,,"dial gauge 3, rusty",,,,,
+north,T1,strain,,6,-0.62,120,2,microstrain,,,,,,,
+north,T1,deflection,,20,,,0.1,mm,,,1.1;1.2;1.1,0.1,,,
+north,T1,compression,pier 2,,,,0.05,mm,,,,,30.0;30.2;29.5;29.7,31.0;31.2;31.0;31.2,0.32
 """
 ODD = [
     '"',

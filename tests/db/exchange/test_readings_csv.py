@@ -87,3 +87,8 @@ def test_a_strain_has_its_height_in_metres() -> None:
     assert parse_readings(text, file="v.csv")[0].height == -0.62
     assert "row 2, height" in line_of(lambda: parse_readings(text.replace("-0.62", ""), file="v.csv"))
     assert "row 2, height" in line_of(lambda: parse_readings(text.replace("-0.62", "-620"), file="v.csv"))
+
+
+def test_a_stray_carriage_return_among_the_names_is_refused_by_row() -> None:
+    text = TABLE.replace("instrument,", "instr\rument,", 1)
+    assert "unknown column" in line_of(lambda: parse_readings(text, file="v.csv"))

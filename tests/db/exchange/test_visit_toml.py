@@ -56,6 +56,30 @@ BAD = {
     "table with a path": ("[visit]", '[visit]\nreadings = "/etc/v.csv"', "visit, readings"),
     "table with a backslash": ("[visit]", "[visit]\nreadings = 'x\\v.csv'", "visit, readings"),
     "table that is none": ("[visit]", '[visit]\nreadings = "v.doc"', "visit, readings"),
+    "datum under an unknown load": ("[visit]", '[visit]\ndatum_load = "live"', "visit, datum_load"),
+    "unknowns without the pads": ("[visit]", '[visit]\nunknowns = ["datum"]', "visit, unknowns"),
+    "unknowns of no girder": ("[visit]", "[visit]\nunknowns = {}", "visit, unknowns: it names no girder"),
+    "unknowns of a nameless girder": ("[visit]", '[visit.unknowns]\n"" = ["pads"]\n[visit]', "unknowns"),
+    "unknowns of a girder that are none": (
+        "[visit]",
+        '[visit]\nunknowns = { north = ["pds"] }',
+        'visit, unknowns, north: "pds" is no unknown (did you mean "pads"',
+    ),
+    "benchmark without doubt": (
+        "[[reading]]",
+        '[[benchmark]]\nid = "BM 2"\nsd = "0 mm"\n[[reading]]',
+        'benchmark "BM 2", sd',
+    ),
+    "benchmark by a slip": (
+        "[[reading]]",
+        '[[benchmark]]\nid = "BM 2"\nsd = "2 m"\n[[reading]]',
+        'benchmark "BM 2", sd: "2 m" is no standard deviation of a benchmark',
+    ),
+    "two benchmarks of one name": (
+        "[[reading]]",
+        2 * '[[benchmark]]\nid = "BM 2"\nsd = "1 mm"\n' + "[[reading]]",
+        'two benchmarks are called "BM 2"',
+    ),
     "cut off": ('quantity = "deflection"', 'quantity = "defl', "not TOML"),
 }
 
@@ -140,3 +164,30 @@ def test_the_table_beside_the_file_is_read(visit_text: str, tmp_path: Path) -> N
 
 def test_a_file_without_a_table_is_read_as_its_text_is(visit: VisitDoc) -> None:
     assert read_visit(DATA / "visit-example.toml").digest == visit.digest
+
+
+def test_unknowns_are_those_of_the_girder_before_those_of_all(visit: VisitDoc, visit_text: str) -> None:
+    assert visit.unknowns_of("north") is None
+    for_all = changed(visit_text, "[visit]", '[visit]\nunknowns = ["girder", "pads"]')
+    assert parse_visit(for_all, file="v.toml").unknowns_of("north") == ("pads", "girder")
+    by_girder = changed(visit_text, "[visit]", '[visit]\nunknowns = { north = ["pads", "datum"] }')
+    made = parse_visit(by_girder, file="v.toml")
+    assert (made.unknowns_of("north"), made.unknowns_of("south")) == (("pads", "datum"), None)
+
+
+def test_levels_share_the_benchmark_they_name(visit: VisitDoc, visit_text: str) -> None:
+    assert (visit.benchmarks, visit.datum_load) == ((), "none")
+    text = changed(
+        visit_text,
+        "[visit]",
+        '[visit]\ndatum_load = "permanent"',
+        "[[reading]]",
+        '[[benchmark]]\nid = "BM 2"\nsd = "0.4 mm"\n\n[[reading]]',
+        'at = "6 m"',
+        'at = "6 m"\nbenchmark = "BM 2"',
+    )
+    made = parse_visit(text, file="visit.toml")
+    assert made.datum_load == "permanent"
+    assert made.benchmark(made.readings[1].benchmark).sd == pytest.approx(4e-4)
+    with pytest.raises(KeyError):
+        made.benchmark("BM 3")

@@ -29,6 +29,59 @@ def test_both_examples_come_back_as_they_went_in(record: Record, bridge: BridgeD
     assert dataclasses.replace(back, readings=bare) == visit
 
 
+RAW = """
+[[benchmark]]
+id = "BM 2"
+sd = "0.4 mm"
+
+[[reading]]
+girder = "north"
+state = "permanent"
+quantity = "settlement"
+support = "pier 1"
+repeats = ["4.1 mm", "4.3 mm", "4.4 mm"]
+sd = "0.3 mm"
+benchmark = "BM 2"
+
+[[reading]]
+girder = "north"
+state = "T1"
+quantity = "compression"
+support = "pier 2"
+gaps = ["30.0 mm", "30.2 mm", "29.5 mm", "29.7 mm"]
+gaps_before = ["31.0 mm", "31.2 mm", "31.0 mm", "31.2 mm"]
+gaps_after = ["31.0 mm", "31.2 mm", "30.96 mm", "31.16 mm"]
+corner_spacing = "320 mm"
+sd = "0.05 mm"
+
+[[reading]]
+girder = "north"
+state = "T1"
+quantity = "deflection"
+at = "20 m"
+value = "1.3 mm"
+zero_before = "0.1 mm"
+zero_after = ["0.12 mm", "0.14 mm"]
+sd = "0.1 mm"
+"""
+
+
+def test_raw_readings_and_what_the_visit_asks_come_back_as_they_went_in(
+    record: Record, bridge: BridgeDoc, visit: VisitDoc
+) -> None:
+    asked = '[visit]\ndatum_load = "permanent"\nunknowns = { north = ["pads", "datum"] }'
+    raw = parse_visit(changed(visit.text, "[visit]", asked) + RAW, file="v.toml")
+    record.add_bridge(bridge)
+    record.log_visit(raw)
+    back = record.visit("quillmere", DAY)
+    bare = tuple(dataclasses.replace(reading, row=None) for reading in back.readings)
+    assert dataclasses.replace(back, readings=bare) == raw
+    assert [reading.derived for reading in bare] == [False, False, False, False, True, False]
+    assert bare[2].benchmark == "BM 2"
+    assert bare[3].raw is not None
+    assert bare[3].raw.drift == pytest.approx(2e-5)
+
+
 def test_the_lists_count(record: Record, bridge: BridgeDoc, visit: VisitDoc) -> None:
     assert record.bridges() == []
     record.add_bridge(bridge)
