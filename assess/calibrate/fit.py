@@ -15,8 +15,8 @@ from numpy.typing import NDArray
 from scipy import special, stats
 
 from assess.calibrate.minimise import minimise
-from assess.calibrate.observations import ObservationModel
 from assess.calibrate.prior import PadPrior, Prior
+from assess.calibrate.restricted import Model
 
 Floats = NDArray[np.float64]
 
@@ -135,11 +135,11 @@ class Problem:
 
     Parameters
     ----------
-    model : ObservationModel with m readings and q pads
+    model : Model (an ObservationModel) with m readings and q pads
     prior : of all unknowns, of the pads alone, or None
     """
 
-    def __init__(self, model: ObservationModel, prior: Prior | PadPrior | None) -> None:
+    def __init__(self, model: Model, prior: Prior | PadPrior | None) -> None:
         self.model = model
         self.prior = whole(prior, model)
         self.rows = self.prior.rows(model.size)
@@ -161,7 +161,7 @@ class Problem:
         return start if start.size == self.model.size else np.concatenate([start, self.prior.mean])
 
 
-def whole(prior: Prior | PadPrior | None, model: ObservationModel) -> Prior:
+def whole(prior: Prior | PadPrior | None, model: Model) -> Prior:
     """The prior of all unknowns, from one of the pads alone."""
     if isinstance(prior, Prior):
         return prior
@@ -169,12 +169,12 @@ def whole(prior: Prior | PadPrior | None, model: ObservationModel) -> Prior:
     return Prior(pads=prior, mean=np.zeros(others), sd=np.full(others, np.inf))
 
 
-def fit(model: ObservationModel, *, start: Floats, prior: Prior | PadPrior | None) -> Fit:
+def fit(model: Model, *, start: Floats, prior: Prior | PadPrior | None) -> Fit:
     """Fit the unknowns of one girder.
 
     Parameters
     ----------
-    model : ObservationModel with m readings and q pads
+    model : Model (an ObservationModel) with m readings and q pads
     start : (q,) ln k to start from, the nominal stiffnesses; or (size,)
     prior : of all unknowns, of the pads alone, or None to let the readings speak alone
 
@@ -262,7 +262,7 @@ def _information(data: Floats, prior_rows: Floats, q: int) -> Floats:
     return np.asarray(pads.T @ pads)
 
 
-def _require_rank(whitened: Floats, model: ObservationModel) -> None:
+def _require_rank(whitened: Floats, model: Model) -> None:
     rows, unknowns = whitened.shape
     length = np.linalg.norm(whitened, axis=0)
     silent = [int(i) for i in np.flatnonzero(length <= 1e-12 * max(length.max(initial=0.0), 1e-300))]
@@ -278,7 +278,7 @@ def _require_rank(whitened: Floats, model: ObservationModel) -> None:
     )
 
 
-def _require_bounds(reach: Floats, model: ObservationModel) -> None:
+def _require_bounds(reach: Floats, model: Model) -> None:
     """Refuse pads whose ln k went, or may lie, further than any believable stiffness; reach (q,)."""
     loose = np.flatnonzero(reach > _UNBOUNDED)
     if loose.size:

@@ -219,7 +219,7 @@ def pad_rows(supports: list[SupportView], calibration: GirderCalibration | None)
                 stiffness = words.interval(
                     pad.stiffness_kN_per_m / 1000.0,
                     pad.low95_kN_per_m / 1000.0,
-                    pad.high95_kN_per_m / 1000.0,
+                    pad.highest_kN_per_m / 1000.0,
                     "kN/mm",
                 )
                 nominal = words.quantity(pad.nominal_kN_per_m / 1000.0, "kN/mm")

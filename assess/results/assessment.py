@@ -36,6 +36,8 @@ class CalibratedCase(CaseResult):
     utilisation_low95: float | None
     utilisation_high95: float | None
     probability_over_1: float | None
+    worst_rival: str | None = None  # of the close rival explanations, that with the greatest utilisation here
+    worst_rival_utilisation: float | None = None
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -112,6 +114,14 @@ class PadCheck:
 
 
 @dataclass(frozen=True, kw_only=True)
+class CarriedRival:
+    """A close rival of the calibration, and the reading that would decide between them, if one would."""
+
+    name: str
+    told_apart_by: str | None
+
+
+@dataclass(frozen=True, kw_only=True)
 class GirderAssessment:
     """The assessment of one girder line."""
 
@@ -119,6 +129,7 @@ class GirderAssessment:
     sections: list[SectionResult]
     reactions: list[ReactionResult]
     pads: list[PadCheck] = field(default_factory=list)  # of the pads that give their geometry
+    rivals: list[CarriedRival] = field(default_factory=list)
 
 
 @dataclass(frozen=True, kw_only=True)

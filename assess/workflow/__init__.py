@@ -2,6 +2,7 @@
 
 from assess.workflow.assessing import assess
 from assess.workflow.calibrating import calibrate
+from assess.workflow.fitting import Options
 from assess.workflow.records import (
     add_bridge,
     draft_bridge,
@@ -16,6 +17,7 @@ from assess.workflow.trending import trend
 from assess.workflow.viewing import report_view
 
 __all__ = [
+    "Options",
     "Progress",
     "add_bridge",
     "assess",

@@ -3,19 +3,20 @@
 from __future__ import annotations
 
 import datetime as dt
-from dataclasses import asdict, dataclass, replace
+from collections.abc import Sequence
+from dataclasses import asdict, replace
 from itertools import pairwise
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
-from assess.calibrate import draw_normal
 from assess.capacity import AS_THEY_ARE, Case, Row, RowDraws, evaluate, evaluate_draws, factored_steady
 from assess.girder import REACTION
 from assess.results import (
     AssessmentResult,
     CalibratedCase,
+    CarriedRival,
     CaseResult,
     GirderAssessment,
     ReactionResult,
@@ -30,63 +31,17 @@ from assess.workflow import (
     section_cautions,
 )
 from assess.workflow.building import GirderModel
-from assess.workflow.calibrating import GirderFit, VisitFit, from_kept
 from assess.workflow.combination import factors_of
+from assess.workflow.kept_fits import VisitFit
 from assess.workflow.lifting import tipping_named
 from assess.workflow.pad_checks import check_pads
 from assess.workflow.sections import last_loss
-from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
+from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, telling_readings
+from assess.workflow.supports import Supports, kept_fits, supports_of
 from db.records import KeptResult
 from db.store import open_record
 
 Floats = NDArray[np.float64]
-
-
-@dataclass(frozen=True, kw_only=True)
-class Settlement:
-    """A measured seat drop: m, with its standard deviation and the visit it was last measured on."""
-
-    value: float
-    sd: float
-    date: dt.date
-
-
-@dataclass(frozen=True, kw_only=True)
-class Supports:
-    """What is known of one girder's supports for the calibrated case.
-
-    Attributes
-    ----------
-    log_stiffness, covariance : (q,), (q, q) of ln k
-    source : visit of the calibration, None for nominal pads
-    settlements : by support id; none with nominal pads
-    """
-
-    log_stiffness: Floats
-    covariance: Floats
-    source: dt.date | None
-    fit: GirderFit | None
-    settlements: dict[str, Settlement]
-
-    def drops(self, model: GirderModel) -> Floats:
-        """Seat drops (n,), m."""
-        drops = np.zeros(model.n)
-        for support, one in self.settlements.items():
-            drops[model.doc.support_index(support)] = one.value
-        return drops
-
-    def draws(self, model: GirderModel, count: int, seed: int) -> tuple[Floats, Floats]:
-        """Draw compliances and seat drops, both (count, n)."""
-        log_stiffness = draw_normal(self.log_stiffness, self.covariance, count, seed)
-        return model.compliance(log_stiffness), self.drop_draws(model, count, seed)
-
-    def drop_draws(self, model: GirderModel, count: int, seed: int) -> Floats:
-        """Draw seat drops, (count, n)."""
-        sd = np.zeros(model.n)
-        for support, one in self.settlements.items():
-            sd[model.doc.support_index(support)] = one.sd
-        noise = np.random.default_rng([seed, 1]).standard_normal((count, model.n))
-        return np.asarray(self.drops(model) + sd * noise)
 
 
 def assess(
@@ -120,15 +75,6 @@ def _plain(result: AssessmentResult) -> dict[str, object]:
     return plain
 
 
-def kept_fits(study: Study, until: dt.date | None) -> dict[dt.date, tuple[VisitFit, KeptResult]]:
-    """The newest kept calibration of every visit up to a day, by date."""
-    newest: dict[dt.date, tuple[VisitFit, KeptResult]] = {}
-    for kept in study.calibrations:
-        if kept.visit is not None and (until is None or kept.visit <= until):
-            newest[kept.visit] = (from_kept(kept), kept)
-    return dict(sorted(newest.items()))
-
-
 def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> AssessmentResult:
     """Assess a fetched bridge."""
     fits = kept_fits(study, visit)
@@ -158,6 +104,7 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
         else:
             said += [contact_cautions.unknown(girder.id), *cautions.uplift(girder.id, shown.reactions)]
         said += cautions.of_sections(girder.id, shown.sections)
+        said += cautions.of_rivals(girder.id, shown)
         digests += [
             f"{s} {one.value!r} {one.sd!r} {one.date}" for s, one in sorted(supports.settlements.items())
         ]
@@ -198,82 +145,9 @@ def _of_sources(
     kept = fits[latest][1]
     if kept.revision != study.kept.revision:
         said.append(cautions.stale(latest, kept.revision, study.kept.revision))
-    newer = [v.date for v in study.until(until) if v.date > latest and test_readings(v)]
+    newer = [v.date for v in study.until(until) if v.date > latest and telling_readings(v)]
     if newer:
         said.append(cautions.superseded_visit(latest, newer[-1]))
-    return said
-
-
-def supports_of(
-    study: Study, model: GirderModel, fits: dict[dt.date, tuple[VisitFit, KeptResult]], until: dt.date | None
-) -> tuple[Supports, list[str]]:
-    """What is known of a girder's supports up to a day, and the cautions on it."""
-    name = model.doc.id
-    measured = settlements(study, name, until)
-    own = {date: found for date, (one, _) in fits.items() if (found := one.of(model)) is not None}
-    if not fits:
-        left = cautions.settlements_left_out(name, [(s, 1e3 * one.value) for s, one in measured.items()])
-        nominal = Supports(
-            log_stiffness=model.nominal,
-            covariance=model.prior.covariance,
-            source=None,
-            fit=None,
-            settlements={},
-        )
-        return nominal, left
-    said = _of_seats(study, model, fits, until)
-    said += cautions.settlements_used(
-        name, [(s, 1e3 * one.value, 1e3 * one.sd, one.date) for s, one in measured.items()]
-    )
-    if not own:
-        if model.pads.size:
-            said.append(cautions.girder_not_calibrated(name))
-        return (
-            Supports(
-                log_stiffness=model.nominal,
-                covariance=model.prior.covariance,
-                source=None,
-                fit=None,
-                settlements=measured,
-            ),
-            said,
-        )
-    date = max(own)
-    if date != max(fits):
-        said.append(cautions.older_girder(name, date, max(fits)))
-    said += [one for one in fits[date][0].result.cautions if one.startswith(f"{name}: ")]
-    said += _forgotten(model, own, date)
-    return (
-        Supports(
-            log_stiffness=own[date].log_stiffness,
-            covariance=own[date].covariance,
-            source=date,
-            fit=own[date],
-            settlements=measured,
-        ),
-        said,
-    )
-
-
-def _of_seats(
-    study: Study, model: GirderModel, fits: dict[dt.date, tuple[VisitFit, KeptResult]], until: dt.date | None
-) -> list[str]:
-    """Cautions on seats: never read, read long ago, risen since."""
-    name = model.doc.id
-    histories = seat_histories(study, name, until)
-    newest = max([*fits, *(visit.date for visit in study.until(until))])
-    said = cautions.seats_not_read(name, [s.id for s in model.doc.supports if s.id not in histories], newest)
-    old: dict[dt.date, list[str]] = {}
-    for support, history in histories.items():
-        if history[-1].date < newest:
-            old.setdefault(history[-1].date, []).append(support)
-        for first, second in pairwise(history):
-            fall = second.value - first.value
-            if fall < -cautions.SUSPECT * float(np.hypot(first.sd, second.sd)):
-                args = (1e3 * first.value, 1e3 * second.value, first.date, second.date)
-                said.append(cautions.seat_turned(name, support, *args))
-    for date, supports in sorted(old.items()):
-        said += cautions.seats_old(name, supports, date, newest)
     return said
 
 
@@ -287,62 +161,41 @@ def _of_datum(study: Study, until: dt.date | None) -> list[str]:
     ]
 
 
-def _forgotten(model: GirderModel, own: dict[dt.date, GirderFit], date: dt.date) -> list[str]:
-    said = []
-    for i, support in enumerate(model.pad_ids):
-        if own[date].data_share[i] >= cautions.TOLD:
-            continue
-        telling = [d for d, fit in own.items() if d < date and fit.data_share[i] >= cautions.TOLD]
-        if not telling:
-            continue
-        ratio = float(np.exp(own[max(telling)].log_stiffness[i] - model.nominal[i]))
-        said.append(cautions.forgotten_pad(model.doc.id, support, date, max(telling), ratio))
-    return said
-
-
-def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str, list[Settlement]]:
-    """Measured settlements of each support of a girder, by date; repeats of one visit are pooled by weight."""
-    found: dict[str, list[Settlement]] = {}
-    for visit in study.until(until):
-        values: dict[str, list[tuple[float, float]]] = {}
-        for reading in visit.readings:
-            permanent = visit.state(reading.state).vehicle is None
-            if (
-                reading.girder == girder
-                and reading.quantity == "settlement"
-                and permanent
-                and reading.support
-            ):
-                values.setdefault(reading.support, []).append((reading.value, reading.sd))
-        for support, pairs in values.items():
-            value, sd = np.array(pairs).T
-            weight = sd**-2.0
-            pooled = Settlement(
-                value=float((weight @ value) / weight.sum()), sd=float(weight.sum() ** -0.5), date=visit.date
-            )
-            found.setdefault(support, []).append(pooled)
-    return found
-
-
-def settlements(study: Study, girder: str, until: dt.date | None) -> dict[str, Settlement]:
-    """The last measured settlement of each support of a girder."""
-    return {support: history[-1] for support, history in seat_histories(study, girder, until).items()}
-
-
 def _assess_girder(model: GirderModel, supports: Supports) -> GirderAssessment:
-    drops, none = supports.drops(model), np.zeros(model.n)
-    calibrated = model.compliance(supports.log_stiffness)
+    none = np.zeros(model.n)
+    calibrated, drops = supports.acting(model)
     firm = evaluate(model.effects, model.factors, model.unyielding, none)
     nominal = evaluate(model.effects, model.factors, model.compliance(model.nominal), none)
     found = evaluate(model.effects, model.factors, calibrated, drops)
     draws = evaluate_draws(model.effects, model.factors, *supports.draws(model, DRAWS, SEED))
-    sections = [_section(model, *four) for four in zip(firm, nominal, found, draws, strict=True)]
+    carried = [] if supports.fit is None else supports.fit.rivals
+    others = [
+        evaluate(model.effects, model.factors, *supports.as_rival(rival).acting(model)) for rival in carried
+    ]
+    names = [rival.name for rival in carried]
+    sections = [
+        _section(model, *four, _worst(names, [rows[i] for rows in others]))
+        for i, four in enumerate(zip(firm, nominal, found, draws, strict=True))
+    ]
     reactions = _reactions(model, calibrated, drops)
-    return GirderAssessment(girder=model.doc.id, sections=sections, reactions=reactions)
+    shown = [CarriedRival(name=one.name, told_apart_by=one.told_apart_by) for one in carried]
+    return GirderAssessment(girder=model.doc.id, sections=sections, reactions=reactions, rivals=shown)
+
+
+def _worst(names: Sequence[str], rows: Sequence[Row]) -> tuple[str, float] | None:
+    """The rival that uses a section most, where that can be told."""
+    used = [(row.case.utilisation, name) for name, row in zip(names, rows, strict=True)]
+    finite = [pair for pair in used if np.isfinite(pair[0])]
+    return (max(finite)[1], max(finite)[0]) if finite else None
 
 
 def _section(
-    model: GirderModel, unyielding: Row, nominal: Row, calibrated: Row, drawn: RowDraws
+    model: GirderModel,
+    unyielding: Row,
+    nominal: Row,
+    calibrated: Row,
+    drawn: RowDraws,
+    worst: tuple[str, float] | None,
 ) -> SectionResult:
     check = calibrated.check
     low = high = over = None
@@ -363,6 +216,8 @@ def _section(
             utilisation_low95=low,
             utilisation_high95=high,
             probability_over_1=over,
+            worst_rival=None if worst is None else worst[0],
+            worst_rival_utilisation=None if worst is None else worst[1],
         ),
     )
 

@@ -145,13 +145,16 @@ class GirderModel:
         """The published live load models with the girder's share in them."""
         return model_loads(self.bridge, self.doc)
 
-    def placed(self, state: LoadStateDoc) -> LoadCase:
-        """The girder's share of a placed test vehicle, without dynamic allowance; axles off the girder left out."""
+    def placed(self, state: LoadStateDoc, shift: float = 0.0) -> LoadCase:
+        """The girder's share of a placed test vehicle, without dynamic allowance; axles off the girder left out.
+
+        It stands `shift` m further than written.
+        """
         if state.vehicle is None or state.leading_axle_at is None:
             raise ValueError(f"load state {state.id} has no vehicle")
         train = _train(self.bridge, state.vehicle)
         way = -1.0 if state.towards == "larger x" else 1.0
-        x = state.leading_axle_at + way * train.offsets
+        x = state.leading_axle_at + shift + way * train.offsets
         length = self.doc.length  # rounding of converted units takes no axle off an end support
         on = (x >= -_END_SLACK_M) & (x <= length + _END_SLACK_M)
         x = np.clip(x[on], 0.0, length)

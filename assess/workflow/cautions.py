@@ -6,9 +6,7 @@ import datetime as dt
 from collections.abc import Sequence
 
 from assess.calibrate import SUSPECT as SUSPECT
-from assess.calibrate import Fit
-from assess.results import GirderCalibration, ReactionResult, SectionResult
-from db.documents import ReadingDoc, VisitDoc
+from assess.results import GirderAssessment, ReactionResult, SectionResult
 
 STANDING = (
     (
@@ -22,92 +20,6 @@ TOLD = 0.5  # data share below which a pad is told by the assumption
 REFERENCE_TEMPERATURE = 20.0  # degC
 _FAR = 10.0  # K from the reference that calls for a word
 MISFIT = 0.05
-
-
-def of_fit(girder: str, shown: GirderCalibration, readings: Sequence[ReadingDoc], found: Fit) -> list[str]:
-    """Cautions on one girder's fit."""
-    said = []
-    for pad in shown.pads:
-        if pad.data_share < TOLD:
-            said.append(
-                f'{girder}: the pad at "{pad.support}" is told by the assumption, not by the readings '
-                f"(data share {pad.data_share:.0%}); read its compression under a load near it."
-            )
-        if pad.ratio_to_nominal > 3.0 or pad.ratio_to_nominal < 1.0 / 3.0:
-            way = "stiffer" if pad.ratio_to_nominal > 1.0 else "softer"
-            said.append(
-                f'{girder}: the pad at "{pad.support}" comes out {pad.ratio_to_nominal:.3g} times nominal, more than '
-                f"threefold {way}: check the reading, the nominal value and the pad itself before relying on it."
-            )
-    suspects = [
-        (abs(found.standardised[j]), reading) for j, reading in enumerate(readings) if found.suspect[j]
-    ]
-    if suspects:
-        worst, reading = max(suspects, key=lambda pair: pair[0])
-        others = (
-            f"; {len(suspects) - 1} more pass it too, perhaps because of this one"
-            if len(suspects) > 1
-            else ""
-        )
-        said.append(
-            f"{girder}: suspect reading: {_named(reading)} stands {worst:.1f} standard deviations off "
-            f"(limit {SUSPECT}){others}. It is still in the fit, which it biases: repeat it, or find the slip."
-        )
-    if shown.degrees_of_freedom == 0:
-        said.append(
-            f"{girder}: no reading is left over to check the fit: an error in any of them goes straight into a stiffness."
-        )
-    elif shown.p_value is not None and shown.p_value < MISFIT:
-        said.append(
-            f"{girder}: misfit: the readings do not agree with this girder within their standard deviations "
-            f"(chi-square {shown.chi_square:.3g} on {shown.degrees_of_freedom} degrees of freedom, p {shown.p_value:.2g}); "
-            "the intervals are then too narrow, and something else may be moving (seats, girder stiffness, temperature)."
-        )
-    unchecked = [reading for j, reading in enumerate(readings) if found.redundancy[j] < 0.05]
-    if unchecked and shown.degrees_of_freedom:
-        names = "; ".join(_named(reading) for reading in unchecked[:3])
-        more = f" and {len(unchecked) - 3} more" if len(unchecked) > 3 else ""
-        said.append(
-            f"{girder}: hardly checked by any other reading, so that a slip would not show: {names}{more}."
-        )
-    return said
-
-
-def of_visit(visit: VisitDoc) -> list[str]:
-    """Cautions on a visit as a whole."""
-    said = []
-    held = [r for r in visit.readings if visit.state(r.state).vehicle is None]
-    other = sorted({r.quantity for r in held if r.quantity != "settlement"})
-    if other:
-        said.append(
-            f"Readings of the permanent state ({', '.join(other)}) are kept but not fitted yet; measured seat settlements "
-            "enter the assessment, the rest of the permanent state does not."
-        )
-    moved = [
-        r for r in visit.readings if r.quantity == "settlement" and visit.state(r.state).vehicle is not None
-    ]
-    for r in moved:
-        said.append(
-            f'{r.girder}: the seat "{r.support}" was read to move in test state {r.state}; it is fitted as a movement of '
-            "that state only. If the ground gives under a test load, ask why before testing again."
-        )
-    t = visit.pad_temperature
-    if t is None:
-        said.append(
-            "No pad temperature was recorded; cold rubber is stiffer, and this visit cannot be corrected for it."
-        )
-    elif abs(t - REFERENCE_TEMPERATURE) > _FAR:
-        said.append(
-            f"The pads were at {t:.3g} degC; the stiffnesses hold at that temperature and are not brought to "
-            f"{REFERENCE_TEMPERATURE:.0f} degC. Cold pads read stiffer than they are in summer."
-        )
-    return said
-
-
-def _named(reading: ReadingDoc) -> str:
-    where = f'at "{reading.support}"' if reading.support is not None else f"at {reading.at:.4g} m"
-    remark = f" ({reading.remark})" if reading.remark else ""
-    return f"{reading.state} {reading.quantity} {where}, {reading.value_entered}{remark}"
 
 
 def not_read(girder: str, date: dt.date) -> str:
@@ -239,6 +151,30 @@ def of_sections(girder: str, sections: Sequence[SectionResult]) -> list[str]:
             f"{effect} capacity in the bridge file."
         )
     return said
+
+
+def of_rivals(girder: str, shown: GirderAssessment) -> list[str]:
+    """Caution: sections that a close rival explanation uses more than the calibration."""
+    worse = [
+        (row.calibrated.worst_rival_utilisation - row.calibrated.utilisation, row)
+        for row in shown.sections
+        if row.calibrated.utilisation is not None
+        and row.calibrated.worst_rival_utilisation is not None
+        and row.calibrated.worst_rival_utilisation > row.calibrated.utilisation + 0.005
+    ]
+    if not worse:
+        return []
+    _, row = max(worse, key=lambda pair: pair[0])
+    case = row.calibrated
+    apart = {rival.name: rival.told_apart_by for rival in shown.rivals}.get(case.worst_rival or "")
+    decide = f" This would decide: {apart}." if apart else ""
+    more = f" ({len(worse)} rows in all are used more by a rival)" if len(worse) > 1 else ""
+    name = section_name(row.effect, row.span, row.support)
+    said = (
+        f"{girder}: explained by {case.worst_rival}, which the readings bear as well, {name} would be used "
+        f"{case.worst_rival_utilisation:.3g} and not {case.utilisation:.3g}{more}.{decide}"
+    )
+    return [said]
 
 
 def section_name(effect: str, span: int | None, support: str | None) -> str:

@@ -212,6 +212,23 @@ def thermal_cases(bridge: BridgeDoc, girder: GirderDoc, *, file: str = FILE) -> 
     return tuple(cases)
 
 
+def curvatures_of(
+    bridge: BridgeDoc, girder: GirderDoc, difference: float
+) -> tuple[tuple[float, float, float], ...]:
+    """Curvatures (start m, end m, 1/m) by which a temperature difference, K, top warmer positive, would bend a girder.
+
+    Expansion is that of the bridge file's first temperature case, else the usual one.
+
+    Raises
+    ------
+    BedstoneError
+        where the depth of a section is not known.
+    """
+    expansion = bridge.temperature[0].expansion if bridge.temperature else TemperatureDoc(id="").expansion
+    case = TemperatureDoc(id="gradient", difference=difference, expansion=expansion)
+    return _curvatures(bridge, girder, case, FILE)
+
+
 def _curvatures(
     bridge: BridgeDoc, girder: GirderDoc, case: TemperatureDoc, file: str
 ) -> tuple[tuple[float, float, float], ...]:

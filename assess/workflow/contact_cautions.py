@@ -16,7 +16,7 @@ def unknown(girder: str) -> str:
 
 
 def of_states(girder: str, lifting: Mapping[str, Sequence[str]], *, nothing_left: bool) -> list[str]:
-    """Caution: test states that are not fitted because a support lifts."""
+    """Caution: load states that are not fitted because a support lifts."""
     if not lifting:
         return []
     each = "; ".join(f"{state} (lifts at {_listed(supports)})" for state, supports in lifting.items())

@@ -9,11 +9,14 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
+from numpy.typing import NDArray
 
 from assess.capacity import evaluate
 from assess.results import SpanTrend
-from assess.workflow.assessing import Supports
 from assess.workflow.building import GirderModel
+from assess.workflow.supports import Supports, acting
+
+Floats = NDArray[np.float64]
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -27,24 +30,27 @@ class Driver:
 
 def drivers(model: GirderModel, supports: Supports, row: SpanTrend) -> list[Driver]:
     """Seats and pads by what they add to a section's utilisation, the largest first."""
-    drops = supports.drops(model)
-    whole = _utilisation(model, supports.log_stiffness, drops, row)
+    drops, pads = supports.seats(model), supports.log_stiffness
+
+    def used(log_stiffness: Floats, seats: Floats) -> float:
+        acts = acting(model, log_stiffness, seats, supports.log_factor, supports.log_sustained)
+        return _utilisation(model, *acts, row)
+
+    whole = used(pads, drops)
     found = []
     for support in supports.settlements:
         back = drops.copy()
         back[model.doc.support_index(support)] = 0.0
-        adds = whole - _utilisation(model, supports.log_stiffness, back, row)
-        found.append(Driver(what="seat", support=support, adds=adds))
+        found.append(Driver(what="seat", support=support, adds=whole - used(pads, back)))
     for i, support in enumerate(model.pad_ids):
-        log_stiffness = supports.log_stiffness.copy()
+        log_stiffness = pads.copy()
         log_stiffness[i] = model.nominal[i]
-        adds = whole - _utilisation(model, log_stiffness, drops, row)
-        found.append(Driver(what="pad", support=support, adds=adds))
+        found.append(Driver(what="pad", support=support, adds=whole - used(log_stiffness, drops)))
     return sorted((one for one in found if np.isfinite(one.adds)), key=lambda one: -one.adds)
 
 
-def _utilisation(model: GirderModel, log_stiffness: np.ndarray, drops: np.ndarray, row: SpanTrend) -> float:
-    for found in evaluate(model.effects, model.factors, model.compliance(log_stiffness), drops):
+def _utilisation(model: GirderModel, compliance: Floats, drops: Floats, row: SpanTrend) -> float:
+    for found in evaluate(model.effects, model.factors, compliance, drops):
         check = found.check
         span = check.span + 1 if check.span >= 0 else None
         support = model.doc.supports[check.support].id if check.support >= 0 else None

@@ -1,4 +1,4 @@
-"""Test states in which the girder leaves a pad: no linear girder explains what is read there."""
+"""Load states in which the girder leaves a pad: no linear girder explains what is read there."""
 
 from __future__ import annotations
 
@@ -20,11 +20,11 @@ _LOOKED_AT = 40  # draws that tell how often a pad is left
 _LIFTING_DRAWS = 300  # that lift, at each time: a probability of 5 % to some 1.3 %
 
 Lifting = dict[str, list[str]]
-"""Test states by id, with the supports that the girder leaves in them, or has left before the vehicle came."""
+"""Load states by id, with the supports that the girder leaves in them, or has left before the vehicle came."""
 
 
 def lifting_states(model: GirderModel, visit: VisitDoc, log_stiffness: Floats) -> Lifting:
-    """Test states of a visit in which contact opens on pads of ln k (q,): permanent loads and the vehicle, unfactored.
+    """Load states of a visit in which contact opens on pads of ln k (q,): permanent loads, and the vehicle, unfactored.
 
     Seats are where the visit's own levels put them. Without permanent loads in the file nothing can be told.
 
@@ -46,6 +46,9 @@ def lifting_states(model: GirderModel, visit: VisitDoc, log_stiffness: Floats) -
     for state, lifted in zip(states, off, strict=True):
         if lifted.any():
             found[state.id] = [model.doc.supports[i].id for i in np.flatnonzero(lifted)]
+    if stands.lifted[0].any():
+        supports = [model.doc.supports[i].id for i in np.flatnonzero(stands.lifted[0])]
+        found |= {state.id: supports for state in visit.states if state.vehicle is None}
     return found
 
 

@@ -86,8 +86,10 @@ def is_test(visit: VisitDoc, state: str) -> bool:
     return visit.state(state).vehicle is not None
 
 
-def test_readings(visit: VisitDoc, girder: str | None = None) -> int:
-    """Number of readings in test states, of one girder or of all."""
+def telling_readings(visit: VisitDoc, girder: str | None = None) -> int:
+    """Number of readings that tell a stiffness, of one girder or of all: all but seats in the permanent state."""
     return sum(
-        is_test(visit, reading.state) and girder in (None, reading.girder) for reading in visit.readings
+        (is_test(visit, reading.state) or reading.quantity != "settlement")
+        and girder in (None, reading.girder)
+        for reading in visit.readings
     )

@@ -23,13 +23,14 @@ from assess.trend import (
     pad_future,
 )
 from assess.workflow import cautions, contact_cautions, pad_cautions, section_cautions
-from assess.workflow.assessing import Settlement, kept_fits, seat_histories
 from assess.workflow.building import GirderModel
-from assess.workflow.calibrating import GirderFit, VisitFit, calibrate_visit
+from assess.workflow.calibrating import calibrate_visit
+from assess.workflow.kept_fits import GirderFit, VisitFit
 from assess.workflow.lifting import draws_worth, tipping_named
 from assess.workflow.pads import cold_shift, corrected
 from assess.workflow.status import LIMIT, status_of
-from assess.workflow.study import SEED, Progress, Study, quiet, test_readings
+from assess.workflow.study import SEED, Progress, Study, quiet, telling_readings
+from assess.workflow.supports import Settlement, acting, kept_fits, seat_histories
 from db.documents import VisitDoc
 from db.errors import BedstoneError
 from db.store import open_record
@@ -125,11 +126,11 @@ def trend_study(study: Study, *, progress: Progress) -> tuple[TrendResult, list[
 def _all_fits(study: Study, progress: Progress) -> dict[dt.date, VisitFit]:
     """Kept calibrations of all visits that rest on today's bridge file, the missing ones made (not kept)."""
     kept = {d: fit for d, (fit, row) in kept_fits(study, None).items() if row.revision == study.kept.revision}
-    chosen = [visit for visit in study.visits if test_readings(visit)]
+    chosen = [visit for visit in study.visits if telling_readings(visit)]
     fits = {}
     for i, visit in enumerate(chosen):
         progress(f"reading {visit.date.isoformat()}", i, len(chosen))
-        fits[visit.date] = kept.get(visit.date) or calibrate_visit(study, visit, prior=True)
+        fits[visit.date] = kept.get(visit.date) or calibrate_visit(study, visit)
     return fits
 
 
@@ -152,7 +153,7 @@ def _girder(
     found = fit_trend(estimates, model.prior.mean, model.prior.sd, model.prior.correlation)
     histories = seat_histories(study, model.doc.id, None)
     seats = {support: _seat_law(history) for support, history in histories.items()}
-    spans = _spans(model, found, seats, _years(first, last), last)
+    spans = _spans(model, found, seats, own[-1][1], (_years(first, last), last))
     dates = [visit.date for visit, _ in own]
     pads = [_pad(model, i, law, len(own)) for i, law in enumerate(found.laws)]
     part = GirderTrend(
@@ -293,24 +294,31 @@ def _of_seats(
 
 
 def _spans(
-    model: GirderModel, found: Trend, seats: dict[str, SeatLaw], span_of_visits: float, last: dt.date
+    model: GirderModel,
+    found: Trend,
+    seats: dict[str, SeatLaw],
+    latest: GirderFit,
+    visits: tuple[float, dt.date],
 ) -> list[SpanTrend]:
+    """Carry sections forward; `latest` has the girder's stiffness and its pads' creep, `visits` their years and end."""
+    span_of_visits, last = visits
+    girder = (latest.one("girder"), latest.one("sustained"))
     drops_now = np.zeros(model.n)
     for support, law in seats.items():
         drops_now[model.doc.support_index(support)] = law.last
     with tipping_named(model):
-        rows = evaluate(model.effects, model.factors, model.compliance(found.now), drops_now)
+        rows = evaluate(model.effects, model.factors, *acting(model, found.now, drops_now, *girder))
     years = forecast_years(span_of_visits)
     if all(law.drift_weight == 0.0 for law in found.laws) and all(
         law.weight == 0.0 for law in seats.values()
     ):
         years = years[:1]
     future = pad_future(found, years, draws=FORECAST_DRAWS, seed=SEED)
-    compliances = model.compliance(future.log_stiffness)  # (draws, times, n)
-    drops = np.zeros(compliances.shape)
+    drops = np.zeros((*future.log_stiffness.shape[:2], model.n))  # (draws, times, n)
     rng = np.random.default_rng([SEED, 1])
     for support, law in seats.items():
         drops[:, :, model.doc.support_index(support)] = law.draws(years, FORECAST_DRAWS, rng)
+    compliances, drops = acting(model, future.log_stiffness, drops, *girder)
     with tipping_named(model, "carried forward"):
         count = draws_worth(model, compliances, drops)
         some = (x[:count].reshape(-1, model.n) for x in (compliances, drops))

@@ -193,7 +193,7 @@ def _softest(calibration: CalibrationResult | None, girder: str) -> str | None:
         odd = [
             pad
             for pad in one.pads
-            if pad.high95_kN_per_m < 0.7 * pad.nominal_kN_per_m
+            if pad.highest_kN_per_m < 0.7 * pad.nominal_kN_per_m
             or pad.low95_kN_per_m > 1.5 * pad.nominal_kN_per_m
         ]
         if odd:

@@ -21,16 +21,18 @@ from assess.results import (
     TrendResult,
 )
 from assess.workflow import cautions
-from assess.workflow.assessing import Supports, assess_study, kept_fits, supports_of
+from assess.workflow.assessing import assess_study
 from assess.workflow.building import GirderModel
-from assess.workflow.calibrating import VisitFit, calibrate_visit
+from assess.workflow.calibrating import calibrate_visit
 from assess.workflow.combination import factors_in_words
 from assess.workflow.drivers import Driver, drivers
+from assess.workflow.kept_fits import VisitFit
 from assess.workflow.live_loads import live_in_words
 from assess.workflow.movements import lie_of, line_of, points_of
 from assess.workflow.showing import section_views
 from assess.workflow.stands import governing_stands
-from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, test_readings
+from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, telling_readings
+from assess.workflow.supports import Supports, kept_fits, supports_of
 from assess.workflow.trending import DAYS_PER_YEAR, GirderTrend, trend_study, with_future
 from assess.workflow.verdicts import cautions_beside, head_row, verdict
 from db.documents import VisitDoc
@@ -47,7 +49,7 @@ def report_view(url: str, bridge: str, *, progress: Progress | None = None) -> R
     with open_record(url) as record:
         study = Study.fetch(record, bridge)
     assessment = assess_study(study, visit=None, progress=tell)
-    tested = any(test_readings(visit) for visit in study.visits)
+    tested = any(telling_readings(visit) for visit in study.visits)
     trend, parts = trend_study(study, progress=tell) if tested else (None, [])
     calibration = _calibration(study, assessment)
     girders = []
@@ -121,8 +123,8 @@ def _calibration(study: Study, assessment: AssessmentResult) -> VisitFit | None:
     kept = kept_fits(study, None)
     if assessment.calibration_visit is not None:
         return kept[assessment.calibration_visit][0]
-    tested = [visit for visit in study.visits if test_readings(visit)]
-    return calibrate_visit(study, tested[-1], prior=True) if tested else None
+    tested = [visit for visit in study.visits if telling_readings(visit)]
+    return calibrate_visit(study, tested[-1]) if tested else None
 
 
 def _girder(study: Study, girder: str, calibration: VisitFit | None, part: GirderTrend | None) -> GirderView:
@@ -136,9 +138,7 @@ def _girder(study: Study, girder: str, calibration: VisitFit | None, part: Girde
         states=_states(study, model, calibration),
         moments=lines,
         histories=_histories(model, part) if part is not None else [],
-        stands=governing_stands(
-            model, model.compliance(supports.log_stiffness), supports.drops(model), lines
-        ),
+        stands=governing_stands(model, *supports.acting(model), lines),
         hinges_m=list(model.doc.hinges),
         lie=lie_of(model),
     )
@@ -201,9 +201,8 @@ def _states(study: Study, model: GirderModel, calibration: VisitFit | None) -> l
 
 def _moments(model: GirderModel, supports: Supports) -> MomentLines:
     plan, effects, factors = model.plan, model.effects, model.factors
-    none, drops = np.zeros(model.n), supports.drops(model)
-    calibrated = model.compliance(supports.log_stiffness)
-    cases = [(model.unyielding, none), (model.compliance(model.nominal), none), (calibrated, drops)]
+    none = np.zeros(model.n)
+    cases = [(model.unyielding, none), (model.compliance(model.nominal), none), supports.acting(model)]
     lines = [demands_at(effects, factors, *case) for case in cases]
     drawn = moment_draws(effects, factors, *supports.draws(model, _BAND_DRAWS, SEED))
     bands = [np.quantile(one, [0.025, 0.975], axis=0) for one in drawn]

@@ -12,6 +12,7 @@ import pytest
 from cli_results import calibration
 
 from assess.cli.main import cli
+from assess.workflow import Options
 from db.errors import BedstoneError
 
 
@@ -205,23 +206,48 @@ def test_the_record_is_taken_from_the_option_then_the_environment_then_the_folde
 
 
 @pytest.mark.parametrize(
-    ("words", "options"),
+    ("words", "given"),
     [
-        ([], {"visit": None, "every": False, "prior": True}),
-        (["--all"], {"visit": None, "every": True, "prior": True}),
-        (["--no-prior"], {"visit": None, "every": False, "prior": False}),
+        ([], {}),
+        (["--all"], {"every": True}),
+        (["--no-prior"], {"options": Options(prior=False)}),
+        (
+            ["--unknowns", "settlements,girder"],
+            {"options": Options(unknowns=("pads", "settlements", "girder"))},
+        ),
+        (
+            ["--without", "north/T1/deflection/6 m", "--reason", "gauge knocked"],
+            {"options": Options(without=(("north/T1/deflection/6 m", "gauge knocked"),))},
+        ),
+        (["--compensating"], {"compensating": True}),
     ],
 )
-def test_the_options_of_calibrate_reach_the_workflow(bedstone, workflow, words, options):
+def test_the_options_of_calibrate_reach_the_workflow(bedstone, workflow, words, given):
     seen = {}
 
-    def calibrate(url, bridge, **given):
-        seen.update(given)
+    def calibrate(url, bridge, **options):
+        seen.update(options)
         return [calibration()]
 
     workflow(calibrate=calibrate)
     assert bedstone("calibrate", "quillmere", *words).code == 0
-    assert options.items() <= seen.items()
+    plain = {"visit": None, "every": False, "options": Options(), "compensating": False}
+    assert (plain | given).items() <= seen.items()
+
+
+@pytest.mark.parametrize(
+    ("words", "said"),
+    [
+        (["--unknowns", "pads,bolts"], "'bolts' is no unknown"),
+        (["--without", "north/T1/deflection/6 m"], "needs its reason"),
+        (["--without", "a", "--reason", " "], "a --reason is empty"),
+        (["--all", "--without", "a", "--reason", "b"], "--without belongs to one visit"),
+    ],
+)
+def test_a_call_of_calibrate_that_cannot_be_meant_is_refused_in_one_line(bedstone, words, said):
+    done = bedstone("calibrate", "quillmere", *words)
+    assert done.code == 2
+    assert said in done.err
 
 
 def test_the_group_names_no_command_that_it_cannot_import():

@@ -58,7 +58,7 @@ def revised(tmp_path: Path, old: str, new: str) -> Path:
 
 def test_known_pads_come_back_from_files(record: str, tmp_path: Path) -> None:
     log(record, write_visit(tmp_path, "2024-05-14", RATIOS, seed=None))
-    found = pads(workflow.calibrate(record, "quillmere", prior=False)[0])
+    found = pads(workflow.calibrate(record, "quillmere", options=workflow.Options(prior=False))[0])
     assert [found[p].ratio_to_nominal for p in found] == pytest.approx(RATIOS, rel=1e-3)
 
 
@@ -102,7 +102,7 @@ def test_pads_out_of_reach_of_the_load_are_named_when_the_prior_is_off(record: s
     path.with_suffix(".csv").write_text(text + f"{row}\n{row}\n{row}\n")
     log(record, path)
     with pytest.raises(BedstoneError, match="do not tell the pad"):
-        workflow.calibrate(record, "quillmere", prior=False)
+        workflow.calibrate(record, "quillmere", options=workflow.Options(prior=False))
 
 
 def test_a_pad_read_to_lengthen_is_refused_without_a_prior(bedstone, record: str, tmp_path: Path) -> None:  # type: ignore[no-untyped-def]
@@ -190,7 +190,7 @@ def test_other_inputs_or_options_have_another_digest_or_are_kept_apart(record: s
     log(record, write_visit(tmp_path, "2024-05-14", RATIOS))
     first = workflow.calibrate(record, "quillmere")[0]
     before = workflow.assess(record, "quillmere")
-    workflow.calibrate(record, "quillmere", prior=False)
+    workflow.calibrate(record, "quillmere", options=workflow.Options(prior=False))
     after = workflow.assess(record, "quillmere")
     assert len(kept(record, "calibration")) == 2
     assert before.input_digest != after.input_digest

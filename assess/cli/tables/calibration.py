@@ -7,6 +7,7 @@ from typing import TYPE_CHECKING
 
 import click
 
+from assess.cli.tables.explained import show_compensating, show_explanations, show_unknowns
 from assess.cli.tables.screen import print_cautions, print_heading, print_table, print_wrapped
 from assess.cli.tables.words import NOT_DETERMINED, counted, interval, number
 
@@ -32,7 +33,10 @@ def show_calibration(result: CalibrationResult, *, all_readings: bool = False) -
             ],
             [_pad_row(pad) for pad in girder.pads],
         )
+        show_unknowns(girder)
         print_wrapped(_fit_sentence(girder))
+        show_explanations(girder)
+        show_compensating(girder.compensating_errors)
         shown = girder.readings if all_readings else [r for r in girder.readings if r.suspect]
         if shown:
             click.echo()
@@ -104,7 +108,7 @@ def _pad_cell(pad: PadResult) -> str:
 
 
 def _stiffness(pad: PadResult) -> str:
-    return interval(pad.stiffness_kN_per_m / 1000, pad.low95_kN_per_m / 1000, pad.high95_kN_per_m / 1000)
+    return interval(pad.stiffness_kN_per_m / 1000, pad.low95_kN_per_m / 1000, pad.highest_kN_per_m / 1000)
 
 
 _READING_HEADERS = [
@@ -116,6 +120,7 @@ _READING_HEADERS = [
     "sd",
     "unit",
     "standardised\nresidual",
+    "shows errors\nfrom",
     "",
 ]
 
@@ -131,6 +136,7 @@ def _reading_row(reading: ReadingResult) -> list[str]:
         number(reading.sd),
         reading.unit,
         number(reading.standardised_residual),
+        "not checked" if reading.minimal_detectable is None else number(reading.minimal_detectable),
         "suspect" if reading.suspect else "not fitted" if reading.predicted is None else "",
     ]
 
