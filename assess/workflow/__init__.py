@@ -3,6 +3,7 @@
 from assess.workflow.assessing import assess
 from assess.workflow.calibrating import calibrate
 from assess.workflow.fitting import Options
+from assess.workflow.planning import plan
 from assess.workflow.records import (
     add_bridge,
     draft_bridge,
@@ -28,6 +29,7 @@ __all__ = [
     "list_bridges",
     "list_visits",
     "log_visit",
+    "plan",
     "report_view",
     "show_bridge",
     "trend",

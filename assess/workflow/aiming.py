@@ -1,0 +1,115 @@
+"""Which utilisation a visit is planned for, and how it answers to the unknowns."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import NDArray
+
+from assess.capacity import evaluate_draws
+from assess.capacity.checks import Check
+from assess.workflow.study import SEED
+from assess.workflow.supports import Supports, acting
+from assess.workflow.unknowns import Setup
+
+Floats = NDArray[np.float64]
+
+_DRAWS = 400  # for the spread of today: a standard deviation to some 4 %
+_LARGEST_STEP = {"pads": 0.3, "settlements": 1e-3, "girder": 0.1, "sustained": 0.1}  # m and ln
+
+
+@dataclass(frozen=True, kw_only=True)
+class Aim:
+    """The section whose utilisation is the worst by today's knowledge: with two standard deviations added.
+
+    Attributes
+    ----------
+    check, utilisation : None where no section has a resistance
+    gradient : (size,) of its utilisation by the unknowns; zeros where there is none
+    beside : variance that no reading on offer takes away: of seats levelled before that have no gauge
+    checks, utilisations, gradients : (s,), (s,), (s, size) of all sections with a resistance
+    """
+
+    check: Check | None
+    utilisation: float | None
+    gradient: Floats
+    beside: float
+    checks: list[Check]
+    utilisations: Floats
+    gradients: Floats
+
+    def sd(self, variance: float) -> float | None:
+        """Standard deviation of the utilisation, with what no reading takes away."""
+        return None if self.check is None else float(np.sqrt(variance + self.beside))
+
+    def overtaken(self, covariance: Floats) -> tuple[Check, float, float] | None:
+        """Another section that would be the worst after the readings, with its utilisation and its sd."""
+        if self.check is None:
+            return None
+        sd = np.sqrt(np.einsum("si,ij,sj->s", self.gradients, covariance, self.gradients))
+        worst = int(np.argmax(self.utilisations + 2.0 * sd))
+        if self.checks[worst] is self.check:
+            return None
+        return self.checks[worst], float(self.utilisations[worst]), float(sd[worst])
+
+
+def aim_of(setup: Setup, supports: Supports, theta: Floats, steps: Floats) -> Aim:
+    """The governing utilisation and its slopes at theta (size,), by central differences over `steps` (size,).
+
+    The steps are as wide as what is open of each unknown: envelopes have corners, and a slope over less than what
+    is open would tell of one side of a corner only. All steps go through one batched evaluation.
+    """
+    model, layout = setup.model, setup.layout
+    largest = np.array([_LARGEST_STEP.get(entry.block, 0.0) for entry in layout.entries])
+    width = np.minimum(steps, largest)
+    open_seats = [layout.entries[j].index for j in layout.places("settlements")]
+    seat_sd = np.zeros(model.n)
+    for support, one in supports.settlements.items():
+        if (i := model.doc.support_index(support)) not in open_seats:
+            seat_sd[i] = one.sd
+    moved = np.concatenate([np.diag(width), np.zeros((model.n, theta.size))])
+    dropped = np.concatenate([np.zeros((theta.size, model.n)), np.diag(seat_sd)])
+    thetas = theta + np.concatenate([np.zeros((1, theta.size)), moved, -moved])
+    seats = supports.seats(model) + np.concatenate([np.zeros((1, model.n)), dropped, -dropped])
+    rows = evaluate_draws(model.effects, model.factors, *_acting(setup, thetas, seats))
+    today = evaluate_draws(model.effects, model.factors, *supports.draws(model, _DRAWS, SEED))
+    known = [i for i, row in enumerate(rows) if np.all(np.isfinite(row.utilisation))]
+    used = np.array([rows[i].utilisation for i in known]).reshape(len(known), len(thetas))
+    count = theta.size + model.n
+    change = (used[:, 1 : count + 1] - used[:, count + 1 :]) / 2.0
+    gradients = np.divide(
+        change[:, : theta.size], width, out=np.zeros((len(known), theta.size)), where=width > 0.0
+    )
+    if not known:
+        return Aim(
+            check=None,
+            utilisation=None,
+            gradient=np.zeros(theta.size),
+            beside=0.0,
+            checks=[],
+            utilisations=np.zeros(0),
+            gradients=gradients,
+        )
+    spread = np.array([today[i].utilisation.std() for i in known])
+    worst = int(np.argmax(used[:, 0] + 2.0 * spread))
+    return Aim(
+        check=rows[known[worst]].check,
+        utilisation=float(used[worst, 0]),
+        gradient=gradients[worst],
+        beside=float((change[worst, theta.size :] ** 2).sum()),
+        checks=[rows[i].check for i in known],
+        utilisations=used[:, 0],
+        gradients=gradients,
+    )
+
+
+def _acting(setup: Setup, thetas: Floats, seats: Floats) -> tuple[Floats, Floats]:
+    """Compliances and seat drops (d, n) of unknowns (d, size), with seats (d, n) where they are none of them."""
+    layout, seats = setup.layout, seats.copy()
+    for j in layout.places("settlements"):
+        seats[:, layout.entries[j].index] = thetas[:, j]
+    log_factor, log_sustained = (
+        thetas[:, places[0]] if (places := layout.places(block)) else 0.0 for block in ("girder", "sustained")
+    )
+    return acting(setup.model, thetas[:, layout.of("pads")], seats, log_factor, log_sustained)
