@@ -71,7 +71,7 @@ def _of_seats(shown: GirderCalibration) -> list[str]:
 
 def _of_rivals(shown: GirderCalibration) -> list[str]:
     own = next((one for one in shown.rivals if one.name == shown.calibrated_as), None)
-    close = [one for one in shown.rivals if one.within_2 and one.told and one is not own]
+    close = [one for one in shown.rivals if one.within_2 and one.told and not one.simpler and one is not own]
     said = []
     for one in close:
         word = "as well as" if own is None or own.within_2 else "better than"
