@@ -9,13 +9,11 @@ from numpy.typing import NDArray
 
 from assess.capacity import evaluate_draws
 from assess.capacity.checks import Check
-from assess.workflow.study import SEED
 from assess.workflow.supports import Supports, acting
 from assess.workflow.unknowns import Setup
 
 Floats = NDArray[np.float64]
 
-_DRAWS = 400  # for the spread of today: a standard deviation to some 4 %
 _LARGEST_STEP = {"pads": 0.3, "settlements": 1e-3, "girder": 0.1, "sustained": 0.1}  # m and ln
 
 
@@ -61,26 +59,20 @@ def aim_of(setup: Setup, supports: Supports, theta: Floats, steps: Floats) -> Ai
     is open would tell of one side of a corner only. All steps go through one batched evaluation.
     """
     model, layout = setup.model, setup.layout
-    largest = np.array([_LARGEST_STEP.get(entry.block, 0.0) for entry in layout.entries])
+    size, largest = theta.size, np.array([_LARGEST_STEP.get(entry.block, 0.0) for entry in layout.entries])
     width = np.minimum(steps, largest)
-    open_seats = [layout.entries[j].index for j in layout.places("settlements")]
-    seat_sd = np.zeros(model.n)
-    for support, one in supports.settlements.items():
-        if (i := model.doc.support_index(support)) not in open_seats:
-            seat_sd[i] = one.sd
-    moved = np.concatenate([np.diag(width), np.zeros((model.n, theta.size))])
-    dropped = np.concatenate([np.zeros((theta.size, model.n)), np.diag(seat_sd)])
-    thetas = theta + np.concatenate([np.zeros((1, theta.size)), moved, -moved])
+    seat_sd = _levelled(setup, supports)
+    moved = np.concatenate([np.diag(width), np.zeros((model.n, size))])
+    dropped = np.concatenate([np.zeros((size, model.n)), np.diag(seat_sd)])
+    thetas = theta + np.concatenate([np.zeros((1, size)), moved, -moved])
     seats = supports.seats(model) + np.concatenate([np.zeros((1, model.n)), dropped, -dropped])
     rows = evaluate_draws(model.effects, model.factors, *_acting(setup, thetas, seats))
-    today = evaluate_draws(model.effects, model.factors, *supports.draws(model, _DRAWS, SEED))
     known = [i for i, row in enumerate(rows) if np.all(np.isfinite(row.utilisation))]
     used = np.array([rows[i].utilisation for i in known]).reshape(len(known), len(thetas))
-    count = theta.size + model.n
-    change = (used[:, 1 : count + 1] - used[:, count + 1 :]) / 2.0
-    gradients = np.divide(
-        change[:, : theta.size], width, out=np.zeros((len(known), theta.size)), where=width > 0.0
-    )
+    up, down = np.split(used[:, 1:], 2, axis=1)
+    change = (up - down) / 2.0  # by one step of each unknown, then by one sd of each seat that is none
+    gradients = np.divide(change[:, :size], width, out=np.zeros((len(known), size)), where=width > 0.0)
+    beside = (change[:, size:] ** 2).sum(axis=1)
     if not known:
         return Aim(
             check=None,
@@ -91,17 +83,38 @@ def aim_of(setup: Setup, supports: Supports, theta: Floats, steps: Floats) -> Ai
             utilisations=np.zeros(0),
             gradients=gradients,
         )
-    spread = np.array([today[i].utilisation.std() for i in known])
-    worst = int(np.argmax(used[:, 0] + 2.0 * spread))
+    worst = int(np.argmax(used[:, 0] + 2.0 * np.sqrt(_today(setup, supports, gradients) + beside)))
     return Aim(
         check=rows[known[worst]].check,
         utilisation=float(used[worst, 0]),
         gradient=gradients[worst],
-        beside=float((change[worst, theta.size :] ** 2).sum()),
+        beside=float(beside[worst]),
         checks=[rows[i].check for i in known],
         utilisations=used[:, 0],
         gradients=gradients,
     )
+
+
+def _levelled(setup: Setup, supports: Supports) -> Floats:
+    """Standard deviation (n,) of the seats that were levelled before and are no unknowns; 0 of the others."""
+    unknown = {setup.layout.entries[j].index for j in setup.layout.places("settlements")}
+    sd = np.zeros(setup.model.n)
+    for support, one in supports.settlements.items():
+        if (i := setup.model.doc.support_index(support)) not in unknown:
+            sd[i] = one.sd
+    return sd
+
+
+def _today(setup: Setup, supports: Supports, gradients: Floats) -> Floats:
+    """Variance (s,) of the utilisations by what is known today of the pads and of seats levelled before."""
+    layout, doc = setup.layout, setup.model.doc
+    by_pads = gradients[:, layout.of("pads")]
+    variance = np.einsum("si,ij,sj->s", by_pads, supports.covariance, by_pads)
+    for j in layout.places("settlements"):
+        levelled = supports.settlements.get(doc.supports[layout.entries[j].index].id)
+        if levelled is not None:
+            variance = variance + (gradients[:, j] * levelled.sd) ** 2
+    return np.asarray(variance)
 
 
 def _acting(setup: Setup, thetas: Floats, seats: Floats) -> tuple[Floats, Floats]:

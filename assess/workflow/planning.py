@@ -149,12 +149,10 @@ def _plan_girder(study: Study, model: GirderModel, vehicle: VehicleDoc, limits: 
     candidates = Candidates(
         rows=setup.equations.jacobian(theta), sd=setup.equations.sd, cost=offer.cost, position=offer.position
     )
-    steps = np.sqrt(np.diag(before))
-    for _ in range(2):  # the slopes over what will be left open, which is known only once planned
-        aim = aim_of(setup, supports, theta, steps)
-        full = choose(candidates, precision=precision, aim=aim.gradient, limits=limits)
-        steps = np.sqrt(np.diag(full.covariance))
-    aim = aim_of(setup, supports, theta, steps)
+    aim = aim_of(setup, supports, theta, np.sqrt(np.diag(before)))
+    full = choose(candidates, precision=precision, aim=aim.gradient, limits=limits)
+    # once more with the slopes over what will be left open, which is known only now
+    aim = aim_of(setup, supports, theta, np.sqrt(np.diag(full.covariance)))
     full = choose(candidates, precision=precision, aim=aim.gradient, limits=limits)
     halved = Limits(readings=limits.readings, positions=limits.positions, cost=full.cost / 2.0)
     half = choose(candidates, precision=precision, aim=aim.gradient, limits=halved)
