@@ -16,6 +16,7 @@ from assess.workflow.showing import bridge_view, show_bridge
 from assess.workflow.study import Progress
 from assess.workflow.trending import trend
 from assess.workflow.viewing import report_view
+from assess.workflow.visit_draft import draft_visit
 
 __all__ = [
     "Options",
@@ -25,6 +26,7 @@ __all__ = [
     "bridge_view",
     "calibrate",
     "draft_bridge",
+    "draft_visit",
     "init_record",
     "list_bridges",
     "list_visits",

@@ -63,6 +63,11 @@ def fewer(girder: str, found: int, asked: int) -> str:
     return f"{girder}: {found} readings are planned where {asked} were asked for: there is no more on offer that tells anything."
 
 
+def no_test(girder: str, which: str) -> str:
+    """Caution: a set of readings without one under a test load."""
+    return f"{girder}: {which} has no reading under the vehicle: it tells the seats, and no pad can be calibrated by it."
+
+
 def no_capacity(girder: str) -> str:
     """Caution: no utilisation to plan for."""
     return (

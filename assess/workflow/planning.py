@@ -261,6 +261,9 @@ def _cautions(one: _Planned, readings: int) -> list[str]:
     said += plan_cautions.of_lifting(name, offer.lifting, offer.permanent_lifts)
     if one.full.chosen.size < readings:
         said.append(plan_cautions.fewer(name, one.full.chosen.size, readings))
+    for made, which in ((one.full, "the plan"), (one.half, "the set at half the cost")):
+        if made.chosen.size and not one.leading(made):
+            said.append(plan_cautions.no_test(name, which))
     if one.aim.check is None:
         said.append(plan_cautions.no_capacity(name))
     read = {offer.readings[i].support for i in one.full.chosen if offer.readings[i].quantity == "settlement"}
