@@ -164,7 +164,7 @@ def _gauges(model: GirderModel) -> tuple[tuple[GaugeDoc, ...], list[str]]:
         f"({1e3 * SD['deflection']:g} mm), settlement of every seat ({1e3 * SD['settlement']:g} mm)"
     )
     said = (
-        f"{doc.id}: the bridge file has no [[girder.gauge]]; offered instead: {each}, each at the same cost "
+        f"the bridge file has no [[girder.gauge]]; offered instead: {each}, each at the same cost "
         "(common practice, no source)."
     )
     return made, [said]
@@ -181,11 +181,11 @@ def _positions(model: GirderModel, vehicle: VehicleDoc) -> tuple[list[float], li
     said = []
     if not given.size:
         said.append(
-            f'{model.doc.id}: the bridge file has no plan_positions for "{vehicle.id}"; offered instead: the leading '
+            f'the bridge file has no plan_positions for "{vehicle.id}"; offered instead: the leading '
             f"axle at every eighth of a span, and every group of axles over every support ({made.size} positions)."
         )
     if made.size > MOST_POSITIONS:
-        said.append(f"{model.doc.id}: of {made.size} positions {MOST_POSITIONS}, evenly spread, were tried.")
+        said.append(f"of {made.size} positions {MOST_POSITIONS}, evenly spread, were tried.")
         made = made[np.linspace(0, made.size - 1, MOST_POSITIONS).round().astype(np.intp)]
     return [float(x) for x in made], said
 

@@ -107,9 +107,18 @@ def plan(
         girders=[_shown(one, names) for one in made],
         vehicle=vehicle,
         axles_behind_m=[offset for offset, _ in placed.axles],
-        defaults=[sentence for one in made for sentence in one.offer.defaults],
+        defaults=_defaults(made),
         cautions=[*dict.fromkeys(said), plan_cautions.PROMISE, plan_cautions.BY_ITSELF, *cautions.STANDING],
     )
+
+
+def _defaults(made: Sequence[_Planned]) -> list[str]:
+    """What was taken for granted, once for all girders that share it."""
+    girders: dict[str, list[str]] = {}
+    for one in made:
+        for sentence in one.offer.defaults:
+            girders.setdefault(sentence, []).append(one.model.doc.id)
+    return [f"{listed(names)}: {sentence}" for sentence, names in girders.items()]
 
 
 def _vehicle(study: Study, name: str) -> VehicleDoc:
