@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 import click
 
@@ -10,6 +11,9 @@ from assess.cli.failures import cannot_write, wrong
 from assess.cli.json_out import print_json
 from assess.cli.params import bridge_argument, json_option
 from assess.cli.progress import progress_on_stderr
+
+if TYPE_CHECKING:
+    from db.errors import BedstoneError
 
 PICTURES = (".svg", ".png")
 
@@ -73,6 +77,8 @@ def command(
     """
     if output is not None:
         _check_picture(output)
+    if draft is not None and draft.exists():
+        raise _old(draft)
     from assess import workflow
     from assess.cli.tables.plan import show_plan
 
@@ -112,12 +118,17 @@ def _check_picture(output: Path) -> None:
         raise wrong("this folder does not exist", file=output.parent, remedy="make it, or name another place")
 
 
+def _old(draft: Path) -> BedstoneError:
+    return wrong(
+        "this file exists already and is not overwritten", file=draft, remedy="give --draft another name"
+    )
+
+
 def _write_new(path: Path, text: str) -> None:
     try:
         with path.open("x", encoding="utf-8") as file:
             file.write(text)
     except FileExistsError as error:
-        problem = "this file exists already and is not overwritten"
-        raise wrong(problem, file=path, remedy="give --draft another name") from error
+        raise _old(path) from error
     except OSError as error:
         raise cannot_write(path, error) from error

@@ -2,18 +2,20 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
 
 from assess.capacity import evaluate_draws
 from assess.capacity.checks import Check
+from assess.workflow.study import SEED
 from assess.workflow.supports import Supports, acting
 from assess.workflow.unknowns import Setup
 
 Floats = NDArray[np.float64]
 
+_PAIRS = 200  # of draws, for the corners of the envelope
 _LARGEST_STEP = {"pads": 0.3, "settlements": 1e-3, "girder": 0.1, "sustained": 0.1}  # m and ln
 
 
@@ -26,6 +28,7 @@ class Aim:
     check, utilisation : None where no section has a resistance
     gradient : (size,) of its utilisation by the unknowns; zeros where there is none
     beside : variance that no reading on offer takes away: of seats levelled before that have no gauge
+    corners : what the standard deviations by `gradient` are to be multiplied by, for the corners of the envelope
     checks, utilisations, gradients : (s,), (s,), (s, size) of all sections with a resistance
     """
 
@@ -36,16 +39,17 @@ class Aim:
     checks: list[Check]
     utilisations: Floats
     gradients: Floats
+    corners: float = 1.0
 
     def sd(self, variance: float) -> float | None:
         """Standard deviation of the utilisation, with what no reading takes away."""
-        return None if self.check is None else float(np.sqrt(variance + self.beside))
+        return None if self.check is None else float(np.sqrt(self.corners**2 * variance + self.beside))
 
     def overtaken(self, covariance: Floats) -> tuple[Check, float, float] | None:
         """Another section that would be the worst after the readings, with its utilisation and its sd."""
         if self.check is None:
             return None
-        sd = np.sqrt(np.einsum("si,ij,sj->s", self.gradients, covariance, self.gradients))
+        sd = self.corners * np.sqrt(np.einsum("si,ij,sj->s", self.gradients, covariance, self.gradients))
         worst = int(np.argmax(self.utilisations + 2.0 * sd))
         if self.checks[worst] is self.check:
             return None
@@ -93,6 +97,27 @@ def aim_of(setup: Setup, supports: Supports, theta: Floats, steps: Floats) -> Ai
         utilisations=used[:, 0],
         gradients=gradients,
     )
+
+
+def with_corners(aim: Aim, setup: Setup, supports: Supports, theta: Floats, covariance: Floats) -> Aim:
+    """The aim with what corners of the envelope make of its standard deviations once a covariance (size, size) is left.
+
+    The next calibration will stand somewhere about theta (size,), and its draws about that: the variance found is, on
+    average, half the mean square of the difference of two draws about one such place. It is set against that of the
+    linear picture on the same draws, so that a utilisation that is linear gives 1 to the last digit.
+    """
+    if aim.check is None:
+        return aim
+    noise = np.random.default_rng(SEED).standard_normal((3, _PAIRS, theta.size))
+    values, vectors = np.linalg.eigh(covariance)
+    stands, first, second = noise @ (vectors * np.sqrt(np.clip(values, 0.0, None))).T
+    thetas = theta + np.concatenate([stands + first, stands + second])
+    seats = np.tile(supports.seats(setup.model), (len(thetas), 1))
+    rows = evaluate_draws(setup.model.effects, setup.model.factors, *_acting(setup, thetas, seats))
+    used = next(row.utilisation for row in rows if row.check is aim.check)
+    found = ((used[:_PAIRS] - used[_PAIRS:]) ** 2).sum()
+    linear = (((first - second) @ aim.gradient) ** 2).sum()
+    return aim if linear == 0.0 else replace(aim, corners=float(np.sqrt(found / linear)))
 
 
 def _levelled(setup: Setup, supports: Supports) -> Floats:

@@ -11,8 +11,10 @@ from assess.workflow.supports import kept_fits
 from db.documents import GirderDoc
 
 PROMISE = (
-    "The standard deviations promised hold if every reading is as good as the standard deviation it is given, the girder is "
-    "as modelled and the pads are near what is known of them; read more than the least, so that readings check each other."
+    "The standard deviations promised hold, on average, if every reading is as good as the standard deviation it is given, the "
+    "girder is as modelled and pads and seats are near what is known of them; where seats stand near their datum one visit may "
+    "find more or less, because a settlement that relieves does not count. Read more than the least, so that readings check "
+    "each other."
 )
 BY_ITSELF = (
     "The next visit is taken as it will be calibrated, by itself: before its readings the pads have their nominal values with "

@@ -22,7 +22,7 @@ from assess.results import (
     PlanSupport,
 )
 from assess.workflow import cautions, contact_cautions, plan_cautions
-from assess.workflow.aiming import Aim, aim_of
+from assess.workflow.aiming import Aim, aim_of, with_corners
 from assess.workflow.building import GirderModel
 from assess.workflow.lifting import tipping_named
 from assess.workflow.offering import Offer, offer_of
@@ -163,6 +163,7 @@ def _plan_girder(study: Study, model: GirderModel, vehicle: VehicleDoc, limits: 
     # once more with the slopes over what will be left open, which is known only now
     aim = aim_of(setup, supports, theta, np.sqrt(np.diag(full.covariance)))
     full = choose(candidates, precision=precision, aim=aim.gradient, limits=limits)
+    aim = with_corners(aim, setup, supports, theta, full.covariance)
     halved = Limits(readings=limits.readings, positions=limits.positions, cost=full.cost / 2.0)
     half = choose(candidates, precision=precision, aim=aim.gradient, limits=halved)
     return _Planned(model=model, setup=setup, offer=offer, aim=aim, before=before, full=full, half=half)
