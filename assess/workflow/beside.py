@@ -9,9 +9,9 @@ from assess.calibrate import (
     Fit,
     Posterior,
     Problem,
+    draw_posterior,
     fit,
     intervals,
-    posterior,
     propose,
     robust,
 )
@@ -38,11 +38,11 @@ def intervals_of(fitting: Fitting, options: Options) -> Intervals | None:
 
 
 def draws_of(fitting: Fitting, options: Options) -> Posterior | None:
-    """Seeded draws of all unknowns."""
-    if fitting.setup is None or fitting.found is None:
+    """Seeded draws of all unknowns; None where nothing bounds them: without a prior any great stiffness fits alike."""
+    if fitting.setup is None or fitting.found is None or not options.prior:
         return None
     problem, found = _problem(fitting.setup, options), fitting.found
-    return posterior(problem.cost, found.theta, found.joint, count=DRAWS, seed=SEED)
+    return draw_posterior(problem.cost, found.theta, found.joint, count=DRAWS, seed=SEED)
 
 
 def robust_of(fitting: Fitting, options: Options) -> list[RobustPad]:

@@ -156,6 +156,11 @@ def _of_numbers(shown: GirderCalibration) -> list[str]:
             f"{shown.girder}: a robust fit, which gross errors pull less, moves the pads by more than a standard deviation: {pads}. "
             "Some reading pulls hard: look at the suspects before relying on these stiffnesses."
         )
+    if shown.pads and shown.effective_sample_size is None:
+        said.append(
+            f"{shown.girder}: bands and probabilities of this fit come from its normal approximation; draws of the whole "
+            "posterior could not be made (without the prior nothing bounds them), so that their tails may be wrong."
+        )
     if shown.effective_sample_size is not None and shown.effective_sample_size < _FEW_DRAWS:
         said.append(
             f"{shown.girder}: the draws behind bands and probabilities are worth only {shown.effective_sample_size:.0f} "

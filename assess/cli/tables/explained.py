@@ -92,8 +92,8 @@ def show_explanations(girder: GirderCalibration) -> None:
         p_value = number(one.p_value)
         others = f" (or {listed(one.alike)}: they cannot be told apart)" if one.alike else ""
         print_wrapped(
-            f"Look again at {one.reading}{others}: {number(one.standardised_residual)} standard deviations off; without it "
-            f'p would be {p_value}. To leave it out: --without "{one.reading}" --reason "..."',
+            f"Look again at {one.reading}{others}: {number(one.standardised_residual)} standard deviations off; "
+            f'without it p would be {p_value}. To leave it out: --without "{one.reading}" --reason "..."',
         )
 
 
