@@ -118,7 +118,7 @@ def _defaults(made: Sequence[_Planned]) -> list[str]:
     for one in made:
         for sentence in one.offer.defaults:
             girders.setdefault(sentence, []).append(one.model.doc.id)
-    return [f"{listed(names)}: {sentence}" for sentence, names in girders.items()]
+    return [f"{', '.join(names)}: {sentence}" for sentence, names in girders.items()]
 
 
 def _vehicle(study: Study, name: str) -> VehicleDoc:
