@@ -28,6 +28,17 @@ from assess.results.calibration import (
     UnknownResult,
 )
 from assess.results.plain import from_plain
+from assess.results.plan import (
+    GirderPlan,
+    GoverningSection,
+    HalfPlan,
+    PlannedPad,
+    PlannedPosition,
+    PlannedReading,
+    PlannedSeat,
+    PlanResult,
+    PlanSupport,
+)
 from assess.results.trend import PadTrend, SeatTrend, SpanTrend, TrendResult
 from assess.results.view import (
     ElevationState,
@@ -52,7 +63,10 @@ __all__ = [
     "ElevationState",
     "GirderAssessment",
     "GirderCalibration",
+    "GirderPlan",
     "GirderView",
+    "GoverningSection",
+    "HalfPlan",
     "LeftOut",
     "LoadStand",
     "MeasuredPoint",
@@ -63,6 +77,12 @@ __all__ = [
     "PadResult",
     "PadShift",
     "PadTrend",
+    "PlanResult",
+    "PlanSupport",
+    "PlannedPad",
+    "PlannedPosition",
+    "PlannedReading",
+    "PlannedSeat",
     "ProposedRemoval",
     "ReactionResult",
     "ReadingResult",
