@@ -28,6 +28,7 @@ from assess.results.calibration import (
     UnknownResult,
 )
 from assess.results.plain import from_plain
+from assess.results.said import grouped
 from assess.results.trend import PadTrend, SeatTrend, SpanTrend, TrendResult
 from assess.results.view import (
     ElevationState,
@@ -77,4 +78,5 @@ __all__ = [
     "TrendResult",
     "UnknownResult",
     "from_plain",
+    "grouped",
 ]
