@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from markupsafe import Markup
 
@@ -14,6 +14,7 @@ from assess.results import (
     CaseResult,
     GirderAssessment,
     GirderCalibration,
+    PadResult,
     ReactionResult,
     ReadingResult,
     SectionResult,
@@ -77,10 +78,13 @@ def reaction_heads(stands_on: str) -> list[str]:
 
 def section_rows(girder: GirderAssessment, key: str, stands_on: str) -> list[SectionRow]:
     """Return the utilisation table of a girder; `key` makes the ids of its marks."""
-    return [_section_row(section, f"{key}-u{i}", stands_on) for i, section in enumerate(girder.sections)]
+    names = [reaction.support for reaction in girder.reactions]
+    return [
+        _section_row(section, f"{key}-u{i}", stands_on, names) for i, section in enumerate(girder.sections)
+    ]
 
 
-def _section_row(section: SectionResult, key: str, stands_on: str) -> SectionRow:
+def _section_row(section: SectionResult, key: str, stands_on: str, names: list[str]) -> SectionRow:
     name = words.section(section.effect, section.span, section.support)
     case = section.calibrated
     unit = "kN" if section.effect == "shear" else "kN\N{NO-BREAK SPACE}m"
@@ -89,7 +93,7 @@ def _section_row(section: SectionResult, key: str, stands_on: str) -> SectionRow
         cases=[
             _cell(section.unyielding, unit, words.quantity(section.unyielding.utilisation, "", NO_CAPACITY)),
             _cell(section.nominal, unit, words.quantity(section.nominal.utilisation, "", NO_CAPACITY)),
-            _cell(case, unit, calibrated_utilisation(case)),
+            _with_rival(_cell(case, unit, calibrated_utilisation(case)), case, names),
         ],
         probability=words.probability(case.probability_over_1, NO_CAPACITY),
         status=words.judged(case.utilisation, stands_on),
@@ -122,6 +126,17 @@ def _cell(case: CaseResult, unit: str, told: str) -> CaseCell:
     if isinstance(case, CalibratedCase) and case.settlement:
         lines += _relief(case, unit)
     return CaseCell(utilisation=told, lines=lines)
+
+
+def _with_rival(cell: CaseCell, case: CalibratedCase, names: list[str]) -> CaseCell:
+    """The cell with the explanation that the readings bear as well and that uses the section more, if one does."""
+    if not case.used_more_by_rival:
+        return cell
+    used = words.quantity(case.worst_rival_utilisation, "")
+    told = (
+        f"explained by {words.prose(case.worst_rival or '', names)}, which the readings bear as well: {used}"
+    )
+    return replace(cell, lines=[*cell.lines, told])
 
 
 def _elsewhere(case: CaseResult) -> str:
@@ -216,15 +231,24 @@ def pad_rows(supports: list[SupportView], calibration: GirderCalibration | None)
             told = words.told_by(s.data_share)
             stiffness = nominal = words.not_determined(why)
             if pad is not None:
-                stiffness = words.interval(
-                    pad.stiffness_kN_per_m / 1000.0,
-                    pad.low95_kN_per_m / 1000.0,
-                    pad.highest_kN_per_m / 1000.0,
-                    "kN/mm",
-                )
+                stiffness = _stiffness(pad)
                 nominal = words.quantity(pad.nominal_kN_per_m / 1000.0, "kN/mm")
         rows.append([s.support, words.place(s.x_m), stiffness, nominal, ratio, told, _seat(s)])
     return rows
+
+
+def _stiffness(pad: PadResult) -> str:
+    """A pad's stiffness with its interval, whence that is, and the stiffness at 20 degC where it is known."""
+    told = words.interval(
+        pad.stiffness_kN_per_m / 1000.0, pad.low95_kN_per_m / 1000.0, pad.highest_kN_per_m / 1000.0, "kN/mm"
+    )
+    if pad.interval_from == "profile":
+        told += ", interval by profile likelihood"
+    if pad.stiffness_20degC_kN_per_m is not None:
+        told += (
+            f"; at 20\N{NO-BREAK SPACE}°C {words.quantity(pad.stiffness_20degC_kN_per_m / 1000.0, 'kN/mm')}"
+        )
+    return told
 
 
 def _seat(support: SupportView) -> str:
@@ -304,7 +328,7 @@ def reading_rows(readings: list[ReadingResult]) -> list[list[str]]:
         if r.standardised_residual is None and not r.suspect:
             remark = "unchecked"
         if r.predicted is None:
-            remark = "not fitted: the girder is off a pad"
+            remark = f"not fitted: {words.plain(r.left_out or 'no reason is kept')}"
         rows.append(
             [
                 r.state,
@@ -314,6 +338,7 @@ def reading_rows(readings: list[ReadingResult]) -> list[list[str]]:
                 words.quantity(r.predicted, r.unit, "not fitted"),
                 words.entered(r.sd, r.unit),
                 residual,
+                words.quantity(r.minimal_detectable, r.unit, "nothing checks it"),
                 remark,
             ]
         )
