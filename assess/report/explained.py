@@ -184,7 +184,8 @@ def deciding(fit: GirderCalibration) -> list[str]:
     """Name the reading that would tell each close explanation from the calibration."""
     close = [one for one in ranked(fit.rivals) if one.within_2 and one.told and one.told_apart_by]
     return [
-        f"Between the calibration and {one.name} this reading would decide (first as calibrated): {one.told_apart_by}."
+        f"This reading would decide between the calibration and the explanation by {one.name}: {one.told_apart_by} "
+        "(the first as calibrated)."
         for one in close
     ]
 

@@ -162,8 +162,9 @@ def _relief(case: CalibratedCase, unit: str) -> list[str]:
     """What settlement adds, and how a section fares with and without a relief by it."""
     lines = [f"settlement {words.number(case.settlement)}\N{NO-BREAK SPACE}{unit} of the permanent"]
     with_relief, without = case.utilisation_with_relief, case.utilisation_without_relief
-    if with_relief is not None and without is not None and with_relief != without:
-        lines.append(f"utilisation with relief {words.number(with_relief)}, without {words.number(without)}")
+    if with_relief is not None and without is not None:
+        told = words.number(with_relief), words.number(without)
+        lines += [f"utilisation with relief {told[0]}, without {told[1]}"] if told[0] != told[1] else []
     return lines
 
 
@@ -256,7 +257,7 @@ def _seat(support: SupportView) -> str:
         return words.not_determined("no level of this seat")
     sd = words.not_determined("no sd given")
     if support.seat_drop_sd_mm is not None:
-        sd = words.entered(support.seat_drop_sd_mm, "mm")
+        sd = words.spread(support.seat_drop_sd_mm, "mm")
     told = f"{words.seat(support.seat_drop_mm)} (sd {sd})"
     if not words.seat_moved(support.seat_drop_mm, support.seat_drop_sd_mm):
         return f"no movement beyond 2 sd: {told}"
@@ -290,7 +291,7 @@ def seat_trend_rows(trend: TrendResult, girder: str) -> list[list[str]]:
         why = "one visit gives no rate"
         rate = words.interval(s.rate_mm_per_year, s.low95, s.high95, "mm a year", why)
         told = "moving" if s.moving else "no movement told by the levels"
-        level = f"{words.seat(s.settlement_mm)} (sd {words.entered(s.sd_mm, 'mm')})"
+        level = f"{words.seat(s.settlement_mm)} (sd {words.spread(s.sd_mm, 'mm')})"
         rows.append([s.support, str(s.visits), level, rate, told if s.visits > 1 else "one visit"])
     return rows
 

@@ -127,6 +127,11 @@ def entered(value: float, unit: str = "") -> str:
     return f"{value:.6g} {unit}".rstrip().replace("-", MINUS)
 
 
+def spread(sd: float, unit: str = "") -> str:
+    """Word a standard deviation in at most two significant figures."""
+    return entered(float(f"{sd:.2g}"), unit)
+
+
 def span_length(length_m: float) -> str:
     """Word the length of a span in at most four significant figures."""
     return entered(float(f"{length_m:.4g}"), "m")

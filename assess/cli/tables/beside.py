@@ -51,7 +51,10 @@ def _show_rivals(girder: GirderAssessment, sections: list[SectionResult]) -> Non
     named = {s.calibrated.worst_rival for s in sections}
     for rival in girder.rivals:
         if rival.name in named and rival.told_apart_by:
-            print_wrapped(f"This would decide on {rival.name} (first as calibrated): {rival.told_apart_by}.")
+            print_wrapped(
+                f"This reading would decide between the calibration and the explanation by {rival.name}: "
+                f"{rival.told_apart_by} (the first as calibrated)."
+            )
 
 
 def _show_moved(sections: list[SectionResult]) -> None:

@@ -19,8 +19,8 @@ from numpy.typing import NDArray
 from assess.report import svg, words
 from assess.results import GirderCalibration
 
-_HEIGHT = 184.0
-_LEFT, _RIGHT, _FOOT, _HEAD = 40.0, 12.0, 50.0, 18.0
+_HEIGHT = 176.0
+_LEFT, _RIGHT, _FOOT, _HEAD = 40.0, 12.0, 46.0, 18.0
 _Z95 = 1.959964
 _BOTH95 = 2.447747  # square root of the 95 % point of chi-square with 2 degrees of freedom
 _TICKS = (1.0, 0.5, 2.0, 0.2, 5.0, 0.1, 10.0, 0.3, 0.7, 1.5, 3.0, 0.05, 20.0, 0.8, 0.9, 1.2)
