@@ -28,6 +28,18 @@ from assess.results.calibration import (
     UnknownResult,
 )
 from assess.results.plain import from_plain
+from assess.results.plan import (
+    GirderPlan,
+    GoverningSection,
+    HalfPlan,
+    PlannedPad,
+    PlannedPosition,
+    PlannedReading,
+    PlannedSeat,
+    PlanResult,
+    PlanSupport,
+)
+from assess.results.said import grouped
 from assess.results.trend import PadTrend, SeatTrend, SpanTrend, TrendResult
 from assess.results.view import (
     ElevationState,
@@ -52,7 +64,10 @@ __all__ = [
     "ElevationState",
     "GirderAssessment",
     "GirderCalibration",
+    "GirderPlan",
     "GirderView",
+    "GoverningSection",
+    "HalfPlan",
     "LeftOut",
     "LoadStand",
     "MeasuredPoint",
@@ -63,6 +78,12 @@ __all__ = [
     "PadResult",
     "PadShift",
     "PadTrend",
+    "PlanResult",
+    "PlanSupport",
+    "PlannedPad",
+    "PlannedPosition",
+    "PlannedReading",
+    "PlannedSeat",
     "ProposedRemoval",
     "ReactionResult",
     "ReadingResult",
@@ -77,4 +98,5 @@ __all__ = [
     "TrendResult",
     "UnknownResult",
     "from_plain",
+    "grouped",
 ]
