@@ -10,6 +10,7 @@ from __future__ import annotations
 import datetime as dt
 from dataclasses import dataclass, field
 
+from db.action_doc import OWNER_ROLE, ActionsDoc
 from db.pad_doc import PadDoc
 from db.prior_doc import GaugeDoc, PriorDoc
 from db.raw_doc import BenchmarkDoc, RawDoc
@@ -279,6 +280,8 @@ class BridgeDoc:
     temperature: tuple[TemperatureDoc, ...] = ()
     factors: FactorsDoc
     prior: PriorDoc = field(default_factory=PriorDoc)
+    owner_role: str = OWNER_ROLE  # who decides on an action
+    actions: ActionsDoc = field(default_factory=ActionsDoc)
     text: str = field(repr=False)  # the file as read
     digest: str  # sha256 of the text
 

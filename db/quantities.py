@@ -93,12 +93,16 @@ _DEFINITIONS = (
     f"degF = {5 / 9!r} * K; offset: {459.67 * 5 / 9!r}",
     f"F_step = {5 / 9!r} * K",
     "month = year / 12",
+    "day = year / 365.25",
 )
 
 _SPELLINGS = {
     **{name: name for name in ("m", "mm", "cm", "km", "um", "ft", "N", "kN", "MN", "lbf", "kip")},
     **{name: name for name in ("Pa", "kPa", "MPa", "GPa", "psi", "ksi", "rad", "mrad", "urad", "deg")},
-    **{name: name for name in ("strain", "microstrain", "percent", "K", "degC", "degF", "year", "month")},
+    **{
+        name: name
+        for name in ("strain", "microstrain", "percent", "K", "degC", "degF", "year", "month", "day")
+    },
     **dict.fromkeys(("metre", "metres", "meter", "meters"), "m"),
     **dict.fromkeys(("µm", "μm"), "um"),
     **dict.fromkeys(("in", "inch", "inches"), "inch"),
@@ -112,6 +116,7 @@ _SPELLINGS = {
     "°F": "degF",
     "years": "year",
     "months": "month",
+    "days": "day",
     # a few spellings written together
     "kNm": "kN m",
     "Nm": "N m",

@@ -214,7 +214,9 @@ class KeptRow(Base):
     version: Mapped[str] = mapped_column(ID)
     result: Mapped[dict[str, Any]]
     made_at: Mapped[dt.datetime] = mapped_column(default=now)
-    evidence: Mapped[str | None] = mapped_column(DIGEST)  # what the record held when it was made; see `evidence.py`
+    evidence: Mapped[str | None] = mapped_column(
+        DIGEST
+    )  # what the record held when it was made; see `evidence.py`
 
 
 class CalibrationRow(KeptRow):

@@ -56,10 +56,13 @@ def list_(record: str, bridge: str, as_json: bool) -> None:
       bedstone visit list quillmere --json
     """
     from assess import workflow
+    from assess.cli.tables.actions import show_first
     from assess.cli.tables.records import show_visits
 
     visits = workflow.list_visits(record, bridge)
+    actions = workflow.list_actions(record, bridge)
     if as_json:
-        print_json({"bridge": bridge, "visits": visits})
+        print_json({"bridge": bridge, "actions": actions, "visits": visits})
     else:
+        show_first(actions)
         show_visits(bridge, visits)

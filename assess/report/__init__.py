@@ -1,6 +1,7 @@
 """The report: figures and pages over the results; it computes nothing."""
 
+from assess.report.network import render_network, write_network
 from assess.report.page import render, write_report
 from assess.report.planned import write_plan
 
-__all__ = ["render", "write_plan", "write_report"]
+__all__ = ["render", "render_network", "write_network", "write_plan", "write_report"]

@@ -7,6 +7,7 @@ from dataclasses import dataclass, field
 from markupsafe import Markup
 
 from assess.report import cautions, pads, sections, tables, words
+from assess.report.actions import action_lines
 from assess.report.explained import Explained, explained
 from assess.report.figures import elevation, history, moments, plane, residuals, utilisation
 from assess.results import GirderAssessment, GirderCalibration, GirderView, ReportView
@@ -61,6 +62,7 @@ def build(view: ReportView) -> dict[str, object]:
         "name": words.plain(view.name) or view.bridge,
         "facts": _facts(view),
         "next_visit": _next_visit(view),
+        "actions": action_lines(view.actions, cautions.support_names(view)),
         "girders": [_girder(view, name, f"g{i + 1}") for i, name in enumerate(_names(view))],
         "sections": sections.pages(view.sections),
         "factors": view.factors,

@@ -1,5 +1,6 @@
 """What the commands say. The fields of these dataclasses are the JSON keys of the contract."""
 
+from assess.results.actions import ActionEventResult, ActionOption, ActionResult
 from assess.results.assessment import (
     AssessmentResult,
     CalibratedCase,
@@ -27,7 +28,8 @@ from assess.results.calibration import (
     SettlementResult,
     UnknownResult,
 )
-from assess.results.plain import from_plain
+from assess.results.network import NetworkResult, NetworkRow
+from assess.results.plain import from_plain, to_plain
 from assess.results.plan import (
     GirderPlan,
     GoverningSection,
@@ -53,6 +55,9 @@ from assess.results.view import (
 )
 
 __all__ = [
+    "ActionEventResult",
+    "ActionOption",
+    "ActionResult",
     "AssessmentResult",
     "CalibratedCase",
     "CalibrationResult",
@@ -72,6 +77,8 @@ __all__ = [
     "LoadStand",
     "MeasuredPoint",
     "MomentLines",
+    "NetworkResult",
+    "NetworkRow",
     "PadCheck",
     "PadHistory",
     "PadLimit",
@@ -99,4 +106,5 @@ __all__ = [
     "UnknownResult",
     "from_plain",
     "grouped",
+    "to_plain",
 ]

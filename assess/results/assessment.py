@@ -5,6 +5,8 @@ from __future__ import annotations
 import datetime as dt
 from dataclasses import dataclass, field
 
+from assess.results.actions import ActionResult
+
 RIVAL_MATTERS = 0.005  # of a utilisation
 
 
@@ -150,5 +152,6 @@ class AssessmentResult:
     input_digest: str
     seed: int
     draws: int
+    actions: list[ActionResult] = field(default_factory=list)  # the open ones of the bridge
     girders: list[GirderAssessment]
     cautions: list[str]

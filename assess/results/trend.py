@@ -5,6 +5,8 @@ from __future__ import annotations
 import datetime as dt
 from dataclasses import dataclass, field
 
+from assess.results.actions import ActionResult
+
 
 @dataclass(frozen=True, kw_only=True)
 class PadTrend:
@@ -56,6 +58,7 @@ class TrendResult:
 
     bridge: str
     as_of: dt.date
+    actions: list[ActionResult] = field(default_factory=list)  # the open ones of the bridge
     pads: list[PadTrend]
     spans: list[SpanTrend]
     seats: list[SeatTrend] = field(default_factory=list)

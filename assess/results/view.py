@@ -8,6 +8,7 @@ from dataclasses import dataclass, field
 import numpy as np
 from numpy.typing import NDArray
 
+from assess.results.actions import ActionResult
 from assess.results.assessment import AssessmentResult
 from assess.results.calibration import CalibrationResult
 from assess.results.trend import TrendResult
@@ -151,4 +152,5 @@ class ReportView:
     girders: list[GirderView]
     options: dict[str, str]  # provenance: option -> value in words
     cautions: list[str] = field(default_factory=list)
+    actions: list[ActionResult] = field(default_factory=list)  # the open ones
     sections: list[SectionView] = field(default_factory=list)  # those built from plates are drawn

@@ -1,8 +1,11 @@
 """Load, compute, keep: the only room that knows both the record and the mechanics."""
 
+from assess.workflow.actions import close_action, list_actions, note_action, show_action
 from assess.workflow.assessing import assess
 from assess.workflow.calibrating import calibrate
 from assess.workflow.fitting import Options
+from assess.workflow.interventions import add_intervention, list_interventions, withdraw_intervention
+from assess.workflow.network import network
 from assess.workflow.planning import plan
 from assess.workflow.records import (
     add_bridge,
@@ -22,17 +25,25 @@ __all__ = [
     "Options",
     "Progress",
     "add_bridge",
+    "add_intervention",
     "assess",
     "bridge_view",
     "calibrate",
+    "close_action",
     "draft_bridge",
     "draft_visit",
     "init_record",
+    "list_actions",
     "list_bridges",
+    "list_interventions",
     "list_visits",
     "log_visit",
+    "network",
+    "note_action",
     "plan",
     "report_view",
+    "show_action",
     "show_bridge",
     "trend",
+    "withdraw_intervention",
 ]

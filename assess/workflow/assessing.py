@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import datetime as dt
 from collections.abc import Sequence
-from dataclasses import asdict, replace
+from dataclasses import replace
 from itertools import pairwise
 from typing import Any
 
@@ -21,11 +21,14 @@ from assess.results import (
     GirderAssessment,
     ReactionResult,
     SectionResult,
+    to_plain,
 )
 from assess.workflow import (
+    actions,
     cautions,
     combination_cautions,
     contact_cautions,
+    findings,
     hinge_cautions,
     pad_cautions,
     section_cautions,
@@ -39,7 +42,7 @@ from assess.workflow.sections import last_loss
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, telling_readings
 from assess.workflow.supports import Supports, kept_fits, supports_of
 from db.records import KeptResult
-from db.store import open_record
+from db.store import Record, open_record
 
 Floats = NDArray[np.float64]
 
@@ -49,30 +52,36 @@ def assess(
 ) -> AssessmentResult:
     """Assess a bridge with its latest kept calibration (up to a visit, if one is named), and keep the result."""
     with open_record(url) as record:
-        study = Study.fetch(record, bridge)
-        if visit is not None:
-            study.visit(visit)
-        result = assess_study(study, visit=visit, progress=progress or quiet)
-        record.keep(
-            KeptResult(
-                kind="assessment",
-                bridge=bridge,
-                visit=result.calibration_visit,
-                revision=study.kept.revision,
-                input_digest=result.input_digest,
-                options={"draws": result.draws, "visit": visit.isoformat() if visit else None},
-                seed=result.seed,
-                version=VERSION,
-                result=_plain(result),
-            )
+        return assess_in(record, bridge, visit=visit, progress=progress)
+
+
+def assess_in(
+    record: Record, bridge: str, *, visit: dt.date | None = None, progress: Progress | None = None
+) -> AssessmentResult:
+    """Assess a bridge of an open record, keep the result, and open actions for what exceeds.
+
+    A look into the past (`visit`) opens none.
+    """
+    study = Study.fetch(record, bridge)
+    if visit is not None:
+        study.visit(visit)
+    result = assess_study(study, visit=visit, progress=progress or quiet)
+    record.keep(
+        KeptResult(
+            kind="assessment",
+            bridge=bridge,
+            visit=result.calibration_visit,
+            revision=study.kept.revision,
+            input_digest=result.input_digest,
+            options={"draws": result.draws, "visit": visit.isoformat() if visit else None},
+            seed=result.seed,
+            version=VERSION,
+            result=to_plain(result),
+            evidence=study.evidence if visit is None else None,
         )
-    return result
-
-
-def _plain(result: AssessmentResult) -> dict[str, object]:
-    plain = asdict(result)
-    plain["calibration_visit"] = result.calibration_visit and result.calibration_visit.isoformat()
-    return plain
+    )
+    found = findings.of_assessment(study, result, dt.date.today()) if visit is None else []
+    return replace(result, actions=actions.opened(record, bridge, found))
 
 
 def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> AssessmentResult:

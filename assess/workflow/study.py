@@ -12,7 +12,7 @@ from assess.workflow.building import GirderModel
 from assess.workflow.sections import last_loss
 from db.documents import BridgeDoc, VisitDoc
 from db.errors import BedstoneError
-from db.records import KeptBridge, KeptResult
+from db.records import KeptBridge, KeptIntervention, KeptResult
 from db.store import Record
 
 Progress = Callable[[str, int, int], None]
@@ -34,12 +34,17 @@ class Study:
     kept: KeptBridge
     visits: list[VisitDoc]
     calibrations: list[KeptResult]
+    interventions: list[KeptIntervention] = field(default_factory=list)
+    evidence: str = ""  # digest of what the record held when this was fetched
     _models: dict[tuple[str, dt.date], GirderModel] = field(default_factory=dict)
 
     @classmethod
     def fetch(cls, record: Record, bridge: str) -> Study:
         """Fetch a bridge with all that is kept of it."""
+        held = record.evidence(bridge)  # first: what comes in between makes a result stale, never current
         return cls(
+            evidence=held,
+            interventions=record.interventions(bridge),
             kept=record.bridge(bridge),
             visits=record.visit_docs(bridge),
             calibrations=record.results(bridge, "calibration"),

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Any
 
 import numpy as np
@@ -11,7 +11,7 @@ from numpy.typing import NDArray
 
 from assess.calibrate import SUSPECT
 from assess.capacity import evaluate, evaluate_draws
-from assess.results import PadTrend, SeatTrend, SpanTrend, TrendResult
+from assess.results import PadTrend, SeatTrend, SpanTrend, TrendResult, to_plain
 from assess.trend import (
     PadLaw,
     SeatLaw,
@@ -22,18 +22,19 @@ from assess.trend import (
     fit_trend,
     pad_future,
 )
-from assess.workflow import cautions, contact_cautions, pad_cautions, section_cautions
+from assess.workflow import actions, cautions, contact_cautions, findings, pad_cautions, section_cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import calibrate_visit
 from assess.workflow.kept_fits import GirderFit, VisitFit
 from assess.workflow.lifting import draws_worth, tipping_named
 from assess.workflow.pads import cold_shift, corrected
 from assess.workflow.status import LIMIT, status_of
-from assess.workflow.study import SEED, Progress, Study, quiet, telling_readings
+from assess.workflow.study import SEED, VERSION, Progress, Study, quiet, telling_readings
 from assess.workflow.supports import Settlement, acting, kept_fits, seat_histories
 from db.documents import VisitDoc
 from db.errors import BedstoneError
-from db.store import open_record
+from db.records import KeptResult
+from db.store import Record, open_record
 
 Floats = NDArray[np.float64]
 
@@ -69,8 +70,30 @@ class GirderTrend:
 def trend(url: str, bridge: str, *, progress: Progress | None = None) -> TrendResult:
     """Follow all pads of a bridge over its calibrated visits and carry its governing sections forward."""
     with open_record(url) as record:
-        study = Study.fetch(record, bridge)
-    return trend_study(study, progress=progress or quiet)[0]
+        return trend_in(record, bridge, progress=progress)
+
+
+def trend_in(record: Record, bridge: str, *, progress: Progress | None = None) -> TrendResult:
+    """Follow a bridge of an open record, keep the result, and open actions for what exceeds or is about to."""
+    study = Study.fetch(record, bridge)
+    result = trend_study(study, progress=progress or quiet)[0]
+    record.keep(
+        KeptResult(
+            kind="trend",
+            bridge=bridge,
+            visit=result.as_of,
+            revision=study.kept.revision,
+            input_digest=study.evidence,
+            options={"draws": FORECAST_DRAWS},
+            seed=SEED,
+            version=VERSION,
+            result=to_plain(result),
+            evidence=study.evidence,
+        )
+    )
+    until = actions.interval_day(study, DEFAULT_INTERVAL_YEARS)
+    found = findings.of_trend(study, result, dt.date.today(), until=until)
+    return replace(result, actions=actions.opened(record, bridge, found))
 
 
 def trend_study(study: Study, *, progress: Progress) -> tuple[TrendResult, list[GirderTrend]]:

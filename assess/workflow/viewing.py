@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -21,6 +22,7 @@ from assess.results import (
     TrendResult,
 )
 from assess.workflow import cautions
+from assess.workflow.actions import open_actions
 from assess.workflow.assessing import assess_study
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import calibrate_visit
@@ -48,6 +50,7 @@ def report_view(url: str, bridge: str, *, progress: Progress | None = None) -> R
     tell = progress or quiet
     with open_record(url) as record:
         study = Study.fetch(record, bridge)
+        standing = open_actions(record, bridge)
     assessment = assess_study(study, visit=None, progress=tell)
     tested = any(telling_readings(visit) for visit in study.visits)
     trend, parts = trend_study(study, progress=tell) if tested else (None, [])
@@ -59,7 +62,7 @@ def report_view(url: str, bridge: str, *, progress: Progress | None = None) -> R
         girders.append(_girder(study, girder.id, calibration, part))
     tell("drawn", len(study.bridge.girders), len(study.bridge.girders))
     shown = calibration.result if calibration is not None else None
-    return _view(study, shown, assessment, trend, girders)
+    return replace(_view(study, shown, assessment, trend, girders), actions=standing)
 
 
 def _view(

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from pathlib import Path
 
+from db.action_doc import OWNER_ROLE
 from db.documents import (
     BridgeDoc,
     GirderDoc,
@@ -12,6 +13,7 @@ from db.documents import (
     VehicleDoc,
 )
 from db.errors import BedstoneError
+from db.exchange.actions_toml import actions
 from db.exchange.combination_toml import factors, temperatures
 from db.exchange.fields import Fields, refuse_duplicates
 from db.exchange.files import digest_of, parse_toml, read_text, refuse_controls
@@ -27,8 +29,8 @@ STIFFEST_KN_PER_M2 = 1e9  # 1000 GPa
 SOFTEST_KN_PER_M2 = 1e6  # 1 GPa
 MOST_VEHICLES = 1000
 
-_TOP = "format bridge section girder vehicle live temperature factors prior"
-_BRIDGE = "id name carries built zero visit_interval"
+_TOP = "format bridge section girder vehicle live temperature factors prior actions"
+_BRIDGE = "id name carries built zero visit_interval owner_role"
 _SECTION = f"id E I shear_area G depth sagging_capacity hogging_capacity shear_capacity {PLATES}"
 _VEHICLE = "id axles plan_positions"
 _LIVE = "id vehicle count pitch dynamic model track"
@@ -87,6 +89,8 @@ def parse_bridge(text: str, *, file: str) -> BridgeDoc:
         temperature=temperatures(top, girders),
         factors=factors(top),
         prior=prior(top),
+        owner_role=head.id("owner_role") if head.has("owner_role") else OWNER_ROLE,
+        actions=actions(top),
         text=text,
         digest=digest_of(text),
     )

@@ -4,7 +4,8 @@ from __future__ import annotations
 
 import contextlib
 import datetime as dt
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
+from typing import Any
 
 from sqlalchemy import Engine
 from sqlalchemy.orm import Session
@@ -12,9 +13,21 @@ from sqlalchemy.orm import Session
 from db.documents import BridgeDoc, VisitDoc
 from db.exchange import check_visit, parse_bridge
 from db.exchange.files import digest_of
-from db.records import BridgeSummary, KeptBridge, KeptResult, Taken, VisitSummary
+from db.records import (
+    BridgeState,
+    BridgeSummary,
+    Finding,
+    KeptAction,
+    KeptBridge,
+    KeptIntervention,
+    KeptResult,
+    NewIntervention,
+    Taken,
+    VisitSummary,
+)
 from db.schema import RevisionRow
-from db.store import bridges, results, visits
+from db.store import actions, bridges, interventions, network, results, visits
+from db.store.evidence import evidence
 from db.store.faults import damaged, told_plainly
 
 WRITES = "bedstone_writes"
@@ -106,10 +119,78 @@ class Record:
             return results.add_result(session, result)
 
     def results(self, bridge: str, kind: str) -> list[KeptResult]:
-        """Return the kept calibrations or assessments of a bridge, newest last."""
+        """Return the kept results of one kind of a bridge, newest last."""
         results.check_kind(kind)
         with self.reading() as session:
             return results.kept_results(session, bridges.find_bridge(session, bridge), kind)
+
+    def evidence(self, bridge: str) -> str:
+        """Return the digest of what is kept of a bridge now; it changes when anything is added that results rest on."""
+        with self.reading() as session:
+            return evidence(session, bridges.find_bridge(session, bridge).key)[bridge]
+
+    def add_intervention(self, bridge: str, new: NewIntervention) -> KeptIntervention | None:
+        """Keep what was done to a pad; None if the very same is in the record already."""
+        document = self.bridge(bridge).document
+        with self.transaction() as session:
+            row = bridges.find_bridge(session, bridge, lock=True)
+            return interventions.add_intervention(session, row, document, new)
+
+    def withdraw_intervention(self, number: int, reason: str) -> KeptIntervention:
+        """Withdraw an intervention with a reason; it stays in the record, and counts no more."""
+        with self.transaction() as session:
+            return interventions.withdraw_intervention(session, number, reason)
+
+    def interventions(self, bridge: str) -> list[KeptIntervention]:
+        """Return what was done to the pads of a bridge, by date."""
+        with self.reading() as session:
+            return interventions.kept_interventions(session, bridges.find_bridge(session, bridge))
+
+    def found(self, bridge: str, findings: Iterable[Finding]) -> None:
+        """Open actions for what was found, or add to those that are open."""
+        with self.transaction() as session:
+            row = bridges.find_bridge(session, bridge, lock=True)
+            actions.record_findings(session, row, findings)
+
+    def actions(self, bridge: str | None = None) -> list[KeptAction]:
+        """Return all actions of a bridge, or of the record, open and closed."""
+        with self.reading() as session:
+            row = None if bridge is None else bridges.find_bridge(session, bridge)
+            return actions.kept_actions(session, row)
+
+    def action(self, number: int) -> KeptAction:
+        """Return an action by its number."""
+        with self.reading() as session:
+            return actions.find_action(session, number)
+
+    def note_action(self, number: int, text: str, *, date: dt.date) -> None:
+        """Add a note to an action."""
+        with self.transaction() as session:
+            bridge = actions.find_action(session, number).bridge
+            row = bridges.find_bridge(session, bridge, lock=True)
+            actions.add_note(session, number, text, evidence=evidence(session, row.key)[row.key], date=date)
+
+    def close_action(
+        self, number: int, text: str, *, date: dt.date, visit: dt.date | None, figures: dict[str, Any]
+    ) -> None:
+        """Close an action with its evidence in words."""
+        with self.transaction() as session:
+            bridge = actions.find_action(session, number).bridge
+            row = bridges.find_bridge(session, bridge, lock=True)
+            held = evidence(session, row.key)[row.key]
+            actions.close_action(
+                session, row, number, text, evidence=held, date=date, visit=visit, figures=figures
+            )
+
+    def bridge_states(self) -> list[BridgeState]:
+        """Return what is kept of every bridge, by id, in a fixed number of queries."""
+        with self.reading() as session:
+            return network.bridge_states(session)
+
+    def newest_results(self, kind: str, bridge: str | None = None) -> dict[str, KeptResult]:
+        """Return the newest assessment or trend of the present of every bridge, or of one, by id."""
+        with self.reading() as session:
+            return network.newest_results(session, kind, bridge)
 
     def _document(self, row: RevisionRow) -> BridgeDoc:
         """The bridge file of a revision, parsed once."""

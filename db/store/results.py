@@ -1,4 +1,4 @@
-"""Kept calibrations and assessments."""
+"""Kept calibrations, assessments and trends."""
 
 from __future__ import annotations
 
@@ -9,13 +9,14 @@ from sqlalchemy import select
 from sqlalchemy.orm import Session
 
 from db.records import KeptResult
-from db.schema import AssessmentRow, BridgeRow, CalibrationRow, KeptRow, RevisionRow, VisitRow
+from db.schema import AssessmentRow, BridgeRow, CalibrationRow, KeptRow, RevisionRow, TrendRow, VisitRow
 from db.store.bridges import find_bridge, find_revision
 from db.store.visits import find_visit
 
 _TABLES: dict[str, type[KeptRow]] = {
     "calibration": CalibrationRow,
     "assessment": AssessmentRow,
+    "trend": TrendRow,
 }
 
 
@@ -44,8 +45,13 @@ def add_result(session: Session, kept: KeptResult) -> bool:
     options = _plain(kept.options)
     query = select(table).where(table.bridge_id == bridge.id, table.visit_id.is_not_distinct_from(visit_id))
     newest = session.scalars(query.order_by(table.id.desc()).limit(1)).first()
-    made = (kept.input_digest, options, kept.version)
-    if newest is not None and (newest.input_digest, newest.options, newest.version) == made:
+    made = (kept.input_digest, options, kept.version, kept.evidence)
+    if newest is not None and made == (
+        newest.input_digest,
+        newest.options,
+        newest.version,
+        newest.evidence,
+    ):
         return False
     row = table(
         bridge_id=bridge.id,
@@ -56,6 +62,7 @@ def add_result(session: Session, kept: KeptResult) -> bool:
         seed=kept.seed,
         version=kept.version,
         result=_plain(kept.result),
+        evidence=kept.evidence,
     )
     session.add(row)
     return True
@@ -83,6 +90,7 @@ def kept_results(session: Session, bridge: BridgeRow, kind: str) -> list[KeptRes
             version=row.version,
             result=row.result,
             made_at=row.made_at,
+            evidence=row.evidence,
         )
         for row, number, date in session.execute(query)
     ]

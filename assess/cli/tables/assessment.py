@@ -6,6 +6,7 @@ from typing import TYPE_CHECKING
 
 import click
 
+from assess.cli.tables.actions import show_first
 from assess.cli.tables.beside import show_beside
 from assess.cli.tables.screen import print_cautions, print_heading, print_table
 from assess.cli.tables.words import chance, interval, number, section_name
@@ -15,7 +16,8 @@ if TYPE_CHECKING:
 
 
 def show_assessment(result: AssessmentResult) -> None:
-    """Print the governing sections and the reactions of every girder."""
+    """Print the governing sections and the reactions of every girder, open actions first."""
+    show_first(result.actions)
     from assess.results import grouped
 
     if result.calibration_visit is None:

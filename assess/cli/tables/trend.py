@@ -8,6 +8,7 @@ from typing import TYPE_CHECKING
 
 import click
 
+from assess.cli.tables.actions import show_first
 from assess.cli.tables.screen import print_cautions, print_heading, print_table, print_wrapped
 from assess.cli.tables.words import NOT_DETERMINED, chance, day, interval, number, section_name
 
@@ -19,7 +20,8 @@ STEP_VISITS = 4  # fewer cannot tell a step from a drift
 
 
 def show_trend(result: TrendResult) -> None:
-    """Print the pads' laws, the sections carried forward, and when to visit next."""
+    """Print the pads' laws, the sections carried forward, and when to visit next; open actions first."""
+    show_first(result.actions)
     click.echo(f"Bridge {result.bridge}, as of {result.as_of}")
     for name in dict.fromkeys([*(p.girder for p in result.pads), *(s.girder for s in result.spans)]):
         print_heading(f"Girder {name}")

@@ -10,10 +10,18 @@ _WIDTH = 132.0
 _HEIGHT = 26.0
 _UNIT = 96.0  # px from 0 to 1.0
 _END = 1.3  # utilisation at which the drawn bar stops
-_TINTS = {"within": svg.ACCENT_TINT, "watch": svg.ACCENT, "over": svg.SECOND}
+_TINTS = {"within": svg.ACCENT_TINT, "watch": svg.ACCENT, "over": svg.SECOND, "unknown": svg.NEUTRAL}
 
 
-def mark(utilisation: float | None, low: float | None, high: float | None, *, key: str, name: str) -> str:
+def mark(
+    utilisation: float | None,
+    low: float | None,
+    high: float | None,
+    *,
+    key: str,
+    name: str,
+    status: str | None = None,
+) -> str:
     """Draw one utilisation: fill for the value, whisker for its 95 % interval, tall rule at 1.0.
 
     Parameters
@@ -24,12 +32,15 @@ def mark(utilisation: float | None, low: float | None, high: float | None, *, ke
         Unique on the page; ids begin with it.
     name
         The section in words, for the text read out.
+    status
+        The status word where it is not that of the value: "unknown" for a value that does not stand today is
+        drawn grey in a dashed frame.
     """
-    status = words.status(utilisation)
+    status = status or words.status(utilisation)
     told = words.interval(utilisation, low, high, reason="no capacity or no effect to compare")
     title = escape(words.plain(f"{name}: {status}, utilisation {told}"))
     body = [] if utilisation is None or not words.known(utilisation) else _bar(utilisation, status)
-    body += _frame(dashed=not body)
+    body += _frame(dashed=not body or status == "unknown")
     if body and low is not None and high is not None and words.known(low) and words.known(high):
         body += _whisker(low, high)
     return (

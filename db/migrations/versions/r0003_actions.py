@@ -89,9 +89,7 @@ def _actions() -> None:
         sa.ForeignKeyConstraint(["bridge_id"], ["bridges.id"], name=op.f("fk_actions_bridge_id")),
         sa.ForeignKeyConstraint(["reopens_id"], ["actions.id"], name=op.f("fk_actions_reopens_id")),
         sa.PrimaryKeyConstraint("id", name=op.f("pk_actions")),
-        sa.UniqueConstraint(
-            "bridge_id", "subject", "turn", name=op.f("uq_actions_bridge_id_subject_turn")
-        ),
+        sa.UniqueConstraint("bridge_id", "subject", "turn", name=op.f("uq_actions_bridge_id_subject_turn")),
     )
     op.create_table(
         "action_events",
@@ -114,9 +112,7 @@ def _actions() -> None:
             "kind IN ('opened', 'found', 'noted', 'closed')", name=op.f("ck_action_events_kind")
         ),
         sa.CheckConstraint("(kind = 'opened') = (number = 1)", name=op.f("ck_action_events_opened")),
-        sa.CheckConstraint(
-            "(kind = 'closed') = (closes IS NOT NULL)", name=op.f("ck_action_events_closes")
-        ),
+        sa.CheckConstraint("(kind = 'closed') = (closes IS NOT NULL)", name=op.f("ck_action_events_closes")),
         sa.CheckConstraint("closes IS NULL OR closes = 1", name=op.f("ck_action_events_closed_once")),
         sa.ForeignKeyConstraint(["action_id"], ["actions.id"], name=op.f("fk_action_events_action_id")),
         sa.ForeignKeyConstraint(["visit_id"], ["visits.id"], name=op.f("fk_action_events_visit_id")),
