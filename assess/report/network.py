@@ -71,7 +71,11 @@ def write_network(result: NetworkResult, path: Path) -> None:
 
 
 def _line(row: NetworkRow) -> BridgeLine:
-    section = words.not_determined() if row.section is None else f"girder {row.girder}: {row.section}"
+    section = (
+        words.not_determined()
+        if row.section is None
+        else f"girder {row.girder}: {row.section}".replace('"', "")
+    )
     mark = utilisation.mark(
         row.utilisation,
         row.utilisation_low95,

@@ -5,8 +5,8 @@ from assess.workflow.assessing import assess
 from assess.workflow.calibrating import calibrate
 from assess.workflow.fitting import Options
 from assess.workflow.interventions import add_intervention, list_interventions, withdraw_intervention
-from assess.workflow.network import network
 from assess.workflow.planning import plan
+from assess.workflow.ranking import network
 from assess.workflow.records import (
     add_bridge,
     draft_bridge,

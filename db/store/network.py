@@ -50,7 +50,7 @@ def bridge_states(session: Session) -> list[BridgeState]:
 
 def _visited(session: Session) -> dict[str, dt.date]:
     query = select(BridgeRow.key, func.max(VisitRow.date)).join(VisitRow, VisitRow.bridge_id == BridgeRow.id)
-    return dict(session.execute(query.group_by(BridgeRow.key)).tuples().all())
+    return {row[0]: row[1] for row in session.execute(query.group_by(BridgeRow.key))}
 
 
 def _tested(session: Session) -> dict[str, dt.date]:
@@ -65,7 +65,7 @@ def _tested(session: Session) -> dict[str, dt.date]:
         )
         .group_by(BridgeRow.key)
     )
-    return dict(session.execute(query).tuples().all())
+    return {row[0]: row[1] for row in session.execute(query)}
 
 
 def _calibrated(session: Session) -> dict[str, tuple[dt.date, int]]:
@@ -89,7 +89,7 @@ def _digests(session: Session) -> dict[str, str]:
         .join(RevisionRow, RevisionRow.bridge_id == BridgeRow.id)
         .where(RevisionRow.id.in_(newest))
     )
-    return dict(session.execute(query).tuples().all())
+    return {row[0]: row[1] for row in session.execute(query)}
 
 
 def newest_results(session: Session, kind: str, bridge: str | None = None) -> dict[str, KeptResult]:

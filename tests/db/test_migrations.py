@@ -105,6 +105,29 @@ def test_a_record_of_the_first_version_is_migrated_with_its_values(tmp_path: Pat
         assert differences(connection) == []
 
 
+def test_a_record_of_the_second_version_is_migrated_with_its_results(tmp_path: Path) -> None:
+    location = tmp_path / "old.sqlite"
+    shutil.copy(DATA / "record-0002.sqlite", location)
+    with create_engine(f"sqlite:///{location}").connect() as connection:
+        assert connection.exec_driver_sql("SELECT version_num FROM alembic_version").scalar_one() == "0002"
+    with open_record(str(location)) as record:
+        assert record.visit("quillmere", dt.date(2024, 5, 14)).readings[0].value == 1.42e-3
+        (kept,) = record.results("quillmere", "assessment")
+        (fitted,) = record.results("quillmere", "calibration")
+        assert (kept.evidence, fitted.evidence) == (None, None)
+        sections = kept.result["girders"][0]["sections"]
+        assert sections[0]["calibrated"]["utilisation"] == pytest.approx(0.282, abs=5e-4)
+        assert fitted.visit == dt.date(2024, 5, 14)
+        assert record.newest_results("assessment") == {}  # what it rests on is not known: it is made again
+        assert (record.actions(), record.interventions("quillmere")) == ([], [])
+        assert record.results("quillmere", "trend") == []
+    with create_engine(f"sqlite:///{location}").connect() as connection:
+        assert (
+            connection.exec_driver_sql("SELECT version_num FROM alembic_version").scalar_one() == SCHEMA_HEAD
+        )
+        assert differences(connection) == []
+
+
 def test_tables_made_halfway_are_not_kept(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     location = tmp_path / "r.sqlite"
     create_table = op.create_table

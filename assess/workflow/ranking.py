@@ -44,8 +44,10 @@ def network(url: str, *, refresh: bool = False, progress: Progress | None = None
     """
     with open_record(url) as record:
         states = record.bridge_states()
-        failed, computed = _complete(record, states, refresh, progress or quiet)
         assessments, trends = record.newest_results("assessment"), record.newest_results("trend")
+        failed, computed = _complete(record, states, (assessments, trends), refresh, progress or quiet)
+        if computed or failed:
+            assessments, trends = record.newest_results("assessment"), record.newest_results("trend")
         actions: dict[str, list[ActionResult]] = defaultdict(list)
         for action in open_actions(record):
             actions[action.bridge].append(action)
@@ -72,10 +74,14 @@ def network(url: str, *, refresh: bool = False, progress: Progress | None = None
 
 
 def _complete(
-    record: Record, states: Sequence[BridgeState], refresh: bool, progress: Progress
+    record: Record,
+    states: Sequence[BridgeState],
+    results: tuple[dict[str, KeptResult], dict[str, KeptResult]],
+    refresh: bool,
+    progress: Progress,
 ) -> tuple[dict[str, str], int]:
     """Compute and keep what is missing; by bridge why it could not be, and how many were computed."""
-    kept = {kind: record.newest_results(kind) for kind in ("assessment", "trend")}
+    kept = dict(zip(("assessment", "trend"), results, strict=True))
     failed: dict[str, str] = {}
     wanted = []
     for state in states:
