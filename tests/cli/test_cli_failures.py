@@ -141,6 +141,7 @@ def test_a_reader_that_leaves_is_no_complaint(words):
         "from assess import workflow\n"
         "from assess.cli.main import main\n"
         "workflow.list_visits = lambda url, bridge: []\n"
+        "workflow.list_actions = lambda url, bridge: []\n"
         "sys.stdin.readline()\n"
         "main()\n"
     )

@@ -122,6 +122,7 @@ def test_the_lists_have_the_contracts_keys(bedstone, workflow):
             BridgeSummary(bridge="quillmere", name="Quillmere viaduct", revision=1, visits=5)
         ],
         list_visits=lambda url, bridge: [VisitSummary(visit=dt.date(2024, 5, 14), readings=21, states=3)],
+        list_actions=lambda url, bridge: [],
     )
     bridges = strictly(bedstone("bridge", "list", "--json").out)
     assert bridges["bridges"][0] | {"name": ""} == {
@@ -133,6 +134,7 @@ def test_the_lists_have_the_contracts_keys(bedstone, workflow):
     visits = strictly(bedstone("visit", "list", "quillmere", "--json").out)
     assert visits == {
         "bridge": "quillmere",
+        "actions": [],
         "visits": [{"visit": "2024-05-14", "readings": 21, "states": 3}],
     }
 

@@ -347,6 +347,7 @@ def test_lists_are_tables_and_an_empty_list_says_what_to_do(bedstone, workflow):
             BridgeSummary(bridge="quillmere", name="Quillmere viaduct", revision=2, visits=5)
         ],
         list_visits=lambda url, bridge: [VisitSummary(visit=dt.date(2024, 5, 14), readings=21, states=3)],
+        list_actions=lambda url, bridge: [],
     )
     assert "Quillmere viaduct" in bedstone("bridge", "list").out
     assert "2024-05-14" in bedstone("visit", "list", "quillmere").out
