@@ -39,6 +39,7 @@ from assess.results.plan import (
     PlanResult,
     PlanSupport,
 )
+from assess.results.said import grouped
 from assess.results.trend import PadTrend, SeatTrend, SpanTrend, TrendResult
 from assess.results.view import (
     ElevationState,
@@ -97,4 +98,5 @@ __all__ = [
     "TrendResult",
     "UnknownResult",
     "from_plain",
+    "grouped",
 ]
