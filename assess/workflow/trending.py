@@ -124,7 +124,7 @@ def trend_study(study: Study, *, progress: Progress) -> tuple[TrendResult, list[
 
 
 def _all_fits(study: Study, progress: Progress) -> dict[dt.date, VisitFit]:
-    """Kept calibrations of all visits that rest on today's bridge file, the missing ones made as they were asked for."""
+    """Kept calibrations of all visits that rest on today's bridge file, the missing ones made as asked for."""
     newest = kept_fits(study, None)
     kept = {d: fit for d, (fit, row) in newest.items() if row.revision == study.kept.revision}
     asked = {d: options_of(row) for d, (_, row) in newest.items()}
