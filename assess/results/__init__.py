@@ -28,7 +28,7 @@ from assess.results.calibration import (
     UnknownResult,
 )
 from assess.results.plain import from_plain
-from assess.results.trend import PadTrend, SeatTrend, SpanTrend, TrendResult
+from assess.results.trend import Fan, LossTrend, PadTrend, SeatTrend, Share, SpanTrend, TrendResult
 from assess.results.view import (
     ElevationState,
     GirderView,
@@ -50,11 +50,13 @@ __all__ = [
     "CompensatingError",
     "CorrelationResult",
     "ElevationState",
+    "Fan",
     "GirderAssessment",
     "GirderCalibration",
     "GirderView",
     "LeftOut",
     "LoadStand",
+    "LossTrend",
     "MeasuredPoint",
     "MomentLines",
     "PadCheck",
@@ -72,6 +74,7 @@ __all__ = [
     "SeatTrend",
     "SectionResult",
     "SettlementResult",
+    "Share",
     "SpanTrend",
     "SupportView",
     "TrendResult",

@@ -21,8 +21,9 @@ from assess.trend.candidates import LAWS, Candidate, candidates, covariance
 Floats = NDArray[np.float64]
 
 ALARM = 0.05
-_MARGIN = 0.95  # the quantile is simulated: the test is held a little below 5 %
-_HISTORIES = 16_000
+_MARGIN = 0.94  # the quantile is simulated: the test is held a little below 5 %
+_MISFIT = 0.01  # chi-square past which the visits disagree with the likeliest law
+_HISTORIES = 32_000
 _SEED = 5
 
 
@@ -56,7 +57,7 @@ class Detection:
 def detect(times: Floats, values: Floats, sd: Floats, *, age: float | None) -> Detection:
     """Find the law of values (visits,) with standard deviations sd (visits,) at times (visits,) in years.
 
-    Values that scatter about the likeliest law more than their standard deviations allow (chi-square at 5 %) have
+    Values that scatter about the likeliest law more than their standard deviations allow (chi-square at 1 %) have
     these widened by the Birge ratio before they are judged.
 
     Parameters
@@ -95,7 +96,7 @@ def _scatter(kinds: tuple[Candidate, ...], chi_square: Floats, score: Floats, co
     """Birge ratio about the likeliest law; 1 where the values agree with it, or where it wanders."""
     best = int(np.argmin(score))
     freedom = count - kinds[best].design.shape[1] - (kinds[best].law == "step")
-    if freedom < 1 or kinds[best].walk > 0.0 or stats.chi2.sf(chi_square[best], freedom) >= 0.05:
+    if freedom < 1 or kinds[best].walk > 0.0 or stats.chi2.sf(chi_square[best], freedom) >= _MISFIT:
         return 1.0
     return float(np.sqrt(chi_square[best] / freedom))
 

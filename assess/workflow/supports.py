@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from assess.calibrate import draw_normal
 from assess.workflow import cautions
 from assess.workflow.building import GirderModel
+from assess.workflow.interventions import since_of
 from assess.workflow.kept_fits import GirderFit, RivalFit, VisitFit, from_kept
 from assess.workflow.study import Study
 from db.records import KeptResult
@@ -286,7 +287,10 @@ def _forgotten(model: GirderModel, own: dict[dt.date, GirderFit], date: dt.date)
 
 
 def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str, list[Settlement]]:
-    """Measured settlements of each support of a girder, by date; repeats of one visit are pooled by weight."""
+    """Measured settlements of each support of a girder, by date; repeats of one visit are pooled by weight.
+
+    Only those since it was last jacked or shimmed.
+    """
     found: dict[str, list[Settlement]] = {}
     for visit in study.until(until):
         values: dict[str, list[tuple[float, float]]] = {}
@@ -306,7 +310,19 @@ def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str
                 value=float((weight @ value) / weight.sum()), sd=float(weight.sum() ** -0.5), date=visit.date
             )
             found.setdefault(support, []).append(pooled)
-    return found
+    return {
+        support: kept
+        for support, history in found.items()
+        if (kept := _uncut(study, girder, support, history, until))
+    }
+
+
+def _uncut(
+    study: Study, girder: str, support: str, history: list[Settlement], until: dt.date | None
+) -> list[Settlement]:
+    """What was measured of a seat since it was last jacked or shimmed."""
+    since = since_of(study.bridge, girder, support, ("jacked", "shimmed"), until)
+    return [one for one in history if since is None or one.date >= since]
 
 
 def settlements(study: Study, girder: str, until: dt.date | None) -> dict[str, Settlement]:
