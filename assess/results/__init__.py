@@ -28,6 +28,18 @@ from assess.results.calibration import (
     UnknownResult,
 )
 from assess.results.plain import from_plain
+from assess.results.plan import (
+    GirderPlan,
+    GoverningSection,
+    HalfPlan,
+    PlannedPad,
+    PlannedPosition,
+    PlannedReading,
+    PlannedSeat,
+    PlanResult,
+    PlanSupport,
+)
+from assess.results.said import grouped
 from assess.results.trend import Fan, LossTrend, PadTrend, SeatTrend, Share, SpanTrend, TrendResult
 from assess.results.view import (
     ElevationState,
@@ -53,7 +65,10 @@ __all__ = [
     "Fan",
     "GirderAssessment",
     "GirderCalibration",
+    "GirderPlan",
     "GirderView",
+    "GoverningSection",
+    "HalfPlan",
     "LeftOut",
     "LoadStand",
     "LossTrend",
@@ -65,6 +80,12 @@ __all__ = [
     "PadResult",
     "PadShift",
     "PadTrend",
+    "PlanResult",
+    "PlanSupport",
+    "PlannedPad",
+    "PlannedPosition",
+    "PlannedReading",
+    "PlannedSeat",
     "ProposedRemoval",
     "ReactionResult",
     "ReadingResult",
@@ -80,4 +101,5 @@ __all__ = [
     "TrendResult",
     "UnknownResult",
     "from_plain",
+    "grouped",
 ]

@@ -46,7 +46,7 @@ def shown_girder(
     setup, found = fitting.setup, fitting.found
     rows = _readings(fitting)
     by_hand = [LeftOut(reading=key, reason=reason) for key, reason in fitting.by_hand]
-    if setup is None or found is None or intervals is None or drawn is None:
+    if setup is None or found is None or intervals is None:
         return GirderCalibration(
             girder=fitting.model.doc.id,
             pads=[],
@@ -76,8 +76,8 @@ def shown_girder(
         causes=explained.causes,
         robust=robust,
         proposed_removals=proposals,
-        effective_sample_size=drawn.effective,
-        draws_from=drawn.kind,
+        effective_sample_size=drawn.effective if drawn is not None and drawn.converged else None,
+        draws_from=drawn.kind if drawn is not None and drawn.converged else "normal",
         left_out=by_hand,
         readings=rows,
     )
@@ -126,9 +126,9 @@ def _settlements(
     drops, joint = found.theta[places], found.joint[np.ix_(places, places)]
     relevant = bend @ drops
     sd = np.sqrt(np.clip(np.diag(bend @ joint @ bend.T), 0.0, None))
-    before = np.diag(bend @ np.diag(found.believed[places]) @ bend.T)
-    with np.errstate(invalid="ignore", divide="ignore"):
-        share = np.where(before > 0.0, 1.0 - sd**2 / before, 1.0)
+    believed = np.broadcast_to(found.believed[places], bend.shape)  # infinite where nothing is believed
+    before = np.where(bend != 0.0, bend**2 * np.where(bend != 0.0, believed, 0.0), 0.0).sum(axis=1)
+    share = np.where(before > 0.0, 1.0 - sd**2 / np.where(before > 0.0, before, 1.0), 1.0)
     return [
         SettlementResult(
             support=setup.model.doc.supports[setup.layout.entries[j].index].id,
@@ -139,7 +139,7 @@ def _settlements(
             moment_relevant=MM * float(relevant[i]),
             moment_relevant_low95=MM * float(relevant[i] - Z95 * sd[i]),
             moment_relevant_high95=MM * float(relevant[i] + Z95 * sd[i]),
-            moment_relevant_data_share=float(np.nan_to_num(share[i], nan=1.0)),
+            moment_relevant_data_share=float(np.clip(share[i], 0.0, 1.0)),
         )
         for i, j in enumerate(places)
     ]

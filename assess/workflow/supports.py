@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from assess.calibrate import draw_normal
 from assess.workflow import cautions
 from assess.workflow.building import GirderModel
+from assess.workflow.fitting import key_of
 from assess.workflow.interventions import since_of
 from assess.workflow.kept_fits import GirderFit, RivalFit, VisitFit, from_kept
 from assess.workflow.study import Study
@@ -101,13 +102,18 @@ class Supports:
         return np.asarray(self.seats(model) + sd * noise)
 
     def as_rival(self, rival: RivalFit) -> Supports:
-        """The same supports as a rival explanation has them."""
+        """The same supports as a rival explanation has them.
+
+        It explains the levels of its visit too: a seat that does not drop in it stands still. Other levels stand.
+        """
         assert self.source is not None
         seats = {
             support: Settlement(value=value, sd=0.0, date=self.source)
             for support, value in rival.settlements.items()
         }
-        apart = {s: one for s, one in self.settlements.items() if s not in self.joined}
+        apart = {
+            s: one for s, one in self.settlements.items() if s not in self.joined and one.date != self.source
+        }
         return replace(
             self,
             log_stiffness=rival.log_stiffness,
@@ -290,9 +296,11 @@ def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str
     """Measured settlements of each support of a girder, by date; repeats of one visit are pooled by weight.
 
     Only those since it was last jacked or shimmed.
+    What the newest calibration of a visit left out by hand is no measurement here either.
     """
     found: dict[str, list[Settlement]] = {}
     for visit in study.until(until):
+        left_out = _left_out(study, visit.date)
         values: dict[str, list[tuple[float, float]]] = {}
         for reading in visit.readings:
             permanent = visit.state(reading.state).vehicle is None
@@ -301,6 +309,7 @@ def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str
                 and reading.quantity == "settlement"
                 and permanent
                 and reading.support
+                and key_of(reading) not in left_out
             ):
                 values.setdefault(reading.support, []).append((reading.value, reading.sd))
         for support, pairs in values.items():
@@ -323,6 +332,11 @@ def _uncut(
     """What was measured of a seat since it was last jacked or shimmed."""
     since = since_of(study.bridge, girder, support, ("jacked", "shimmed"), until)
     return [one for one in history if since is None or one.date >= since]
+
+
+def _left_out(study: Study, date: dt.date) -> set[str]:
+    options = next((kept.options for kept in reversed(study.calibrations) if kept.visit == date), {})
+    return {one["reading"] for one in options.get("without", [])}
 
 
 def settlements(study: Study, girder: str, until: dt.date | None) -> dict[str, Settlement]:
