@@ -61,7 +61,9 @@ def found(kind: Callable[[Rng], Floats], count: int, seed: int) -> list[Detectio
 
 @pytest.mark.parametrize(("count", "chance"), LENGTHS)
 def test_no_more_than_5_of_100_steady_histories_raise_an_alarm(count: int, chance: float) -> None:
-    assert 0.02 < np.mean([one.changed for one in found(steady, count, 71)]) <= 0.05 + chance
+    called = np.mean([one.changed for one in found(steady, 2 * count, 71)])
+    print("steady", called)
+    assert 0.02 < called <= 0.05 + 0.5 * chance
 
 
 @pytest.mark.parametrize(("count", "chance"), LENGTHS)
@@ -70,6 +72,7 @@ def test_a_change_of_three_deviations_is_called_a_change_in_80_of_100(
     kind: Callable[[Rng], Floats], count: int, chance: float
 ) -> None:
     called = np.mean([one.changed for one in found(kind, count, 72)])
+    print(kind.__name__, called)
     assert called >= 0.80 - chance, called
 
 
@@ -80,6 +83,7 @@ def test_a_step_of_four_deviations_is_placed_in_its_gap_in_90_of_100(count: int,
         gap = i % 7
         told = np.where(np.arange(8) > gap, 4.0 * SD, 0.0) + SD * rng.standard_normal(8)
         right.append(detect(TIMES, told, sd, age=AGE).gap == gap)
+    print("in its gap", np.mean(right))
     assert np.mean(right) >= 0.90 - chance, np.mean(right)
 
 
