@@ -13,7 +13,7 @@ from assess.calibrate import draw_normal
 from assess.workflow import cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.fitting import key_of
-from assess.workflow.interventions import since_of
+from assess.workflow.interventions import since_of, with_new_pads
 from assess.workflow.kept_fits import GirderFit, RivalFit, VisitFit, from_kept
 from assess.workflow.study import Study
 from db.records import KeptResult
@@ -209,18 +209,19 @@ def supports_of(
         said.append(cautions.older_girder(name, date, max(fits)))
     visit_fit = fits[date][0]
     said += [one for one in visit_fit.result.cautions if one.startswith(f"{name}: ")]
-    said += _forgotten(model, own, date)
-    seats = {**measured, **(fitted := _fitted_seats(visit_fit, own[date], measured))}
+    fit, renewed = with_new_pads(model, own[date], date, until)
+    said += renewed or _forgotten(model, own, date)
+    seats = {**measured, **(fitted := _fitted_seats(visit_fit, fit, measured))}
     said += _used(name, seats)
     return (
         Supports(
-            log_stiffness=own[date].log_stiffness,
-            covariance=own[date].covariance,
+            log_stiffness=fit.log_stiffness,
+            covariance=fit.covariance,
             source=date,
-            fit=own[date],
+            fit=fit,
             settlements=seats,
-            log_factor=own[date].one("girder"),
-            log_sustained=own[date].one("sustained"),
+            log_factor=fit.one("girder"),
+            log_sustained=fit.one("sustained"),
             joined=list(fitted),
         ),
         said,
