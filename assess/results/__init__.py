@@ -40,7 +40,7 @@ from assess.results.plan import (
     PlanSupport,
 )
 from assess.results.said import grouped
-from assess.results.trend import PadTrend, SeatTrend, SpanTrend, TrendResult
+from assess.results.trend import Fan, LossTrend, PadTrend, SeatTrend, Share, SpanTrend, TrendResult
 from assess.results.view import (
     ElevationState,
     GirderView,
@@ -62,6 +62,7 @@ __all__ = [
     "CompensatingError",
     "CorrelationResult",
     "ElevationState",
+    "Fan",
     "GirderAssessment",
     "GirderCalibration",
     "GirderPlan",
@@ -70,6 +71,7 @@ __all__ = [
     "HalfPlan",
     "LeftOut",
     "LoadStand",
+    "LossTrend",
     "MeasuredPoint",
     "MomentLines",
     "PadCheck",
@@ -93,6 +95,7 @@ __all__ = [
     "SeatTrend",
     "SectionResult",
     "SettlementResult",
+    "Share",
     "SpanTrend",
     "SupportView",
     "TrendResult",

@@ -242,7 +242,8 @@ def mixed_temperatures(dates: Sequence[dt.date], supports: Sequence[str]) -> str
     pads = ", ".join(f'"{support}"' for support in supports)
     return (
         f"Visits at pad temperatures more than {_FAR:.0f} K from {REFERENCE_TEMPERATURE:.0f} degC or unknown ({days}) are compared without "
-        f"correction for pads that have no temperature_coefficient ({pads}): a cold visit shows as stiffening."
+        f"correction for pads that have no temperature_coefficient ({pads}): a cold visit reads as stiffer, and an error of 0.5 % for each K "
+        "from the visits' mean is allowed for."
     )
 
 

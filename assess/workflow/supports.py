@@ -13,6 +13,7 @@ from assess.calibrate import draw_normal
 from assess.workflow import cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.fitting import key_of
+from assess.workflow.interventions import since_of, with_new_pads
 from assess.workflow.kept_fits import GirderFit, RivalFit, VisitFit, from_kept
 from assess.workflow.study import Study
 from db.records import KeptResult
@@ -208,18 +209,19 @@ def supports_of(
         said.append(cautions.older_girder(name, date, max(fits)))
     visit_fit = fits[date][0]
     said += [one for one in visit_fit.result.cautions if one.startswith(f"{name}: ")]
-    said += _forgotten(model, own, date)
-    seats = {**measured, **(fitted := _fitted_seats(visit_fit, own[date], measured))}
+    fit, renewed = with_new_pads(model, own[date], date, until)
+    said += renewed or _forgotten(model, own, date)
+    seats = {**measured, **(fitted := _fitted_seats(visit_fit, fit, measured))}
     said += _used(name, seats)
     return (
         Supports(
-            log_stiffness=own[date].log_stiffness,
-            covariance=own[date].covariance,
+            log_stiffness=fit.log_stiffness,
+            covariance=fit.covariance,
             source=date,
-            fit=own[date],
+            fit=fit,
             settlements=seats,
-            log_factor=own[date].one("girder"),
-            log_sustained=own[date].one("sustained"),
+            log_factor=fit.one("girder"),
+            log_sustained=fit.one("sustained"),
             joined=list(fitted),
         ),
         said,
@@ -294,6 +296,7 @@ def _forgotten(model: GirderModel, own: dict[dt.date, GirderFit], date: dt.date)
 def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str, list[Settlement]]:
     """Measured settlements of each support of a girder, by date; repeats of one visit are pooled by weight.
 
+    Only those since it was last jacked or shimmed.
     What the newest calibration of a visit left out by hand is no measurement here either.
     """
     found: dict[str, list[Settlement]] = {}
@@ -317,7 +320,19 @@ def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str
                 value=float((weight @ value) / weight.sum()), sd=float(weight.sum() ** -0.5), date=visit.date
             )
             found.setdefault(support, []).append(pooled)
-    return found
+    return {
+        support: kept
+        for support, history in found.items()
+        if (kept := _uncut(study, girder, support, history, until))
+    }
+
+
+def _uncut(
+    study: Study, girder: str, support: str, history: list[Settlement], until: dt.date | None
+) -> list[Settlement]:
+    """What was measured of a seat since it was last jacked or shimmed."""
+    since = since_of(study.bridge, girder, support, ("jacked", "shimmed"), until)
+    return [one for one in history if since is None or one.date >= since]
 
 
 def _left_out(study: Study, date: dt.date) -> set[str]:
