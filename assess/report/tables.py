@@ -356,7 +356,7 @@ def fit_sentence(calibration: GirderCalibration) -> str:
     left_out = f" and {out} left out" if out else ""
     told = (
         f"{fitted} readings{left_out}, chi-square {words.number(calibration.chi_square)} on "
-        f"{freedom} degrees of freedom, p value "
+        f"{freedom} degree{'' if freedom == 1 else 's'} of freedom, p value "
         + words.quantity(calibration.p_value, "", "no degrees of freedom are left")
         + ". "
     )

@@ -191,7 +191,18 @@ def no_live(bridge: str) -> str:
     return f"{bridge}: the bridge file names no live load: utilisations are of permanent load alone."
 
 
-PERMANENT_STIFFNESS = "Permanent effects use the pads' short-term stiffness; creep of the pads under permanent load is not in them."
+_SHORT_TERM = "Permanent effects use the pads' short-term stiffness; creep of the pads under permanent load is not in them."
+
+
+def permanent_stiffness(creeps: Sequence[bool]) -> list[str]:
+    """Caution on creep of the pads; `creeps` says of each girder whether its sustained ratio is in its figures."""
+    if not creeps or not any(creeps):
+        return [_SHORT_TERM]
+    return (
+        []
+        if all(creeps)
+        else [f"Where no sustained ratio was fitted: {_SHORT_TERM[0].lower()}{_SHORT_TERM[1:]}"]
+    )
 
 
 # trend -------------------------------------------------------------------------------------------

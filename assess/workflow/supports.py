@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
+from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 from itertools import pairwise
 
@@ -177,7 +178,8 @@ def supports_of(
 ) -> tuple[Supports, list[str]]:
     """What is known of a girder's supports up to a day, and the cautions on it."""
     name = model.doc.id
-    measured = settlements(study, name, until)
+    histories = seats_known(study, name, until, {date: one for date, (one, _) in fits.items()})
+    measured = {support: history[-1] for support, history in histories.items()}
     own = {date: found for date, (one, _) in fits.items() if (found := one.of(model)) is not None}
     if not fits:
         left = cautions.settlements_left_out(name, [(s, 1e3 * one.value) for s, one in measured.items()])
@@ -189,7 +191,7 @@ def supports_of(
             settlements={},
         )
         return nominal, left
-    said = _of_seats(study, model, fits, until)
+    said = _of_seats(study, model, histories, fits, until)
     if not own:
         said += _used(name, measured)
         if model.pads.size:
@@ -259,11 +261,14 @@ def _fitted_seats(
 
 
 def _of_seats(
-    study: Study, model: GirderModel, fits: dict[dt.date, tuple[VisitFit, KeptResult]], until: dt.date | None
+    study: Study,
+    model: GirderModel,
+    histories: dict[str, list[Settlement]],
+    fits: dict[dt.date, tuple[VisitFit, KeptResult]],
+    until: dt.date | None,
 ) -> list[str]:
     """Cautions on seats: never read, read long ago, risen since."""
     name = model.doc.id
-    histories = seat_histories(study, name, until)
     newest = max([*fits, *(visit.date for visit in study.until(until))])
     said = cautions.seats_not_read(name, [s.id for s in model.doc.supports if s.id not in histories], newest)
     old: dict[dt.date, list[str]] = {}
@@ -340,6 +345,15 @@ def _left_out(study: Study, date: dt.date) -> set[str]:
     return {one["reading"] for one in options.get("without", [])}
 
 
-def settlements(study: Study, girder: str, until: dt.date | None) -> dict[str, Settlement]:
-    """The last measured settlement of each support of a girder."""
-    return {support: history[-1] for support, history in seat_histories(study, girder, until).items()}
+def seats_known(
+    study: Study, girder: str, until: dt.date | None, fits: Mapping[dt.date, VisitFit]
+) -> dict[str, list[Settlement]]:
+    """Seat drops of a girder by support and date: as levelled, or as calibrated where more than the level speaks."""
+    histories = seat_histories(study, girder, until)
+    for date, one in fits.items():
+        if girder not in one.fits:
+            continue
+        for support, fitted in _fitted_seats(one, one.fits[girder], {}).items():
+            others = [known for known in histories.get(support, []) if known.date != date]
+            histories[support] = sorted([*others, fitted], key=lambda known: known.date)
+    return histories

@@ -15,13 +15,13 @@ from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import calibrate_visit
 from assess.workflow.dates import reach, years_between
 from assess.workflow.forecasting import Ahead, spans_ahead
-from assess.workflow.kept_fits import GirderFit, VisitFit
+from assess.workflow.kept_fits import GirderFit, VisitFit, options_of
 from assess.workflow.losses_ahead import PlateLoss, plate_losses
 from assess.workflow.next_visit import is_stale, next_visit
 from assess.workflow.pads import corrected
 from assess.workflow.status import LIMIT
 from assess.workflow.study import SEED, Progress, Study, quiet, telling_readings
-from assess.workflow.supports import kept_fits, seat_histories
+from assess.workflow.supports import kept_fits, seats_known
 from assess.workflow.trend_rows import estimates_of, laws_of, pad_row, seat_law, seat_row
 from db.documents import VisitDoc
 from db.errors import BedstoneError
@@ -85,11 +85,12 @@ def trend_study(
         if not own:
             said.append(cautions.girder_not_calibrated(girder.id))
             continue
-        part, about = _girder(study, model, own, losses)
+        part, about = _girder(study, model, own, losses, fits)
         parts.append(part)
         said += contact_cautions.tipping(girder.id, model.tips_off) + about
     progress("carried forward", len(study.bridge.girders), len(study.bridge.girders))
     said += _of_visits(study, fits) + section_cautions.of_trend(study.bridge, losses)
+    creeps = ["sustained" in dict(part.fits[-1].unknowns) for part in parts]
     due = next_visit(study, parts, today)
     parts = [_aged(study, part, today, overdue=due.overdue) for part in parts]
     said += due.cautions + trend_cautions.far(parts, reach(as_of, 2.0 * years_between(min(fits), as_of)))
@@ -104,30 +105,36 @@ def trend_study(
         next_visit_reason=due.reason,
         today=today,
         overdue=due.overdue,
-        cautions=[*said, cautions.PERMANENT_STIFFNESS, *cautions.STANDING],
+        cautions=[*said, *cautions.permanent_stiffness(creeps), *cautions.STANDING],
     )
     return result, parts
 
 
 def _all_fits(study: Study, progress: Progress) -> dict[dt.date, VisitFit]:
-    """Kept calibrations of all visits that rest on today's bridge file, the missing ones made (not kept)."""
-    kept = {d: fit for d, (fit, row) in kept_fits(study, None).items() if row.revision == study.kept.revision}
+    """Kept calibrations of all visits that rest on today's bridge file, the missing ones made as asked for."""
+    newest = kept_fits(study, None)
+    kept = {d: fit for d, (fit, row) in newest.items() if row.revision == study.kept.revision}
+    asked = {d: options_of(row) for d, (_, row) in newest.items()}
     chosen = [visit for visit in study.visits if telling_readings(visit)]
     fits = {}
     for i, visit in enumerate(chosen):
         progress(f"reading {visit.date.isoformat()}", i, len(chosen))
-        fits[visit.date] = kept.get(visit.date) or calibrate_visit(study, visit)
+        fits[visit.date] = kept.get(visit.date) or calibrate_visit(study, visit, asked.get(visit.date))
     return fits
 
 
 def _girder(
-    study: Study, model: GirderModel, own: list[tuple[VisitDoc, GirderFit]], losses: list[PlateLoss]
+    study: Study,
+    model: GirderModel,
+    own: list[tuple[VisitDoc, GirderFit]],
+    losses: list[PlateLoss],
+    visit_fits: dict[dt.date, VisitFit],
 ) -> tuple[GirderTrend, list[str]]:
     visits, fits = [visit for visit, _ in own], [fit for _, fit in own]
     dates = [visit.date for visit in visits]
     estimates = estimates_of(model, own)
     found = laws_of(model, estimates, dates)
-    histories = seat_histories(study, model.doc.id, None)
+    histories = seats_known(study, model.doc.id, None, visit_fits)
     seats = {support: seat_law(history) for support, history in histories.items()}
     used = {section.id for span in model.sections for _, section in span}
     ahead = Ahead(
