@@ -64,7 +64,8 @@ def walk(
     state = State(start[:walkers], random_state=np.random.RandomState(seed).get_state())
     time, settled = np.inf, False
     while not settled and sampler.iteration < longest:
-        state = sampler.run_mcmc(state, min(_LOOK, longest - sampler.iteration))
+        with np.errstate(invalid="ignore"):  # from one impossible place to another
+            state = sampler.run_mcmc(state, min(_LOOK, longest - sampler.iteration))
         before, time = time, float(np.max(sampler.get_autocorr_time(tol=0)))
         settled = sampler.iteration >= _TIMES * time and abs(time - before) <= _SETTLED * time
     return _thinned(sampler.get_chain(), time, settled, count)

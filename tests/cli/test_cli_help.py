@@ -12,7 +12,7 @@ import pytest
 from assess import __version__
 from assess.cli.main import COMMANDS, cli
 
-HEAVY = ("numpy", "scipy", "pandas", "matplotlib", "sqlalchemy", "pint", "jinja2", "rich", "alembic")
+HEAVY = ("numpy", "scipy", "pandas", "matplotlib", "sqlalchemy", "pint", "jinja2", "rich", "alembic", "emcee")
 
 
 def command_paths() -> list[tuple[str, ...]]:

@@ -15,6 +15,7 @@ from typing import Any, cast
 import numpy as np
 import pytest
 from numpy.typing import NDArray
+from scipy.optimize import curve_fit
 
 from assess.calibrate import Fit, ObservationModel, fit
 
@@ -182,6 +183,10 @@ def test_gum_h3_is_met_in_the_recomputed_digits() -> None:
     found = gum_h3()
     assert found.b == pytest.approx([-0.17120379, 0.0021826977], abs=6e-9)
     assert found.sd == pytest.approx([0.0028776, 0.00066794], rel=2e-5)
+    assert found.correlation == pytest.approx(-0.93043, abs=5e-6)
+    row = np.array([1.0, 10.0])
+    assert row @ found.b == pytest.approx(-0.1493768, abs=5e-8)
+    assert np.sqrt(row @ found.covariance @ row) == pytest.approx(0.0041386, abs=5e-8)
 
 
 def test_a_perturbed_jacobian_would_miss_the_certified_deviations() -> None:
@@ -192,6 +197,49 @@ def test_a_perturbed_jacobian_would_miss_the_certified_deviations() -> None:
     curve.gradient = lambda x, b: exact(x, b) * np.array([1.01, 1.0])
     found = solve(curve, (b[0], b[1]))
     assert np.abs(found.sd / sd - 1.0).max() > 1e-3
+
+
+def linear(name: str) -> tuple[Floats, Floats, Floats]:
+    """Design (m, p), readings (m,) and their standard deviations (m,)."""
+    if name == "GUM H.3":
+        t, b = table("gum_h3.csv")
+        return np.stack([np.ones_like(t), t - 20.0], axis=1), b, np.full(t.size, 0.0035)
+    rng = np.random.default_rng(7)
+    x = np.linspace(-1.0, 2.0, 25)
+    design = {"parabola": np.vander(x, 3), "columns at random": rng.standard_normal((25, 6))}[name]
+    sd = np.exp(rng.uniform(-3.0, 0.0, 25))
+    return design, design @ rng.uniform(-1.0, 1.0, design.shape[1]) + sd * rng.standard_normal(25), sd
+
+
+@pytest.mark.parametrize("absolute", [True, False])
+@pytest.mark.parametrize("name", ["GUM H.3", "parabola", "columns at random"])
+def test_curve_fit_of_scipy_agrees_on_linear_models(name: str, absolute: bool) -> None:
+    """scipy.optimize.curve_fit (MINPACK), weights absolute or scaled by s; tolerance 1e-8 of a standard deviation."""
+    design, y, sd = linear(name)
+    p = design.shape[1]
+    curve = Curve(np.arange(y.size), y, lambda _, b: design @ b, lambda _, b: design, False)
+    curve.sd, curve.size = sd, p
+    found: Fit = fit(cast(Any, curve), start=np.zeros(p), prior=None)
+    covariance = found.covariance
+    if not absolute:
+        covariance = covariance * found.chi_square / found.degrees_of_freedom
+    theirs, spread = curve_fit(
+        lambda _, *b: design @ np.array(b),
+        np.arange(y.size),
+        y,
+        p0=np.zeros(p),
+        sigma=sd,
+        absolute_sigma=absolute,
+        jac=lambda _, *b: design,
+        ftol=1e-15,
+        xtol=1e-15,
+        gtol=1e-15,
+    )
+    scale = np.sqrt(np.diag(spread))
+    assert found.log_stiffness / scale == pytest.approx(theirs / scale, rel=0.0, abs=1e-8)
+    assert covariance / np.outer(scale, scale) == pytest.approx(
+        spread / np.outer(scale, scale), rel=0.0, abs=1e-8
+    )
 
 
 def test_weights_of_gum_h3_equal_repeats() -> None:
