@@ -3,7 +3,7 @@
 from assess.calibrate.causes import PAD_AND_SEAT, UNTOLD, Cause, causes
 from assess.calibrate.fit import SUSPECT, Z95, Fit, NotDetermined, Problem, draw_normal, fit
 from assess.calibrate.observations import LEVELLED, Observation, ObservationModel, PermanentState
-from assess.calibrate.posterior import Posterior, posterior
+from assess.calibrate.posterior import Posterior, draw_posterior
 from assess.calibrate.prior import PadPrior, Prior
 from assess.calibrate.profile import intervals, profile_interval
 from assess.calibrate.restricted import Restricted, restricted_prior
@@ -37,10 +37,10 @@ __all__ = [
     "Unknowns",
     "causes",
     "draw_normal",
+    "draw_posterior",
     "fit",
     "intervals",
     "minimal_detectable",
-    "posterior",
     "profile_interval",
     "propose",
     "restricted_prior",

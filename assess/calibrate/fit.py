@@ -14,13 +14,14 @@ import numpy as np
 from numpy.typing import NDArray
 from scipy import special, stats
 
+from assess.calibrate import snooping
 from assess.calibrate.minimise import minimise
 from assess.calibrate.prior import PadPrior, Prior
 from assess.calibrate.restricted import Model
 
 Floats = NDArray[np.float64]
 
-SUSPECT = 3.29
+SUSPECT = 3.29  # as it is written; `snooping.CRITICAL` in full
 Z95 = float(stats.norm.ppf(0.975))
 _RANK = 1e-9  # smallest over largest singular value below which a direction is not told at all
 _UNBOUNDED = 8.0  # ln k this far from its start, or this uncertain, is not bounded by the readings
@@ -210,13 +211,10 @@ def _summarise(problem: Problem, theta: Floats, start: Floats, evaluations: int)
     if prior.pads is None:
         _require_bounds(np.sqrt(np.diag(joint)[:q]), model)
     residual = (model.value - predicted) / model.sd
-    hat = ((data @ joint) * data).sum(axis=1)
-    redundancy = np.clip(1.0 - hat, 0.0, 1.0)
-    checked = redundancy > 1e-6
-    standardised = np.full(residual.shape, np.nan)
-    standardised[checked] = residual[checked] / np.sqrt(redundancy[checked])
+    checked = snooping.redundancy(data, joint)
+    off = snooping.standardised(residual, checked)
     chi_square = float(residual @ residual)
-    told = float(hat.sum()) if prior_rows.size else float(model.size)
+    told = float(((data @ joint) * data).sum()) if prior_rows.size else float(model.size)
     freedom = max(0, model.value.size - round(told))
     pads = joint[:q, :q]
     information = _information(data, prior_rows, q)
@@ -236,9 +234,9 @@ def _summarise(problem: Problem, theta: Floats, start: Floats, evaluations: int)
         information=information,
         information_vector=vector,
         predicted=predicted,
-        redundancy=redundancy,
-        standardised=standardised,
-        suspect=np.abs(np.nan_to_num(standardised)) > SUSPECT,
+        redundancy=checked,
+        standardised=off,
+        suspect=snooping.suspect(off),
         chi_square=chi_square,
         degrees_of_freedom=freedom,
         p_value=float(special.chdtrc(freedom, chi_square)) if freedom else np.nan,

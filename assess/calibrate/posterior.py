@@ -59,7 +59,9 @@ class Posterior:
     reason: str
 
 
-def posterior(cost: Cost, mean: Floats, covariance: Floats, *, count: int = 4000, seed: int) -> Posterior:
+def draw_posterior(
+    cost: Cost, mean: Floats, covariance: Floats, *, count: int = 4000, seed: int
+) -> Posterior:
     """Draw from the posterior.
 
     Parameters

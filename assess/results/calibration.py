@@ -74,8 +74,9 @@ class CorrelationResult:
 class RivalResult:
     """Another explanation of the same readings.
 
-    `told` says whether the readings tell its extra unknown at all; `told_apart_by` names the reading that would
-    decide between it and the calibration, None where none of the usual kinds would.
+    `told` says whether the readings tell its extra unknown at all; `simpler` that it asks for less than the
+    calibration and for nothing else; `told_apart_by` names the reading that would decide between it and the
+    calibration, None where none of the usual kinds would.
     """
 
     name: str
@@ -85,16 +86,22 @@ class RivalResult:
     log_likelihood: float
     effective_unknowns: float
     told: bool
+    simpler: bool
     told_apart_by: str | None
 
 
 @dataclass(frozen=True, kw_only=True)
 class CauseResult:
-    """What moved at a support: "pad" | "seat" | "pad and seat" | "neither" | "cannot be told"."""
+    """What moved at a support: "pad" | "seat" | "pad and seat" | "neither" | "cannot be told".
+
+    `off_if_seat_still_sd` and `off_if_pad_nominal_sd` say how far off the readings would be, in standard deviations,
+    with the seat at rest and with the pad within its nominal scatter; None where nothing was read of the seat.
+    """
 
     support: str
     cause: str
-    because: str
+    off_if_seat_still_sd: float | None
+    off_if_pad_nominal_sd: float
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -108,11 +115,15 @@ class RobustPad:
 
 @dataclass(frozen=True, kw_only=True)
 class ProposedRemoval:
-    """A reading that snooping proposes to look at; nothing is removed. `p_value` is that of the fit without it."""
+    """A reading that snooping proposes to look at; nothing is removed.
+
+    `p_value` is that of the fit without it and those before; `alike` are readings that could as well be the wrong one.
+    """
 
     reading: str
     standardised_residual: float
     p_value: float | None
+    alike: list[str] = field(default_factory=list)
 
 
 @dataclass(frozen=True, kw_only=True)

@@ -7,12 +7,11 @@ from numpy.typing import NDArray
 
 from assess.calibrate import (
     Fit,
-    NotDetermined,
     Posterior,
     Problem,
+    draw_posterior,
     fit,
     intervals,
-    posterior,
     propose,
     robust,
 )
@@ -39,11 +38,11 @@ def intervals_of(fitting: Fitting, options: Options) -> Intervals | None:
 
 
 def draws_of(fitting: Fitting, options: Options) -> Posterior | None:
-    """Seeded draws of all unknowns."""
-    if fitting.setup is None or fitting.found is None:
+    """Seeded draws of all unknowns; None where nothing bounds them: without a prior any great stiffness fits alike."""
+    if fitting.setup is None or fitting.found is None or not options.prior:
         return None
     problem, found = _problem(fitting.setup, options), fitting.found
-    return posterior(problem.cost, found.theta, found.joint, count=DRAWS, seed=SEED)
+    return draw_posterior(problem.cost, found.theta, found.joint, count=DRAWS, seed=SEED)
 
 
 def robust_of(fitting: Fitting, options: Options) -> list[RobustPad]:
@@ -69,19 +68,22 @@ def proposals_of(fitting: Fitting, options: Options) -> list[ProposedRemoval]:
     if setup is None or found is None or not found.suspect.any():
         return []
 
-    def without(left: list[int]) -> Fit | None:
+    def without(left: tuple[int, ...]) -> Fit:
+        if not left:
+            return found
         kept = [reading for j, reading in enumerate(setup.readings) if j not in left]
         own = Setup(setup.model, setup.visit, kept, setup.names)
         try:
             return fit(own.equations, start=own.start, prior=own.prior(believed=options.prior))
-        except (NotDetermined, RuntimeError):
-            return None
+        except RuntimeError as failure:
+            raise ValueError(str(failure)) from failure
 
     return [
         ProposedRemoval(
             reading=key_of(setup.readings[one.reading]),
             standardised_residual=one.standardised,
             p_value=float(one.p_value) if np.isfinite(one.p_value) else None,
+            alike=[key_of(setup.readings[j]) for j in one.alike],
         )
-        for one in propose(without, len(setup.readings))
+        for one in propose(without, len(setup.readings)).proposals
     ]

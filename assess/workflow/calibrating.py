@@ -153,7 +153,7 @@ def _girder(fitting: Fitting, options: Options) -> tuple[GirderCalibration, Gird
         robust=robust_of(fitting, options),
         proposals=proposals_of(fitting, options),
     )
-    if found is None or setup is None or drawn is None:
+    if found is None or setup is None:
         return row, None
     kept = GirderFit(
         girder=fitting.model.doc.id,
@@ -166,7 +166,7 @@ def _girder(fitting: Fitting, options: Options) -> tuple[GirderCalibration, Gird
         unknowns=_names(fitting.model, setup.layout.entries),
         theta=found.theta,
         joint=found.joint,
-        draws=None if drawn.kind == "normal" else drawn.draws,
+        draws=drawn.draws if drawn is not None and drawn.converged and drawn.kind != "normal" else None,
         rivals=explained.carried,
     )
     return row, kept

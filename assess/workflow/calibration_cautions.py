@@ -71,7 +71,7 @@ def _of_seats(shown: GirderCalibration) -> list[str]:
 
 def _of_rivals(shown: GirderCalibration) -> list[str]:
     own = next((one for one in shown.rivals if one.name == shown.calibrated_as), None)
-    close = [one for one in shown.rivals if one.within_2 and one.told and one is not own]
+    close = [one for one in shown.rivals if one.within_2 and one.told and not one.simpler and one is not own]
     said = []
     for one in close:
         word = "as well as" if own is None or own.within_2 else "better than"
@@ -155,6 +155,11 @@ def _of_numbers(shown: GirderCalibration) -> list[str]:
         said.append(
             f"{shown.girder}: a robust fit, which gross errors pull less, moves the pads by more than a standard deviation: {pads}. "
             "Some reading pulls hard: look at the suspects before relying on these stiffnesses."
+        )
+    if shown.pads and shown.effective_sample_size is None:
+        said.append(
+            f"{shown.girder}: bands and probabilities of this fit come from its normal approximation; draws of the whole "
+            "posterior could not be made (without the prior nothing bounds them), so that their tails may be wrong."
         )
     if shown.effective_sample_size is not None and shown.effective_sample_size < _FEW_DRAWS:
         said.append(

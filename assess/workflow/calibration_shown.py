@@ -46,7 +46,7 @@ def shown_girder(
     setup, found = fitting.setup, fitting.found
     rows = _readings(fitting)
     by_hand = [LeftOut(reading=key, reason=reason) for key, reason in fitting.by_hand]
-    if setup is None or found is None or intervals is None or drawn is None:
+    if setup is None or found is None or intervals is None:
         return GirderCalibration(
             girder=fitting.model.doc.id,
             pads=[],
@@ -76,8 +76,8 @@ def shown_girder(
         causes=explained.causes,
         robust=robust,
         proposed_removals=proposals,
-        effective_sample_size=drawn.effective,
-        draws_from=drawn.kind,
+        effective_sample_size=drawn.effective if drawn is not None and drawn.converged else None,
+        draws_from=drawn.kind if drawn is not None and drawn.converged else "normal",
         left_out=by_hand,
         readings=rows,
     )

@@ -17,7 +17,6 @@ from assess.workflow.unknowns import LEVELS, Setup
 Floats = NDArray[np.float64]
 
 SEEN = 0.05  # of an unknown's loosened variance that the readings must take away to speak of it at all
-MM = 1e3
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -48,7 +47,8 @@ def explain(fitting: Fitting) -> Explained:
     shown, carried = [], []
     for one in ranked:
         apart = None if one is main else deciding_reading(whole, main.theta, one.theta)
-        shown.append(_shown(one, apart))
+        simpler = one is not main and set(one.free.tolist()) < set(main.free.tolist())
+        shown.append(_shown(one, apart, simpler))
         if one is not main and one.within_2 and one.share >= SEEN:
             carried.append(_carried(whole, one, apart))
     return Explained(
@@ -97,7 +97,7 @@ def entry_of(layout: Layout, block: str, index: int) -> int | None:
     return next((j for j in layout.places(block) if layout.entries[j].index == index), None)
 
 
-def _shown(one: Rival, apart: str | None) -> RivalResult:
+def _shown(one: Rival, apart: str | None, simpler: bool) -> RivalResult:
     return RivalResult(
         name=one.name,
         aicc=one.aicc,
@@ -106,6 +106,7 @@ def _shown(one: Rival, apart: str | None) -> RivalResult:
         log_likelihood=one.log_likelihood,
         effective_unknowns=one.told,
         told=one.share >= SEEN,
+        simpler=simpler,
         told_apart_by=apart,
     )
 
@@ -148,12 +149,10 @@ def _causes(setup: Setup) -> list[Cause]:
 
 def _cause(setup: Setup, one: Cause) -> CauseResult:
     support = setup.model.doc.supports[one.support].id
-    seat, pad = np.sqrt(max(one.without_seat, 0.0)), np.sqrt(max(one.without_pad, 0.0))
-    if not np.isfinite(one.seat_sd):
-        of_seat = "nothing was read of its seat since the datum"
-    else:
-        of_seat = (
-            f"a seat standing still is {seat:.1f} standard deviations off (sd {MM * one.seat_sd:.2g} mm)"
-        )
-    of_pad = f"a pad within its nominal scatter {pad:.1f} (sd {one.pad_sd:.0%})"
-    return CauseResult(support=support, cause=one.cause, because=f"{of_seat}, {of_pad}")
+    seat, pad = (float(np.sqrt(max(rise, 0.0))) for rise in (one.without_seat, one.without_pad))
+    return CauseResult(
+        support=support,
+        cause=one.cause,
+        off_if_seat_still_sd=seat if np.isfinite(one.seat_sd) else None,
+        off_if_pad_nominal_sd=pad,
+    )

@@ -12,7 +12,7 @@ from numpy.typing import NDArray
 
 from assess.calibrate import draw_normal
 from assess.calibrate.ensemble import walk
-from assess.calibrate.posterior import Posterior, posterior, tail_shape
+from assess.calibrate.posterior import Posterior, draw_posterior, tail_shape
 from tests.calibrate.posteriors import Case, banana, hardly_told, of_girder, skewed, straight
 from tests.factories import NOMINAL, along, compressions, prior, viaduct, wagon_at
 
@@ -27,7 +27,7 @@ HARD: dict[str, tuple[Callable[[], Case], str]] = {
 
 
 def drawn(case: Case, seed: int = 1, count: int = 4000) -> Posterior:
-    return posterior(case.cost, case.mean, case.covariance, count=count, seed=seed)
+    return draw_posterior(case.cost, case.mean, case.covariance, count=count, seed=seed)
 
 
 @pytest.mark.parametrize("p", [1, 2, 6])
@@ -188,7 +188,7 @@ def test_a_posterior_that_nothing_bounds_is_said_not_to_converge() -> None:
         return ((np.exp(-theta[:, 0]) - 1.0) / 0.5) ** 2 + (theta[:, 1] - theta[:, 0] / 2.0) ** 2
 
     jacobian = np.array([[-2.0, 0.0], [-0.5, 1.0]])
-    found = posterior(cost, np.zeros(2), np.linalg.inv(jacobian.T @ jacobian), count=400, seed=1)
+    found = draw_posterior(cost, np.zeros(2), np.linalg.inv(jacobian.T @ jacobian), count=400, seed=1)
     assert not found.converged
     assert "nothing bounds the unknowns" in found.reason
 
@@ -197,7 +197,7 @@ def test_impossible_unknowns_are_never_drawn() -> None:
     def cost(theta: Floats) -> Floats:
         return np.where(theta[:, 0] > 0.3, np.nan, (theta**2).sum(axis=1))
 
-    found = posterior(cost, np.zeros(2), np.eye(2), seed=2)
+    found = draw_posterior(cost, np.zeros(2), np.eye(2), seed=2)
     assert found.kind == "weighted"
     assert found.draws[:, 0].max() <= 0.3
 
@@ -211,8 +211,8 @@ def test_unknowns_whose_equations_cannot_be_solved_are_never_drawn_and_spoil_no_
     def plain(theta: Floats) -> Floats:
         return np.where(theta[:, 0] > 0.3, np.inf, (theta**2).sum(axis=1))
 
-    found = posterior(cost, np.zeros(2), np.eye(2), count=500, seed=2)
-    assert np.array_equal(found.draws, posterior(plain, np.zeros(2), np.eye(2), count=500, seed=2).draws)
+    found = draw_posterior(cost, np.zeros(2), np.eye(2), count=500, seed=2)
+    assert np.array_equal(found.draws, draw_posterior(plain, np.zeros(2), np.eye(2), count=500, seed=2).draws)
 
 
 @pytest.mark.parametrize("name", ["banana", "bent banana"])
@@ -220,7 +220,7 @@ def test_a_direction_without_variance_is_held(name: str) -> None:
     make, kind = HARD[name]
     case, covariance = make(), np.zeros((3, 3))
     covariance[:2, :2] = case.covariance
-    found = posterior(
+    found = draw_posterior(
         lambda theta: case.cost(theta[:, :2]), np.array([0.0, 0.0, 5.0]), covariance, count=500, seed=2
     )
     assert found.kind == kind
@@ -230,7 +230,7 @@ def test_a_direction_without_variance_is_held(name: str) -> None:
 def test_units_far_apart_change_nothing() -> None:
     """Seat drops in metres beside ln k: the same banana with one axis 1e7 times smaller."""
     case, scale = skewed(3, 0.9, 0.3), np.array([1.0, 1e-7, 1.0])
-    small = posterior(
+    small = draw_posterior(
         lambda theta: case.cost(theta / scale), case.mean, case.covariance * np.outer(scale, scale), seed=3
     )
     assert small.kind == drawn(case, seed=3).kind == "weighted"
@@ -240,7 +240,7 @@ def test_units_far_apart_change_nothing() -> None:
 
 def test_no_finite_cost_at_the_mean_is_refused() -> None:
     with pytest.raises(ValueError, match="not finite"):
-        posterior(lambda theta: np.full(len(theta), np.nan), np.zeros(2), np.eye(2), seed=1)
+        draw_posterior(lambda theta: np.full(len(theta), np.nan), np.zeros(2), np.eye(2), seed=1)
 
 
 def test_the_shape_of_a_tail_is_found() -> None:
@@ -265,7 +265,7 @@ def test_where_hardly_a_proposal_is_possible_the_ensemble_starts_about_the_mean(
     def cost(theta: Floats) -> Floats:
         return np.where(np.abs(theta).max(axis=1) < 0.02, 0.0, np.inf)
 
-    found = posterior(cost, np.zeros(2), np.eye(2), seed=3)
+    found = draw_posterior(cost, np.zeros(2), np.eye(2), seed=3)
     assert (found.kind, found.converged) == ("ensemble", True)
     assert np.abs(found.draws).max() < 0.02
     assert np.diag(found.covariance) == pytest.approx([0.04**2 / 12.0] * 2, rel=0.1)

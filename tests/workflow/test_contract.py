@@ -192,6 +192,7 @@ BESIDE_CALIBRATION = {
     "log_likelihood",
     "effective_unknowns",
     "told",
+    "simpler",
     "told_apart_by",
 }
 BESIDE = {"assess": {"version", "input_digest", "seed", "draws"}, "trend": {"next_visit_reason", "seats"}}

@@ -59,9 +59,17 @@ def show_explanations(girder: GirderCalibration) -> None:
         click.echo()
         click.echo("What moved at each pad")
         print_table(
-            ["pad", "moved", "because"],
-            [[one.support, one.cause, one.because] for one in girder.causes],
-            words=3,
+            ["pad", "moved", "off by, sd, had\nthe seat not moved", "off by, sd, were\nthe pad nominal"],
+            [
+                [
+                    one.support,
+                    one.cause,
+                    number(one.off_if_seat_still_sd, none="not read"),
+                    number(one.off_if_pad_nominal_sd),
+                ]
+                for one in girder.causes
+            ],
+            words=2,
         )
     if girder.rivals:
         click.echo()
@@ -82,9 +90,10 @@ def show_explanations(girder: GirderCalibration) -> None:
         )
     for one in girder.proposed_removals:
         p_value = number(one.p_value)
+        others = f" (or {listed(one.alike)}: they cannot be told apart)" if one.alike else ""
         print_wrapped(
-            f"Look again at {one.reading}: {number(one.standardised_residual)} standard deviations off; without it "
-            f'p would be {p_value}. To leave it out: --without "{one.reading}" --reason "..."',
+            f"Look again at {one.reading}{others}: {number(one.standardised_residual)} standard deviations off; "
+            f'without it p would be {p_value}. To leave it out: --without "{one.reading}" --reason "..."',
         )
 
 
@@ -96,6 +105,8 @@ def _standing(girder: GirderCalibration, one: RivalResult) -> str:
         words.append("not told by the readings")
     elif one.within_2:
         words.append("within 2 of the best")
+    if one.simpler and one.within_2:
+        words.append("simpler")
     return ", ".join(words)
 
 
