@@ -50,6 +50,7 @@ class SectionResult:
     unyielding: CaseResult
     nominal: CaseResult
     calibrated: CalibratedCase
+    supposed: CaseResult | None = None  # as calibrated but for what is supposed; None where nothing is
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -66,6 +67,10 @@ class ReactionResult:
     calibrated_lifts_under: str | None = (
         None  # "permanent" | "live" | "factored"; None: it stays down or is held down
     )
+    supposed_permanent_kN: float | None = None
+    supposed_live_max_kN: float | None = None
+    supposed_live_min_kN: float | None = None
+    supposed_lifts_under: str | None = None
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -144,3 +149,4 @@ class AssessmentResult:
     draws: int
     girders: list[GirderAssessment]
     cautions: list[str]
+    supposed: list[str] = field(default_factory=list)  # what is supposed, as written
