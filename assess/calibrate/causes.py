@@ -1,9 +1,12 @@
 """What moved at a support: the pad or its seat, by how much worse the readings fit without either.
 
 For each support three fits say how far the sum of squares rises above the best one: with its seat held still, with its
-pad held to its nominal scatter, with both. Past 10.83 (a chi-square of one degree of freedom, alpha 0.001; 13.82 of
-two) the readings do not bear it. What is believed of all else is held loosely, so that no assumption decides. Where
-nothing moved that the readings could see, they must have been able to see a drop of 5 mm and a loss of 60 per cent.
+pad held to its nominal scatter, with both. A rise is a squared normal deviate where nothing moved. A seat is held to
+alpha 0.001, because all that scatters there is readings. Sound pads scatter as believed, and 60 per cent are only 3.1
+standard deviations of pads with a coefficient of variation of 0.3: a loss is held to alpha 0.01, a pad too stiff
+to 0.001. What is believed of all else is held loosely, so that no assumption decides. Where nothing moved that the
+readings could see, they must have been able to see a drop of 5 mm and a loss of 60 per cent. With an unknown datum a
+seat that fell is not told from the others risen.
 """
 
 from __future__ import annotations
@@ -24,7 +27,9 @@ from assess.calibrate.rivals import loosened
 Floats = NDArray[np.float64]
 
 _ALPHA = 0.001
-ONE = float(stats.chi2.isf(_ALPHA, 1))
+SEAT_MOVED = float(stats.chi2.isf(_ALPHA, 1))
+PAD_SOFTER = float(stats.norm.isf(0.01)) ** 2
+PAD_STIFFER = float(stats.norm.isf(_ALPHA)) ** 2
 BOTH = float(stats.chi2.isf(_ALPHA, 2))
 
 DROP, LOSS = 0.005, 0.6  # m of a seat, and of a stiffness: what readings must be able to show
@@ -77,6 +82,7 @@ def causes(model: ObservationModel, prior: Prior, start: Floats) -> list[Cause]:
     sd = np.sqrt(np.diag(best.joint))
     found = []
     for i, support in enumerate(model.pads):
+        change = float(best.theta[i] - prior.pads.mean[i])
         held = _pad_held(loose, prior.pads, i)
         pad = _cost(model, held, None, best.theta) - least
         seat, both, seat_sd = 0.0, pad, np.inf
@@ -89,7 +95,11 @@ def causes(model: ObservationModel, prior: Prior, start: Floats) -> list[Cause]:
         found.append(
             Cause(
                 support=int(support),
-                cause=_judged(seat, pad, both, hidden=_hidden(seat_sd, float(sd[i]))),
+                cause=_judged(
+                    seat > SEAT_MOVED,
+                    pad > (PAD_SOFTER if change < 0.0 else PAD_STIFFER),
+                    hidden=both > BOTH or _hidden(seat_sd, float(sd[i]), change),
+                ),
                 without_seat=seat,
                 without_pad=pad,
                 without_both=both,
@@ -100,10 +110,11 @@ def causes(model: ObservationModel, prior: Prior, start: Floats) -> list[Cause]:
     return found
 
 
-def _hidden(seat_sd: float, pad_sd: float) -> bool:
-    """Whether a drop or a loss that matters could be there unseen."""
-    seen = float(np.sqrt(ONE))
-    return seen * seat_sd > DROP or seen * pad_sd > -np.log1p(-LOSS)
+def _hidden(seat_sd: float, pad_sd: float, change: float) -> bool:
+    """Whether a drop or a loss that matters could be there unseen; `change` of ln k by the readings."""
+    lost = float(np.log1p(-LOSS))
+    unseen = np.sqrt(SEAT_MOVED) * seat_sd > DROP or np.sqrt(SEAT_MOVED) * pad_sd > -lost
+    return bool(unseen or change - np.sqrt(PAD_SOFTER) * pad_sd < lost)
 
 
 def _pad_held(loose: Prior, own: PadPrior, i: int) -> Prior:
@@ -122,11 +133,11 @@ def _cost(model: ObservationModel, prior: Prior, free: NDArray[np.intp] | None, 
     return float(problem.cost(minimise(problem.linearise, start[free]).theta))
 
 
-def _judged(seat: float, pad: float, both: float, *, hidden: bool) -> str:
-    if seat > ONE and pad > ONE:
+def _judged(seat: bool, pad: bool, *, hidden: bool) -> str:
+    if seat and pad:
         return PAD_AND_SEAT
-    if seat > ONE:
+    if seat:
         return SEAT
-    if pad > ONE:
+    if pad:
         return PAD
-    return UNTOLD if both > BOTH or hidden else NEITHER
+    return UNTOLD if hidden else NEITHER

@@ -126,9 +126,9 @@ def _settlements(
     drops, joint = found.theta[places], found.joint[np.ix_(places, places)]
     relevant = bend @ drops
     sd = np.sqrt(np.clip(np.diag(bend @ joint @ bend.T), 0.0, None))
-    before = np.diag(bend @ np.diag(found.believed[places]) @ bend.T)
-    with np.errstate(invalid="ignore", divide="ignore"):
-        share = np.where(before > 0.0, 1.0 - sd**2 / before, 1.0)
+    believed = np.broadcast_to(found.believed[places], bend.shape)  # infinite where nothing is believed
+    before = np.where(bend != 0.0, bend**2 * np.where(bend != 0.0, believed, 0.0), 0.0).sum(axis=1)
+    share = np.where(before > 0.0, 1.0 - sd**2 / np.where(before > 0.0, before, 1.0), 1.0)
     return [
         SettlementResult(
             support=setup.model.doc.supports[setup.layout.entries[j].index].id,
@@ -139,7 +139,7 @@ def _settlements(
             moment_relevant=MM * float(relevant[i]),
             moment_relevant_low95=MM * float(relevant[i] - Z95 * sd[i]),
             moment_relevant_high95=MM * float(relevant[i] + Z95 * sd[i]),
-            moment_relevant_data_share=float(np.nan_to_num(share[i], nan=1.0)),
+            moment_relevant_data_share=float(np.clip(share[i], 0.0, 1.0)),
         )
         for i, j in enumerate(places)
     ]

@@ -100,13 +100,18 @@ class Supports:
         return np.asarray(self.seats(model) + sd * noise)
 
     def as_rival(self, rival: RivalFit) -> Supports:
-        """The same supports as a rival explanation has them."""
+        """The same supports as a rival explanation has them.
+
+        It explains the levels of its visit too: a seat that does not drop in it stands still. Other levels stand.
+        """
         assert self.source is not None
         seats = {
             support: Settlement(value=value, sd=0.0, date=self.source)
             for support, value in rival.settlements.items()
         }
-        apart = {s: one for s, one in self.settlements.items() if s not in self.joined}
+        apart = {
+            s: one for s, one in self.settlements.items() if s not in self.joined and one.date != self.source
+        }
         return replace(
             self,
             log_stiffness=rival.log_stiffness,

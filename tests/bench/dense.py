@@ -50,9 +50,11 @@ class DenseGirder:
         np.add.at(matrix, (self._rows, self._columns), self.elements.ravel())
         return matrix
 
-    def solve(self, compliance: Floats, load: Floats, *, assemble: bool = False) -> Floats:
-        """Nodal displacements for loads (size,) or (size, m)."""
-        matrix = self.assembled() if assemble else self.bare.copy()
+    def solve(
+        self, compliance: Floats, load: Floats, *, assemble: bool = False, factor: float = 1.0
+    ) -> Floats:
+        """Nodal displacements for loads (size,) or (size, m), of a girder `factor` times as stiff."""
+        matrix = factor * (self.assembled() if assemble else self.bare)
         matrix[self.at, self.at] += 1.0 / compliance
         return np.linalg.solve(matrix, load)
 
@@ -75,6 +77,11 @@ class DenseGirder:
     def point_loads(self, x: Floats, weight: Floats) -> Floats:
         """Consistent load vector (size,) of loads at x."""
         return self.vector(self.element_loads(x, weight))
+
+    def uniform_load(self, weight: float) -> Floats:
+        """Load vector (size,) of a load per length all over."""
+        h = self.h
+        return self.vector(weight * np.stack([h / 2.0, h * h / 12.0, h / 2.0, -h * h / 12.0], axis=-1))
 
     def shapes(self, e: NDArray[np.intp], x: Floats) -> Floats:
         """Shape functions (m, 4) of element e at x."""

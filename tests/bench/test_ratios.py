@@ -11,7 +11,9 @@ import pytest
 from scipy.optimize import least_squares
 
 from assess.calibrate.fit import PadPrior, fit
-from assess.calibrate.observations import Observation, ObservationModel
+from assess.calibrate.observations import Observation, ObservationModel, PermanentState
+from assess.calibrate.prior import Prior
+from assess.calibrate.unknowns import Unknowns
 from assess.girder import Condensed, Girder, Piece, contact, envelope, forces_of, passages, places
 from assess.loads import LoadCase, Train
 from tests.bench.dense import DenseGirder, seconds
@@ -103,10 +105,81 @@ def test_one_calibration() -> None:
     for girder, k in ((GIRDER, K), (long, stiffness)):
         ours, hand, built = calibration(girder, k)
         print(
-            f"\none calibration of {k.size} pads: {ours * 1e3:.1f} ms; finite differences on the whole girder"
-            f" {hand / ours:.1f} times as long, {built / ours:.1f} times with its assembly"
+            f"\none calibration of {k.size} pads: {ours * 1e3:.2f} ms, {1.0 / ours:.0f} a second;"
+            f" finite differences on the whole girder {hand / ours:.1f} times as long, {built / ours:.1f} times with its assembly"
         )
         assert built / ours >= 16.0
+
+
+DEAD = 45.0  # kN/m for good
+DROP = 5e-3
+
+
+def test_a_full_calibration() -> None:
+    """Pads, their sustained ratio, settlements and the girder's stiffness, from tests and the permanent state."""
+    condensed, dense, n = Condensed(GIRDER), DenseGirder(GIRDER, 1.5), K.size
+    edges = GIRDER.support_positions
+    middles = (edges[1:] + edges[:-1]) / 2.0
+    states: list[LoadCase | PermanentState] = []
+    vectors = []
+    for leading in middles + WAGON.length / 2.0:
+        x = WAGON.axle_positions(np.array(leading))
+        states.append(LoadCase(points=tuple(zip(x, WAGON.loads, strict=True))))
+        vectors.append(dense.point_loads(x, WAGON.loads))
+    states.append(PermanentState(loads=LoadCase(uniforms=((0.0, GIRDER.length, DEAD),))))
+    load, lasting = np.array(vectors).T, dense.uniform_load(DEAD)
+    observations = []
+    for state in range(len(states)):
+        observations += [
+            Observation(quantity="compression", state=state, support=i, value=0.0, sd=5e-5) for i in range(n)
+        ]
+        observations += [
+            Observation(quantity="deflection", state=state, x=float(x), value=0.0, sd=2e-4) for x in middles
+        ]
+    permanent = len(states) - 1
+    observations += [
+        Observation(quantity="settlement", state=permanent, support=i, value=0.0, sd=3e-4) for i in range(n)
+    ]
+    rows = [int(np.argmin(np.abs(dense.nodes - x))) * 2 for x in middles]
+    unknowns = Unknowns(sustained=True, settlements=tuple(range(n)), girder=True)
+    mean = np.concatenate([[np.log(0.74)], np.zeros(n), [0.0]])
+    tau = np.concatenate([np.full(n, 0.5), [0.1], np.full(n, 0.02), [0.1]])
+    start = np.concatenate([np.log(K), mean])
+
+    def plain(theta: np.ndarray, assemble: bool) -> np.ndarray:
+        f, ratio, s, phi = np.exp(-theta[:n]), np.exp(theta[n]), theta[n + 1 : -1], np.exp(theta[-1])
+        u = dense.solve(f, load, assemble=assemble, factor=phi)
+        told = np.concatenate([u[dense.at], u[rows]]).T.ravel()
+        soft, pushed = f / ratio, lasting.copy()
+        pushed[dense.at] += s / soft
+        u = dense.solve(soft, pushed, assemble=assemble, factor=phi)
+        return np.concatenate([told, u[dense.at] - s, u[rows], s])
+
+    rng = np.random.default_rng(6)
+    truth = start + np.concatenate([rng.normal(0.0, 0.3, n), [0.05], [0.0, DROP, 0.0, 0.0], [0.1]])
+    sd = np.array([o.sd for o in observations])
+    value = plain(truth, False) + rng.normal(0.0, sd)
+    model = ObservationModel(condensed, np.arange(n), states, observations, unknowns)
+    assert np.abs(model.predict(truth) - plain(truth, False)).max() < 1e-8
+    model.value = value
+    prior = Prior(pads=PadPrior(mean=start[:n], sd=tau[:n]), mean=mean, sd=tau[n:])
+
+    def differences(assemble: bool) -> np.ndarray:
+        return least_squares(
+            lambda t: np.concatenate([(plain(t, assemble) - value) / sd, (t - start) / tau]),
+            start, xtol=1e-12, ftol=1e-12, gtol=1e-12, x_scale="jac",
+        ).x  # fmt: skip
+
+    found = fit(model, start=start, prior=prior)
+    assert np.all(np.abs(found.theta - differences(False)) < 0.02 * np.sqrt(np.diag(found.joint)))
+    ours = seconds(lambda: fit(model, start=start, prior=prior), 15)
+    hand, built = seconds(lambda: differences(False), 3), seconds(lambda: differences(True), 3)
+    print(
+        f"\na full calibration, {start.size} unknowns from {sd.size} readings: {ours * 1e3:.2f} ms,"
+        f" {1.0 / ours:.0f} a second; finite differences on the whole girder {hand / ours:.1f} times as long,"
+        f" {built / ours:.1f} times with its assembly"
+    )
+    assert built / ours >= 16.0
 
 
 def test_a_train_envelope() -> None:

@@ -49,7 +49,7 @@ def fit_linear(design: Floats, y: Floats, left_out: tuple[int, ...]) -> Linear:
     a, y = np.delete(design, left_out, axis=0), np.delete(y, left_out)
     normal = a.T @ a
     if np.linalg.matrix_rank(normal) < a.shape[1]:
-        raise NotDetermined("too few readings", pads=[], readings=y.size, unknowns=a.shape[1])
+        raise NotDetermined("too few readings", places=[], q=2, readings=y.size, unknowns=a.shape[1])
     residual = y - a @ np.linalg.solve(normal, a.T @ y)
     freedom = y.size - a.shape[1]
     return Linear(
@@ -152,7 +152,9 @@ def test_proposals_stop_when_the_rest_would_not_fix_the_unknowns() -> None:
 
     def unfixed(left_out: tuple[int, ...]) -> Linear:
         if left_out:
-            raise NotDetermined("the readings do not tell the pads apart", pads=[0], readings=7, unknowns=2)
+            raise NotDetermined(
+                "the readings do not tell the pads apart", places=[0], q=2, readings=7, unknowns=2
+            )
         return fit_linear(design, y, left_out)
 
     found = propose(unfixed, 8)

@@ -14,7 +14,6 @@ from assess.results import (
     CalibrationResult,
     CaseResult,
     ElevationState,
-    Floats,
     GirderAssessment,
     GirderCalibration,
     GirderView,
@@ -32,6 +31,7 @@ from assess.results import (
     SupportView,
     TrendResult,
 )
+from assess.results.view import Floats
 
 SPANS = [12.0, 15.0, 12.0]
 SUPPORTS = ["west abutment", "pier 1", "pier 2", "east abutment"]
