@@ -17,13 +17,16 @@ from assess.capacity.rows import (
 )
 from assess.capacity.sets import FactorSet, UnknownSetError, factor_set, set_names
 from assess.capacity.standing import PermanentLoads, permanent_loads
+from assess.capacity.triggers import Crossing, Driver, Scan, scan
 
 __all__ = [
     "AS_THEY_ARE",
     "KINDS",
     "Case",
     "CheckPlan",
+    "Crossing",
     "Dead",
+    "Driver",
     "Effects",
     "FactorSet",
     "Factors",
@@ -32,6 +35,7 @@ __all__ = [
     "Resistance",
     "Row",
     "RowDraws",
+    "Scan",
     "Steady",
     "Thermal",
     "UnknownSetError",
@@ -43,6 +47,7 @@ __all__ = [
     "moment_draws",
     "permanent_loads",
     "plan_checks",
+    "scan",
     "set_names",
     "standing_on",
 ]

@@ -21,14 +21,18 @@ def render(view: ReportView) -> str:
     """
     from assess.report.content import build  # draws with matplotlib: loaded only when a report is made
 
-    pages = Environment(
+    return pages().get_template("report.html.j2").render(build(view))
+
+
+def pages() -> Environment:
+    """Return the templates."""
+    return Environment(
         loader=PackageLoader("assess.report", "templates"),
         autoescape=True,
         undefined=StrictUndefined,
         trim_blocks=True,
         lstrip_blocks=True,
     )
-    return pages.get_template("report.html.j2").render(build(view))
 
 
 def write_report(view: ReportView, path: Path) -> None:
@@ -39,12 +43,22 @@ def write_report(view: ReportView, path: Path) -> None:
     OSError
         If the folder is missing or cannot be written; nothing is left behind.
     """
-    text = render(view)
+    write_whole(render(view).encode("utf-8"), path)
+
+
+def write_whole(content: bytes, path: Path) -> None:
+    """Write a file whole or not at all.
+
+    Raises
+    ------
+    OSError
+        If the folder is missing or cannot be written; nothing is left behind.
+    """
     handle, name = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.", suffix=".part")
     part = Path(name)
     try:
-        with os.fdopen(handle, "w", encoding="utf-8", newline="\n") as file:
-            file.write(text)
+        with os.fdopen(handle, "wb") as file:
+            file.write(content)
             file.flush()
             os.fsync(file.fileno())
         part.chmod(0o666 & ~_umask())

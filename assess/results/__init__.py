@@ -29,6 +29,7 @@ from assess.results.calibration import (
 )
 from assess.results.plain import from_plain
 from assess.results.trend import PadTrend, SeatTrend, SpanTrend, TrendResult
+from assess.results.triggers import PastSection, TriggerReading, TriggersResult
 from assess.results.view import (
     ElevationState,
     GirderView,
@@ -63,6 +64,7 @@ __all__ = [
     "PadResult",
     "PadShift",
     "PadTrend",
+    "PastSection",
     "ProposedRemoval",
     "ReactionResult",
     "ReadingResult",
@@ -75,6 +77,8 @@ __all__ = [
     "SpanTrend",
     "SupportView",
     "TrendResult",
+    "TriggerReading",
+    "TriggersResult",
     "UnknownResult",
     "from_plain",
 ]

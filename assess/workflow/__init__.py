@@ -14,6 +14,7 @@ from assess.workflow.records import (
 from assess.workflow.showing import bridge_view, show_bridge
 from assess.workflow.study import Progress
 from assess.workflow.trending import trend
+from assess.workflow.triggers import triggers
 from assess.workflow.viewing import report_view
 
 __all__ = [
@@ -31,4 +32,5 @@ __all__ = [
     "report_view",
     "show_bridge",
     "trend",
+    "triggers",
 ]
