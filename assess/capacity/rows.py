@@ -120,7 +120,8 @@ def factored_steady(factors: Factors, steady: Steady, sign: float) -> tuple[Floa
     return held, np.where(adverse, 0.0, relieving * steady.settled), temperature
 
 
-def _senses(effect: str) -> tuple[float, ...]:
+def senses(effect: str) -> tuple[float, ...]:
+    """Signs in which an effect is checked."""
     return {"sagging": (1.0,), "hogging": (-1.0,), "shear": (1.0, -1.0)}[effect]
 
 
@@ -159,8 +160,8 @@ def evaluate(effects: Effects, factors: Factors, compliance: Floats, settlement:
     demands = demands_at(effects, factors, compliance, settlement)
     rows = []
     for check in effects.plan.checks:
-        senses = [demands[response_of(check.effect), sign] for sign in _senses(check.effect)]
-        rows.append(Row(check=check, case=_govern(effects.plan, check, senses, factors)))
+        own = [demands[response_of(check.effect), sign] for sign in senses(check.effect)]
+        rows.append(Row(check=check, case=_govern(effects.plan, check, own, factors)))
     return rows
 
 
@@ -267,7 +268,7 @@ def evaluate_draws(
             factored = demand(factors, steady, live, sign).factored
             for i in rows:
                 check = effects.plan.checks[i]
-                if sign not in _senses(check.effect):
+                if sign not in senses(check.effect):
                     continue
                 column = np.searchsorted(stations, kept[i])
                 resistance = effects.plan.resistance(check.effect)[kept[i]]
@@ -301,7 +302,7 @@ def _governing_stations(
         live = {name: (high[s], low[s]) for name, (high, low) in sample.items()}
         demands = demands_at(effects, factors, compliance, settlement, live)
         for i, check in enumerate(effects.plan.checks):
-            own = [demands[response_of(check.effect), sign] for sign in _senses(check.effect)]
+            own = [demands[response_of(check.effect), sign] for sign in senses(check.effect)]
             # each sense on its own: the one that seldom governs has a station of its own
             best = _uses(effects.plan, check, own).argmax(axis=-1)
             found[i].update(int(station) for station in check.stations[best])

@@ -9,6 +9,7 @@ from __future__ import annotations
 import io
 from collections.abc import Iterator
 from dataclasses import dataclass
+from functools import cache
 
 import matplotlib as mpl
 from matplotlib.backends.backend_pdf import PdfPages
@@ -23,6 +24,7 @@ MARGIN = 26.0
 TEXT, HEAD, TITLE = 9.0, 11.0, 14.0  # pt; 9 is the least that is read on site
 LINE = 11.5
 _SHARES = (0.125, 0.19, 0.055, 0.14, 0.14, 0.14, 0.14, 0.07)  # of the width: the columns
+_BLANK = 0.32 * TEXT  # of the font
 _FONT = {"font.family": ["DejaVu Sans"], "pdf.fonttype": 42, "text.parse_math": False}
 
 
@@ -69,8 +71,14 @@ def wrapped(text: str, width: float) -> Iterator[str]:
 
 
 def width_of(text: str) -> float:
-    """Width of text at its usual size, pt."""
-    return float(TextPath((0, 0), text, size=TEXT, usetex=False).get_extents().x1)
+    """Width of text at its usual size, pt: that of its words, and a blank between two."""
+    words = text.split()
+    return sum(_word(word) for word in words) + _BLANK * max(len(words) - 1, 0)
+
+
+@cache
+def _word(word: str) -> float:
+    return float(TextPath((0, 0), word, size=TEXT, usetex=False).get_extents().x1)
 
 
 def draw_card(card: Card) -> bytes:

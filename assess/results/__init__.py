@@ -28,6 +28,15 @@ from assess.results.calibration import (
     UnknownResult,
 )
 from assess.results.plain import from_plain
+from assess.results.shimming import (
+    GirderShims,
+    Jack,
+    JackingStage,
+    ShimHeight,
+    ShimReaction,
+    ShimResult,
+    ShimSection,
+)
 from assess.results.trend import PadTrend, SeatTrend, SpanTrend, TrendResult
 from assess.results.triggers import PastSection, TriggerReading, TriggersResult
 from assess.results.view import (
@@ -53,7 +62,10 @@ __all__ = [
     "ElevationState",
     "GirderAssessment",
     "GirderCalibration",
+    "GirderShims",
     "GirderView",
+    "Jack",
+    "JackingStage",
     "LeftOut",
     "LoadStand",
     "MeasuredPoint",
@@ -74,6 +86,10 @@ __all__ = [
     "SeatTrend",
     "SectionResult",
     "SettlementResult",
+    "ShimHeight",
+    "ShimReaction",
+    "ShimResult",
+    "ShimSection",
     "SpanTrend",
     "SupportView",
     "TrendResult",

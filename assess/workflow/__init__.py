@@ -11,6 +11,7 @@ from assess.workflow.records import (
     list_visits,
     log_visit,
 )
+from assess.workflow.shimming import Stock, shim
 from assess.workflow.showing import bridge_view, show_bridge
 from assess.workflow.study import Progress
 from assess.workflow.trending import trend
@@ -20,6 +21,7 @@ from assess.workflow.viewing import report_view
 __all__ = [
     "Options",
     "Progress",
+    "Stock",
     "add_bridge",
     "assess",
     "bridge_view",
@@ -30,6 +32,7 @@ __all__ = [
     "list_visits",
     "log_visit",
     "report_view",
+    "shim",
     "show_bridge",
     "trend",
     "triggers",
