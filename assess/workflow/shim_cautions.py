@@ -8,16 +8,26 @@ from assess.results import GirderShims
 _GAIN = 5e-4  # in utilisation: less is not seen in three figures
 
 STANDING = (
-    "Jacking needs a licensed engineer: the lifting points, end diaphragms and bearing stiffeners, webs over the jacks, and what the "
-    "jacks stand on are checked apart, and none of that is checked here.",
-    f"Reactions found on site are often well above calculated ones: jacks are to be good for {ALLOWANCE:g} times the load given, "
-    "the load is watched as it comes on, and a lift that wants more is stopped.",
-    "Live load is off the bridge while it stands on jacks. Lock-off and packing follow the jack at every step, and no one "
-    "works under a load that is not packed.",
-    "All supports of a stage rise together and evenly, across the girders too: girders that share a deck are packed here one by one, "
-    "and what a difference between them does to the deck is not in these figures.",
-    "Heights are counted from the lowest support up: a common lift or a straight tilt of all supports changes no moment. "
-    "Read compressions and levels before and after, and log both visits: the seats' datum moves with the packing.",
+    (
+        "Jacking needs a licensed engineer: the lifting points, end diaphragms and bearing stiffeners, webs over the jacks, and what the "
+        "jacks stand on are checked apart, and none of that is checked here."
+    ),
+    (
+        f"Reactions found on site are often well above calculated ones: jacks are to be good for {ALLOWANCE:g} times the load given, "
+        "the load is watched as it comes on, and a lift that wants more is stopped."
+    ),
+    (
+        "Live load is off the bridge while it stands on jacks. Lock-off and packing follow the jack at every step, and no one "
+        "works under a load that is not packed."
+    ),
+    (
+        "All supports of a stage rise together and evenly, across the girders too: girders that share a deck are packed here one by one, "
+        "and what a difference between them does to the deck is not in these figures."
+    ),
+    (
+        "Heights are counted from the lowest support up: a common lift or a straight tilt of all supports changes no moment. "
+        "Read compressions and levels before and after, and log both visits: the seats' datum moves with the packing."
+    ),
     "Packing answers the pads and seats of today. Where they go on moving it is to be found again.",
 )
 
@@ -27,8 +37,27 @@ def of_stock(step: float, differential: float) -> list[str]:
     if step <= differential * (1.0 + 1e-9):
         return []
     return [
-        f"One step of {step:g} mm is thicker than the {differential:g} mm that neighbours may rise apart in a stage: every stage "
-        "passes that limit. Use thinner packing for the lift, or have the limit reviewed."
+        (
+            f"One step of {step:g} mm is thicker than the {differential:g} mm that neighbours may rise apart in a stage: every stage "
+            "passes that limit. Use thinner packing for the lift, or have the limit reviewed."
+        )
+    ]
+
+
+def of_relief(counts: bool) -> list[str]:
+    """Caution: what packing beyond the levels of the datum is taken for."""
+    if counts:
+        return [
+            (
+                "Relief by packing counts here, as the bridge file lets relief by settlement count: it is gone where a seat moves "
+                "again or a pad creeps."
+            )
+        ]
+    return [
+        (
+            "Seats packed above their level at the datum relieve some sections. As with settlements, that relief does not count: "
+            "packing brings back what seats have lost, and no more."
+        )
     ]
 
 

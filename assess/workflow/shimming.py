@@ -97,6 +97,7 @@ def shim_study(study: Study, stock: Stock, *, progress: Progress) -> ShimResult:
         girders.append(one)
         said += contact_cautions.tipping(girder.id, model.tips_off) + about
         said += shim_cautions.of_girder(one, MM * stock.differential)
+        said += shim_cautions.of_relief(model.factors.relief_counts)
         said += [] if model.permanent.given else [contact_cautions.unknown(girder.id)]
     progress("packed", len(study.bridge.girders), len(study.bridge.girders))
     said += shim_cautions.of_stock(MM * stock.step, MM * stock.differential)
@@ -140,8 +141,8 @@ class _Packed:
     def _best(self) -> tuple[Floats, float]:
         """Heights, and the least utilisation that packing of any thickness could give.
 
-        What the programme finds is judged by the assessment. Where live load lifts the girder its envelope is taken again
-        with the packing in, and the neighbours of the best heights are tried.
+        What the programme finds is judged by the assessment. Where live load lifts the girder its envelope is taken
+        again with the packing in, and the neighbours of the best heights are tried.
         """
         model, stock, none = self.model, self.stock, np.zeros(self.model.n)
         judged = {none.tobytes(): (_worst(self._rows(none)), none)}
