@@ -209,7 +209,7 @@ def _least(problem: Programme, *, scale: float, most: float, whole: bool) -> tup
             _stays(problem, scale, extra=1),
         ],
         bounds=Bounds(np.zeros(n + 1), np.r_[np.full(n, float(most)), np.inf]),
-        integrality=np.r_[np.full(n, float(whole)), 0.0],
+        integrality=np.r_[np.full(n, int(whole)), 0],
         options={"mip_rel_gap": 0.0},
     )
     if found.x is None:
@@ -227,7 +227,7 @@ def _fewest(problem: Programme, *, scale: float, most: float, level: float) -> F
             _stays(problem, scale, extra=0),
         ],
         bounds=Bounds(np.zeros(n), np.full(n, float(most))),
-        integrality=np.ones(n),
+        integrality=np.ones(n, dtype=np.intp),
         options={"mip_rel_gap": 0.0},
     )
     if found.x is None:

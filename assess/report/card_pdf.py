@@ -10,6 +10,7 @@ import io
 from collections.abc import Iterator
 from dataclasses import dataclass
 from functools import cache
+from typing import Any
 
 import matplotlib as mpl
 from matplotlib.backends.backend_pdf import PdfPages
@@ -25,7 +26,7 @@ TEXT, HEAD, TITLE = 9.0, 11.0, 14.0  # pt; 9 is the least that is read on site
 LINE = 11.5
 _SHARES = (0.125, 0.19, 0.055, 0.14, 0.14, 0.14, 0.14, 0.07)  # of the width: the columns
 _BLANK = 0.32 * TEXT  # of the font
-_FONT = {"font.family": ["DejaVu Sans"], "pdf.fonttype": 42, "text.parse_math": False}
+_FONT: dict[Any, Any] = {"font.family": ["DejaVu Sans"], "pdf.fonttype": 42, "text.parse_math": False}
 
 
 @dataclass

@@ -84,7 +84,8 @@ class GirderShims:
     ----------
     shims_mm : of every support; empty where none could be determined, with the reason in `not_determined`
     worst_utilisation_replaced : with all pads at their nominal stiffness, seats as they are
-    worst_utilisation_unrounded : the least that packing of any thickness could give
+    worst_utilisation_unrounded : the least that packing of any thickness could give; None where live load lifts the
+        girder, which is then no linear matter
     """
 
     girder: str

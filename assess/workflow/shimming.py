@@ -138,25 +138,27 @@ class _Packed:
         drops = self.seats.drops + self.seats.by_height @ heights
         return evaluate(self.model.effects, self.model.factors, self.compliance, drops)
 
-    def _best(self) -> tuple[Floats, float]:
-        """Heights, and the least utilisation that packing of any thickness could give.
+    def _best(self) -> tuple[Floats, float | None]:
+        """Heights, and the least utilisation that packing of any thickness could give (None: the girder lifts).
 
         What the programme finds is judged by the assessment. Where live load lifts the girder its envelope is taken
         again with the packing in, and the neighbours of the best heights are tried.
         """
         model, stock, none = self.model, self.stock, np.zeros(self.model.n)
         judged = {none.tobytes(): (_worst(self._rows(none)), none)}
-        live_at, bound = none, np.inf
+        live_at = none
         for _ in range(_ROUNDS):
             problem = programme(model.effects, model.factors, self.compliance, self.seats, live_at)
             found = least_worst(problem, step=stock.step, most=stock.lift_max, worth=stock.worth)
-            bound = found.bound
             used = self._judge(judged, found.heights)
-            if abs(used - found.worst) <= _AGREES or np.array_equal(found.heights, live_at):
+            agrees = abs(used - found.worst) <= _AGREES
+            if agrees and live_at is none:
+                return found.heights, found.bound
+            if agrees or np.array_equal(found.heights, live_at):
                 break
             live_at = found.heights
-        if abs(used - found.worst) <= _AGREES:
-            return found.heights, bound
+        if not problem.holds(none):
+            del judged[none.tobytes()]  # it is off a support today: to leave it so is no answer
         best = min(judged.values(), key=lambda one: one[0])
         while True:
             near = [best[1] + stock.step * row for row in (*np.eye(model.n), *-np.eye(model.n))]
@@ -166,7 +168,7 @@ class _Packed:
                     self._judge(judged, np.clip(heights, 0.0, None))
             better = min(judged.values(), key=lambda one: one[0])
             if better[0] >= best[0] - max(stock.worth, _AGREES):
-                return best[1], bound
+                return best[1], None
             best = better
 
     def _judge(self, judged: dict[bytes, tuple[float, Floats]], heights: Floats) -> float:

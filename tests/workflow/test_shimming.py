@@ -10,8 +10,9 @@ import numpy as np
 import pytest
 
 from assess import workflow
-from assess.capacity import evaluate
+from assess.capacity import NoPacking, evaluate
 from assess.results import GirderShims, ShimResult
+from assess.workflow import shimming
 from assess.workflow.building import GirderModel
 from assess.workflow.shimming import Stock
 from db.exchange import parse_bridge
@@ -137,19 +138,27 @@ def test_a_bridge_without_capacities_is_not_determined(tmp_path: Path) -> None:
     assert "no section" in (one.not_determined or "")
 
 
-def test_where_the_lift_does_not_reach_it_says_so(tmp_path: Path) -> None:
-    record = settled(tmp_path, west_abutment=250.0)
-    found = workflow.shim(record, "quillmere", Stock(step=1e-3, lift_max=2e-3))
-    assert "no packing within the limits keeps the girder on its supports" in (
-        found.girders[0].not_determined or ""
-    )
-    assert found.girders[0].worst_utilisation_before is not None
+def test_where_the_lift_does_not_reach_it_says_so(url: str, monkeypatch: pytest.MonkeyPatch) -> None:
+    def none(*_: object, **__: object) -> None:
+        raise NoPacking("no packing within the limits keeps the girder on its supports")
+
+    monkeypatch.setattr(shimming, "least_worst", none)
+    found = workflow.shim(url, "quillmere", STOCK)
+    one = found.girders[0]
+    assert "keeps the girder on its supports" in (one.not_determined or "")
+    assert one.shims_mm == []
+    assert one.worst_utilisation_before is not None
+    assert any("packing is not determined" in caution for caution in found.cautions)
 
 
 def test_live_load_that_lifts_the_girder_is_in_the_figures(tmp_path: Path) -> None:
     """A light girder that is held down nowhere: the assessment judges, and no neighbour of the heights is lower."""
     text = bridge_text() + "relief_counts = true\n"
-    for old, new in (('"27 kN/m"', '"4 kN/m"'), ('kind = "pin" ', 'hold_down = false\nkind = "pin" ')):
+    for old, new in (
+        ('"27 kN/m"', '"2 kN/m"'),
+        ('"9.5 kN/m"', '"3 kN/m"'),
+        ('kind = "pin" ', 'hold_down = false\nkind = "pin" '),
+    ):
         assert old in text
         text = text.replace(old, new)
     path = tmp_path / "light.toml"
