@@ -1,6 +1,8 @@
 """Draw the README's pictures: parts of the demo's report, as a browser shows them.
 
 Usage: python scripts/make_pictures.py bedstone-demo/hollin-water.html
+
+plan.png is no part of the report: bedstone plan hollin-water --vehicle "works locomotive" --girder north -o plan.png
 """
 
 from __future__ import annotations

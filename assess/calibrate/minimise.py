@@ -110,6 +110,6 @@ def _trust_region(linearise: Linearised, start: Floats) -> Minimum:
         gtol=1e-12,
         max_nfev=400,
     )
-    if not (found.success or _could_gain(found.fun, found.jac) <= _STILL):
+    if not (found.success or _could_gain(found.fun, jacobian(found.x)) <= _STILL):
         raise RuntimeError(f"the fit did not converge in {found.nfev} evaluations")
     return Minimum(theta=found.x, evaluations=int(found.nfev), trust_region=True)

@@ -2,5 +2,6 @@
 
 from assess.report.card import render_card, write_card
 from assess.report.page import render, write_report
+from assess.report.planned import write_plan
 
-__all__ = ["render", "render_card", "write_card", "write_report"]
+__all__ = ["render", "render_card", "write_card", "write_plan", "write_report"]

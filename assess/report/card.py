@@ -6,7 +6,8 @@ from collections.abc import Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
 
-from assess.report.page import pages, write_whole
+from assess.report.files import write_whole
+from assess.report.page import pages
 from assess.report.words import MINUS, number, plain
 from assess.results import TriggerReading, TriggersResult
 
@@ -163,6 +164,6 @@ def write_card(result: TriggersResult, path: Path) -> None:
     if path.suffix.lower() == ".pdf":
         from assess.report.card_pdf import draw_card  # matplotlib: loaded only when it draws
 
-        write_whole(draw_card(card_of(result)), path)
+        write_whole(path, draw_card(card_of(result)))
     else:
-        write_whole(render_card(result).encode("utf-8"), path)
+        write_whole(path, render_card(result).encode("utf-8"))

@@ -7,7 +7,8 @@ from dataclasses import dataclass, field
 from markupsafe import Markup
 
 from assess.report import cautions, pads, sections, tables, words
-from assess.report.figures import elevation, history, moments, residuals, utilisation
+from assess.report.explained import Explained, explained
+from assess.report.figures import elevation, history, moments, plane, residuals, utilisation
 from assess.results import GirderAssessment, GirderCalibration, GirderView, ReportView
 
 
@@ -48,6 +49,8 @@ class GirderPage:
     span_trends: list[list[str]] = field(default_factory=list)
     span_trends_caption: str = ""
     fit: str = ""
+    explained: Explained = field(default_factory=Explained)
+    planes: list[Figure] = field(default_factory=list)
     residuals: list[Figure] = field(default_factory=list)
     readings: list[list[str]] = field(default_factory=list)
 
@@ -148,6 +151,8 @@ def _girder(view: ReportView, name: str, key: str) -> GirderPage:
         span_trends=[] if view.trend is None else tables.span_trend_rows(view.trend, name, stands_on),
         span_trends_caption=_span_trends_caption(name, drawn),
         fit="" if fit is None else tables.fit_sentence(fit),
+        explained=Explained() if fit is None else explained(fit, names),
+        planes=[] if fit is None else _planes(fit, key),
         residuals=[] if fit is None else _residuals(fit, key),
         readings=[] if fit is None else tables.reading_rows(fit.readings),
     )
@@ -239,6 +244,20 @@ def _span_trends_caption(name: str, girder: GirderView | None) -> str:
     histories = [] if girder is None else girder.histories
     ends = [h.line_dates[-1] for h in histories if h.line_dates and h.line_dates[-1] > h.last_visit]
     return f"{told} to {words.date(max(ends))}" if ends else told
+
+
+def _planes(fit: GirderCalibration, key: str) -> list[Figure]:
+    shown = plane.pairs(fit)
+    if not shown:
+        return []
+    limits = plane.common_axes(shown)
+    return [
+        Figure(
+            svg=Markup(plane.plot(pair, limits, key=f"{key}-plane{i}")),
+            caption=f"Pad and seat at {pair.support}",
+        )
+        for i, pair in enumerate(shown)
+    ]
 
 
 def _residuals(fit: GirderCalibration, key: str) -> list[Figure]:

@@ -2,12 +2,11 @@
 
 from __future__ import annotations
 
-import os
-import tempfile
 from pathlib import Path
 
 from jinja2 import Environment, PackageLoader, StrictUndefined
 
+from assess.report.files import write_whole
 from assess.results import ReportView
 
 
@@ -43,32 +42,4 @@ def write_report(view: ReportView, path: Path) -> None:
     OSError
         If the folder is missing or cannot be written; nothing is left behind.
     """
-    write_whole(render(view).encode("utf-8"), path)
-
-
-def write_whole(content: bytes, path: Path) -> None:
-    """Write a file whole or not at all.
-
-    Raises
-    ------
-    OSError
-        If the folder is missing or cannot be written; nothing is left behind.
-    """
-    handle, name = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.", suffix=".part")
-    part = Path(name)
-    try:
-        with os.fdopen(handle, "wb") as file:
-            file.write(content)
-            file.flush()
-            os.fsync(file.fileno())
-        part.chmod(0o666 & ~_umask())
-        part.replace(path)
-    except BaseException:
-        part.unlink(missing_ok=True)
-        raise
-
-
-def _umask() -> int:
-    mask = os.umask(0o077)
-    os.umask(mask)
-    return mask
+    write_whole(path, render(view).encode("utf-8"))

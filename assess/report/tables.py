@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 from markupsafe import Markup
 
@@ -14,6 +14,7 @@ from assess.results import (
     CaseResult,
     GirderAssessment,
     GirderCalibration,
+    PadResult,
     ReactionResult,
     ReadingResult,
     SectionResult,
@@ -77,10 +78,13 @@ def reaction_heads(stands_on: str) -> list[str]:
 
 def section_rows(girder: GirderAssessment, key: str, stands_on: str) -> list[SectionRow]:
     """Return the utilisation table of a girder; `key` makes the ids of its marks."""
-    return [_section_row(section, f"{key}-u{i}", stands_on) for i, section in enumerate(girder.sections)]
+    names = [reaction.support for reaction in girder.reactions]
+    return [
+        _section_row(section, f"{key}-u{i}", stands_on, names) for i, section in enumerate(girder.sections)
+    ]
 
 
-def _section_row(section: SectionResult, key: str, stands_on: str) -> SectionRow:
+def _section_row(section: SectionResult, key: str, stands_on: str, names: list[str]) -> SectionRow:
     name = words.section(section.effect, section.span, section.support)
     case = section.calibrated
     unit = "kN" if section.effect == "shear" else "kN\N{NO-BREAK SPACE}m"
@@ -89,7 +93,7 @@ def _section_row(section: SectionResult, key: str, stands_on: str) -> SectionRow
         cases=[
             _cell(section.unyielding, unit, words.quantity(section.unyielding.utilisation, "", NO_CAPACITY)),
             _cell(section.nominal, unit, words.quantity(section.nominal.utilisation, "", NO_CAPACITY)),
-            _cell(case, unit, calibrated_utilisation(case)),
+            _with_rival(_cell(case, unit, calibrated_utilisation(case)), case, names),
         ],
         probability=words.probability(case.probability_over_1, NO_CAPACITY),
         status=words.judged(case.utilisation, stands_on),
@@ -124,6 +128,17 @@ def _cell(case: CaseResult, unit: str, told: str) -> CaseCell:
     return CaseCell(utilisation=told, lines=lines)
 
 
+def _with_rival(cell: CaseCell, case: CalibratedCase, names: list[str]) -> CaseCell:
+    """The cell with the explanation that the readings bear as well and that uses the section more, if one does."""
+    if not case.used_more_by_rival:
+        return cell
+    used = words.quantity(case.worst_rival_utilisation, "")
+    told = (
+        f"explained by {words.prose(case.worst_rival or '', names)}, which the readings bear as well: {used}"
+    )
+    return replace(cell, lines=[*cell.lines, told])
+
+
 def _elsewhere(case: CaseResult) -> str:
     """The least rating factor of the row, where it is another one."""
     if case.rating_levels:  # these are the least of the row already
@@ -147,8 +162,9 @@ def _relief(case: CalibratedCase, unit: str) -> list[str]:
     """What settlement adds, and how a section fares with and without a relief by it."""
     lines = [f"settlement {words.number(case.settlement)}\N{NO-BREAK SPACE}{unit} of the permanent"]
     with_relief, without = case.utilisation_with_relief, case.utilisation_without_relief
-    if with_relief is not None and without is not None and with_relief != without:
-        lines.append(f"utilisation with relief {words.number(with_relief)}, without {words.number(without)}")
+    if with_relief is not None and without is not None:
+        told = words.number(with_relief), words.number(without)
+        lines += [f"utilisation with relief {told[0]}, without {told[1]}"] if told[0] != told[1] else []
     return lines
 
 
@@ -216,15 +232,24 @@ def pad_rows(supports: list[SupportView], calibration: GirderCalibration | None)
             told = words.told_by(s.data_share)
             stiffness = nominal = words.not_determined(why)
             if pad is not None:
-                stiffness = words.interval(
-                    pad.stiffness_kN_per_m / 1000.0,
-                    pad.low95_kN_per_m / 1000.0,
-                    pad.highest_kN_per_m / 1000.0,
-                    "kN/mm",
-                )
+                stiffness = _stiffness(pad)
                 nominal = words.quantity(pad.nominal_kN_per_m / 1000.0, "kN/mm")
         rows.append([s.support, words.place(s.x_m), stiffness, nominal, ratio, told, _seat(s)])
     return rows
+
+
+def _stiffness(pad: PadResult) -> str:
+    """A pad's stiffness with its interval, whence that is, and the stiffness at 20 degC where it is known."""
+    told = words.interval(
+        pad.stiffness_kN_per_m / 1000.0, pad.low95_kN_per_m / 1000.0, pad.highest_kN_per_m / 1000.0, "kN/mm"
+    )
+    if pad.interval_from == "profile":
+        told += ", interval by profile likelihood"
+    if pad.stiffness_20degC_kN_per_m is not None:
+        told += (
+            f"; at 20\N{NO-BREAK SPACE}°C {words.quantity(pad.stiffness_20degC_kN_per_m / 1000.0, 'kN/mm')}"
+        )
+    return told
 
 
 def _seat(support: SupportView) -> str:
@@ -232,7 +257,7 @@ def _seat(support: SupportView) -> str:
         return words.not_determined("no level of this seat")
     sd = words.not_determined("no sd given")
     if support.seat_drop_sd_mm is not None:
-        sd = words.entered(support.seat_drop_sd_mm, "mm")
+        sd = words.spread(support.seat_drop_sd_mm, "mm")
     told = f"{words.seat(support.seat_drop_mm)} (sd {sd})"
     if not words.seat_moved(support.seat_drop_mm, support.seat_drop_sd_mm):
         return f"no movement beyond 2 sd: {told}"
@@ -266,7 +291,7 @@ def seat_trend_rows(trend: TrendResult, girder: str) -> list[list[str]]:
         why = "one visit gives no rate"
         rate = words.interval(s.rate_mm_per_year, s.low95, s.high95, "mm a year", why)
         told = "moving" if s.moving else "no movement told by the levels"
-        level = f"{words.seat(s.settlement_mm)} (sd {words.entered(s.sd_mm, 'mm')})"
+        level = f"{words.seat(s.settlement_mm)} (sd {words.spread(s.sd_mm, 'mm')})"
         rows.append([s.support, str(s.visits), level, rate, told if s.visits > 1 else "one visit"])
     return rows
 
@@ -304,7 +329,7 @@ def reading_rows(readings: list[ReadingResult]) -> list[list[str]]:
         if r.standardised_residual is None and not r.suspect:
             remark = "unchecked"
         if r.predicted is None:
-            remark = "not fitted: the girder is off a pad"
+            remark = f"not fitted: {words.plain(r.left_out or 'no reason is kept')}"
         rows.append(
             [
                 r.state,
@@ -314,6 +339,7 @@ def reading_rows(readings: list[ReadingResult]) -> list[list[str]]:
                 words.quantity(r.predicted, r.unit, "not fitted"),
                 words.entered(r.sd, r.unit),
                 residual,
+                words.quantity(r.minimal_detectable, r.unit, "nothing checks it"),
                 remark,
             ]
         )

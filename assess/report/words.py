@@ -5,7 +5,7 @@ from __future__ import annotations
 import datetime as dt
 import math
 import re
-from collections.abc import Iterable
+from collections.abc import Iterable, Sequence
 
 MONTHS = (
     "January",
@@ -112,9 +112,24 @@ def number(value: float, digits: int = 3) -> str:
     return sign + (f"{rounded:,.0f}".replace(",", THIN) if power >= 4 else text)
 
 
+def signed(value: float) -> str:
+    """Word a finite number with its sign."""
+    return number(value) if value <= 0.0 else f"+{number(value)}"
+
+
+def listed(names: Sequence[str]) -> str:
+    """Word a list: "a", "a and b", "a, b and c"."""
+    return names[0] if len(names) == 1 else f"{', '.join(names[:-1])} and {names[-1]}"
+
+
 def entered(value: float, unit: str = "") -> str:
     """Word a number that a person wrote, as it was written: no figures added, none past six."""
     return f"{value:.6g} {unit}".rstrip().replace("-", MINUS)
+
+
+def spread(sd: float, unit: str = "") -> str:
+    """Word a standard deviation in at most two significant figures."""
+    return entered(float(f"{sd:.2g}"), unit)
 
 
 def span_length(length_m: float) -> str:
@@ -135,6 +150,8 @@ def interval(
     """Word a value with its 95 % interval: "0.87 (0.84 to 0.91) unit"."""
     if value is None or not math.isfinite(value):
         return not_determined(reason)
+    if low is not None and high is not None and math.isfinite(low) and high == math.inf:
+        return f"{number(value)} ({number(low)} to no upper limit) {unit}".rstrip()
     if low is None or high is None or not (math.isfinite(low) and math.isfinite(high)):
         return f"{number(value)} {unit}".rstrip() + " (interval not determined)"
     return f"{number(value)} ({number(low)} to {number(high)}) {unit}".rstrip()

@@ -28,6 +28,18 @@ from assess.results.calibration import (
     UnknownResult,
 )
 from assess.results.plain import from_plain
+from assess.results.plan import (
+    GirderPlan,
+    GoverningSection,
+    HalfPlan,
+    PlannedPad,
+    PlannedPosition,
+    PlannedReading,
+    PlannedSeat,
+    PlanResult,
+    PlanSupport,
+)
+from assess.results.said import grouped
 from assess.results.shimming import (
     GirderShims,
     Jack,
@@ -62,8 +74,11 @@ __all__ = [
     "ElevationState",
     "GirderAssessment",
     "GirderCalibration",
+    "GirderPlan",
     "GirderShims",
     "GirderView",
+    "GoverningSection",
+    "HalfPlan",
     "Jack",
     "JackingStage",
     "LeftOut",
@@ -77,6 +92,12 @@ __all__ = [
     "PadShift",
     "PadTrend",
     "PastSection",
+    "PlanResult",
+    "PlanSupport",
+    "PlannedPad",
+    "PlannedPosition",
+    "PlannedReading",
+    "PlannedSeat",
     "ProposedRemoval",
     "ReactionResult",
     "ReadingResult",
@@ -97,4 +118,5 @@ __all__ = [
     "TriggersResult",
     "UnknownResult",
     "from_plain",
+    "grouped",
 ]

@@ -5,6 +5,8 @@ from __future__ import annotations
 import datetime as dt
 from dataclasses import dataclass, field
 
+RIVAL_MATTERS = 0.005  # of a utilisation
+
 
 @dataclass(frozen=True, kw_only=True)
 class CaseResult:
@@ -38,6 +40,12 @@ class CalibratedCase(CaseResult):
     probability_over_1: float | None
     worst_rival: str | None = None  # of the close rival explanations, that with the greatest utilisation here
     worst_rival_utilisation: float | None = None
+
+    @property
+    def used_more_by_rival(self) -> bool:
+        """Whether a close rival explanation uses the section more, by enough to be worth a word."""
+        own, other = self.utilisation, self.worst_rival_utilisation
+        return own is not None and other is not None and other > own + RIVAL_MATTERS
 
 
 @dataclass(frozen=True, kw_only=True)

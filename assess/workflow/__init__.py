@@ -3,6 +3,7 @@
 from assess.workflow.assessing import assess
 from assess.workflow.calibrating import calibrate
 from assess.workflow.fitting import Options
+from assess.workflow.planning import plan
 from assess.workflow.records import (
     add_bridge,
     draft_bridge,
@@ -17,6 +18,7 @@ from assess.workflow.study import Progress
 from assess.workflow.trending import trend
 from assess.workflow.triggers import triggers
 from assess.workflow.viewing import report_view
+from assess.workflow.visit_draft import draft_visit
 
 __all__ = [
     "Options",
@@ -27,10 +29,12 @@ __all__ = [
     "bridge_view",
     "calibrate",
     "draft_bridge",
+    "draft_visit",
     "init_record",
     "list_bridges",
     "list_visits",
     "log_visit",
+    "plan",
     "report_view",
     "shim",
     "show_bridge",

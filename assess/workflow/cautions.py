@@ -160,7 +160,7 @@ def of_rivals(girder: str, shown: GirderAssessment) -> list[str]:
         for row in shown.sections
         if row.calibrated.utilisation is not None
         and row.calibrated.worst_rival_utilisation is not None
-        and row.calibrated.worst_rival_utilisation > row.calibrated.utilisation + 0.005
+        and row.calibrated.used_more_by_rival
     ]
     if not worse:
         return []

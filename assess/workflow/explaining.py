@@ -49,7 +49,7 @@ def explain(fitting: Fitting) -> Explained:
         apart = None if one is main else deciding_reading(whole, main.theta, one.theta)
         simpler = one is not main and set(one.free.tolist()) < set(main.free.tolist())
         shown.append(_shown(one, apart, simpler))
-        if one is not main and one.within_2 and one.share >= SEEN:
+        if one is not main and one.close and one.share >= SEEN:
             carried.append(_carried(whole, one, apart))
     return Explained(
         rivals=shown,
@@ -103,6 +103,7 @@ def _shown(one: Rival, apart: str | None, simpler: bool) -> RivalResult:
         aicc=one.aicc,
         chi_square=one.chi_square,
         within_2=one.within_2,
+        carried=one.close and one.share >= SEEN,
         log_likelihood=one.log_likelihood,
         effective_unknowns=one.told,
         told=one.share >= SEEN,

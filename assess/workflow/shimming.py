@@ -21,7 +21,16 @@ from assess.capacity import (
     staged,
     standing_on,
 )
-from assess.results import GirderShims, Jack, JackingStage, ShimHeight, ShimReaction, ShimResult, ShimSection
+from assess.results import (
+    GirderShims,
+    Jack,
+    JackingStage,
+    ShimHeight,
+    ShimReaction,
+    ShimResult,
+    ShimSection,
+    grouped,
+)
 from assess.workflow import cautions, contact_cautions, shim_cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.lifting import tipping_named
@@ -112,7 +121,10 @@ def shim_study(study: Study, stock: Stock, *, progress: Progress) -> ShimResult:
         differential_mm=MM * stock.differential,
         jack_allowance=ALLOWANCE,
         girders=girders,
-        cautions=list(dict.fromkeys([*said, *shim_cautions.STANDING, *cautions.STANDING])),
+        cautions=grouped(
+            [*said, *shim_cautions.STANDING, *cautions.STANDING],
+            [girder.id for girder in study.bridge.girders],
+        ),
     )
 
 

@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 from assess.calibrate import draw_normal
 from assess.workflow import cautions
 from assess.workflow.building import GirderModel
+from assess.workflow.fitting import key_of
 from assess.workflow.kept_fits import GirderFit, RivalFit, VisitFit, from_kept
 from assess.workflow.study import Study
 from db.records import KeptResult
@@ -291,9 +292,13 @@ def _forgotten(model: GirderModel, own: dict[dt.date, GirderFit], date: dt.date)
 
 
 def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str, list[Settlement]]:
-    """Measured settlements of each support of a girder, by date; repeats of one visit are pooled by weight."""
+    """Measured settlements of each support of a girder, by date; repeats of one visit are pooled by weight.
+
+    What the newest calibration of a visit left out by hand is no measurement here either.
+    """
     found: dict[str, list[Settlement]] = {}
     for visit in study.until(until):
+        left_out = _left_out(study, visit.date)
         values: dict[str, list[tuple[float, float]]] = {}
         for reading in visit.readings:
             permanent = visit.state(reading.state).vehicle is None
@@ -302,6 +307,7 @@ def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str
                 and reading.quantity == "settlement"
                 and permanent
                 and reading.support
+                and key_of(reading) not in left_out
             ):
                 values.setdefault(reading.support, []).append((reading.value, reading.sd))
         for support, pairs in values.items():
@@ -312,6 +318,11 @@ def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str
             )
             found.setdefault(support, []).append(pooled)
     return found
+
+
+def _left_out(study: Study, date: dt.date) -> set[str]:
+    options = next((kept.options for kept in reversed(study.calibrations) if kept.visit == date), {})
+    return {one["reading"] for one in options.get("without", [])}
 
 
 def settlements(study: Study, girder: str, until: dt.date | None) -> dict[str, Settlement]:

@@ -25,7 +25,7 @@ from assess.trend import (
 from assess.workflow import cautions, contact_cautions, pad_cautions, section_cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import calibrate_visit
-from assess.workflow.kept_fits import GirderFit, VisitFit
+from assess.workflow.kept_fits import GirderFit, VisitFit, options_of
 from assess.workflow.lifting import draws_worth, tipping_named
 from assess.workflow.pads import cold_shift, corrected
 from assess.workflow.status import LIMIT, status_of
@@ -124,13 +124,15 @@ def trend_study(study: Study, *, progress: Progress) -> tuple[TrendResult, list[
 
 
 def _all_fits(study: Study, progress: Progress) -> dict[dt.date, VisitFit]:
-    """Kept calibrations of all visits that rest on today's bridge file, the missing ones made (not kept)."""
-    kept = {d: fit for d, (fit, row) in kept_fits(study, None).items() if row.revision == study.kept.revision}
+    """Kept calibrations of all visits that rest on today's bridge file, the missing ones made as they were asked for."""
+    newest = kept_fits(study, None)
+    kept = {d: fit for d, (fit, row) in newest.items() if row.revision == study.kept.revision}
+    asked = {d: options_of(row) for d, (_, row) in newest.items()}
     chosen = [visit for visit in study.visits if telling_readings(visit)]
     fits = {}
     for i, visit in enumerate(chosen):
         progress(f"reading {visit.date.isoformat()}", i, len(chosen))
-        fits[visit.date] = kept.get(visit.date) or calibrate_visit(study, visit)
+        fits[visit.date] = kept.get(visit.date) or calibrate_visit(study, visit, asked.get(visit.date))
     return fits
 
 

@@ -11,6 +11,7 @@ from assess.results import (
     PadTrend,
     SeatTrend,
     SectionResult,
+    SettlementResult,
     SpanTrend,
     TrendResult,
 )
@@ -83,10 +84,14 @@ def _causes(
 ) -> str:
     """Name the supports that drive the section, and a pad that changes even if it drives nothing yet."""
     still = {s.support for s in trend.seats if s.girder == girder and _stands(s)}
+    fitted = _fitted_seats(calibration, girder)
+    still |= {seat.support for seat in fitted.values() if seat.low95 <= 0.0 <= seat.high95} - _levelled(
+        trend, girder
+    )
     told = [one for one in found if one.adds >= _TELLS and not (one.what == "seat" and one.support in still)][
         :2
     ]
-    parts = [_cause(girder, trend, one) for one in told]
+    parts = [_cause(girder, trend, fitted, one) for one in told]
     changed = _changed(trend, girder)
     if changed is not None and ("pad", changed.support) not in {(one.what, one.support) for one in told}:
         parts.append(f'the pad at "{changed.support}", whose {_rate(changed)}')
@@ -101,15 +106,36 @@ def _stands(seat: SeatTrend) -> bool:
     return not seat.moving and abs(seat.settlement_mm) < 2.0 * seat.sd_mm
 
 
-def _cause(girder: str, trend: TrendResult, one: Driver) -> str:
+def _levelled(trend: TrendResult, girder: str) -> set[str]:
+    """Supports whose seat was levelled; of others only the fit speaks."""
+    return {seat.support for seat in trend.seats if seat.girder == girder}
+
+
+def _fitted_seats(calibration: CalibrationResult | None, girder: str) -> dict[str, SettlementResult]:
+    """Seats as the calibration finds them, from girder levels and gaps too."""
+    girders = calibration.girders if calibration is not None else []
+    return {seat.support: seat for one in girders if one.girder == girder for seat in one.settlements_mm}
+
+
+def _cause(girder: str, trend: TrendResult, fitted: dict[str, SettlementResult], one: Driver) -> str:
     if one.what == "seat":
-        seat = next(s for s in trend.seats if (s.girder, s.support) == (girder, one.support))
+        seat = next((s for s in trend.seats if (s.girder, s.support) == (girder, one.support)), None)
+        if seat is None:
+            return _fitted_cause(fitted.get(one.support), one)
         way = "down" if seat.settlement_mm >= 0.0 else "up"
         moving = f", moving by {seat.rate_mm_per_year:+.2g} mm a year" if seat.moving else ""
         return f'the seat at "{one.support}", {abs(seat.settlement_mm):.3g} mm {way}{moving}: it adds {one.adds:.2g} to the utilisation'
     pad = next((p for p in trend.pads if (p.girder, p.support) == (girder, one.support)), None)
     moving = f", whose {_rate(pad)}" if pad is not None and pad.law != "steady" else ""
     return f'the pad at "{one.support}"{moving}: it adds {one.adds:.2g} to the utilisation'
+
+
+def _fitted_cause(seat: SettlementResult | None, one: Driver) -> str:
+    """A seat that was not levelled: where the fit puts it."""
+    where = ""
+    if seat is not None:
+        where = f", {abs(seat.value):.3g} mm {'down' if seat.value >= 0.0 else 'up'} as fitted, not levelled"
+    return f'the seat at "{one.support}"{where}: it adds {one.adds:.2g} to the utilisation'
 
 
 def _rate(pad: PadTrend) -> str:
@@ -137,6 +163,9 @@ def cautions_beside(girder: str, said: list[str]) -> list[str]:
         "over its limit",
         "would tip",
         "likely wrong",
+        "which the readings bear as well",
+        "cannot be told",
+        "left out of the fit by hand",
     )
     own = [one for one in said if one.startswith(f"{girder}:") and any(word in one for word in words)]
     kept = [one for one in own if "likely wrong" in one or not pad_cautions.is_assumption(one)]

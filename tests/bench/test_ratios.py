@@ -106,7 +106,8 @@ def test_one_calibration() -> None:
         ours, hand, built = calibration(girder, k)
         print(
             f"\none calibration of {k.size} pads: {ours * 1e3:.2f} ms, {1.0 / ours:.0f} a second;"
-            f" finite differences on the whole girder {hand / ours:.1f} times as long, {built / ours:.1f} times with its assembly"
+            f" finite differences on the whole girder {hand / ours:.1f} times as long,"
+            f" {built / ours:.1f} times with its assembly"
         )
         assert built / ours >= 16.0
 

@@ -37,6 +37,7 @@ from tests.calibrate.bridges import (
     read_under,
     start_of,
     vehicles,
+    visited,
 )
 from tests.factories import noisy
 
@@ -100,6 +101,26 @@ def runs(count: int, seed: int, *, since_loaded: bool) -> list[Run]:
         made.append(
             Run(model=read, prior=prior, truth=truth, found=fit(read, start=start_of(prior), prior=prior))
         )
+    return made
+
+
+def poorly_told(count: int, seed: int) -> list[Run]:
+    """Girder levels and two coarse gaps, pads believed to within 60 per cent: most is told by assumption."""
+    rng, made = np.random.default_rng(seed), []
+    for _ in range(count):
+        drawn = drawn_bridge(rng)
+        bridge = replace(drawn, prior=replace(drawn.prior, sd=np.full(drawn.n, 0.6)))
+        read = (
+            at_supports(bridge, "deflection", 0.3 * MM, 0)
+            + at_supports(bridge, "compression", 0.2 * MM, 0)[:2]
+        )
+        unknowns = Unknowns(sustained=True, settlements=tuple(range(bridge.n)), girder=True)
+        model = visited(bridge, read, test=False, unknowns=unknowns)
+        prior = believed(bridge, model)
+        truth = drawn_truth(prior, rng)
+        read_model = noisy(model, truth, rng)
+        found = fit(read_model, start=start_of(prior), prior=prior)
+        made.append(Run(model=read_model, prior=prior, truth=truth, found=found))
     return made
 
 
@@ -197,6 +218,20 @@ def test_settlements_under_an_unknown_datum_are_known_worse_than_what_bends_the_
         row[[0, 1, -1]] = x[1] / x[-1] - 1.0, 1.0, -x[1] / x[-1]
         joint = run.found.joint[block, block]
         assert np.sqrt(row @ joint @ row) < np.sqrt(joint[1, 1])
+
+
+def test_where_little_is_told_the_profile_holds_the_truth_as_often_as_it_says() -> None:
+    counted = held(poorly_told(15, 34), profiled_ends, 35)
+    assert all(within_chance(count, 15) for count in counted.values()), counted
+
+
+@pytest.mark.campaign
+def test_where_little_is_told_the_profile_holds_the_truth_at_length() -> None:
+    made = poorly_told(LONG, 43)
+    counted = held(made, profiled_ends, 44)
+    print(f"\npoorly told, normal: {held(made, normal_ends, 44)}; profile where it is off: {counted}")
+    for name, count in counted.items():
+        assert 0.93 * LONG <= count <= 0.97 * LONG, name
 
 
 @pytest.mark.campaign

@@ -8,6 +8,7 @@ from assess.results import (
     AssessmentResult,
     CalibratedCase,
     CalibrationResult,
+    CarriedRival,
     CaseResult,
     GirderAssessment,
     GirderCalibration,
@@ -78,9 +79,14 @@ def calibration(
 
 
 def assessment(
-    *, capacity: float | None = 5100.0, calibration_visit=dt.date(2024, 5, 14)
+    *,
+    capacity: float | None = 5100.0,
+    calibration_visit=dt.date(2024, 5, 14),
+    rival_utilisation: float | None = None,
 ) -> AssessmentResult:
     known = capacity is not None
+    rival = None if rival_utilisation is None else 'pads and settlement at "pier 1"'
+    apart = 'compression at "pier 2" in T1: 1.2 mm against 1.5 mm'
     case = {
         "x_m": 5.123,
         "capacity": capacity,
@@ -102,6 +108,8 @@ def assessment(
             utilisation_low95=0.61 if known else None,
             utilisation_high95=0.69 if known else None,
             probability_over_1=0.0 if known else None,
+            worst_rival=rival,
+            worst_rival_utilisation=rival_utilisation,
         ),
     )
     reaction = ReactionResult(
@@ -120,7 +128,14 @@ def assessment(
         input_digest="cd" * 32,
         seed=1,
         draws=4000,
-        girders=[GirderAssessment(girder="north", sections=[section], reactions=[reaction])],
+        girders=[
+            GirderAssessment(
+                girder="north",
+                sections=[section],
+                reactions=[reaction],
+                rivals=[] if rival is None else [CarriedRival(name=rival, told_apart_by=apart)],
+            )
+        ],
         cautions=[CAUTION],
     )
 

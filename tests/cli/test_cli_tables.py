@@ -5,6 +5,7 @@ from __future__ import annotations
 import datetime as dt
 import math
 import re
+from dataclasses import replace
 from pathlib import Path
 
 import pytest
@@ -172,6 +173,27 @@ def test_an_assessment_shows_the_three_cases_side_by_side(bedstone, workflow):
     assert cells[:5] == ["sagging, span 1", "kN m", "5.12", "5100", "3300"]
     assert cells[5:] == ["0.647", "0.647", "0.647 (0.610 to 0.690)", "1.64", "under 0.1"]
     assert "-44.0" in out
+
+
+def test_a_section_that_a_close_explanation_uses_more_stands_beside_with_what_decides(bedstone, workflow):
+    out = show(bedstone, workflow, "assess", assessment(rival_utilisation=0.671))
+    row = next(line for line in out.splitlines() if 'settlement at "pier 1"' in line)
+    assert split_row(row) == ["sagging, span 1", 'pads and settlement at "pier 1"', "0.647", "0.671"]
+    told = " ".join(out.split())
+    assert 'explanation by pads and settlement at "pier 1": compression at "pier 2" in T1: 1.2 mm' in told
+
+
+def test_a_close_explanation_that_changes_nothing_is_not_shown(bedstone, workflow):
+    out = show(bedstone, workflow, "assess", assessment(rival_utilisation=0.651))
+    assert "if explained otherwise" not in out
+    assert "would decide" not in out
+
+
+def test_what_is_said_alike_of_two_girders_is_said_once(bedstone, workflow):
+    one = calibration(cautions=["north: x.", "south: x.", "north: y.", CAUTION])
+    two = replace(one, girders=[*one.girders, replace(one.girders[0], girder="south")])
+    out = show(bedstone, workflow, "calibrate", two)
+    assert out.endswith(f"- north and south: x.\n- north: y.\n- {CAUTION}\n")
 
 
 def test_an_assessment_without_capacity_or_calibration_says_so(bedstone, workflow):

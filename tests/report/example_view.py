@@ -5,6 +5,7 @@ from __future__ import annotations
 import datetime as dt
 import itertools
 from dataclasses import replace
+from typing import Any
 
 import numpy as np
 
@@ -13,23 +14,31 @@ from assess.results import (
     CalibratedCase,
     CalibrationResult,
     CaseResult,
+    CauseResult,
+    CorrelationResult,
     ElevationState,
     GirderAssessment,
     GirderCalibration,
     GirderView,
+    LeftOut,
     MeasuredPoint,
     MomentLines,
     PadHistory,
     PadResult,
     PadTrend,
+    ProposedRemoval,
     ReactionResult,
     ReadingResult,
     ReportView,
+    RivalResult,
+    RobustPad,
     SeatTrend,
     SectionResult,
+    SettlementResult,
     SpanTrend,
     SupportView,
     TrendResult,
+    UnknownResult,
 )
 from assess.results.view import Floats
 
@@ -231,6 +240,10 @@ def section(
             utilisation_low95=None if use is None else 0.95 * use,
             utilisation_high95=None if use is None else 1.06 * use,
             probability_over_1=None if use is None else float(min(1.0, max(0.0, (use - 0.85) / 0.3))),
+            worst_rival=None if effect == "shear" else f'pads and settlement at "{support or "pier 1"}"',
+            worst_rival_utilisation=None
+            if use is None or effect == "shear"
+            else use + 0.02 * (effect == "hogging"),
         ),
     )
 
@@ -287,8 +300,97 @@ def readings(view: GirderView) -> list[ReadingResult]:
     return found
 
 
+def explained_of(view: GirderView) -> dict[str, Any]:
+    """What stands beside the stiffnesses: seats, other unknowns, rivals, causes, readings in doubt."""
+    pads = [s for s in view.supports if s.ratio is not None]
+    names = [s.support for s in view.supports]
+    last = len(names) - 1
+    return {
+        "settlements_mm": [
+            SettlementResult(
+                support=name,
+                value=1.5 * i - 1.0,
+                low95=1.5 * i - 1.6,
+                high95=1.5 * i - 0.4,
+                data_share=0.97 if i else 0.31,
+                moment_relevant=0.0 if i in (0, last) else 0.8,
+                moment_relevant_low95=0.0 if i in (0, last) else -0.1,
+                moment_relevant_high95=0.0 if i in (0, last) else 1.7,
+                moment_relevant_data_share=0.9,
+            )
+            for i, name in enumerate(names)
+        ],
+        "unknowns": ["pads", "sustained", "settlements"],
+        "unknowns_from": "the visit file",
+        "calibrated_as": "as calibrated (pads, sustained, settlements)",
+        "others": [
+            UnknownResult(
+                name="sustained ratio", value=0.74, low95=0.61, high95=0.9, data_share=0.12, unit=""
+            ),
+            UnknownResult(name="datum shift", value=1.2, low95=0.3, high95=2.1, data_share=0.8, unit="mm"),
+        ],
+        "correlations": [
+            CorrelationResult(a=f"{s.support} stiffness", b=f"{s.support} settlement", r=(-1.0) ** i * 0.95)
+            for i, s in enumerate(pads)
+        ],
+        "rivals": [
+            _rival(f'pads and settlement at "{names[-1]}"', 41.0, simpler=True),
+            _rival("as calibrated (pads, sustained, settlements)", 41.9),
+            _rival(
+                "pads and girder stiffness",
+                42.2,
+                apart=f'compression at "{names[0]}" in T1: 1.2 mm against 1.5 mm',
+            ),
+            _rival("pads and datum", 940.0, told=False),
+            _rival("pads only", None),
+        ],
+        "causes": [
+            CauseResult(
+                support=s.support,
+                cause="cannot be told" if i else "pad and seat",
+                off_if_seat_still_sd=None if i else 5.1,
+                off_if_pad_nominal_sd=4.4,
+            )
+            for i, s in enumerate(pads)
+        ],
+        "robust": [
+            RobustPad(support=s.support, stiffness_kN_per_m=198000.0, off_by_sd=-2.1 if i == 0 else 0.3)
+            for i, s in enumerate(pads)
+        ],
+        "proposed_removals": [
+            ProposedRemoval(
+                reading=f"{view.girder}/T1/deflection/33 m",
+                standardised_residual=4.6,
+                p_value=0.41,
+                alike=[f"{view.girder}/T1/deflection/30 m"],
+            )
+        ],
+        "effective_sample_size": 2310.0,
+        "draws_from": "weighted",
+        "left_out": [LeftOut(reading=f"{view.girder}/T2/deflection/6 m", reason="gauge knocked")],
+    }
+
+
+def _rival(
+    name: str, aicc: float | None, *, simpler: bool = False, told: bool = True, apart: str | None = None
+) -> RivalResult:
+    return RivalResult(
+        name=name,
+        aicc=aicc,
+        chi_square=31.4,
+        within_2=aicc is not None and aicc < 43.0,
+        log_likelihood=-15.7,
+        effective_unknowns=5.3,
+        told=told,
+        simpler=simpler,
+        carried=told and aicc is not None and aicc < 43.0,
+        told_apart_by=apart,
+    )
+
+
 def calibration_of(view: GirderView) -> GirderCalibration:
     return GirderCalibration(
+        **explained_of(view),
         girder=view.girder,
         pads=[
             PadResult(
@@ -299,6 +401,8 @@ def calibration_of(view: GirderView) -> GirderCalibration:
                 nominal_kN_per_m=220000.0,
                 ratio_to_nominal=s.ratio,
                 data_share=s.data_share or 0.0,
+                interval_from="profile" if s.support == view.supports[1].support else "normal",
+                stiffness_20degC_kN_per_m=215000.0 * s.ratio,
             )
             for s in view.supports
             if s.ratio is not None

@@ -123,7 +123,7 @@ def test_an_old_card_stays_until_the_new_one_is_whole(
     def broken(*_: object) -> None:
         raise OSError("full")
 
-    monkeypatch.setattr("assess.report.page.os.fsync", broken)
+    monkeypatch.setattr("assess.report.files.os.fsync", broken)
     with pytest.raises(OSError, match="full"):
         write_card(result(BOTH), path)
     assert [one.name for one in tmp_path.iterdir()] == ["card.html"]

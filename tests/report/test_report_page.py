@@ -8,8 +8,9 @@ from html.parser import HTMLParser
 
 import pytest
 
-from assess.report import cautions, render, write_report
+from assess.report import render, write_report
 from assess.report.words import FIXED_CAUTIONS
+from assess.results import grouped
 
 VIEWS = ["example", "single_span", "bare", "long_names", "nasty"]
 VOID = {"meta", "link", "br", "img", "input", "hr"}
@@ -250,4 +251,4 @@ def test_the_seats_stand_among_the_years_with_level_and_rate(page_of):
 
 def test_what_is_said_alike_of_several_girders_is_said_once():
     told = ["north: a", "south: a", "b", "north: c"]
-    assert cautions.grouped(told, ["north", "south"]) == ["north and south: a", "b", "north: c"]
+    assert grouped(told, ["north", "south"]) == ["north and south: a", "b", "north: c"]

@@ -193,6 +193,7 @@ BESIDE_CALIBRATION = {
     "effective_unknowns",
     "told",
     "simpler",
+    "carried",
     "told_apart_by",
 }
 BESIDE = {"assess": {"version", "input_digest", "seed", "draws"}, "trend": {"next_visit_reason", "seats"}}

@@ -8,7 +8,7 @@ from pathlib import Path
 import pytest
 
 from assess import workflow
-from assess.workflow import beside
+from assess.workflow import assessing, beside
 from db.store import open_record
 from tests.workflow.conftest import Said, call, new_record
 from tests.workflow.invented import write_visit
@@ -22,6 +22,7 @@ REASON = "gauge knocked by the wagon's brake rod"
 def few_draws(monkeypatch: pytest.MonkeyPatch) -> None:
     """Nothing here hangs on the draws."""
     monkeypatch.setattr(beside, "DRAWS", 200)
+    monkeypatch.setattr(assessing, "DRAWS", 200)
 
 
 def without_row(path: Path, start: str) -> Path:
@@ -71,6 +72,22 @@ def test_the_fit_is_as_if_the_reading_had_never_been_logged(tmp_path: Path, key:
     )
     shown = [reading for reading in one.readings if reading.left_out is not None]
     assert [(r.left_out, r.predicted) for r in shown] == [(REASON, None)]
+
+
+def test_a_seat_level_left_out_does_not_enter_the_assessment_either(tmp_path: Path) -> None:
+    truth = Truth(ratios=(0.9, 0.7, 1.1), settled={"pier 1": 8.0})
+    key, row = "north/permanent/settlement/pier 1", "north,permanent,settlement,pier 1,"
+    used = []
+    for name in ("whole", "struck"):
+        (tmp_path / name).mkdir()
+        path = write_survey(tmp_path / name, "2024-05-14", truth, SEATS, tests=("T1", "T2"))
+        url = new_record(tmp_path, f"{name}.sqlite")
+        workflow.log_visit(url, path if name == "whole" else without_row(path, row))
+        without = ((key, REASON),) if name == "whole" else ()
+        workflow.calibrate(url, "quillmere", options=workflow.Options(without=without))
+        girder = workflow.assess(url, "quillmere").girders[0]
+        used.append([section.calibrated.utilisation for section in girder.sections])
+    assert used[0] == pytest.approx(used[1], rel=1e-12)
 
 
 def test_the_reason_is_kept_and_shown(tmp_path: Path, record: str, bedstone: Callable[..., Said]) -> None:

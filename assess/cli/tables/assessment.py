@@ -17,6 +17,8 @@ if TYPE_CHECKING:
 
 def show_assessment(result: AssessmentResult) -> None:
     """Print the governing sections and the reactions of every girder."""
+    from assess.results import grouped
+
     if result.calibration_visit is None:
         click.echo(f"Bridge {result.bridge}: no kept calibration; the calibrated case is the nominal one")
     else:
@@ -40,7 +42,7 @@ def show_assessment(result: AssessmentResult) -> None:
             [_reaction_row(reaction) for reaction in girder.reactions],
         )
         _show_pads(girder)
-    print_cautions(result.cautions)
+    print_cautions(grouped(result.cautions, [girder.girder for girder in result.girders]))
 
 
 def _show_pads(girder: GirderAssessment) -> None:

@@ -20,6 +20,8 @@ TOLD_BY_READINGS = 0.5
 
 def show_calibration(result: CalibrationResult, *, all_readings: bool = False) -> None:
     """Print the calibration of one visit."""
+    from assess.results import grouped
+
     click.echo(f"Bridge {result.bridge}, visit {result.visit}")
     for girder in result.girders:
         print_heading(f"Girder {girder.girder}")
@@ -42,7 +44,7 @@ def show_calibration(result: CalibrationResult, *, all_readings: bool = False) -
             click.echo()
             click.echo("Readings beside the fit" if all_readings else "Suspect readings")
             print_table(_READING_HEADERS, [_reading_row(reading) for reading in shown], words=3)
-    print_cautions(result.cautions)
+    print_cautions(grouped(result.cautions, [girder.girder for girder in result.girders]))
 
 
 def show_calibrations(results: Sequence[CalibrationResult], *, all_readings: bool = False) -> None:

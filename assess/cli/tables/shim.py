@@ -15,6 +15,8 @@ if TYPE_CHECKING:
 
 def show_shims(result: ShimResult) -> None:
     """Print the packing of every girder."""
+    from assess.results import grouped
+
     told = "nominal pads" if result.calibration_visit is None else f"the visit {result.calibration_visit}"
     click.echo(
         f"Bridge {result.bridge}: packing in steps of {number(result.step_mm)} mm up to "
@@ -29,7 +31,7 @@ def show_shims(result: ShimResult) -> None:
         click.echo()
         _show_sections(girder)
         _show_stages(girder, result.jack_allowance)
-    print_cautions(result.cautions)
+    print_cautions(grouped(result.cautions, [girder.girder for girder in result.girders]))
 
 
 def _show_packing(girder: GirderShims) -> None:

@@ -15,6 +15,8 @@ if TYPE_CHECKING:
 
 def show_triggers(result: TriggersResult) -> None:
     """Print the trigger readings of every girder."""
+    from assess.results import grouped
+
     told = "nominal pads" if result.calibration_visit is None else f"the visit {result.calibration_visit}"
     click.echo(f"Bridge {result.bridge}: trigger readings, all else as of {told}")
     for girder in dict.fromkeys(one.girder for one in result.triggers):
@@ -39,7 +41,7 @@ def show_triggers(result: TriggersResult) -> None:
             [_row(one) for one in result.triggers if one.girder == girder],
             words=4,
         )
-    print_cautions(result.cautions)
+    print_cautions(grouped(result.cautions, list(dict.fromkeys(one.girder for one in result.triggers))))
 
 
 def _row(one: TriggerReading) -> list[str]:

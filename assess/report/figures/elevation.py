@@ -254,7 +254,7 @@ def _support_lines(support: SupportView) -> tuple[str, ...]:
         if not words.seat_moved(support.seat_drop_mm, support.seat_drop_sd_mm):
             lines += ("within 2 sd of 0",)
         if support.seat_drop_sd_mm is not None:
-            lines += (f"(sd {words.entered(support.seat_drop_sd_mm)} mm)",)
+            lines += (f"(sd {words.spread(support.seat_drop_sd_mm)} mm)",)
     return name + lines
 
 
