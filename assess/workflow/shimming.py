@@ -29,7 +29,6 @@ from assess.results import (
     ShimReaction,
     ShimResult,
     ShimSection,
-    grouped,
 )
 from assess.workflow import cautions, contact_cautions, shim_cautions
 from assess.workflow.building import GirderModel
@@ -121,10 +120,7 @@ def shim_study(study: Study, stock: Stock, *, progress: Progress) -> ShimResult:
         differential_mm=MM * stock.differential,
         jack_allowance=ALLOWANCE,
         girders=girders,
-        cautions=grouped(
-            [*said, *shim_cautions.STANDING, *cautions.STANDING],
-            [girder.id for girder in study.bridge.girders],
-        ),
+        cautions=list(dict.fromkeys([*said, *shim_cautions.STANDING, *cautions.STANDING])),
     )
 
 
