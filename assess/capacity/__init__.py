@@ -13,6 +13,7 @@ from assess.capacity.rows import (
     demands_at,
     evaluate,
     evaluate_draws,
+    evaluate_row,
     factored_steady,
     moment_draws,
 )
@@ -51,6 +52,7 @@ __all__ = [
     "demands_at",
     "evaluate",
     "evaluate_draws",
+    "evaluate_row",
     "factor_set",
     "factored_steady",
     "jacked",

@@ -10,7 +10,7 @@ worse of the two governs unless the owner lets relief count.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -25,6 +25,7 @@ from assess.capacity.passing import Passing
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
 
+RESPONSES_CHECKED = ("moment", "shear")
 _SAMPLE = 32  # draws that choose the stations and train positions kept for all draws
 _NO_LIVE = 1e-9  # of the resistance: a live effect below it is rounding, and no load to rate
 
@@ -136,14 +137,15 @@ def demands_at(
     compliance: Floats,
     settlement: Floats,
     live: Mapping[str, tuple[Floats, Floats]] | None = None,
+    names: Sequence[str] = RESPONSES_CHECKED,
 ) -> dict[tuple[str, float], Demand]:
     """Factored moments and shears (p,) in both senses, by (response, sign), on one set of supports.
 
-    `live` gives live maxima and minima (p,) that are known already, by response.
+    `live` gives live maxima and minima (p,) that are known already, by response; `names` are the responses wanted.
     """
     demands: dict[tuple[str, float], Demand] = {}
     passing = effects.passing(factors, compliance[None], settlement[None])
-    for name in ("moment", "shear"):
+    for name in names:
         steady = effects.steady(name, compliance, settlement)
         if live is None:
             found = passing.envelope(name)
@@ -163,6 +165,15 @@ def evaluate(effects: Effects, factors: Factors, compliance: Floats, settlement:
         own = [demands[response_of(check.effect), sign] for sign in senses(check.effect)]
         rows.append(Row(check=check, case=_govern(effects.plan, check, own, factors)))
     return rows
+
+
+def evaluate_row(effects: Effects, factors: Factors, compliance: Floats, settlement: Floats, row: int) -> Row:
+    """Evaluate one row of a plan, by its index, on supports of compliance (n,) with seat drops (n,)."""
+    check = effects.plan.checks[row]
+    name = response_of(check.effect)
+    demands = demands_at(effects, factors, compliance, settlement, names=(name,))
+    own = [demands[name, sign] for sign in senses(check.effect)]
+    return Row(check=check, case=_govern(effects.plan, check, own, factors))
 
 
 def _uses(plan: CheckPlan, check: Check, demands: list[Demand]) -> Floats:

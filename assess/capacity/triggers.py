@@ -18,7 +18,7 @@ from scipy.optimize import brentq
 
 from assess.capacity.effects import Effects
 from assess.capacity.factors import Factors
-from assess.capacity.rows import evaluate, evaluate_draws
+from assess.capacity.rows import evaluate, evaluate_draws, evaluate_row
 
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
@@ -138,7 +138,7 @@ class Scan:
 
     def _used(self, driver: Driver, row: int, value: float) -> float:
         compliance, drops = driver.supports(np.array([value]))
-        return evaluate(self.effects, self.factors, compliance[0], drops[0])[row].case.utilisation
+        return evaluate_row(self.effects, self.factors, compliance[0], drops[0], row).case.utilisation
 
 
 def scan(effects: Effects, factors: Factors, drivers: Sequence[Driver], today: tuple[Floats, Floats]) -> Scan:

@@ -25,7 +25,7 @@ MARGIN = 26.0
 TEXT, HEAD, TITLE = 9.0, 11.0, 14.0  # pt; 9 is the least that is read on site
 LINE = 11.5
 _SHARES = (0.125, 0.19, 0.055, 0.14, 0.14, 0.14, 0.14, 0.07)  # of the width: the columns
-_BLANK = 0.32 * TEXT  # of the font
+_BLANK = 0.45 * TEXT  # that of the font, and the edges of the letters beside it
 _FONT: dict[Any, Any] = {"font.family": ["DejaVu Sans"], "pdf.fonttype": 42, "text.parse_math": False}
 
 
