@@ -10,6 +10,7 @@ from __future__ import annotations
 import datetime as dt
 from dataclasses import dataclass, field
 
+from db.intervention_doc import InterventionDoc
 from db.pad_doc import PadDoc
 from db.prior_doc import GaugeDoc, PriorDoc
 from db.raw_doc import BenchmarkDoc, RawDoc
@@ -280,6 +281,7 @@ class BridgeDoc:
     temperature: tuple[TemperatureDoc, ...] = ()
     factors: FactorsDoc
     prior: PriorDoc = field(default_factory=PriorDoc)
+    interventions: tuple[InterventionDoc, ...] = ()  # by date
     text: str = field(repr=False)  # the file as read
     digest: str  # sha256 of the text
 

@@ -49,7 +49,7 @@ from assess.results.shimming import (
     ShimResult,
     ShimSection,
 )
-from assess.results.trend import PadTrend, SeatTrend, SpanTrend, TrendResult
+from assess.results.trend import Fan, LossTrend, PadTrend, SeatTrend, Share, SpanTrend, TrendResult
 from assess.results.triggers import PastSection, TriggerReading, TriggersResult
 from assess.results.view import (
     ElevationState,
@@ -72,6 +72,7 @@ __all__ = [
     "CompensatingError",
     "CorrelationResult",
     "ElevationState",
+    "Fan",
     "GirderAssessment",
     "GirderCalibration",
     "GirderPlan",
@@ -83,6 +84,7 @@ __all__ = [
     "JackingStage",
     "LeftOut",
     "LoadStand",
+    "LossTrend",
     "MeasuredPoint",
     "MomentLines",
     "PadCheck",
@@ -107,6 +109,7 @@ __all__ = [
     "SeatTrend",
     "SectionResult",
     "SettlementResult",
+    "Share",
     "ShimHeight",
     "ShimReaction",
     "ShimResult",

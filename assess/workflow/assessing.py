@@ -107,6 +107,7 @@ def assess_study(
     said += _of_datum(study, visit)
     said += combination_cautions.of_bridge(study.bridge)
     digests = []
+    creeps: list[bool] = []
     for i, girder in enumerate(study.bridge.girders):
         progress(f"assessing {girder.id}", i, len(study.bridge.girders))
         model = study.model(girder.id, visit)
@@ -119,6 +120,7 @@ def assess_study(
         girders.append(replace(shown, pads=pads))
         said += contact_cautions.tipping(girder.id, model.tips_off)
         said += about
+        creeps.append(supports.log_sustained != 0.0)
         said += pad_cautions.of_prior(model) + about_pads
         if model.permanent.given:
             said += contact_cautions.of_reactions(girder.id, shown.reactions)
@@ -150,7 +152,7 @@ def assess_study(
             dict.fromkeys(
                 [
                     *sorted(said, key=pad_cautions.is_assumption),
-                    cautions.PERMANENT_STIFFNESS,
+                    *cautions.permanent_stiffness(creeps),
                     *cautions.STANDING,
                 ]
             )
