@@ -215,6 +215,7 @@ class LiveDoc:
     pitch: float = 0.0  # m, leading axle to leading axle; 0 only if count is 1
     dynamic: float | None = 0.0  # dynamic allowance, added to 1; None (models only): by the model's own rule
     model: str | None = None
+    factor: float = 1.0  # on all its loads, where more or less of it is supposed
     track: str | None = (
         None  # "careful" | "standard": maintenance of the track, for models whose rule asks for it
     )

@@ -13,7 +13,19 @@ import click
 from assess import __version__
 from assess.cli.failures import Failure, read_failure
 
-COMMANDS = ("init", "bridge", "visit", "calibrate", "assess", "trend", "plan", "report", "demo")
+COMMANDS = (
+    "init",
+    "bridge",
+    "visit",
+    "calibrate",
+    "assess",
+    "trend",
+    "triggers",
+    "shim",
+    "plan",
+    "report",
+    "demo",
+)
 
 
 class LazyGroup(click.Group):

@@ -20,14 +20,18 @@ def render(view: ReportView) -> str:
     """
     from assess.report.content import build  # draws with matplotlib: loaded only when a report is made
 
-    pages = Environment(
+    return pages().get_template("report.html.j2").render(build(view))
+
+
+def pages() -> Environment:
+    """Return the templates."""
+    return Environment(
         loader=PackageLoader("assess.report", "templates"),
         autoescape=True,
         undefined=StrictUndefined,
         trim_blocks=True,
         lstrip_blocks=True,
     )
-    return pages.get_template("report.html.j2").render(build(view))
 
 
 def write_report(view: ReportView, path: Path) -> None:

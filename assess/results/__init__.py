@@ -40,7 +40,17 @@ from assess.results.plan import (
     PlanSupport,
 )
 from assess.results.said import grouped
+from assess.results.shimming import (
+    GirderShims,
+    Jack,
+    JackingStage,
+    ShimHeight,
+    ShimReaction,
+    ShimResult,
+    ShimSection,
+)
 from assess.results.trend import Fan, LossTrend, PadTrend, SeatTrend, Share, SpanTrend, TrendResult
+from assess.results.triggers import PastSection, TriggerReading, TriggersResult
 from assess.results.view import (
     ElevationState,
     GirderView,
@@ -66,9 +76,12 @@ __all__ = [
     "GirderAssessment",
     "GirderCalibration",
     "GirderPlan",
+    "GirderShims",
     "GirderView",
     "GoverningSection",
     "HalfPlan",
+    "Jack",
+    "JackingStage",
     "LeftOut",
     "LoadStand",
     "LossTrend",
@@ -80,6 +93,7 @@ __all__ = [
     "PadResult",
     "PadShift",
     "PadTrend",
+    "PastSection",
     "PlanResult",
     "PlanSupport",
     "PlannedPad",
@@ -96,9 +110,15 @@ __all__ = [
     "SectionResult",
     "SettlementResult",
     "Share",
+    "ShimHeight",
+    "ShimReaction",
+    "ShimResult",
+    "ShimSection",
     "SpanTrend",
     "SupportView",
     "TrendResult",
+    "TriggerReading",
+    "TriggersResult",
     "UnknownResult",
     "from_plain",
     "grouped",

@@ -12,15 +12,18 @@ from assess.workflow.records import (
     list_visits,
     log_visit,
 )
+from assess.workflow.shimming import Stock, shim
 from assess.workflow.showing import bridge_view, show_bridge
 from assess.workflow.study import Progress
 from assess.workflow.trending import trend
+from assess.workflow.triggers import triggers
 from assess.workflow.viewing import report_view
 from assess.workflow.visit_draft import draft_visit
 
 __all__ = [
     "Options",
     "Progress",
+    "Stock",
     "add_bridge",
     "assess",
     "bridge_view",
@@ -33,6 +36,8 @@ __all__ = [
     "log_visit",
     "plan",
     "report_view",
+    "shim",
     "show_bridge",
     "trend",
+    "triggers",
 ]

@@ -29,6 +29,7 @@ from assess.workflow import (
     hinge_cautions,
     pad_cautions,
     section_cautions,
+    supposing_cautions,
 )
 from assess.workflow.building import GirderModel
 from assess.workflow.combination import factors_of
@@ -38,6 +39,7 @@ from assess.workflow.pad_checks import check_pads
 from assess.workflow.sections import last_loss
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, telling_readings
 from assess.workflow.supports import Supports, kept_fits, supports_of
+from assess.workflow.suppose import Supposition, read_suppositions, supposed_model, supposed_supports
 from db.records import KeptResult
 from db.store import open_record
 
@@ -45,14 +47,25 @@ Floats = NDArray[np.float64]
 
 
 def assess(
-    url: str, bridge: str, *, visit: dt.date | None = None, progress: Progress | None = None
+    url: str,
+    bridge: str,
+    *,
+    visit: dt.date | None = None,
+    suppose: Sequence[str] = (),
+    progress: Progress | None = None,
 ) -> AssessmentResult:
-    """Assess a bridge with its latest kept calibration (up to a visit, if one is named), and keep the result."""
+    """Assess a bridge with its latest kept calibration (up to a visit, if one is named), and keep the result.
+
+    `suppose` are suppositions (`suppose.py`) shown beside it; with any, nothing is kept.
+    """
     with open_record(url) as record:
         study = Study.fetch(record, bridge)
         if visit is not None:
             study.visit(visit)
-        result = assess_study(study, visit=visit, progress=progress or quiet)
+        supposed = read_suppositions(study.bridge, suppose)
+        result = assess_study(study, visit=visit, supposed=supposed, progress=progress or quiet)
+        if supposed:
+            return result
         record.keep(
             KeptResult(
                 kind="assessment",
@@ -75,7 +88,13 @@ def _plain(result: AssessmentResult) -> dict[str, object]:
     return plain
 
 
-def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> AssessmentResult:
+def assess_study(
+    study: Study,
+    *,
+    visit: dt.date | None,
+    progress: Progress,
+    supposed: Sequence[Supposition] = (),
+) -> AssessmentResult:
     """Assess a fetched bridge."""
     fits = kept_fits(study, visit)
     latest = max(fits) if fits else None
@@ -95,6 +114,8 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
         supports, about = supports_of(study, model, fits, visit)
         with tipping_named(model):
             shown = _assess_girder(model, supports)
+            if supposed:
+                shown = _beside_supposed(shown, model, supports, supposed)
         pads, about_pads = check_pads(model, supports.log_stiffness, shown.reactions)
         girders.append(replace(shown, pads=pads))
         said += contact_cautions.tipping(girder.id, model.tips_off)
@@ -107,12 +128,14 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
             said += [contact_cautions.unknown(girder.id), *cautions.uplift(girder.id, shown.reactions)]
         said += cautions.of_sections(girder.id, shown.sections)
         said += cautions.of_rivals(girder.id, shown)
+        said += supposing_cautions.of_reactions(girder.id, shown.reactions)
         digests += [
             f"{s} {one.value!r} {one.sd!r} {one.date}" for s, one in sorted(supports.settlements.items())
         ]
     said += [pad_cautions.FROM_MEMORY] if any(girder.pads for girder in girders) else []
     said += hinge_cautions.of_bridge(study.bridge)
     said += section_cautions.of_bridge(study.bridge, visit)
+    said += supposing_cautions.of_suppositions(supposed)
     worn = last_loss(study.bridge, visit)
     digests += [] if worn is None else [f"losses up to {worn}"]
     progress("assessed", len(study.bridge.girders), len(study.bridge.girders))
@@ -121,7 +144,7 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
         bridge=study.bridge.id,
         calibration_visit=latest,
         version=VERSION,
-        input_digest=study.digest(*sources, *digests),
+        input_digest=study.digest(*sources, *digests, *(one.text for one in supposed)),
         seed=SEED,
         draws=DRAWS,
         girders=girders,
@@ -134,6 +157,7 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
                 ]
             )
         ),
+        supposed=[one.text for one in supposed],
     )
 
 
@@ -182,6 +206,32 @@ def _assess_girder(model: GirderModel, supports: Supports) -> GirderAssessment:
     reactions = _reactions(model, calibrated, drops)
     shown = [CarriedRival(name=one.name, told_apart_by=one.told_apart_by) for one in carried]
     return GirderAssessment(girder=model.doc.id, sections=sections, reactions=reactions, rivals=shown)
+
+
+def _beside_supposed(
+    shown: GirderAssessment, model: GirderModel, supports: Supports, supposed: Sequence[Supposition]
+) -> GirderAssessment:
+    """The same assessment with the supposed case beside the calibrated one."""
+    other = supposed_model(model, supposed)
+    with tipping_named(other, "as supposed"):
+        acting = supposed_supports(other, supports, supposed).acting(other)
+        rows = evaluate(other.effects, other.factors, *acting)
+        reactions = _reactions(other, *acting)
+    sections = [
+        replace(section, supposed=CaseResult(**_case(row.case)))
+        for section, row in zip(shown.sections, rows, strict=True)
+    ]
+    beside = [
+        replace(
+            today,
+            supposed_permanent_kN=then.calibrated_permanent_kN,
+            supposed_live_max_kN=then.calibrated_live_max_kN,
+            supposed_live_min_kN=then.calibrated_live_min_kN,
+            supposed_lifts_under=then.calibrated_lifts_under,
+        )
+        for today, then in zip(shown.reactions, reactions, strict=True)
+    ]
+    return replace(shown, sections=sections, reactions=beside)
 
 
 def _worst(names: Sequence[str], rows: Sequence[Row]) -> tuple[str, float] | None:
