@@ -8,6 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.calibrate import Cause, Layout, Rival, causes, rivals
+from assess.calibrate.unknowns import NUISANCE
 from assess.results import CauseResult, RivalResult
 from assess.workflow.deciding import deciding_reading
 from assess.workflow.fitting import Fitting
@@ -82,7 +83,9 @@ def _sets(whole: Setup, setup: Setup) -> tuple[dict[str, list[int]], str]:
     sets["pads and girder stiffness"] = [*base, *layout.places("girder")]
     if "datum" in layout:
         sets["pads and datum"] = [*base, *layout.places("datum")]
-    asked = {entry_of(whole.layout, entry.block, entry.index) for entry in setup.layout.entries}
+    # nuisances are in every rival: they tell none from another
+    entries = [entry for entry in setup.layout.entries if entry.block not in NUISANCE]
+    asked = {entry_of(whole.layout, entry.block, entry.index) for entry in entries}
     own = sorted(j for j in asked if j is not None and j >= whole.model.pads.size)
     for name, places in sets.items():
         if sorted(places) == own:
