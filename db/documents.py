@@ -11,6 +11,7 @@ import datetime as dt
 from dataclasses import dataclass, field
 
 from db.action_doc import OWNER_ROLE, ActionsDoc
+from db.intervention_doc import InterventionDoc
 from db.pad_doc import PadDoc
 from db.prior_doc import GaugeDoc, PriorDoc
 from db.raw_doc import BenchmarkDoc, RawDoc
@@ -215,6 +216,7 @@ class LiveDoc:
     pitch: float = 0.0  # m, leading axle to leading axle; 0 only if count is 1
     dynamic: float | None = 0.0  # dynamic allowance, added to 1; None (models only): by the model's own rule
     model: str | None = None
+    factor: float = 1.0  # on all its loads, where more or less of it is supposed
     track: str | None = (
         None  # "careful" | "standard": maintenance of the track, for models whose rule asks for it
     )
@@ -282,6 +284,7 @@ class BridgeDoc:
     prior: PriorDoc = field(default_factory=PriorDoc)
     owner_role: str = OWNER_ROLE  # who decides on an action
     actions: ActionsDoc = field(default_factory=ActionsDoc)
+    interventions: tuple[InterventionDoc, ...] = ()  # by date
     text: str = field(repr=False)  # the file as read
     digest: str  # sha256 of the text
 

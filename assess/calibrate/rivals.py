@@ -9,7 +9,7 @@ A rival whose extra unknown nothing tells then ties with the plain one, which is
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -41,6 +41,8 @@ class Rival:
     aicc : None where there are too few readings to rank it
     share : of its extra unknowns' loosened prior variance, the greatest that the readings take away; 1 without any
     within_2 : its AICc is within 2 of the best
+    close : it is, or its AIC is: the readings' standard deviations are known, so that where there are few of them AICc
+        holds too much against a second explanation
     """
 
     name: str
@@ -52,6 +54,12 @@ class Rival:
     aicc: float | None
     share: float
     within_2: bool
+    close: bool
+
+    @property
+    def aic(self) -> float:
+        """AIC (Akaike 1974), chi-square + 2 p."""
+        return self.chi_square + 2.0 * self.told
 
 
 def loosened(prior: Prior, model: ObservationModel) -> Prior:
@@ -107,6 +115,7 @@ def rivals(
                 aicc=aicc(one.chi_square, one.effective_unknowns, m),
                 share=_share(one, free, places),
                 within_2=False,
+                close=False,
             )
         )
     return _ranked(found)
@@ -118,9 +127,10 @@ def _share(one: Fit, free: Ints, places: Sequence[int]) -> float:
 
 
 def _ranked(found: list[Rival]) -> list[Rival]:
-    ranks = [one.aicc for one in found if one.aicc is not None]
-    least = min(ranks, default=0.0)
-    return [
-        Rival(**{**vars(one), "within_2": one.aicc is not None and one.aicc - least <= CLOSE})
-        for one in found
-    ]
+    least = min((one.aicc for one in found if one.aicc is not None), default=0.0)
+    least_aic = min(one.aic for one in found)
+    ranked = []
+    for one in found:
+        within = one.aicc is not None and one.aicc - least <= CLOSE
+        ranked.append(replace(one, within_2=within, close=within or one.aic - least_aic <= CLOSE))
+    return ranked

@@ -83,6 +83,12 @@ class Effects:
         thermal = [state.reaction for state in found.thermal]
         return _steady(self._permanent.kinds, list(found.dead_reactions), found.settled_reaction, thermal)
 
+    def by_drop(self, name: str, compliance: Floats) -> Floats:
+        """Moments or shears (n, p), or reactions (n, n), per unit drop of each seat, on supports (n,) that hold."""
+        n = self.condensed.n_supports
+        state = self.condensed.solve(np.tile(compliance, (n, 1)), np.zeros(n), np.eye(n))
+        return state.reaction if name == REACTION else state.displacement @ self._places[name].rows.T
+
     def lifted(self, compliance: Floats, settlement: Floats) -> Bools:
         """Supports (..., n) that the girder is off under permanent loads and seat drops alone."""
         return self._stands(compliance, settlement).lifted

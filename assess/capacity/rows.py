@@ -10,7 +10,7 @@ worse of the two governs unless the owner lets relief count.
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 import numpy as np
@@ -25,6 +25,7 @@ from assess.capacity.passing import Passing
 Floats = NDArray[np.float64]
 Ints = NDArray[np.intp]
 
+RESPONSES_CHECKED = ("moment", "shear")
 _SAMPLE = 32  # draws that choose the stations and train positions kept for all draws
 _NO_LIVE = 1e-9  # of the resistance: a live effect below it is rounding, and no load to rate
 
@@ -120,7 +121,8 @@ def factored_steady(factors: Factors, steady: Steady, sign: float) -> tuple[Floa
     return held, np.where(adverse, 0.0, relieving * steady.settled), temperature
 
 
-def _senses(effect: str) -> tuple[float, ...]:
+def senses(effect: str) -> tuple[float, ...]:
+    """Signs in which an effect is checked."""
     return {"sagging": (1.0,), "hogging": (-1.0,), "shear": (1.0, -1.0)}[effect]
 
 
@@ -135,14 +137,15 @@ def demands_at(
     compliance: Floats,
     settlement: Floats,
     live: Mapping[str, tuple[Floats, Floats]] | None = None,
+    names: Sequence[str] = RESPONSES_CHECKED,
 ) -> dict[tuple[str, float], Demand]:
     """Factored moments and shears (p,) in both senses, by (response, sign), on one set of supports.
 
-    `live` gives live maxima and minima (p,) that are known already, by response.
+    `live` gives live maxima and minima (p,) that are known already, by response; `names` are the responses wanted.
     """
     demands: dict[tuple[str, float], Demand] = {}
     passing = effects.passing(factors, compliance[None], settlement[None])
-    for name in ("moment", "shear"):
+    for name in names:
         steady = effects.steady(name, compliance, settlement)
         if live is None:
             found = passing.envelope(name)
@@ -159,9 +162,18 @@ def evaluate(effects: Effects, factors: Factors, compliance: Floats, settlement:
     demands = demands_at(effects, factors, compliance, settlement)
     rows = []
     for check in effects.plan.checks:
-        senses = [demands[response_of(check.effect), sign] for sign in _senses(check.effect)]
-        rows.append(Row(check=check, case=_govern(effects.plan, check, senses, factors)))
+        own = [demands[response_of(check.effect), sign] for sign in senses(check.effect)]
+        rows.append(Row(check=check, case=_govern(effects.plan, check, own, factors)))
     return rows
+
+
+def evaluate_row(effects: Effects, factors: Factors, compliance: Floats, settlement: Floats, row: int) -> Row:
+    """Evaluate one row of a plan, by its index, on supports of compliance (n,) with seat drops (n,)."""
+    check = effects.plan.checks[row]
+    name = response_of(check.effect)
+    demands = demands_at(effects, factors, compliance, settlement, names=(name,))
+    own = [demands[name, sign] for sign in senses(check.effect)]
+    return Row(check=check, case=_govern(effects.plan, check, own, factors))
 
 
 def _uses(plan: CheckPlan, check: Check, demands: list[Demand]) -> Floats:
@@ -267,7 +279,7 @@ def evaluate_draws(
             factored = demand(factors, steady, live, sign).factored
             for i in rows:
                 check = effects.plan.checks[i]
-                if sign not in _senses(check.effect):
+                if sign not in senses(check.effect):
                     continue
                 column = np.searchsorted(stations, kept[i])
                 resistance = effects.plan.resistance(check.effect)[kept[i]]
@@ -301,7 +313,7 @@ def _governing_stations(
         live = {name: (high[s], low[s]) for name, (high, low) in sample.items()}
         demands = demands_at(effects, factors, compliance, settlement, live)
         for i, check in enumerate(effects.plan.checks):
-            own = [demands[response_of(check.effect), sign] for sign in _senses(check.effect)]
+            own = [demands[response_of(check.effect), sign] for sign in senses(check.effect)]
             # each sense on its own: the one that seldom governs has a station of its own
             best = _uses(effects.plan, check, own).argmax(axis=-1)
             found[i].update(int(station) for station in check.stations[best])

@@ -21,6 +21,8 @@ COMMANDS = (
     "calibrate",
     "assess",
     "trend",
+    "triggers",
+    "shim",
     "plan",
     "report",
     "action",

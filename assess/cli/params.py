@@ -30,4 +30,7 @@ json_option = click.option("--json", "as_json", is_flag=True, help="Print one JS
 visit_option = click.option(
     "--visit", metavar="DATE", callback=read_date, help="The visit, as YYYY-MM-DD; the latest if left out."
 )
+today_option = click.option(
+    "--today", metavar="DATE", callback=read_date, help="See the record as on this day, as YYYY-MM-DD."
+)
 file_argument = click.argument("file", metavar="FILE", type=click.Path(path_type=Path))

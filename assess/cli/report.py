@@ -2,17 +2,19 @@
 
 from __future__ import annotations
 
+import datetime as dt
 from pathlib import Path
 
 import click
 
 from assess.cli.failures import cannot_write, wrong
-from assess.cli.params import bridge_argument
+from assess.cli.params import bridge_argument, today_option
 from assess.cli.progress import progress_on_stderr
 
 
 @click.command("report", short_help="Write the report, one self-contained HTML file.")
 @bridge_argument
+@today_option
 @click.option(
     "-o",
     "--output",
@@ -22,7 +24,7 @@ from assess.cli.progress import progress_on_stderr
     help="The page to write.",
 )
 @click.pass_obj
-def command(record: str, bridge: str, output: Path) -> None:
+def command(record: str, bridge: str, today: dt.date | None, output: Path) -> None:
     """Write the report: one HTML file that needs no network and can be printed.
 
     \b
@@ -35,7 +37,7 @@ def command(record: str, bridge: str, output: Path) -> None:
     from assess.report import write_report
 
     with progress_on_stderr() as progress:
-        view = workflow.report_view(record, bridge, progress=progress)
+        view = workflow.report_view(record, bridge, progress=progress, today=today)
     try:
         write_report(view, output)
     except OSError as error:

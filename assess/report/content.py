@@ -6,10 +6,10 @@ from dataclasses import dataclass, field
 
 from markupsafe import Markup
 
-from assess.report import cautions, pads, sections, tables, words
+from assess.report import cautions, forecasts, pads, sections, tables, words
 from assess.report.actions import action_lines
 from assess.report.explained import Explained, explained
-from assess.report.figures import elevation, history, moments, plane, residuals, utilisation
+from assess.report.figures import elevation, fan, history, moments, plane, residuals, utilisation
 from assess.results import GirderAssessment, GirderCalibration, GirderView, ReportView
 
 
@@ -49,6 +49,8 @@ class GirderPage:
     seat_trends: list[list[str]] = field(default_factory=list)
     span_trends: list[list[str]] = field(default_factory=list)
     span_trends_caption: str = ""
+    fans: list[Figure] = field(default_factory=list)
+    shares: str = ""
     fit: str = ""
     explained: Explained = field(default_factory=Explained)
     planes: list[Figure] = field(default_factory=list)
@@ -81,6 +83,7 @@ def build(view: ReportView) -> dict[str, object]:
             for day, party, warmth, count in view.visits
         ],
         "has_trend": view.trend is not None,
+        "losses": [] if view.trend is None else forecasts.loss_trend_rows(view.trend),
         "cautions": cautions.of_page(view),
         "fixed_cautions": list(words.FIXED_CAUTIONS),
         "provenance": _provenance(view),
@@ -152,6 +155,8 @@ def _girder(view: ReportView, name: str, key: str) -> GirderPage:
         seat_trends=[] if view.trend is None else tables.seat_trend_rows(view.trend, name),
         span_trends=[] if view.trend is None else tables.span_trend_rows(view.trend, name, stands_on),
         span_trends_caption=_span_trends_caption(name, drawn),
+        fans=_fans(view, name, key),
+        shares="" if view.trend is None else forecasts.shares_sentence(view.trend, name),
         fit="" if fit is None else tables.fit_sentence(fit),
         explained=Explained() if fit is None else explained(fit, names),
         planes=[] if fit is None else _planes(fit, key),
@@ -228,6 +233,17 @@ def _histories(view: ReportView, girder: GirderView, key: str) -> list[Figure]:
             caption=f"Pad at {h.support}",
         )
         for i, h in enumerate(girder.histories)
+    ]
+
+
+def _fans(view: ReportView, name: str, key: str) -> list[Figure]:
+    rows = [] if view.trend is None else [row for row in view.trend.spans if row.girder == name]
+    return [
+        Figure(
+            svg=Markup(fan.plot(row, key=f"{key}-fan{i}")),
+            caption=words.section(row.effect, row.span, row.support),
+        )
+        for i, row in enumerate(fan.governing(rows))
     ]
 
 

@@ -173,16 +173,18 @@ def standing(fit: GirderCalibration, one: RivalResult, best: float | None) -> st
         said.append("not told by the readings")
     elif one.within_2:
         said.append("within 2 of the best")
+    elif one.carried:
+        said.append("within 2 by AIC")
     elif one.aicc is not None and best is not None:
         said.append(f"{words.number(one.aicc - best)} above the best")
-    if one.simpler and one.within_2:
+    if one.simpler and one.carried:
         said.append("simpler")
     return ", ".join(said) or words.not_determined("too few readings to rank it")
 
 
 def deciding(fit: GirderCalibration) -> list[str]:
     """Name the reading that would tell each close explanation from the calibration."""
-    close = [one for one in ranked(fit.rivals) if one.within_2 and one.told and one.told_apart_by]
+    close = [one for one in ranked(fit.rivals) if one.carried and one.told_apart_by]
     return [
         f"This reading would decide between the calibration and the explanation by {one.name}: {one.told_apart_by} "
         "(the first as calibrated)."

@@ -276,6 +276,8 @@ def pad_trend_rows(trend: TrendResult, girder: str) -> list[list[str]]:
         step = "no step told" if p.visits >= STEP_FROM else "cannot be told: fewer than four visits"
         if p.step_between is not None:
             step = f"between {words.date(p.step_between[0])} and {words.date(p.step_between[1])}"
+            if p.step_percent is not None:
+                step += ": " + words.interval(p.step_percent, p.step_low95, p.step_high95, "%")
         rate = p.change_per_year_percent if p.visits >= 2 else None
         change = words.interval(rate, p.low95, p.high95, "% a year", why)
         rows.append([p.support, str(p.visits), words.law(p.law, p.visits), change, step])
@@ -354,7 +356,7 @@ def fit_sentence(calibration: GirderCalibration) -> str:
     left_out = f" and {out} left out" if out else ""
     told = (
         f"{fitted} readings{left_out}, chi-square {words.number(calibration.chi_square)} on "
-        f"{freedom} degrees of freedom, p value "
+        f"{freedom} degree{'' if freedom == 1 else 's'} of freedom, p value "
         + words.quantity(calibration.p_value, "", "no degrees of freedom are left")
         + ". "
     )

@@ -42,7 +42,17 @@ from assess.results.plan import (
     PlanSupport,
 )
 from assess.results.said import grouped
-from assess.results.trend import PadTrend, SeatTrend, SpanTrend, TrendResult
+from assess.results.shimming import (
+    GirderShims,
+    Jack,
+    JackingStage,
+    ShimHeight,
+    ShimReaction,
+    ShimResult,
+    ShimSection,
+)
+from assess.results.trend import Fan, LossTrend, PadTrend, SeatTrend, Share, SpanTrend, TrendResult
+from assess.results.triggers import PastSection, TriggerReading, TriggersResult
 from assess.results.view import (
     ElevationState,
     GirderView,
@@ -67,14 +77,19 @@ __all__ = [
     "CompensatingError",
     "CorrelationResult",
     "ElevationState",
+    "Fan",
     "GirderAssessment",
     "GirderCalibration",
     "GirderPlan",
+    "GirderShims",
     "GirderView",
     "GoverningSection",
     "HalfPlan",
+    "Jack",
+    "JackingStage",
     "LeftOut",
     "LoadStand",
+    "LossTrend",
     "MeasuredPoint",
     "MomentLines",
     "NetworkResult",
@@ -85,6 +100,7 @@ __all__ = [
     "PadResult",
     "PadShift",
     "PadTrend",
+    "PastSection",
     "PlanResult",
     "PlanSupport",
     "PlannedPad",
@@ -100,9 +116,16 @@ __all__ = [
     "SeatTrend",
     "SectionResult",
     "SettlementResult",
+    "Share",
+    "ShimHeight",
+    "ShimReaction",
+    "ShimResult",
+    "ShimSection",
     "SpanTrend",
     "SupportView",
     "TrendResult",
+    "TriggerReading",
+    "TriggersResult",
     "UnknownResult",
     "from_plain",
     "grouped",

@@ -60,6 +60,7 @@ class SectionResult:
     unyielding: CaseResult
     nominal: CaseResult
     calibrated: CalibratedCase
+    supposed: CaseResult | None = None  # as calibrated but for what is supposed; None where nothing is
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -76,6 +77,10 @@ class ReactionResult:
     calibrated_lifts_under: str | None = (
         None  # "permanent" | "live" | "factored"; None: it stays down or is held down
     )
+    supposed_permanent_kN: float | None = None
+    supposed_live_max_kN: float | None = None
+    supposed_live_min_kN: float | None = None
+    supposed_lifts_under: str | None = None
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -155,3 +160,4 @@ class AssessmentResult:
     actions: list[ActionResult] = field(default_factory=list)  # the open ones of the bridge
     girders: list[GirderAssessment]
     cautions: list[str]
+    supposed: list[str] = field(default_factory=list)  # what is supposed, as written

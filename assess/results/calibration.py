@@ -74,7 +74,8 @@ class CorrelationResult:
 class RivalResult:
     """Another explanation of the same readings.
 
-    `told` says whether the readings tell its extra unknown at all; `simpler` that it asks for less than the
+    `carried` says whether the assessment carries it along: its AICc or its AIC is within 2 of the best and its unknown
+    is told. `told` says whether the readings tell its extra unknown at all; `simpler` that it asks for less than the
     calibration and for nothing else; `told_apart_by` names the reading that would decide between it and the
     calibration, None where none of the usual kinds would.
     """
@@ -87,6 +88,7 @@ class RivalResult:
     effective_unknowns: float
     told: bool
     simpler: bool
+    carried: bool
     told_apart_by: str | None
 
 

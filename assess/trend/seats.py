@@ -1,19 +1,19 @@
-"""Seats over the years: a line through the measured settlements of one support.
+"""Seats over the years: the law of the measured settlements of one support.
 
-Weighted least squares of settlement on time with the readings' own standard deviations. As for pads (`laws.py`)
-the seat moves where its rate differs from 0 at 95 %, the Akaike weight of moving against standing still is kept for
-forecasts, and a seat whose levels scatter more than their standard deviations allow has its rate widened.
+Weighted least squares of settlement on time with the readings' own standard deviations. As for pads (`laws.py`) the
+law is steady, drift, a step between two visits or a walk, told by the same test at 5 % and the same Akaike weights,
+and a seat whose levels scatter more than their standard deviations allow has its rate widened.
 """
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy import special
 
-from assess.trend.laws import Z95, akaike_weight
+from assess.trend.detect import detect
+from assess.trend.laws import Z95
 
 Floats = NDArray[np.float64]
 
@@ -24,20 +24,39 @@ class SeatLaw:
 
     Attributes
     ----------
-    rate, rate_sd : m per year, downward positive; NaN from one visit
-    weight : Akaike weight of moving against standing still, 0 to 1
-    moving : True where the rate differs from 0 at 95 %
+    law : "steady" | "drift" | "step" | "wander"
+    rate, rate_sd : m per year, downward positive, over all visits; NaN from one visit
+    weights : Akaike weight of each law
     last, last_sd : m, the last measured settlement
     covariance : of the last settlement and the rate, m2 per year
+    step, step_sd : m, of the likeliest step; NaN where none was tried
+    step_between : places among the visits between which it lies
+    span : years from the first to the last visit
+    walk : variance a year of the likeliest walk, m2
     """
 
+    law: str
     rate: float
     rate_sd: float
-    weight: float
-    moving: bool
     last: float
     last_sd: float
     covariance: float
+    weights: dict[str, float] = field(default_factory=lambda: {"steady": 1.0})
+    step: float = np.nan
+    step_sd: float = np.nan
+    step_between: tuple[int, int] | None = None
+    span: float = 0.0
+    walk: float = 0.0
+
+    @property
+    def moving(self) -> bool:
+        """Whether the levels tell of any change."""
+        return self.law != "steady"
+
+    @property
+    def weight(self) -> float:
+        """Akaike weight of the laws that go on moving after the last visit."""
+        return sum(w for law, w in self.weights.items() if law not in ("steady", "step"))
 
     @property
     def interval(self) -> tuple[float, float]:
@@ -45,19 +64,26 @@ class SeatLaw:
         return self.rate - Z95 * self.rate_sd, self.rate + Z95 * self.rate_sd
 
     def draws(self, years: Floats, count: int, rng: np.random.Generator) -> Floats:
-        """Draws of the settlement (count, times), m, at years (times,) from the last visit; it stands or moves on."""
+        """Draws of the settlement (count, times), m, at years (times,) from the last visit, by the laws' weights."""
         last = self.last + self.last_sd * rng.standard_normal(count)
         if not np.isfinite(self.rate):
             return np.repeat(last[:, None], years.size, axis=1)
         slope = self.covariance / self.last_sd**2
         spare = np.sqrt(max(0.0, self.rate_sd**2 - self.covariance**2 / self.last_sd**2))
         rate = self.rate + slope * (last - self.last) + spare * rng.standard_normal(count)
-        rate = np.where(rng.random(count) < self.weight, rate, 0.0)
-        return np.asarray(last[:, None] + rate[:, None] * years)
+        drawn = rng.random(count)
+        drifts, wanders = self.weights.get("drift", 0.0), self.weights.get("wander", 0.0)
+        change = np.where(drawn < drifts + wanders, rate, 0.0)[:, None] * years
+        own = np.flatnonzero((drawn >= drifts) & (drawn < drifts + wanders))
+        if own.size:
+            noise = rng.standard_normal((own.size, years.size + 1))
+            change[own] += np.sqrt(self.walk / self.span) * noise[:, :1] * years
+            change[own] += np.cumsum(np.sqrt(self.walk * np.diff(years, prepend=0.0)) * noise[:, 1:], axis=1)
+        return np.asarray(last[:, None] + change)
 
 
 def fit_seat(times: Floats, settlements: Floats, sd: Floats) -> SeatLaw:
-    """Fit a line to the settlements of one seat.
+    """Fit the law of the settlements of one seat.
 
     Parameters
     ----------
@@ -73,26 +99,24 @@ def fit_seat(times: Floats, settlements: Floats, sd: Floats) -> SeatLaw:
         raise ValueError("a seat's law needs at least one measured settlement")
     last, last_sd = float(settlements[-1]), float(sd[-1])
     if times.size < 2 or times[-1] == times[0]:
-        return SeatLaw(
-            rate=np.nan, rate_sd=np.nan, weight=0.0, moving=False, last=last, last_sd=last_sd, covariance=0.0
-        )
+        return SeatLaw(law="steady", rate=np.nan, rate_sd=np.nan, last=last, last_sd=last_sd, covariance=0.0)
     weight = sd**-2.0
     middle = float(weight @ times / weight.sum())
     lever = weight * (times - middle)
     lever = lever / (lever @ times)
     rate = float(lever @ (settlements - last))  # the lever sums to nought: an unmoved seat has no rate at all
-    line = float(weight @ settlements / weight.sum()) + rate * (times - middle)
-    chi_square, freedom = float((((settlements - line) / sd) ** 2).sum()), times.size - 2
-    scatter = 1.0
-    if freedom and special.chdtrc(freedom, chi_square) < 0.05:
-        scatter = float(np.sqrt(chi_square / freedom))
-    rate_sd = scatter * float(np.sqrt((lever**2) @ sd**2))
+    found = detect(times - times[0], settlements - last, sd, age=None)
     return SeatLaw(
+        law=found.law,
         rate=rate,
-        rate_sd=rate_sd,
-        weight=akaike_weight(rate, rate_sd),
-        moving=abs(rate) > Z95 * rate_sd,
+        rate_sd=found.scatter * float(np.sqrt((lever**2) @ sd**2)),
         last=last,
         last_sd=last_sd,
         covariance=float(lever[-1] * sd[-1] ** 2),
+        weights=found.weights,
+        step=found.step,
+        step_sd=found.step_sd,
+        step_between=(found.gap, found.gap + 1) if found.gap >= 0 else None,
+        span=float(times[-1] - times[0]),
+        walk=found.walk,
     )

@@ -4,7 +4,7 @@ from assess.workflow.actions import close_action, list_actions, note_action, sho
 from assess.workflow.assessing import assess
 from assess.workflow.calibrating import calibrate
 from assess.workflow.fitting import Options
-from assess.workflow.interventions import add_intervention, list_interventions, withdraw_intervention
+from assess.workflow.intervening import add_intervention, list_interventions, withdraw_intervention
 from assess.workflow.planning import plan
 from assess.workflow.ranking import network
 from assess.workflow.records import (
@@ -15,15 +15,18 @@ from assess.workflow.records import (
     list_visits,
     log_visit,
 )
+from assess.workflow.shimming import Stock, shim
 from assess.workflow.showing import bridge_view, show_bridge
 from assess.workflow.study import Progress
 from assess.workflow.trending import trend
+from assess.workflow.triggers import triggers
 from assess.workflow.viewing import report_view
 from assess.workflow.visit_draft import draft_visit
 
 __all__ = [
     "Options",
     "Progress",
+    "Stock",
     "add_bridge",
     "add_intervention",
     "assess",
@@ -42,8 +45,10 @@ __all__ = [
     "note_action",
     "plan",
     "report_view",
+    "shim",
     "show_action",
     "show_bridge",
     "trend",
+    "triggers",
     "withdraw_intervention",
 ]

@@ -13,20 +13,19 @@ from assess.results import (
     from_plain,
 )
 from assess.workflow import action_rules, findings
+from assess.workflow.dates import reach
+from assess.workflow.next_visit import interval_of
 from assess.workflow.study import Study
 from db.errors import BedstoneError
 from db.records import ActionEvent, Finding, KeptAction
 from db.store import Record, open_record
 
-DAYS_PER_YEAR = 365.25
 _ORDER = {name: i for i, name in enumerate(action_rules.SEVERITIES)}
 
 
-def interval_day(study: Study, default_years: float) -> dt.date:
+def interval_day(study: Study) -> dt.date:
     """Return the day of the next visit by the owner's interval alone."""
-    years = study.bridge.visit_interval_years
-    days = round((default_years if years is None else years) * DAYS_PER_YEAR)
-    return study.visits[-1].date + dt.timedelta(days=days)
+    return reach(study.visits[-1].date, interval_of(study))
 
 
 def opened(record: Record, bridge: str, found: Sequence[Finding]) -> list[ActionResult]:
@@ -103,8 +102,6 @@ def _words(name: str, text: str) -> None:
 
 def _still(record: Record, action: KeptAction) -> list[str]:
     """What the newest kept assessment and trend still find at the place of an action."""
-    from assess.workflow.trending import DEFAULT_INTERVAL_YEARS
-
     study, today = Study.fetch(record, action.bridge), dt.date.today()
     found: list[Finding] = []
     kept = record.newest_results("assessment", action.bridge).get(action.bridge)
@@ -112,7 +109,7 @@ def _still(record: Record, action: KeptAction) -> list[str]:
         found += findings.of_assessment(study, from_plain(AssessmentResult, kept.result), today)
     kept = record.newest_results("trend", action.bridge).get(action.bridge)
     if kept is not None:
-        until = interval_day(study, DEFAULT_INTERVAL_YEARS)
+        until = interval_day(study)
         found += findings.of_trend(study, from_plain(TrendResult, kept.result), today, until=until)
     return [one.text for one in found if one.subject == action.subject]
 

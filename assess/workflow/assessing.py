@@ -32,6 +32,7 @@ from assess.workflow import (
     hinge_cautions,
     pad_cautions,
     section_cautions,
+    supposing_cautions,
 )
 from assess.workflow.building import GirderModel
 from assess.workflow.combination import factors_of
@@ -41,6 +42,7 @@ from assess.workflow.pad_checks import check_pads
 from assess.workflow.sections import last_loss
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, telling_readings
 from assess.workflow.supports import Supports, kept_fits, supports_of
+from assess.workflow.suppose import Supposition, read_suppositions, supposed_model, supposed_supports
 from db.records import KeptResult
 from db.store import Record, open_record
 
@@ -48,24 +50,40 @@ Floats = NDArray[np.float64]
 
 
 def assess(
-    url: str, bridge: str, *, visit: dt.date | None = None, progress: Progress | None = None
+    url: str,
+    bridge: str,
+    *,
+    visit: dt.date | None = None,
+    suppose: Sequence[str] = (),
+    progress: Progress | None = None,
 ) -> AssessmentResult:
-    """Assess a bridge with its latest kept calibration (up to a visit, if one is named), and keep the result."""
+    """Assess a bridge with its latest kept calibration (up to a visit, if one is named), and keep the result.
+
+    `suppose` are suppositions (`suppose.py`) shown beside it; with any, nothing is kept.
+    """
     with open_record(url) as record:
-        return assess_in(record, bridge, visit=visit, progress=progress)
+        return assess_in(record, bridge, visit=visit, suppose=suppose, progress=progress)
 
 
 def assess_in(
-    record: Record, bridge: str, *, visit: dt.date | None = None, progress: Progress | None = None
+    record: Record,
+    bridge: str,
+    *,
+    visit: dt.date | None = None,
+    suppose: Sequence[str] = (),
+    progress: Progress | None = None,
 ) -> AssessmentResult:
     """Assess a bridge of an open record, keep the result, and open actions for what exceeds.
 
-    A look into the past (`visit`) opens none.
+    A look into the past (`visit`) opens none, and suppositions are neither kept nor acted on.
     """
     study = Study.fetch(record, bridge)
     if visit is not None:
         study.visit(visit)
-    result = assess_study(study, visit=visit, progress=progress or quiet)
+    supposed = read_suppositions(study.bridge, suppose)
+    result = assess_study(study, visit=visit, supposed=supposed, progress=progress or quiet)
+    if supposed:
+        return replace(result, actions=actions.open_actions(record, bridge))
     record.keep(
         KeptResult(
             kind="assessment",
@@ -84,7 +102,13 @@ def assess_in(
     return replace(result, actions=actions.opened(record, bridge, found))
 
 
-def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> AssessmentResult:
+def assess_study(
+    study: Study,
+    *,
+    visit: dt.date | None,
+    progress: Progress,
+    supposed: Sequence[Supposition] = (),
+) -> AssessmentResult:
     """Assess a fetched bridge."""
     fits = kept_fits(study, visit)
     latest = max(fits) if fits else None
@@ -97,16 +121,20 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
     said += _of_datum(study, visit)
     said += combination_cautions.of_bridge(study.bridge)
     digests = []
+    creeps: list[bool] = []
     for i, girder in enumerate(study.bridge.girders):
         progress(f"assessing {girder.id}", i, len(study.bridge.girders))
         model = study.model(girder.id, visit)
         supports, about = supports_of(study, model, fits, visit)
         with tipping_named(model):
             shown = _assess_girder(model, supports)
+            if supposed:
+                shown = _beside_supposed(shown, model, supports, supposed)
         pads, about_pads = check_pads(model, supports.log_stiffness, shown.reactions)
         girders.append(replace(shown, pads=pads))
         said += contact_cautions.tipping(girder.id, model.tips_off)
         said += about
+        creeps.append(supports.log_sustained != 0.0)
         said += pad_cautions.of_prior(model) + about_pads
         if model.permanent.given:
             said += contact_cautions.of_reactions(girder.id, shown.reactions)
@@ -114,12 +142,14 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
             said += [contact_cautions.unknown(girder.id), *cautions.uplift(girder.id, shown.reactions)]
         said += cautions.of_sections(girder.id, shown.sections)
         said += cautions.of_rivals(girder.id, shown)
+        said += supposing_cautions.of_reactions(girder.id, shown.reactions)
         digests += [
             f"{s} {one.value!r} {one.sd!r} {one.date}" for s, one in sorted(supports.settlements.items())
         ]
     said += [pad_cautions.FROM_MEMORY] if any(girder.pads for girder in girders) else []
     said += hinge_cautions.of_bridge(study.bridge)
     said += section_cautions.of_bridge(study.bridge, visit)
+    said += supposing_cautions.of_suppositions(supposed)
     worn = last_loss(study.bridge, visit)
     digests += [] if worn is None else [f"losses up to {worn}"]
     progress("assessed", len(study.bridge.girders), len(study.bridge.girders))
@@ -128,7 +158,7 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
         bridge=study.bridge.id,
         calibration_visit=latest,
         version=VERSION,
-        input_digest=study.digest(*sources, *digests),
+        input_digest=study.digest(*sources, *digests, *(one.text for one in supposed)),
         seed=SEED,
         draws=DRAWS,
         girders=girders,
@@ -136,11 +166,12 @@ def assess_study(study: Study, *, visit: dt.date | None, progress: Progress) -> 
             dict.fromkeys(
                 [
                     *sorted(said, key=pad_cautions.is_assumption),
-                    cautions.PERMANENT_STIFFNESS,
+                    *cautions.permanent_stiffness(creeps),
                     *cautions.STANDING,
                 ]
             )
         ),
+        supposed=[one.text for one in supposed],
     )
 
 
@@ -189,6 +220,32 @@ def _assess_girder(model: GirderModel, supports: Supports) -> GirderAssessment:
     reactions = _reactions(model, calibrated, drops)
     shown = [CarriedRival(name=one.name, told_apart_by=one.told_apart_by) for one in carried]
     return GirderAssessment(girder=model.doc.id, sections=sections, reactions=reactions, rivals=shown)
+
+
+def _beside_supposed(
+    shown: GirderAssessment, model: GirderModel, supports: Supports, supposed: Sequence[Supposition]
+) -> GirderAssessment:
+    """The same assessment with the supposed case beside the calibrated one."""
+    other = supposed_model(model, supposed)
+    with tipping_named(other, "as supposed"):
+        acting = supposed_supports(other, supports, supposed).acting(other)
+        rows = evaluate(other.effects, other.factors, *acting)
+        reactions = _reactions(other, *acting)
+    sections = [
+        replace(section, supposed=CaseResult(**_case(row.case)))
+        for section, row in zip(shown.sections, rows, strict=True)
+    ]
+    beside = [
+        replace(
+            today,
+            supposed_permanent_kN=then.calibrated_permanent_kN,
+            supposed_live_max_kN=then.calibrated_live_max_kN,
+            supposed_live_min_kN=then.calibrated_live_min_kN,
+            supposed_lifts_under=then.calibrated_lifts_under,
+        )
+        for today, then in zip(shown.reactions, reactions, strict=True)
+    ]
+    return replace(shown, sections=sections, reactions=beside)
 
 
 def _worst(names: Sequence[str], rows: Sequence[Row]) -> tuple[str, float] | None:

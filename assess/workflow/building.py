@@ -137,7 +137,8 @@ class GirderModel:
         for live in self.bridge.live:
             if live.model is None:
                 train = _train(self.bridge, live.vehicle).coupled(live.count, live.pitch)
-                trains.append(train.scaled(self.doc.live_share * (1.0 + (live.dynamic or 0.0))))
+                share = self.doc.live_share * live.factor
+                trains.append(train.scaled(share * (1.0 + (live.dynamic or 0.0))))
         return tuple(trains)
 
     @cached_property

@@ -71,14 +71,19 @@ def _of_seats(shown: GirderCalibration) -> list[str]:
 
 def _of_rivals(shown: GirderCalibration) -> list[str]:
     own = next((one for one in shown.rivals if one.name == shown.calibrated_as), None)
-    close = [one for one in shown.rivals if one.within_2 and one.told and not one.simpler and one is not own]
+    close = [one for one in shown.rivals if one.carried and not one.simpler and one is not own]
     said = []
     for one in close:
         word = "as well as" if own is None or own.within_2 else "better than"
         decide = f"; this would decide: {one.told_apart_by}" if one.told_apart_by else ""
+        ranks = (
+            ""
+            if own is None or None in (own.aicc, one.aicc)
+            else f" (AICc {one.aicc:.1f} against {own.aicc:.1f})"
+        )
         said.append(
-            f"{shown.girder}: {one.name} would explain the readings {word} the calibration (AICc {one.aicc:.1f}"
-            f"{'' if own is None or own.aicc is None else f' against {own.aicc:.1f}'}), and the assessment carries it along{decide}."
+            f"{shown.girder}: {one.name} would explain the readings {word} the calibration{ranks}, and the assessment carries "
+            f"it along{decide}."
         )
     if shown.rivals and all(one.aicc is None for one in shown.rivals):
         said.append(

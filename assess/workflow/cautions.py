@@ -191,7 +191,18 @@ def no_live(bridge: str) -> str:
     return f"{bridge}: the bridge file names no live load: utilisations are of permanent load alone."
 
 
-PERMANENT_STIFFNESS = "Permanent effects use the pads' short-term stiffness; creep of the pads under permanent load is not in them."
+_SHORT_TERM = "Permanent effects use the pads' short-term stiffness; creep of the pads under permanent load is not in them."
+
+
+def permanent_stiffness(creeps: Sequence[bool]) -> list[str]:
+    """Caution on creep of the pads; `creeps` says of each girder whether its sustained ratio is in its figures."""
+    if not creeps or not any(creeps):
+        return [_SHORT_TERM]
+    return (
+        []
+        if all(creeps)
+        else [f"Where no sustained ratio was fitted: {_SHORT_TERM[0].lower()}{_SHORT_TERM[1:]}"]
+    )
 
 
 # trend -------------------------------------------------------------------------------------------
@@ -242,7 +253,8 @@ def mixed_temperatures(dates: Sequence[dt.date], supports: Sequence[str]) -> str
     pads = ", ".join(f'"{support}"' for support in supports)
     return (
         f"Visits at pad temperatures more than {_FAR:.0f} K from {REFERENCE_TEMPERATURE:.0f} degC or unknown ({days}) are compared without "
-        f"correction for pads that have no temperature_coefficient ({pads}): a cold visit shows as stiffening."
+        f"correction for pads that have no temperature_coefficient ({pads}): a cold visit reads as stiffer, and an error of 0.5 % for each K "
+        "from the visits' mean is allowed for."
     )
 
 

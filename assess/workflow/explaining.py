@@ -8,6 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from assess.calibrate import Cause, Layout, Rival, causes, rivals
+from assess.calibrate.unknowns import NUISANCE
 from assess.results import CauseResult, RivalResult
 from assess.workflow.deciding import deciding_reading
 from assess.workflow.fitting import Fitting
@@ -49,7 +50,7 @@ def explain(fitting: Fitting) -> Explained:
         apart = None if one is main else deciding_reading(whole, main.theta, one.theta)
         simpler = one is not main and set(one.free.tolist()) < set(main.free.tolist())
         shown.append(_shown(one, apart, simpler))
-        if one is not main and one.within_2 and one.share >= SEEN:
+        if one is not main and one.close and one.share >= SEEN:
             carried.append(_carried(whole, one, apart))
     return Explained(
         rivals=shown,
@@ -82,7 +83,9 @@ def _sets(whole: Setup, setup: Setup) -> tuple[dict[str, list[int]], str]:
     sets["pads and girder stiffness"] = [*base, *layout.places("girder")]
     if "datum" in layout:
         sets["pads and datum"] = [*base, *layout.places("datum")]
-    asked = {entry_of(whole.layout, entry.block, entry.index) for entry in setup.layout.entries}
+    # nuisances are in every rival: they tell none from another
+    entries = [entry for entry in setup.layout.entries if entry.block not in NUISANCE]
+    asked = {entry_of(whole.layout, entry.block, entry.index) for entry in entries}
     own = sorted(j for j in asked if j is not None and j >= whole.model.pads.size)
     for name, places in sets.items():
         if sorted(places) == own:
@@ -103,6 +106,7 @@ def _shown(one: Rival, apart: str | None, simpler: bool) -> RivalResult:
         aicc=one.aicc,
         chi_square=one.chi_square,
         within_2=one.within_2,
+        carried=one.close and one.share >= SEEN,
         log_likelihood=one.log_likelihood,
         effective_unknowns=one.told,
         told=one.share >= SEEN,

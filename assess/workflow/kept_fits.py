@@ -147,6 +147,17 @@ def _unpacked(kept: dict[str, Any]) -> Floats:
     return np.frombuffer(raw, dtype="<f4").reshape(kept["shape"]).astype(np.float64)
 
 
+def options_of(kept: KeptResult) -> Options:
+    """How a kept calibration was asked for."""
+    said = kept.options
+    unknowns = said.get("unknowns")
+    return Options(
+        prior=bool(said.get("prior", True)),
+        unknowns=None if unknowns is None else tuple(unknowns),
+        without=tuple((one["reading"], one["reason"]) for one in said.get("without", [])),
+    )
+
+
 def from_kept(kept: KeptResult) -> VisitFit:
     """A calibration back from the record, also one that knew of pads alone."""
     if kept.visit is None:

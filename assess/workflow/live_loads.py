@@ -41,7 +41,7 @@ def model_loads(bridge: BridgeDoc, girder: GirderDoc) -> tuple[ModelLoad, ...]:
         if live.model is not None:
             model = _model(live, FILE)
             allowance = _allowance(live, model, girder, FILE)
-            loads.append(ModelLoad(model=model.scaled(girder.live_share), allowance=allowance))
+            loads.append(ModelLoad(model=model.scaled(girder.live_share * live.factor), allowance=allowance))
     return tuple(loads)
 
 

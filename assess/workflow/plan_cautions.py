@@ -79,12 +79,12 @@ def no_capacity(girder: str) -> str:
 
 
 def seats_unread(girder: str, supports: Sequence[str]) -> list[str]:
-    """Caution: seats whose level is on offer but not among the readings chosen."""
+    """Caution: seats that could be told, and are not by the readings chosen."""
     if not supports:
         return []
     return [
         (
-            f"{girder}: the level of the seat at {_quoted(supports)} is not among the readings, and what it may have dropped stays "
+            f"{girder}: the level of the seat at {_quoted(supports)} is not told by these readings, and what it may have dropped stays "
             "in the standard deviations; an assessment would take it as last levelled, and look surer than this."
         )
     ]

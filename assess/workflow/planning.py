@@ -276,12 +276,11 @@ def _cautions(one: _Planned, readings: int) -> list[str]:
             said.append(plan_cautions.no_test(name, which))
     if one.aim.check is None:
         said.append(plan_cautions.no_capacity(name))
-    read = {offer.readings[i].support for i in one.full.chosen if offer.readings[i].quantity == "settlement"}
-    seats = {
-        model.doc.supports[one.setup.layout.entries[j].index].id
-        for j in one.setup.layout.places("settlements")
-    }
-    said += plan_cautions.seats_unread(name, [s.id for s in model.doc.supports if s.id in seats - read])
-    said += plan_cautions.seats_without_gauge(name, [s.id for s in model.doc.supports if s.id not in seats])
+    seats = _sds(one, "settlements")
+    # as in an assessment: a seat counts as told from half of its prior variance on
+    open_still = {seat for seat, before, after in seats if after**2 > (1.0 - cautions.TOLD) * before**2}
+    known = {seat for seat, _, _ in seats}
+    said += plan_cautions.seats_unread(name, [s.id for s in model.doc.supports if s.id in open_still])
+    said += plan_cautions.seats_without_gauge(name, [s.id for s in model.doc.supports if s.id not in known])
     other = one.aim.overtaken(one.full.covariance)
     return said if other is None else [*said, plan_cautions.overtaken(name, model.doc, *other)]

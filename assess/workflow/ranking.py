@@ -69,7 +69,7 @@ def network(url: str, *, refresh: bool = False, progress: Progress | None = None
         version=VERSION,
         computed=computed,
         bridges=[replace(row, rank=i) for i, row in enumerate(rows, 1)],
-        cautions=[cautions.PERMANENT_STIFFNESS, *cautions.STANDING] if rows else [],
+        cautions=list(cautions.STANDING) if rows else [],
     )
 
 

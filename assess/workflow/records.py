@@ -15,6 +15,7 @@ from db.documents import BridgeDoc, VisitDoc
 from db.errors import BedstoneError
 from db.exchange import (
     bridge_queries,
+    check_interventions,
     check_losses,
     check_visit,
     draft_bridge,
@@ -39,6 +40,7 @@ def add_bridge(url: str, path: Path) -> tuple[BridgeDoc, Taken]:
     """Take in a bridge file: a new bridge, or a new revision of one."""
     document = read_bridge(path)
     check_losses(document, today=dt.date.today(), file=printable(str(path)))
+    check_interventions(document, today=dt.date.today(), file=printable(str(path)))
     check_live(document, file=printable(str(path)))
     check_combination(document, file=printable(str(path)))
     refuse_pads(document, printable(str(path)))

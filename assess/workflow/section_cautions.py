@@ -3,8 +3,11 @@
 from __future__ import annotations
 
 import datetime as dt
+from collections.abc import Sequence
 
-from assess.workflow.sections import EFFECTS, Capacity, SectionState, measured_days, section_on
+from assess.trend.losses import READING_SD
+from assess.workflow.losses_ahead import PlateLoss
+from assess.workflow.sections import EFFECTS, Capacity, SectionState, measured_days, section_on, used_sections
 from db.documents import BridgeDoc
 
 TOLERANCE = 0.02  # a given second moment this far from that of the plates is named (fillets, connections)
@@ -24,16 +27,6 @@ def of_bridge(bridge: BridgeDoc, day: dt.date | None) -> list[str]:
     return said
 
 
-def used_sections(bridge: BridgeDoc) -> set[str]:
-    """Ids of the sections that stand in a girder."""
-    return {
-        name
-        for girder in bridge.girders
-        for span in girder.spans
-        for name in (span.section, *(piece.section for piece in span.pieces))
-    }
-
-
 def of_section(state: SectionState) -> list[str]:
     """Cautions on one section."""
     if state.built is None:
@@ -41,15 +34,29 @@ def of_section(state: SectionState) -> list[str]:
     return [*_losses(state), *_stiffness(state), *_capacities(state), *_deck(state), *_method(state)]
 
 
-def of_trend(bridge: BridgeDoc) -> list[str]:
-    """Caution: losses stand still in the forecast."""
-    names = [s.id for s in bridge.sections if s.losses and s.id in used_sections(bridge)]
-    if not names:
+def of_trend(bridge: BridgeDoc, losses: Sequence[PlateLoss]) -> list[str]:
+    """Cautions: how losses are carried forward, or why they are not."""
+    if not losses:
         return []
-    each = ", ".join(f'"{name}"' for name in names)
-    return [
-        f"Losses of the plates (section {each}) are held at their last measured values; they are not carried forward."
-    ]
+    held = [one for one in losses if one.law is None]
+    said = []
+    if held:
+        said.append(
+            f"Losses of the plates (section {_sections(held)}) are held at their last measured values; without the day the bridge was "
+            "built (`built`) they have no rate."
+        )
+    growing = [one for one in losses if one.law is not None]
+    if growing:
+        said.append(
+            f"Losses of the plates (section {_sections(growing)}) are carried forward at their mean rate since the bridge was built, "
+            f"each thickness with an assumed standard deviation of {1e3 * READING_SD:g} mm (common practice, no source): new corrosion, "
+            "or an end of it, is not foreseen."
+        )
+    return said
+
+
+def _sections(losses: Sequence[PlateLoss]) -> str:
+    return ", ".join(f'"{name}"' for name in dict.fromkeys(one.section for one in losses))
 
 
 def _name(state: SectionState) -> str:

@@ -118,6 +118,16 @@ def last_loss(bridge: BridgeDoc, day: dt.date | None) -> dt.date | None:
     return max(days, default=None)
 
 
+def used_sections(bridge: BridgeDoc) -> set[str]:
+    """Ids of the sections that stand in a girder."""
+    return {
+        name
+        for girder in bridge.girders
+        for span in girder.spans
+        for name in (span.section, *(piece.section for piece in span.pieces))
+    }
+
+
 def measured_days(state: SectionState) -> list[dt.date]:
     """The days of the losses that count."""
     return sorted({x.visit for entries in state.losses.values() for x in entries})

@@ -5,13 +5,14 @@ from __future__ import annotations
 import datetime as dt
 import hashlib
 from collections.abc import Callable
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 from assess import __version__
 from assess.workflow.building import GirderModel
 from assess.workflow.sections import last_loss
 from db.documents import BridgeDoc, VisitDoc
 from db.errors import BedstoneError
+from db.intervention_doc import InterventionDoc
 from db.records import KeptBridge, KeptIntervention, KeptResult
 from db.store import Record
 
@@ -42,10 +43,11 @@ class Study:
     def fetch(cls, record: Record, bridge: str) -> Study:
         """Fetch a bridge with all that is kept of it."""
         held = record.evidence(bridge)  # first: what comes in between makes a result stale, never current
+        done = record.interventions(bridge)
         return cls(
             evidence=held,
-            interventions=record.interventions(bridge),
-            kept=record.bridge(bridge),
+            interventions=done,
+            kept=_with_interventions(record.bridge(bridge), done),
             visits=record.visit_docs(bridge),
             calibrations=record.results(bridge, "calibration"),
         )
@@ -78,7 +80,25 @@ class Study:
 
     def digest(self, *parts: str) -> str:
         """Digest of the bridge file and of whatever else a result rests on."""
-        return digest_of(self.bridge.digest, *parts)
+        told = [f"{one.date} {one.kind} {one.girder!r} {one.support!r}" for one in self.interventions]
+        return digest_of(self.bridge.digest, *told, *parts)
+
+
+def _with_interventions(kept: KeptBridge, told: list[KeptIntervention]) -> KeptBridge:
+    """The bridge file with what the record was told of its pads, by date; the very same in both counts once."""
+    document = kept.document
+    known = {(one.girder, one.support, one.kind, one.date) for one in document.interventions}
+    more = [
+        InterventionDoc(
+            date=one.date, kind=one.kind, girder=one.girder, support=one.support, remark=one.remark
+        )
+        for one in told
+        if (one.girder, one.support, one.kind, one.date) not in known
+    ]
+    if not more:
+        return kept
+    every = tuple(sorted([*document.interventions, *more], key=lambda one: one.date))
+    return replace(kept, document=replace(document, interventions=every))
 
 
 def digest_of(*parts: str) -> str:

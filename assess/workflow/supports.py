@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import datetime as dt
+from collections.abc import Mapping
 from dataclasses import dataclass, field, replace
 from itertools import pairwise
 
@@ -13,6 +14,7 @@ from assess.calibrate import draw_normal
 from assess.workflow import cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.fitting import key_of
+from assess.workflow.interventions import since_of, with_new_pads
 from assess.workflow.kept_fits import GirderFit, RivalFit, VisitFit, from_kept
 from assess.workflow.study import Study
 from db.records import KeptResult
@@ -176,7 +178,8 @@ def supports_of(
 ) -> tuple[Supports, list[str]]:
     """What is known of a girder's supports up to a day, and the cautions on it."""
     name = model.doc.id
-    measured = settlements(study, name, until)
+    histories = seats_known(study, name, until, {date: one for date, (one, _) in fits.items()})
+    measured = {support: history[-1] for support, history in histories.items()}
     own = {date: found for date, (one, _) in fits.items() if (found := one.of(model)) is not None}
     if not fits:
         left = cautions.settlements_left_out(name, [(s, 1e3 * one.value) for s, one in measured.items()])
@@ -188,7 +191,7 @@ def supports_of(
             settlements={},
         )
         return nominal, left
-    said = _of_seats(study, model, fits, until)
+    said = _of_seats(study, model, histories, fits, until)
     if not own:
         said += _used(name, measured)
         if model.pads.size:
@@ -208,18 +211,19 @@ def supports_of(
         said.append(cautions.older_girder(name, date, max(fits)))
     visit_fit = fits[date][0]
     said += [one for one in visit_fit.result.cautions if one.startswith(f"{name}: ")]
-    said += _forgotten(model, own, date)
-    seats = {**measured, **(fitted := _fitted_seats(visit_fit, own[date], measured))}
+    fit, renewed = with_new_pads(model, own[date], date, until)
+    said += renewed or _forgotten(model, own, date)
+    seats = {**measured, **(fitted := _fitted_seats(visit_fit, fit, measured))}
     said += _used(name, seats)
     return (
         Supports(
-            log_stiffness=own[date].log_stiffness,
-            covariance=own[date].covariance,
+            log_stiffness=fit.log_stiffness,
+            covariance=fit.covariance,
             source=date,
-            fit=own[date],
+            fit=fit,
             settlements=seats,
-            log_factor=own[date].one("girder"),
-            log_sustained=own[date].one("sustained"),
+            log_factor=fit.one("girder"),
+            log_sustained=fit.one("sustained"),
             joined=list(fitted),
         ),
         said,
@@ -257,11 +261,14 @@ def _fitted_seats(
 
 
 def _of_seats(
-    study: Study, model: GirderModel, fits: dict[dt.date, tuple[VisitFit, KeptResult]], until: dt.date | None
+    study: Study,
+    model: GirderModel,
+    histories: dict[str, list[Settlement]],
+    fits: dict[dt.date, tuple[VisitFit, KeptResult]],
+    until: dt.date | None,
 ) -> list[str]:
     """Cautions on seats: never read, read long ago, risen since."""
     name = model.doc.id
-    histories = seat_histories(study, name, until)
     newest = max([*fits, *(visit.date for visit in study.until(until))])
     said = cautions.seats_not_read(name, [s.id for s in model.doc.supports if s.id not in histories], newest)
     old: dict[dt.date, list[str]] = {}
@@ -294,6 +301,7 @@ def _forgotten(model: GirderModel, own: dict[dt.date, GirderFit], date: dt.date)
 def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str, list[Settlement]]:
     """Measured settlements of each support of a girder, by date; repeats of one visit are pooled by weight.
 
+    Only those since it was last jacked or shimmed.
     What the newest calibration of a visit left out by hand is no measurement here either.
     """
     found: dict[str, list[Settlement]] = {}
@@ -317,7 +325,19 @@ def seat_histories(study: Study, girder: str, until: dt.date | None) -> dict[str
                 value=float((weight @ value) / weight.sum()), sd=float(weight.sum() ** -0.5), date=visit.date
             )
             found.setdefault(support, []).append(pooled)
-    return found
+    return {
+        support: kept
+        for support, history in found.items()
+        if (kept := _uncut(study, girder, support, history, until))
+    }
+
+
+def _uncut(
+    study: Study, girder: str, support: str, history: list[Settlement], until: dt.date | None
+) -> list[Settlement]:
+    """What was measured of a seat since it was last jacked or shimmed."""
+    since = since_of(study.bridge, girder, support, ("jacked", "shimmed"), until)
+    return [one for one in history if since is None or one.date >= since]
 
 
 def _left_out(study: Study, date: dt.date) -> set[str]:
@@ -325,6 +345,15 @@ def _left_out(study: Study, date: dt.date) -> set[str]:
     return {one["reading"] for one in options.get("without", [])}
 
 
-def settlements(study: Study, girder: str, until: dt.date | None) -> dict[str, Settlement]:
-    """The last measured settlement of each support of a girder."""
-    return {support: history[-1] for support, history in seat_histories(study, girder, until).items()}
+def seats_known(
+    study: Study, girder: str, until: dt.date | None, fits: Mapping[dt.date, VisitFit]
+) -> dict[str, list[Settlement]]:
+    """Seat drops of a girder by support and date: as levelled, or as calibrated where more than the level speaks."""
+    histories = seat_histories(study, girder, until)
+    for date, one in fits.items():
+        if girder not in one.fits:
+            continue
+        for support, fitted in _fitted_seats(one, one.fits[girder], {}).items():
+            others = [known for known in histories.get(support, []) if known.date != date]
+            histories[support] = sorted([*others, fitted], key=lambda known: known.date)
+    return histories

@@ -26,7 +26,7 @@ _ORDER = {"over": 0, "watch": 1, "within": 2, "unknown": 3}
 def head_row(trend: TrendResult | None, girder: str) -> SpanTrend | None:
     """The section that a girder's first sentence speaks of: over, soonest to be over, or most used."""
     rows = [row for row in trend.spans if row.girder == girder] if trend is not None else []
-    judged = [row for row in rows if row.status != "unknown"]
+    judged = [row for row in rows if row.utilisation_now is not None]
     if not judged:
         return None
     worst = min(judged, key=lambda row: (_ORDER[row.status], -(row.utilisation_now or 0.0)))
@@ -52,7 +52,7 @@ def verdict(
     causes = _causes(girder, trend, calibration, found)
     if causes:
         sentence += f"; look first at {causes}"
-    unknown = sum(one.girder == girder and one.status == "unknown" for one in trend.spans)
+    unknown = sum(one.girder == girder and one.utilisation_now is None for one in trend.spans)
     if unknown:
         sentence += f"; {unknown} sections are not determined for want of a capacity"
     return sentence + "."
@@ -76,6 +76,11 @@ def _first(own: GirderAssessment, row: SpanTrend, trend: TrendResult) -> str:
         return f"visit by {by} and prepare a remedy: {name} {when} (utilisation {number})"
     if row.status == "watch":
         return f"watch {name} (utilisation {number}) and visit by {by}"
+    if row.status == "unknown":
+        return (
+            f"visit now: what is known is out of date and its state today unknown; the most used section at the last visit was {name} "
+            f"(utilisation {number})"
+        )
     return f"visit by {by}; the most used section is {name} (utilisation {number})"
 
 

@@ -27,6 +27,7 @@ from assess.workflow.assessing import assess_study
 from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import calibrate_visit
 from assess.workflow.combination import factors_in_words
+from assess.workflow.dates import DAYS_PER_YEAR
 from assess.workflow.drivers import Driver, drivers
 from assess.workflow.kept_fits import VisitFit
 from assess.workflow.live_loads import live_in_words
@@ -35,7 +36,7 @@ from assess.workflow.showing import section_views
 from assess.workflow.stands import governing_stands
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, telling_readings
 from assess.workflow.supports import Supports, kept_fits, supports_of
-from assess.workflow.trending import DAYS_PER_YEAR, GirderTrend, trend_study, with_future
+from assess.workflow.trending import GirderTrend, trend_study, with_future
 from assess.workflow.verdicts import cautions_beside, head_row, verdict
 from db.documents import VisitDoc
 from db.store import open_record
@@ -45,15 +46,17 @@ Floats = NDArray[np.float64]
 _BAND_DRAWS = 400  # draws for the bands of the moment lines
 
 
-def report_view(url: str, bridge: str, *, progress: Progress | None = None) -> ReportView:
-    """Gather calibration, assessment, trend and drawings of a bridge for its report."""
+def report_view(
+    url: str, bridge: str, *, progress: Progress | None = None, today: dt.date | None = None
+) -> ReportView:
+    """Gather calibration, assessment, trend and drawings of a bridge for its report, as seen on a day."""
     tell = progress or quiet
     with open_record(url) as record:
         study = Study.fetch(record, bridge)
         standing = open_actions(record, bridge)
     assessment = assess_study(study, visit=None, progress=tell)
     tested = any(telling_readings(visit) for visit in study.visits)
-    trend, parts = trend_study(study, progress=tell) if tested else (None, [])
+    trend, parts = trend_study(study, progress=tell, today=today) if tested else (None, [])
     calibration = _calibration(study, assessment)
     girders = []
     for i, girder in enumerate(study.bridge.girders):
@@ -243,7 +246,7 @@ def _histories(model: GirderModel, part: GirderTrend) -> list[PadHistory]:
         centre = np.array([f.log_stiffness[i] for f in part.fits]) - model.nominal[i]
         sd = np.array([f.sd[i] for f in part.fits])
         low, line, high = (quantiles[q][:, i] - model.nominal[i] for q in range(3))
-        past, spread = _past(part, i, back)
+        past, spread = part.trend.line(i, back)
         past = past - model.nominal[i]
         histories.append(
             PadHistory(
@@ -263,17 +266,6 @@ def _histories(model: GirderModel, part: GirderTrend) -> list[PadHistory]:
             )
         )
     return histories
-
-
-def _past(part: GirderTrend, pad: int, back: Floats) -> tuple[Floats, Floats]:
-    """The fitted law before the last visit and its standard deviation, both (times,): ln k."""
-    q = part.trend.law_level.size
-    rate = part.trend.law_rate[pad]
-    pick = np.array([pad, q + pad])
-    covariance = part.trend.law_covariance[np.ix_(pick, pick)]
-    basis = np.stack([np.ones_like(back), back], axis=-1)
-    spread = np.sqrt(np.clip(np.einsum("ti,ij,tj->t", basis, covariance, basis), 0.0, None))
-    return np.asarray(part.trend.law_level[pad] + back * rate), spread
 
 
 def _day(last: dt.date, years: float) -> dt.date:

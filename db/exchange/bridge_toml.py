@@ -19,6 +19,7 @@ from db.exchange.fields import Fields, refuse_duplicates
 from db.exchange.files import digest_of, parse_toml, read_text, refuse_controls
 from db.exchange.gauges_toml import plan_positions
 from db.exchange.girder_toml import GIRDER, girder
+from db.exchange.intervention_toml import interventions
 from db.exchange.plates_toml import PLATES, with_plates
 from db.exchange.prior_toml import prior
 from db.quantities import read_quantity
@@ -29,7 +30,7 @@ STIFFEST_KN_PER_M2 = 1e9  # 1000 GPa
 SOFTEST_KN_PER_M2 = 1e6  # 1 GPa
 MOST_VEHICLES = 1000
 
-_TOP = "format bridge section girder vehicle live temperature factors prior actions"
+_TOP = "format bridge section girder vehicle live temperature factors prior intervention actions"
 _BRIDGE = "id name carries built zero visit_interval owner_role"
 _SECTION = f"id E I shear_area G depth sagging_capacity hogging_capacity shear_capacity {PLATES}"
 _VEHICLE = "id axles plan_positions"
@@ -91,6 +92,7 @@ def parse_bridge(text: str, *, file: str) -> BridgeDoc:
         prior=prior(top),
         owner_role=head.id("owner_role") if head.has("owner_role") else OWNER_ROLE,
         actions=actions(top),
+        interventions=interventions(top, girders),
         text=text,
         digest=digest_of(text),
     )

@@ -9,12 +9,11 @@ from sqlalchemy.orm import Session, aliased
 
 from db.documents import BridgeDoc
 from db.errors import BedstoneError
+from db.intervention_doc import INTERVENTION_KINDS
 from db.records import KeptIntervention, NewIntervention
 from db.schema import BridgeRow, GirderRow, InterventionRow, SupportRow
 from db.store.rows import writer
 from db.wording import listed, shown, suggestion
-
-KINDS = ("replaced", "jacked", "shimmed")
 
 _NEWER = aliased(InterventionRow)
 _CURRENT = ~select(_NEWER.id).where(_NEWER.supersedes_id == InterventionRow.id).exists()
@@ -63,9 +62,11 @@ def _check(document: BridgeDoc, new: NewIntervention) -> None:
             f'girder "{shown(new.girder)}" has no pad "{shown(new.support)}"{suggestion(new.support, pads)}'
         )
         raise BedstoneError(problem, field="--support", remedy=f"its pads: {listed(pads)}")
-    if new.kind not in KINDS:
+    if new.kind not in INTERVENTION_KINDS:
         raise BedstoneError(
-            f'"{shown(new.kind)}" is no kind', field="--kind", remedy=f"write one of {listed(KINDS)}"
+            f'"{shown(new.kind)}" is no kind',
+            field="--kind",
+            remedy=f"write one of {listed(INTERVENTION_KINDS)}",
         )
     if new.date > dt.date.today():
         raise BedstoneError(

@@ -19,6 +19,7 @@ from assess.capacity import (
     Row,
     evaluate,
     evaluate_draws,
+    evaluate_row,
     plan_checks,
 )
 from assess.girder import REACTION, Condensed, Girder, Piece
@@ -376,3 +377,13 @@ def test_reactions_on_pads_sum_to_the_load_when_the_train_is_on_the_girder() -> 
     effects = effects_of(girder, uniform(girder, 22.0), [AXLE])
     reaction = effects.steady_reactions(f, np.zeros(f.size)).permanent
     assert reaction.sum() == pytest.approx(22.0 * 24.0)
+
+
+def test_one_row_by_itself_is_that_row_of_all() -> None:
+    girder = girder_of(10.0, 12.0)
+    effects = effects_of(girder, uniform(girder), [AXLE])
+    compliance, drops = np.full(3, 1e-5), np.array([0.0, 2e-3, 0.0])
+    rows = evaluate(effects, FACTORS, compliance, drops)
+    alone = [evaluate_row(effects, FACTORS, compliance, drops, i) for i in range(len(rows))]
+    assert [one.case.utilisation for one in alone] == [one.case.utilisation for one in rows]
+    assert [one.case.x for one in alone] == [one.case.x for one in rows]

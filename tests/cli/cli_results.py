@@ -171,5 +171,6 @@ def trend(*, rate: float | None = -4.5) -> TrendResult:
         ],
         next_visit_by=dt.date(2025, 2, 1),
         next_visit_reason="hogging at pier 1 may pass its capacity",
+        overdue=True,
         cautions=[CAUTION],
     )

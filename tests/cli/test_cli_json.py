@@ -102,7 +102,15 @@ def test_assess_prints_the_contracts_keys(bedstone, workflow):
     document = strictly(bedstone("assess", "quillmere", "--json").out)
     section = document["girders"][0]["sections"][0]
     assert document["calibration_visit"] is None
-    assert list(section) == ["effect", "span", "support", "unyielding", "nominal", "calibrated"]
+    assert list(section) == [
+        "effect",
+        "span",
+        "support",
+        "unyielding",
+        "nominal",
+        "calibrated",
+        "supposed",
+    ]
     assert section["calibrated"]["utilisation"] is None
     assert {"utilisation_low95", "utilisation_high95", "probability_over_1"} <= set(section["calibrated"])
 

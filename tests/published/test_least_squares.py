@@ -218,7 +218,7 @@ def test_curve_fit_of_scipy_agrees_on_linear_models(name: str, absolute: bool) -
     design, y, sd = linear(name)
     p = design.shape[1]
     curve = Curve(np.arange(y.size), y, lambda _, b: design @ b, lambda _, b: design, False)
-    curve.sd, curve.size = sd, p
+    curve.sd, curve.size, curve.pads = sd, p, np.arange(p)
     found: Fit = fit(cast(Any, curve), start=np.zeros(p), prior=None)
     covariance = found.covariance
     if not absolute:

@@ -383,6 +383,7 @@ def _rival(
         effective_unknowns=5.3,
         told=told,
         simpler=simpler,
+        carried=told and aicc is not None and aicc < 43.0,
         told_apart_by=apart,
     )
 

@@ -57,7 +57,7 @@ def test_explanations_stand_in_order_with_how_they_stand(fit):
 def test_only_a_close_explanation_names_the_reading_that_decides(fit):
     assert len(deciding(fit)) == 1
     assert "pads and girder stiffness: compression" in deciding(fit)[0]
-    far = [replace(one, within_2=False) for one in fit.rivals]
+    far = [replace(one, carried=False) for one in fit.rivals]
     assert deciding(replace(fit, rivals=far)) == []
 
 

@@ -12,8 +12,9 @@ import numpy as np
 import pytest
 
 from assess.report import svg
-from assess.report.figures import elevation, history, moments, residuals, seats, utilisation
+from assess.report.figures import elevation, fan, history, moments, residuals, seats, utilisation
 from assess.report.figures.layout import pack, spread
+from assess.results import Fan, Share, SpanTrend
 
 
 @pytest.mark.parametrize("view", ["example", "single_span", "long_names"])
@@ -238,3 +239,54 @@ def test_the_years_under_a_pad_are_not_cut_at_the_edge_of_the_paper(day: dt.date
         years = [label for label in axes.get_xticklabels() if label.get_text()]
         assert years[-1].get_text() == "2032"
         assert max(label.get_window_extent().x1 for label in years) <= figure.bbox.x1
+
+
+def carried(effect="sagging", span=1, support=None, top=1.1):
+    """A row whose median climbs from 0.85."""
+    climb = np.linspace(0.0, 1.0, 5)
+    median = 0.85 + 0.1 * climb
+    lines = {
+        name: (median + k * (top - 0.95) * climb).tolist()
+        for name, k in (("low95", -1.0), ("low50", -0.4), ("median", 0.0), ("high50", 0.4), ("high95", 1.0))
+    }
+    return SpanTrend(
+        girder="north",
+        effect=effect,
+        span=span,
+        support=support,
+        utilisation_now=0.85,
+        status="within",
+        probability_over_1_now=0.0,
+        median_crossing=None,
+        earliest_5_percent=dt.date(2032, 3, 1),
+        fan=Fan(
+            dates=[dt.date(2026 + 3 * i, 5, 1) for i in range(5)],
+            probability_over_watch=[0.0, 0.2, 0.5, 0.7, 0.8],
+            probability_over_limit=[0.0, 0.01, 0.06, 0.15, 0.25],
+            **lines,
+        ),
+        shares_on=dt.date(2035, 5, 1),
+        shares=[Share(what="pad", support="pier 1", share=0.62), Share(what="loss", support=None, share=0.3)],
+    )
+
+
+def test_a_fan_says_its_numbers_and_what_they_come_from():
+    drawn = fan.plot(carried(), key="k")
+    for words in (
+        "Utilisation forecast, sagging in span 1",
+        "over 0.9 by then 80%, over 1 25%",
+        "5 % over 1 by 2032-03-01",
+        "the pad at pier 1 62%, section losses 30%",
+        "watch",
+        "limit",
+    ):
+        assert words in drawn
+
+
+def test_the_section_of_each_kind_that_comes_highest_is_drawn():
+    low, high = carried(span=1, top=1.0), carried(span=2, top=1.2)
+    shear = carried(effect="shear", span=1, support="pier 1")
+    still = replace(carried(effect="hogging", span=None, support="pier 1"), fan=None)
+    assert fan.governing([low, still, shear, high]) == [high, shear]
+    with pytest.raises(ValueError, match="no fan"):
+        fan.plot(still, key="k")

@@ -4,11 +4,15 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
+from numpy.typing import NDArray
 
-from assess.trend import crossing, fit_trend, pad_future
-from tests.trend.histories import MEAN, TAU, history
+from assess.trend import Cut, crossing, fit_trend, pad_future
+from tests.trend.histories import MEAN, TAU, TIMES, covariance, history, visit
+
+Floats = NDArray[np.float64]
 
 YEARS = np.array([0.0, 1.0, 2.0, 4.0])
+NO_PRIOR = np.full(3, np.inf)
 
 
 def test_half_of_the_draws_past_the_threshold_is_the_median() -> None:
@@ -56,22 +60,78 @@ def test_a_draw_that_has_passed_has_passed_for_good() -> None:
 
 
 def test_the_akaike_weight_is_even_at_one_parameters_cost() -> None:
-    # AIC differs by z^2 - 2: even at z^2 = 2, 1 / (1 + e) without any change
-    still = fit_trend(history(MEAN, np.zeros(3), None), MEAN, TAU)
-    assert [law.drift_weight for law in still.laws] == pytest.approx([1.0 / (1.0 + np.e)] * 3)
+    # from three visits steady or drift alone; AIC differs by z^2 - 2: even at z^2 = 2, 1 / (1 + e) without any change
+    few = TIMES[:3]
+    still = fit_trend(history(MEAN, np.zeros(3), None, times=few), MEAN, NO_PRIOR)
+    assert [law.weights["drift"] for law in still.laws] == pytest.approx([1.0 / (1.0 + np.e)] * 3)
     rate_sd = np.array([law.rate_sd for law in still.laws])
-    even = fit_trend(history(MEAN, np.sqrt(2.0) * rate_sd, None), MEAN, TAU)
-    assert [law.drift_weight for law in even.laws] == pytest.approx([0.5] * 3, abs=0.02)
-    clear = fit_trend(history(MEAN, 6.0 * rate_sd, None), MEAN, TAU)
-    assert all(law.drift_weight > 0.999 for law in clear.laws)
+    even = fit_trend(history(MEAN, np.sqrt(2.0) * rate_sd, None, times=few), MEAN, NO_PRIOR)
+    assert [law.weights["drift"] for law in even.laws] == pytest.approx([0.5] * 3, abs=0.02)
+    clear = fit_trend(history(MEAN, 6.0 * rate_sd, None, times=few), MEAN, NO_PRIOR)
+    assert all(law.weights["drift"] > 0.999 for law in clear.laws)
 
 
-def test_the_share_of_draws_that_drift_is_the_weight() -> None:
+def test_the_share_of_draws_that_move_is_the_weight_of_the_moving_laws() -> None:
     rate_sd = np.array([law.rate_sd for law in fit_trend(history(MEAN, np.zeros(3), None), MEAN, TAU).laws])
-    found = fit_trend(history(MEAN, np.array([0.0, 1.5, 8.0]) * rate_sd, None), MEAN, TAU)
+    ages = np.array([3.0, 3.0, np.nan])
+    found = fit_trend(history(MEAN, np.array([0.0, 1.5, 8.0]) * rate_sd, None), MEAN, TAU, ages=ages)
     future = pad_future(found, np.array([0.0, 5.0]), draws=8000, seed=1)
     moves = (future.log_stiffness[:, 1] != future.log_stiffness[:, 0]).mean(axis=0)
-    assert moves == pytest.approx([law.drift_weight for law in found.laws], abs=0.02)
+    assert moves == pytest.approx([law.moving for law in found.laws], abs=0.02)
+    assert 0.2 < moves[0] < moves[1] < moves[2]
+
+
+def test_creep_slows_where_a_drift_goes_on() -> None:
+    """A pad three years old whose stiffness follows log time: twice the age, the same gain again."""
+    curve = np.log((3.0 + TIMES) / (3.0 + TIMES[-1]))
+    visits = history(MEAN, np.array([0.0, 0.0, 0.0]), None, sd=0.01)
+    information = np.linalg.inv(covariance(0.01))
+    told = [
+        visit(v.time, MEAN - 0.3 * np.array([c, 0.0, 0.0]), information)
+        for v, c in zip(visits, curve, strict=True)
+    ]
+    found = fit_trend(told, MEAN, NO_PRIOR, ages=np.array([3.0, 3.0, 3.0]))
+    assert found.laws[0].law == "creep"
+    assert found.creep[0] == pytest.approx(-0.3, abs=1e-5)
+    ahead = pad_future(found, np.array([0.0, 11.0]), draws=4000, seed=1).log_stiffness[:, 1, 0]
+    assert np.median(ahead) == pytest.approx(MEAN[0] - 0.3 * np.log(2.0), abs=0.01)
+
+
+def test_after_a_step_the_pad_stays_where_it_is() -> None:
+    step = np.where(TIMES > 4.0, np.log(0.5), 0.0)
+    information = np.linalg.inv(covariance(0.03))
+    told = [
+        visit(float(t), MEAN + np.array([s, 0.0, 0.0]), information) for t, s in zip(TIMES, step, strict=True)
+    ]
+    found = fit_trend(told, MEAN, NO_PRIOR)
+    assert (found.laws[0].law, found.laws[0].step_between, found.laws[0].alarm) == ("step", (2, 3), "softer")
+    assert found.laws[0].step == pytest.approx(np.log(0.5))
+    line, sd = found.line(0, np.array([-8.0, 0.0]))
+    assert line == pytest.approx([MEAN[0], MEAN[0] + np.log(0.5)], abs=1e-4)
+    # three visits each side; that the correlated others stand still tells a little more
+    assert np.all((sd > 0.8 * 0.03 / np.sqrt(3.0)) & (sd < 0.03 / np.sqrt(3.0)))
+    ahead = pad_future(found, np.array([0.0, 10.0]), draws=2000, seed=1).log_stiffness[:, :, 0]
+    assert np.median(ahead[:, 1] - ahead[:, 0]) == 0.0
+
+
+def test_a_pad_replaced_starts_anew() -> None:
+    """Old pad at half, new pad at nominal since year 5: no change, its level from the later visits alone."""
+    information = np.linalg.inv(covariance(0.05))
+    level = np.where(TIMES > 5.0, 0.0, np.log(0.5))
+    told = [
+        visit(float(t), MEAN + np.array([s, 0.0, 0.0]), information)
+        for t, s in zip(TIMES, level, strict=True)
+    ]
+    uncut = fit_trend(told, MEAN, TAU)
+    found = fit_trend(told, MEAN, TAU, cuts=[Cut(pad=0, time=5.0)])
+    assert uncut.laws[0].law != "steady"
+    assert found.laws[0].law == "steady"
+    assert found.laws[0].told.size == 2
+    assert found.laws[0].told == pytest.approx([MEAN[0]] * 2, abs=0.01)
+    assert found.laws[1].told.size == 6
+    unread = fit_trend(told, MEAN, TAU, cuts=[Cut(pad=0, time=9.0)])
+    assert unread.now[0] == pytest.approx(MEAN[0], abs=1e-6)
+    assert np.sqrt(unread.now_covariance[0, 0]) >= 0.99 * TAU[0]
 
 
 def test_draws_start_from_today_with_its_covariance() -> None:
@@ -94,17 +154,53 @@ def test_a_clear_drift_is_carried_on_at_its_rate() -> None:
     assert np.all(np.diff(future.std(axis=0), axis=0) > 0.0)  # further ahead, less sure
 
 
-def test_forecasts_hold_what_comes_90_to_99_times_in_100() -> None:
-    """Pads that drift clearly, looked at four years after the last visit."""
-    rng, rate, inside = np.random.default_rng(61), np.array([-0.10, 0.10, -0.12]), []
-    for _ in range(200):
-        level = MEAN + TAU * rng.standard_normal(3)
-        found = fit_trend(history(level, rate, rng), MEAN, TAU)
-        ahead = pad_future(found, np.array([4.0]), draws=1000, seed=1).log_stiffness[:, 0]
+YEARLY = np.linspace(0.0, 14.0, 8)
+AHEAD = 4.0
+AGE = 1.0
+LENGTHS = [
+    pytest.param(60, 0.035, id="sample"),
+    pytest.param(800, 0.0, id="long", marks=pytest.mark.campaign),
+]
+
+
+def _changes(kind: str, rng: np.random.Generator) -> Floats:
+    """True change of ln k at the visits and four years later, (9, 3), a change of three times its own sd."""
+    times = np.append(YEARLY, YEARLY[-1] + AHEAD)[:, None] * np.ones(3)
+    shape = {
+        "steady": np.zeros((9, 3)),
+        "drift": times,
+        "creep": np.log(AGE + times),
+        "step": (np.arange(9)[:, None] > rng.integers(0, 7, 3)).astype(float),
+        "walk": np.cumsum(np.sqrt(np.diff(times, axis=0, prepend=0.0)) * rng.standard_normal((9, 3)), axis=0),
+    }[kind]
+    past = shape[:-1] - shape[:-1].mean(axis=0)
+    scale = {"step": 3.0 * 0.05, "walk": 0.02}.get(kind)
+    return np.asarray(
+        shape * (3.0 * 0.05 / np.sqrt((past**2).sum(axis=0) + 1e-12) if scale is None else scale)
+    )
+
+
+@pytest.mark.parametrize(("count", "chance"), LENGTHS)
+@pytest.mark.parametrize("kind", ["steady", "drift", "creep", "step", "walk"])
+def test_forecasts_hold_what_comes_90_to_98_times_in_100(kind: str, count: int, chance: float) -> None:
+    """Eight visits, looked at four years after the last, whatever the law is."""
+    rng, inside = np.random.default_rng(61), []
+    information, root = np.linalg.inv(covariance(0.05)), np.linalg.cholesky(covariance(0.05))
+    for _ in range(count):
+        truth = MEAN + 0.5 * TAU * rng.standard_normal(3) + _changes(kind, rng)
+        told = [
+            visit(float(t), x + root @ rng.standard_normal(3), information)
+            for t, x in zip(YEARLY, truth, strict=False)
+        ]
+        found = fit_trend(told, MEAN, TAU, ages=np.full(3, AGE))
+        ahead = pad_future(found, np.array([AHEAD]), draws=1000, seed=1).log_stiffness[:, 0]
         low, high = np.quantile(ahead, [0.025, 0.975], axis=0)
-        inside.append((low <= level + 4.0 * rate) & (level + 4.0 * rate <= high))
-    share = np.mean(inside, axis=0)
-    assert np.all((share >= 0.90) & (share <= 0.99)), share
+        inside.append((low <= truth[-1]) & (truth[-1] <= high))
+    share = np.mean(inside)
+    print(kind, f"{100 * share:.1f}")
+    # a walk of half a visit's sd a year is seldom told from standing still, and goes on
+    least = 0.84 if kind == "walk" else 0.90
+    assert least - chance <= share <= 0.98 + min(chance, 0.015), share
 
 
 def test_one_visit_is_carried_forward_as_it_stands() -> None:

@@ -58,8 +58,8 @@ def test_the_law_of_a_steady_pad_is_a_level_line() -> None:
     rate = np.array([-0.08, 0.0, 0.0])
     found = fit_trend(history(MEAN, rate, np.random.default_rng(5)), MEAN, TAU)
     assert [law.law for law in found.laws] == ["drift", "steady", "steady"]
-    assert found.law_rate[1:] == pytest.approx([0.0, 0.0], abs=1e-9)
-    assert found.law_rate[0] == pytest.approx(rate[0], abs=0.02)
+    assert found.law_change[1:] == pytest.approx([0.0, 0.0], abs=1e-9)
+    assert found.law_change[0] == pytest.approx(rate[0], abs=0.02)
     assert np.all(np.diag(found.law_covariance)[1:3] < np.diag(found.covariance)[1:3])
 
 
@@ -74,34 +74,34 @@ def laws(count: int, seed: int, rate: Floats, sd: float = 0.05):  # type: ignore
     ]
 
 
-@pytest.mark.parametrize("sd", [0.02, 0.05, 0.15])
-def test_steady_pads_are_called_drifting_in_at_most_7_of_100_histories(sd: float) -> None:
-    false = np.array([[law.law == "drift" for law in one.laws] for one in laws(500, 51, NONE, sd)])
-    assert false.mean() <= 0.07
-    assert false.mean() >= 0.02  # a test at 5 %, not one that never speaks
+@pytest.mark.parametrize("sd", [0.02, 0.15])
+def test_steady_pads_are_called_changed_in_about_5_of_100_histories(sd: float) -> None:
+    false = np.array([[law.law != "steady" for law in one.laws] for one in laws(160, 51, NONE, sd)])
+    assert 0.015 <= false.mean() <= 0.08  # a test at 5 %, not one that never speaks
 
 
 @pytest.mark.campaign
 @pytest.mark.parametrize("sd", [0.02, 0.05, 0.1, 0.15])
 def test_steady_pads_stay_steady_at_length(sd: float) -> None:
-    false = np.array([[law.law == "drift" for law in one.laws] for one in laws(5000, 52, NONE, sd)])
-    assert 0.03 <= false.mean() <= 0.06
+    false = np.array([[law.law != "steady" for law in one.laws] for one in laws(3000, 52, NONE, sd)])
+    assert 0.03 <= false.mean() <= 0.055
 
 
-def test_a_change_of_three_point_three_deviations_is_found_in_85_of_100_histories() -> None:
+def test_a_change_of_three_point_three_deviations_is_found_in_82_of_100_histories() -> None:
     rate_sd = np.array([law.rate_sd for law in fit_trend(history(MEAN, NONE, None), MEAN, TAU).laws])
     rate = np.array([-3.3, 3.3, -3.3]) * rate_sd
-    found = laws(300, 53, rate)
-    drifts = np.array([[law.law == "drift" for law in one.laws] for one in found])
-    assert np.all(drifts.mean(axis=0) >= 0.85), drifts.mean(axis=0)
-    right = np.array([np.sign(one.rate) == np.sign(rate) for one in found])
-    assert right.mean() > 0.995
+    found = laws(150, 53, rate)
+    changed = np.array([[law.law != "steady" for law in one.laws] for one in found])
+    assert np.all(changed.mean(axis=0) >= 0.82), changed.mean(axis=0)
+    right = np.array([[law.alarm == ("stiffer" if r > 0 else "softer") for law, r in zip(one.laws, rate, strict=True)]
+                      for one in found])  # fmt: skip
+    assert right[changed].mean() > 0.98
 
 
 @pytest.mark.parametrize("slope", [0.0, -0.1])
 def test_intervals_of_the_rate_hold_the_truth_90_to_99_times_in_100(slope: float) -> None:
     rate = np.array([slope, 0.0, 0.03])
-    found = laws(400, 54, rate)
+    found = laws(200, 54, rate)
     low, high = np.array([[law.interval for law in one.laws] for one in found]).transpose(2, 0, 1)
     inside = ((low <= rate) & (rate <= high)).mean(axis=0)
     assert np.all((inside >= 0.90) & (inside <= 0.99)), inside
@@ -109,7 +109,7 @@ def test_intervals_of_the_rate_hold_the_truth_90_to_99_times_in_100(slope: float
 
 def test_levels_today_hold_the_truth_90_to_99_times_in_100() -> None:
     rng, inside = np.random.default_rng(55), []
-    for _ in range(400):
+    for _ in range(200):
         level = MEAN + TAU * rng.standard_normal(3)
         found = fit_trend(history(level, np.array([-0.1, 0.0, 0.0]), rng), MEAN, TAU)
         inside.append(np.abs(found.now - level) <= Z95 * np.sqrt(np.diag(found.now_covariance)))
@@ -118,18 +118,16 @@ def test_levels_today_hold_the_truth_90_to_99_times_in_100() -> None:
 
 
 def test_visits_that_scatter_widen_the_interval_by_the_birge_ratio() -> None:
-    visits = history(MEAN, NONE, None)
-    kink = np.array([0.2, -0.2, 0.2, -0.2, 0.2, -0.2])
+    few, kink = [0.0, 2.0, 4.0], np.array([0.1, -0.2, 0.1])  # no slope; too few visits for a step
     information = np.linalg.inv(covariance(0.05))
-    shaken = [
-        visit(v.time, MEAN + np.array([d, 0.0, 0.0]), information) for v, d in zip(visits, kink, strict=True)
-    ]
-    plain, found = fit_trend(visits, MEAN, TAU), fit_trend(shaken, MEAN, TAU)
-    line = found.level + (TIMES - TIMES[-1])[:, None] * found.rate
-    misfit = np.array([v.log_stiffness for v in shaken]) - line
-    birge = np.sqrt(((misfit / np.array([v.sd for v in shaken])) ** 2).sum(axis=0)[0] / (6 - 2))
-    assert found.laws[0].scatter == pytest.approx(birge)
-    assert birge > 3.0
+    shaken = [visit(t, MEAN + np.array([d, 0.0, 0.0]), information) for t, d in zip(few, kink, strict=True)]
+    plain, found = (
+        fit_trend(history(MEAN, NONE, None, times=few), MEAN, NO_PRIOR),
+        fit_trend(shaken, MEAN, NO_PRIOR),
+    )
+    birge = np.sqrt(((kink / 0.05) ** 2).sum() / 2)
+    assert found.laws[0].law == "steady"
+    assert found.laws[0].scatter == pytest.approx(birge, rel=1e-6)
     assert found.laws[0].rate_sd == pytest.approx(birge * plain.laws[0].rate_sd)
     assert found.laws[2].scatter == 1.0
 
@@ -141,7 +139,7 @@ def test_one_visit_gives_no_rate() -> None:
     visits = history(MEAN - 0.2, NONE, None, times=[0.0])
     found = fit_trend(visits, MEAN, TAU)
     assert all(not law.determined and np.isnan(law.rate) and law.law == "steady" for law in found.laws)
-    assert all(law.drift_weight == 0.0 for law in found.laws)
+    assert all(law.moving == 0.0 for law in found.laws)
     assert found.now == pytest.approx(visits[0].log_stiffness)
     assert found.now_covariance == pytest.approx(visits[0].covariance)
 
@@ -162,7 +160,7 @@ def test_two_visits_give_a_rate_with_a_wide_interval() -> None:
 def test_two_visits_a_month_apart_give_no_rate_for_coarse_readings() -> None:
     found = fit_trend(history(MEAN, NONE, None, sd=0.1, times=[0.0, 0.08]), MEAN, TAU)
     assert not any(law.determined for law in found.laws)
-    assert all(law.law == "steady" and law.drift_weight == 0.0 for law in found.laws)
+    assert all(law.law == "steady" and law.moving == 0.0 for law in found.laws)
 
 
 def test_a_pad_told_by_one_visit_only_has_no_rate() -> None:

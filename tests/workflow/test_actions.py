@@ -320,3 +320,15 @@ def test_nothing_open_and_nothing_there_are_said(record: str) -> None:
         said = call(record, "action", *words)
         assert (said.code, said.err.count("\n")) == (2, 1)
         assert "there is no action 9" in said.err
+
+
+def test_an_intervention_of_the_record_counts_like_one_of_the_bridge_file(tmp_path: Path) -> None:
+    url = str(tmp_path / "r.sqlite")
+    workflow.init_record(url)
+    add(url, tmp_path, "ashlow", "5100 kN m", visit=RECENT)
+    before = workflow.assess(url, "ashlow")
+    words = ("--girder", "north", "--support", "pier 1", "--kind", "replaced", "--date", TODAY.isoformat())
+    assert call(url, "intervention", "add", "ashlow", *words).code == 0
+    after = workflow.assess(url, "ashlow")
+    assert any('the pad at "pier 1" was replaced' in one for one in after.cautions)
+    assert after.input_digest != before.input_digest

@@ -193,11 +193,28 @@ BESIDE_CALIBRATION = {
     "effective_unknowns",
     "told",
     "simpler",
+    "carried",
     "told_apart_by",
 }
+BESIDE_TREND = {
+    "step_percent",
+    "step_low95",
+    "step_high95",
+    "weights",
+    "alarm",
+    "p_value",
+    "creep_since",
+    "sen_percent_per_year",
+    "mann_kendall_p",
+    "since",
+    "too_wide_from",
+    "fan",
+    "shares_on",
+    "shares",
+}
 BESIDE = {
-    "assess": {"version", "input_digest", "seed", "draws", "actions"},
-    "trend": {"next_visit_reason", "seats", "actions"},
+    "assess": {"version", "input_digest", "seed", "draws", "actions", "supposed"},
+    "trend": {"next_visit_reason", "seats", "losses", "today", "overdue", "actions"},
 }
 
 
@@ -234,7 +251,7 @@ def check(value: Any, shape: Any, where: str = "") -> None:
 def trimmed(document: dict[str, Any], command: str) -> dict[str, Any]:
     assert set(document) >= BESIDE[command]
     plain = {key: value for key, value in document.items() if key not in BESIDE[command]}
-    return without(plain, BESIDE_INSIDE) if command == "assess" else plain
+    return without(plain, BESIDE_INSIDE if command == "assess" else BESIDE_TREND)
 
 
 def without(value: Any, keys: set[str]) -> Any:
@@ -260,10 +277,10 @@ def documents(tmp_path_factory: pytest.TempPathFactory) -> dict[str, Any]:
     made = {"nominal": call(record, "assess", "quillmere", "--json").document}
     call(record, "calibrate", "quillmere")
     made["assess"] = call(record, "assess", "quillmere", "--json").document
-    made["one visit"] = call(record, "trend", "quillmere", "--json").document
+    made["one visit"] = call(record, "trend", "quillmere", "--today", "2024-06-01", "--json").document
     for date, ratio in (("2016-05-10", 1.0), ("2018-06-01", 0.85), ("2020-05-20", 0.7), ("2022-05-10", 0.55)):
         call(record, "visit", "log", str(write_visit(folder, date, [0.9, ratio, 1.1])))
-    made["trend"] = call(record, "trend", "quillmere", "--json").document
+    made["trend"] = call(record, "trend", "quillmere", "--today", "2024-06-01", "--json").document
     return made
 
 

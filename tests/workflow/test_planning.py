@@ -262,6 +262,14 @@ def test_seats_that_nothing_reads_are_named(gauges: Case) -> None:
     assert any("nothing on offer tells whether the seat at" in said for said in gauges.result.cautions)
 
 
+def test_a_seat_that_could_be_levelled_and_is_not_is_named(unread: Case) -> None:
+    result = workflow.plan(unread.url, unread.bridge, vehicle=VEHICLE, readings=2)
+    levelled = {one.support for one in result.girders[0].readings if one.quantity == "settlement"}
+    (said,) = [one for one in result.cautions if "is not told by these readings" in one]
+    for seat in result.girders[0].seats:
+        assert (f'"{seat.support}"' in said) == (seat.support not in levelled)
+
+
 def test_more_readings_and_more_places_leave_less_open(gauges: Case) -> None:
     def left(**options: int) -> float:
         plan = workflow.plan(gauges.url, gauges.bridge, vehicle=VEHICLE, **options).girders[0]

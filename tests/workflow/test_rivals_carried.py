@@ -89,3 +89,14 @@ def test_the_worst_rival_is_the_girder_solved_as_that_rival_has_it(tmp_path: Pat
         assert worst is not None
         assert worst == pytest.approx(max(rows[i] for rows in used.values()), abs=1e-9)
         assert used[str(section.calibrated.worst_rival)][i] == pytest.approx(worst, abs=1e-9)
+
+
+def test_what_no_one_asks_for_makes_no_rival_of_the_calibration_itself(tmp_path: Path) -> None:
+    """The pads as they were at a loaded datum are in every rival, so that pads alone are still pads alone."""
+    path = write_survey(tmp_path, "2024-05-14", Truth(ratios=(0.9, 0.8, 1.1)), GAPS, tests=ALL)
+    path.write_text(path.read_text().replace("[visit]\n", '[visit]\ndatum_load = "permanent"\n', 1))
+    url = new_record(tmp_path)
+    workflow.log_visit(url, path)
+    (shown,) = workflow.calibrate(url, "quillmere")
+    assert shown.girders[0].calibrated_as == "pads only"
+    assert not any("north: pads only would explain" in caution for caution in shown.cautions)

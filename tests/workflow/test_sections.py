@@ -142,7 +142,7 @@ def test_an_assessment_of_a_day_has_the_losses_of_that_day(visited: str) -> None
     assert utilisations(visited)[span]["capacity"] == after[span]["capacity"]
 
 
-def test_losses_are_said_and_held_in_the_forecast(visited: str) -> None:
+def test_losses_are_said_and_carried_forward(visited: str) -> None:
     document: Any = call(visited, "assess", "ashbeck", "--json").document
     told = 'Section "mid": stiffness and capacity hold the losses measured up to 2022-05-16'
     assert [c for c in document["cautions"] if c.startswith(told)]
@@ -150,7 +150,12 @@ def test_losses_are_said_and_held_in_the_forecast(visited: str) -> None:
     assert not [c for c in early["cautions"] if "hold the losses" in c]
     assert [c for c in early["cautions"] if c.startswith("Capacities from plates are strength times section")]
     trend: Any = call(visited, "trend", "ashbeck", "--json").document
-    assert [c for c in trend["cautions"] if c.startswith('Losses of the plates (section "mid") are held')]
+    assert [c for c in trend["cautions"] if c.startswith('Losses of the plates (section "mid") are carried')]
+    losses = {one["plate"]: one for one in trend["losses"]}
+    assert losses["web"]["loss_mm"] == pytest.approx(2.0)
+    assert losses["web"]["low95"] < losses["web"]["rate_mm_per_year"] < losses["web"]["high95"]
+    fans = [s for s in trend["spans"] if s["fan"] is not None and s["span"] == 1 and s["effect"] == "sagging"]
+    assert fans[0]["fan"]["median"][-1] > fans[0]["fan"]["median"][0]
     now = {(s["effect"], s["span"]): s["utilisation_now"] for s in trend["spans"]}
     assert now["sagging", 1] == pytest.approx(
         utilisations(visited)["sagging", 1, None]["utilisation"], rel=0.01

@@ -9,6 +9,7 @@ import click
 from assess.cli.tables.actions import show_first
 from assess.cli.tables.beside import show_beside
 from assess.cli.tables.screen import print_cautions, print_heading, print_table
+from assess.cli.tables.supposed import show_supposed
 from assess.cli.tables.words import chance, interval, number, section_name
 
 if TYPE_CHECKING:
@@ -24,9 +25,12 @@ def show_assessment(result: AssessmentResult) -> None:
         click.echo(f"Bridge {result.bridge}: no kept calibration; the calibrated case is the nominal one")
     else:
         click.echo(f"Bridge {result.bridge}: pads as calibrated from the visit {result.calibration_visit}")
+    for line in result.supposed:
+        click.echo(f"Supposed: {line}")
     for girder in result.girders:
         print_heading(f"Girder {girder.girder}")
         _show_sections(girder)
+        show_supposed(girder)
         show_beside(girder)
         click.echo()
         print_table(

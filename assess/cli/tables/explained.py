@@ -105,7 +105,9 @@ def _standing(girder: GirderCalibration, one: RivalResult) -> str:
         words.append("not told by the readings")
     elif one.within_2:
         words.append("within 2 of the best")
-    if one.simpler and one.within_2:
+    elif one.carried:
+        words.append("within 2 by AIC")
+    if one.simpler and one.carried:
         words.append("simpler")
     return ", ".join(words)
 

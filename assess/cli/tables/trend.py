@@ -13,9 +13,10 @@ from assess.cli.tables.screen import print_cautions, print_heading, print_table,
 from assess.cli.tables.words import NOT_DETERMINED, chance, day, interval, number, section_name
 
 if TYPE_CHECKING:
-    from assess.results import PadTrend, SeatTrend, SpanTrend, TrendResult
+    from assess.results import LossTrend, PadTrend, SeatTrend, SpanTrend, TrendResult
 
 NONE_FORESEEN = "none foreseen"
+_NAMED = 4  # of what a spread comes from, at most
 STEP_VISITS = 4  # fewer cannot tell a step from a drift
 
 
@@ -31,9 +32,14 @@ def show_trend(result: TrendResult) -> None:
             click.echo()
             _show_seats(seats)
         click.echo()
-        _show_spans([span for span in result.spans if span.girder == name])
+        rows = [span for span in result.spans if span.girder == name]
+        _show_spans(rows)
+        _show_shares(rows)
+    if result.losses:
+        print_heading("Plates")
+        _show_losses(result.losses)
     click.echo()
-    print_wrapped(_next_visit(result.next_visit_by, result.next_visit_reason))
+    print_wrapped(_next_visit(result))
     print_cautions(result.cautions)
 
 
@@ -56,7 +62,8 @@ def _show_pads(pads: Sequence[PadTrend]) -> None:
 
 def _step(pad: PadTrend) -> str:
     if pad.step_between is not None:
-        return " and ".join(map(day, pad.step_between))
+        told = " and ".join(map(day, pad.step_between))
+        return told if pad.step_percent is None else f"{told}: {number(pad.step_percent)} %"
     return "no step" if pad.visits >= STEP_VISITS else "cannot be told"
 
 
@@ -73,8 +80,7 @@ def _show_seats(seats: Sequence[SeatTrend]) -> None:
                 seat.support,
                 str(seat.visits),
                 f"{number(seat.settlement_mm)} ({number(seat.sd_mm)})",
-                interval(seat.rate_mm_per_year, seat.low95, seat.high95)
-                + (", moving" if seat.moving else ""),
+                interval(seat.rate_mm_per_year, seat.low95, seat.high95) + _moves(seat),
             ]
             for seat in seats
         ],
@@ -110,9 +116,47 @@ def _crossing(span: SpanTrend, date: dt.date | None) -> str:
     return day(date, none=NOT_DETERMINED if span.utilisation_now is None else NONE_FORESEEN)
 
 
-def _next_visit(date: dt.date | None, reason: str) -> str:
-    told = f": {reason}" if reason else ""
-    if date is None:
+def _moves(seat: SeatTrend) -> str:
+    if seat.step_between is not None:
+        return f", a step between {' and '.join(map(day, seat.step_between))}"
+    return ", moving" if seat.moving else ""
+
+
+def _show_losses(losses: Sequence[LossTrend]) -> None:
+    print_table(
+        ["section", "plate", "visits", "thickness lost, mm\n(all faces)", "lost a year, mm\n(95 % interval)"],
+        [
+            [
+                one.section,
+                one.plate,
+                str(one.visits),
+                number(one.loss_mm),
+                interval(one.rate_mm_per_year, one.low95, one.high95),
+            ]
+            for one in losses
+        ],
+        words=2,
+    )
+
+
+def _show_shares(spans: Sequence[SpanTrend]) -> None:
+    """Say what the forecast of the most used section is uncertain by."""
+    told = [span for span in spans if span.shares and span.shares_on is not None]
+    if not told:
+        return
+    most = max(told, key=lambda span: span.utilisation_now or 0.0)
+    each = ", ".join(
+        f"{'section losses' if one.what == 'loss' else f'{one.what} {one.support}'} {one.share:.0%}"
+        for one in most.shares[:_NAMED]
+    )
+    name = section_name(most.effect, most.span, most.support)
+    click.echo()
+    print_wrapped(f"The spread of {name} on {day(most.shares_on)} comes from: {each}")
+
+
+def _next_visit(result: TrendResult) -> str:
+    told = f": {result.next_visit_reason}" if result.next_visit_reason else ""
+    if result.next_visit_by is None:
         return f"Next visit: date {NOT_DETERMINED}{told}"
-    late = " (OVERDUE)" if date < dt.date.today() else ""
-    return f"Next visit by {date}{late}{told}"
+    late = " (OVERDUE)" if result.overdue else ""
+    return f"Next visit by {result.next_visit_by}{late}{told}"
