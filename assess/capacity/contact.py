@@ -61,7 +61,8 @@ def loads_on(
     by_kind = np.ones(len(permanent.kinds)) if factors is None else factors
     before = by_kind @ permanent.simple_forces
     pressed = np.where(np.isinf(compliance), 0.0, compliance) * before if before.any() else 0.0
-    return by_kind @ permanent.forces + before, np.asarray(settlement - pressed)
+    crept = permanent.crept(compliance, by_kind)
+    return by_kind @ permanent.forces + before, np.asarray(settlement - pressed + crept)
 
 
 @dataclass(frozen=True, kw_only=True)

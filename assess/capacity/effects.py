@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import copy
 from collections.abc import Sequence
 from functools import cached_property
 
@@ -57,6 +58,12 @@ class Effects:
         self._passages: dict[str, list[Part]] = {
             name: live_parts(place, loads) for name, place in self._places.items()
         }
+
+    def creeping(self, lasting: float) -> Effects:
+        """The same effects on pads that lasting load presses down `lasting` times as far as a short one."""
+        other = copy.copy(self)
+        other._permanent = self._permanent.creeping(lasting)
+        return other
 
     # what does not move ------------------------------------------------------------------------
 

@@ -6,6 +6,7 @@ lever rule, whatever the supports do. Everything later acts on the continuous gi
 
 from __future__ import annotations
 
+import copy
 from collections.abc import Sequence
 
 import numpy as np
@@ -27,10 +28,12 @@ class PermanentLoads:
     kinds : one entry for each row below
     forces : (kinds, n) support forces of what the continuous girder carries, supports held level
     simple_forces : (kinds, n) support forces of what came on span by span
+    lasting : compliance of the pads under lasting load over that under short load; 1 without creep
     """
 
     def __init__(self, condensed: Condensed, loads: GirderLoads, kinds: Sequence[str]) -> None:
         self.kinds = tuple(kinds)
+        self.lasting = 1.0
         self._condensed = condensed
         self._later = [_joined(loads, kind, continuous=True) for kind in kinds]
         self._before = [_joined(loads, kind, continuous=False) for kind in kinds]
@@ -50,9 +53,31 @@ class PermanentLoads:
         pairs = zip(self._later, self._before, strict=True)
         return np.array([place.held(later) + place.simple(before) for later, before in pairs])
 
+    def creeping(self, lasting: float) -> PermanentLoads:
+        """The same loads on pads that lasting load presses down `lasting` times as far as a short one."""
+        other = copy.copy(self)
+        other.lasting = lasting
+        return other
+
     def states(self, compliance: Floats) -> list[SupportState]:
         """What the supports do under each kind, without what came on span by span."""
-        return [self._condensed.solve(compliance, forces) for forces in self.forces]
+        if self.lasting == 1.0:
+            return [self._condensed.solve(compliance, forces) for forces in self.forces]
+        pairs = zip(self.forces, self.simple_forces, strict=True)
+        crept = [(forces, (self.lasting - 1.0) * compliance * simple) for forces, simple in pairs]
+        return [self._condensed.solve(self.lasting * compliance, forces, drop) for forces, drop in crept]
+
+    def crept(self, compliance: Floats, factors: Floats) -> Floats:
+        """How far factored (kinds,) loads press pads (..., n) down beyond a short load, m: a drop to the girder."""
+        if self.lasting == 1.0:
+            return np.zeros(compliance.shape)
+        finite = np.where(np.isinf(compliance), 0.0, compliance)
+        stuck = [
+            state.reaction + simple
+            for state, simple in zip(self.states(finite), self.simple_forces, strict=True)
+        ]
+        pressed = np.sum([factor * one for factor, one in zip(factors, stuck, strict=True)], axis=0)
+        return np.asarray((self.lasting - 1.0) * finite * pressed)
 
     def settled(self, compliance: Floats, settlement: Floats) -> SupportState:
         """What the supports do under seat drops (..., n) alone."""

@@ -87,8 +87,8 @@ class RivalResult:
     log_likelihood: float
     effective_unknowns: float
     told: bool
-    simpler: bool
-    carried: bool
+    simpler: bool = False
+    carried: bool = False
     told_apart_by: str | None
 
 

@@ -9,6 +9,7 @@ from numpy.typing import NDArray
 
 from assess.capacity import evaluate_draws
 from assess.capacity.checks import Check
+from assess.workflow.building import GirderModel
 from assess.workflow.study import SEED
 from assess.workflow.supports import Supports, acting
 from assess.workflow.unknowns import Setup
@@ -70,7 +71,7 @@ def aim_of(setup: Setup, supports: Supports, theta: Floats, steps: Floats) -> Ai
     dropped = np.concatenate([np.zeros((size, model.n)), np.diag(seat_sd)])
     thetas = theta + np.concatenate([np.zeros((1, size)), moved, -moved])
     seats = supports.seats(model) + np.concatenate([np.zeros((1, model.n)), dropped, -dropped])
-    rows = evaluate_draws(model.effects, model.factors, *_acting(setup, thetas, seats))
+    rows = evaluate_draws(_crept(setup, theta).effects, model.factors, *_acting(setup, thetas, seats))
     known = [i for i, row in enumerate(rows) if np.all(np.isfinite(row.utilisation))]
     used = np.array([rows[i].utilisation for i in known]).reshape(len(known), len(thetas))
     up, down = np.split(used[:, 1:], 2, axis=1)
@@ -113,7 +114,8 @@ def with_corners(aim: Aim, setup: Setup, supports: Supports, theta: Floats, cova
     stands, first, second = noise @ (vectors * np.sqrt(np.clip(values, 0.0, None))).T
     thetas = theta + np.concatenate([stands + first, stands + second])
     seats = np.tile(supports.seats(setup.model), (len(thetas), 1))
-    rows = evaluate_draws(setup.model.effects, setup.model.factors, *_acting(setup, thetas, seats))
+    crept = _crept(setup, theta)
+    rows = evaluate_draws(crept.effects, crept.factors, *_acting(setup, thetas, seats))
     used = next(row.utilisation for row in rows if row.check is aim.check)
     found = ((used[:_PAIRS] - used[_PAIRS:]) ** 2).sum()
     linear = (((first - second) @ aim.gradient) ** 2).sum()
@@ -142,12 +144,17 @@ def _today(setup: Setup, supports: Supports, gradients: Floats) -> Floats:
     return np.asarray(variance)
 
 
+def _crept(setup: Setup, theta: Floats) -> GirderModel:
+    """The girder with the creep that theta (size,) gives its pads; the assessment's draws take it as it is."""
+    places = setup.layout.places("sustained")
+    return setup.model.creeping(float(theta[places[0]])) if places else setup.model
+
+
 def _acting(setup: Setup, thetas: Floats, seats: Floats) -> tuple[Floats, Floats]:
     """Compliances and seat drops (d, n) of unknowns (d, size), with seats (d, n) where they are none of them."""
     layout, seats = setup.layout, seats.copy()
     for j in layout.places("settlements"):
         seats[:, layout.entries[j].index] = thetas[:, j]
-    log_factor, log_sustained = (
-        thetas[:, places[0]] if (places := layout.places(block)) else 0.0 for block in ("girder", "sustained")
-    )
-    return acting(setup.model, thetas[:, layout.of("pads")], seats, log_factor, log_sustained)
+    factor = layout.places("girder")
+    log_factor = thetas[:, factor[0]] if factor else 0.0
+    return acting(setup.model, thetas[:, layout.of("pads")], seats, log_factor)

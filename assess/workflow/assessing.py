@@ -206,18 +206,20 @@ def _assess_girder(model: GirderModel, supports: Supports) -> GirderAssessment:
     calibrated, drops = supports.acting(model)
     firm = evaluate(model.effects, model.factors, model.unyielding, none)
     nominal = evaluate(model.effects, model.factors, model.compliance(model.nominal), none)
-    found = evaluate(model.effects, model.factors, calibrated, drops)
-    draws = evaluate_draws(model.effects, model.factors, *supports.draws(model, DRAWS, SEED))
+    crept = supports.on(model)
+    found = evaluate(crept.effects, model.factors, calibrated, drops)
+    draws = evaluate_draws(crept.effects, model.factors, *supports.draws(model, DRAWS, SEED))
     carried = [] if supports.fit is None else supports.fit.rivals
     others = [
-        evaluate(model.effects, model.factors, *supports.as_rival(rival).acting(model)) for rival in carried
+        evaluate(one.on(model).effects, model.factors, *one.acting(model))
+        for one in map(supports.as_rival, carried)
     ]
     names = [rival.name for rival in carried]
     sections = [
         _section(model, *four, _worst(names, [rows[i] for rows in others]))
         for i, four in enumerate(zip(firm, nominal, found, draws, strict=True))
     ]
-    reactions = _reactions(model, calibrated, drops)
+    reactions = _reactions(crept, calibrated, drops)
     shown = [CarriedRival(name=one.name, told_apart_by=one.told_apart_by) for one in carried]
     return GirderAssessment(girder=model.doc.id, sections=sections, reactions=reactions, rivals=shown)
 
@@ -228,7 +230,8 @@ def _beside_supposed(
     """The same assessment with the supposed case beside the calibrated one."""
     other = supposed_model(model, supposed)
     with tipping_named(other, "as supposed"):
-        acting = supposed_supports(other, supports, supposed).acting(other)
+        stands = supposed_supports(other, supports, supposed)
+        other, acting = stands.on(other), stands.acting(other)
         rows = evaluate(other.effects, other.factors, *acting)
         reactions = _reactions(other, *acting)
     sections = [

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import copy
 import datetime as dt
 from functools import cached_property
 
@@ -112,6 +113,16 @@ class GirderModel:
         result = np.zeros((*log_stiffness.shape[:-1], self.n))
         result[..., self.pads] = np.exp(-log_stiffness)
         return result
+
+    def creeping(self, log_sustained: float) -> GirderModel:
+        """The same girder on pads whose sustained stiffness is that many (ln) times the short-term one."""
+        if log_sustained == 0.0:
+            return self
+        other = copy.copy(self)
+        lasting = float(np.exp(-log_sustained))
+        other.__dict__["effects"] = self.effects.creeping(lasting)
+        other.__dict__["permanent"] = self.permanent.creeping(lasting)
+        return other
 
     @property
     def unyielding(self) -> Floats:

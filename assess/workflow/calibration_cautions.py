@@ -50,7 +50,7 @@ def _of_pads(shown: GirderCalibration) -> list[str]:
                 f"{shown.girder}: the girder answers the test {one.value:.3g} times as stiff as its sections say; what makes it so "
                 "(deck, parapet, locked joint) need not be there at the limit, and no capacity is raised for it."
             )
-        if one.data_share < TOLD:
+        if one.data_share < TOLD and not one.name.startswith("benchmark "):
             said.append(
                 f"{shown.girder}: {one.name} is told by the assumption, not by the readings (data share {one.data_share:.0%})."
             )
@@ -100,7 +100,13 @@ def _of_causes(shown: GirderCalibration) -> list[str]:
     untold = [f'"{one.support}"' for one in shown.causes if one.cause == UNTOLD]
     both = [f'"{one.support}"' for one in shown.causes if one.cause == PAD_AND_SEAT]
     said = []
-    if untold:
+    if untold and any(one.name == "datum shift" for one in shown.others):
+        said.append(
+            f"{shown.girder}: with an unknown datum it cannot be told which seats fell and which rose, nor so whether pad or seat "
+            f"has moved at {', '.join(untold)}; what bends the girder, the distances of the seats from the line through the end "
+            "seats, is told without the datum."
+        )
+    elif untold:
         said.append(
             f"{shown.girder}: it cannot be told from these readings whether pad or seat has moved at {', '.join(untold)}: read the "
             "seat's level and the pad's gap together."

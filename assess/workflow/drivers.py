@@ -30,10 +30,11 @@ class Driver:
 
 def drivers(model: GirderModel, supports: Supports, row: SpanTrend) -> list[Driver]:
     """Seats and pads by what they add to a section's utilisation, the largest first."""
+    model = supports.on(model)
     drops, pads = supports.seats(model), supports.log_stiffness
 
     def used(log_stiffness: Floats, seats: Floats) -> float:
-        acts = acting(model, log_stiffness, seats, supports.log_factor, supports.log_sustained)
+        acts = acting(model, log_stiffness, seats, supports.log_factor)
         return _utilisation(model, *acts, row)
 
     whole = used(pads, drops)

@@ -79,9 +79,10 @@ def spans_ahead(model: GirderModel, ahead: Ahead, *, draws: int) -> list[SpanTre
     now = np.zeros(model.n)
     for support, law in ahead.seats.items():
         now[model.doc.support_index(support)] = law.last
-    girder = (ahead.log_factor, ahead.log_sustained)
+    crept = model.creeping(ahead.log_sustained)
     with tipping_named(model):
-        rows = evaluate(model.effects, model.factors, *acting(model, ahead.trend.now, now, *girder))
+        acts = acting(model, ahead.trend.now, now, ahead.log_factor)
+        rows = evaluate(crept.effects, model.factors, *acts)
     drawn = _draw(model, ahead, draws)
     used = _used(model, ahead, drawn)
     names, inputs = _inputs(model, ahead, drawn, len(used[0]))
@@ -127,8 +128,8 @@ def _used(model: GirderModel, ahead: Ahead, drawn: _Drawn) -> list[Floats]:
 
 
 def _evaluated(model: GirderModel, ahead: Ahead, drawn: _Drawn, most: int | None) -> list[Floats]:
-    girder = (ahead.log_factor, ahead.log_sustained)
-    compliances, drops = acting(model, drawn.log_stiffness[:most], drawn.drops[:most], *girder)
+    model = model.creeping(ahead.log_sustained)
+    compliances, drops = acting(model, drawn.log_stiffness[:most], drawn.drops[:most], ahead.log_factor)
     with tipping_named(model, "carried forward"):
         count = draws_worth(model, compliances, drops)
         some = (x[:count].reshape(-1, model.n) for x in (compliances, drops))

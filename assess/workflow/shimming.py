@@ -128,7 +128,8 @@ class _Packed:
     """One girder line and what packing does to it."""
 
     def __init__(self, model: GirderModel, supports: Supports, stock: Stock) -> None:
-        self.model, self.known, self.stock = model, supports, stock
+        self.new = model  # pads that have not crept yet
+        self.model, self.known, self.stock = supports.on(model), supports, stock
         self.compliance, drops = supports.acting(model)
         self.seats = Seats(drops=drops, by_height=self._by_height(drops))
 
@@ -137,7 +138,7 @@ class _Packed:
         known, seats = self.known, self.known.seats(self.model)
         packed = seats - _UNIT * np.eye(self.model.n)
         log_stiffness = np.tile(known.log_stiffness, (self.model.n, 1))
-        moved = acting(self.model, log_stiffness, packed, known.log_factor, known.log_sustained)[1]
+        moved = acting(self.model, log_stiffness, packed, known.log_factor)[1]
         return np.asarray((moved - drops).T / _UNIT)
 
     # search --------------------------------------------------------------------------------------
@@ -192,7 +193,7 @@ class _Packed:
         model, none = self.model, np.zeros(self.model.n)
         nothing = self._rows(none)
         new, old_seats = self._replaced()
-        replaced = evaluate(model.effects, model.factors, new, old_seats)
+        replaced = evaluate(self.new.effects, model.factors, new, old_seats)
         before, with_new = _known(_worst(nothing)), _known(_worst(replaced))
         reason, heights, bound = None, none, None
         if before is None:
@@ -242,8 +243,9 @@ class _Packed:
     def _reactions(self, heights: Floats, replaced: tuple[Floats, Floats]) -> list[ShimReaction]:
         effects = self.model.effects
         packed = self.seats.drops + self.seats.by_height @ heights
-        cases = [(self.compliance, self.seats.drops), (self.compliance, packed), replaced]
-        found = [effects.steady_reactions(*case).permanent for case in cases]
+        cases = [(effects, self.compliance, self.seats.drops), (effects, self.compliance, packed)]
+        cases.append((self.new.effects, *replaced))
+        found = [one.steady_reactions(*on).permanent for one, *on in cases]
         return [
             ShimReaction(
                 support=support.id,

@@ -43,7 +43,8 @@ class Supports:
     log_stiffness, covariance : (q,), (q, q) of ln k
     source : visit of the calibration, None for nominal pads
     settlements : by support id; none with nominal pads
-    log_factor, log_sustained : ln of the factor on the girder's stiffness, and of the pads' sustained ratio
+    log_factor, log_sustained : ln of the factor on the girder's stiffness, and of the pads' sustained ratio; draws take
+        that ratio as it is
     joined : supports whose settlement is the calibration's own, drawn together with its pads
     """
 
@@ -65,7 +66,11 @@ class Supports:
 
     def acting(self, model: GirderModel) -> tuple[Floats, Floats]:
         """Compliances and seat drops (n,) that the girder of the bridge file acts on; see `acting`."""
-        return acting(model, self.log_stiffness, self.seats(model), self.log_factor, self.log_sustained)
+        return acting(model, self.log_stiffness, self.seats(model), self.log_factor)
+
+    def on(self, model: GirderModel) -> GirderModel:
+        """The girder with its pads' creep under lasting load."""
+        return model.creeping(self.log_sustained)
 
     def draws(self, model: GirderModel, count: int, seed: int) -> tuple[Floats, Floats]:
         """Draw what `acting` gives, both (count, n)."""
@@ -75,7 +80,7 @@ class Supports:
                 log_stiffness = _many(self.fit.draws, count, seed)[:, : self.log_stiffness.size]
             else:
                 log_stiffness = draw_normal(self.log_stiffness, self.covariance, count, seed)
-            return acting(model, log_stiffness, seats, self.log_factor, self.log_sustained)
+            return acting(model, log_stiffness, seats, self.log_factor)
         if self.fit.draws is not None:
             theta = _many(self.fit.draws, count, seed)
         else:
@@ -83,16 +88,14 @@ class Supports:
         for place, support in zip(self.fit.places("settlements"), self.fit.seats, strict=True):
             if support in self.joined:
                 seats[:, model.doc.support_index(support)] = theta[:, place]
-        log_factor, log_sustained = (
-            theta[:, places[0]] if (places := self.fit.places(block)) else 0.0
-            for block in ("girder", "sustained")
-        )
-        return acting(model, theta[:, : self.log_stiffness.size], seats, log_factor, log_sustained)
+        factor = self.fit.places("girder")
+        log_factor = theta[:, factor[0]] if factor else 0.0
+        return acting(model, theta[:, : self.log_stiffness.size], seats, log_factor)
 
     @property
     def _pads_alone(self) -> bool:
         assert self.fit is not None
-        return not (self.joined or self.log_factor or self.log_sustained)
+        return not (self.joined or self.log_factor)
 
     def seat_draws(self, model: GirderModel, count: int, seed: int) -> Floats:
         """Draw seat drops, (count, n), each for itself."""
@@ -125,36 +128,22 @@ class Supports:
 
 
 def acting(
-    model: GirderModel,
-    log_stiffness: Floats,
-    seats: Floats,
-    log_factor: Floats | float = 0.0,
-    log_sustained: Floats | float = 0.0,
+    model: GirderModel, log_stiffness: Floats, seats: Floats, log_factor: Floats | float = 0.0
 ) -> tuple[Floats, Floats]:
     """Compliances and seat drops (..., n) on which the girder of the bridge file acts as the calibrated one does.
 
     A girder phi times as stiff on compliances f and seats s has the forces of the girder itself on phi f and phi s.
-    What the permanent load presses the pads down beyond their short-term stiffness, (f_sustained - f) R, is a seat
-    drop to all that comes after.
 
     Parameters
     ----------
     log_stiffness, seats : (..., q), (..., n)
-    log_factor, log_sustained : (...)
+    log_factor : (...)
     """
-    compliance, factor = model.compliance(log_stiffness), np.exp(log_factor)
-    if np.any(log_sustained):
-        lasting = compliance * np.exp(-np.asarray(log_sustained))[..., None]
-        staged, forces = model.permanent.simple_forces.sum(axis=0), model.permanent.forces.sum(axis=0)
-        phi = np.asarray(factor)[..., None]
-        before = seats + (lasting - compliance) * staged
-        pressed = model.condensed.solve(phi * lasting, forces, phi * before).reaction + staged
-        seats = seats + (lasting - compliance) * np.maximum(pressed, 0.0)
-    if np.any(log_factor):
-        return np.asarray(compliance * np.asarray(factor)[..., None]), np.asarray(
-            seats * np.asarray(factor)[..., None]
-        )
-    return compliance, seats
+    compliance = model.compliance(log_stiffness)
+    if not np.any(log_factor):
+        return compliance, seats
+    factor = np.exp(np.asarray(log_factor))[..., None]
+    return np.asarray(compliance * factor), np.asarray(seats * factor)
 
 
 def _many(draws: Floats, count: int, seed: int) -> Floats:

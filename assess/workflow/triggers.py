@@ -125,7 +125,7 @@ class _Girder:
         visit: VisitDoc | None,
         states: Sequence[LoadStateDoc],
     ) -> None:
-        self.model, self.known, self.visit, self.states = model, supports, visit, states
+        self.model, self.known, self.visit, self.states = supports.on(model), supports, visit, states
         self.seats = supports.seats(model)
         pads = [_What(kind="pad", support=int(i), place=p) for p, i in enumerate(model.pads)]
         self.what = pads + [_What(kind="seat", support=i, place=i) for i in range(model.n)]
@@ -167,9 +167,7 @@ class _Girder:
             log_stiffness = np.tile(known.log_stiffness, (values.size, 1))
             seats = np.tile(self.seats, (values.size, 1))
             (log_stiffness if what.kind == "pad" else seats)[:, what.place] = values
-            compliance, drops = acting(
-                self.model, log_stiffness, seats, known.log_factor, known.log_sustained
-            )
+            compliance, drops = acting(self.model, log_stiffness, seats, known.log_factor)
             return compliance, np.broadcast_to(drops, compliance.shape)
 
         return Moving(now=now, low=now - reach, high=now + reach, supports=supports)

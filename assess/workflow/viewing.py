@@ -144,7 +144,7 @@ def _girder(study: Study, girder: str, calibration: VisitFit | None, part: Girde
         states=_states(study, model, calibration),
         moments=lines,
         histories=_histories(model, part) if part is not None else [],
-        stands=governing_stands(model, *supports.acting(model), lines),
+        stands=governing_stands(supports.on(model), *supports.acting(model), lines),
         hinges_m=list(model.doc.hinges),
         lie=lie_of(model),
     )
@@ -207,10 +207,14 @@ def _states(study: Study, model: GirderModel, calibration: VisitFit | None) -> l
 
 def _moments(model: GirderModel, supports: Supports) -> MomentLines:
     plan, effects, factors = model.plan, model.effects, model.factors
-    none = np.zeros(model.n)
-    cases = [(model.unyielding, none), (model.compliance(model.nominal), none), supports.acting(model)]
-    lines = [demands_at(effects, factors, *case) for case in cases]
-    drawn = moment_draws(effects, factors, *supports.draws(model, _BAND_DRAWS, SEED))
+    none, crept = np.zeros(model.n), supports.on(model).effects
+    cases = [
+        (effects, model.unyielding, none),
+        (effects, model.compliance(model.nominal), none),
+        (crept, *supports.acting(model)),
+    ]
+    lines = [demands_at(case[0], factors, *case[1:]) for case in cases]
+    drawn = moment_draws(crept, factors, *supports.draws(model, _BAND_DRAWS, SEED))
     bands = [np.quantile(one, [0.025, 0.975], axis=0) for one in drawn]
     sagging, hogging = ([one["moment", sign].factored for one in lines] for sign in (1.0, -1.0))
     permanent = [one["moment", 1.0].permanent for one in lines]

@@ -73,16 +73,12 @@ def test_the_worst_rival_is_the_girder_solved_as_that_rival_has_it(tmp_path: Pat
     girder = model()
     used: dict[str, list[float]] = {}
     for rival in fit.rivals:
-        phi, ratio = np.exp(rival.log_factor), np.exp(rival.log_sustained)
+        phi = np.exp(rival.log_factor)
         compliance = np.zeros(girder.n)
         compliance[girder.pads] = np.exp(-rival.log_stiffness)
         drops = np.array([rival.settlements.get(support.id, 0.0) for support in girder.doc.supports])
-        forces = np.linalg.solve(
-            np.eye(girder.n) + phi * girder.condensed.K * (compliance / ratio),
-            girder.permanent.forces.sum(axis=0) - phi * girder.condensed.K @ drops,
-        )
-        pressed = drops + (1.0 / ratio - 1.0) * compliance * forces
-        rows = evaluate(girder.effects, girder.factors, phi * compliance, phi * pressed)
+        crept = girder.creeping(rival.log_sustained)
+        rows = evaluate(crept.effects, girder.factors, phi * compliance, phi * drops)
         used[rival.name] = [row.case.utilisation for row in rows]
     for i, section in enumerate(assessed.girders[0].sections):
         worst = section.calibrated.worst_rival_utilisation
