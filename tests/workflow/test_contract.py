@@ -169,6 +169,11 @@ BESIDE_INSIDE = {
     "calibrated_lifts_under",
     "rivals",
     "worst_rival",
+    "supposed",
+    "supposed_permanent_kN",
+    "supposed_live_max_kN",
+    "supposed_live_min_kN",
+    "supposed_lifts_under",
     "worst_rival_utilisation",
 }
 BESIDE_CALIBRATION = {
