@@ -1,6 +1,6 @@
 """Readings to stiffnesses: observation equations, least squares, diagnostics."""
 
-from assess.calibrate.causes import PAD_AND_SEAT, UNTOLD, Cause, causes
+from assess.calibrate.causes import PAD_AND_SEAT, PAD_AT_LEAST, SEAT, UNTOLD, Cause, causes
 from assess.calibrate.fit import SUSPECT, Z95, Fit, NotDetermined, Problem, draw_normal, fit
 from assess.calibrate.observations import LEVELLED, Observation, ObservationModel, PermanentState
 from assess.calibrate.posterior import Posterior, draw_posterior
@@ -16,6 +16,8 @@ __all__ = [
     "CLOSE",
     "LEVELLED",
     "PAD_AND_SEAT",
+    "PAD_AT_LEAST",
+    "SEAT",
     "SUSPECT",
     "UNTOLD",
     "Z95",

@@ -35,6 +35,7 @@ BOTH = float(stats.chi2.isf(_ALPHA, 2))
 DROP, LOSS = 0.005, 0.6  # m of a seat, and of a stiffness: what readings must be able to show
 
 PAD, SEAT, PAD_AND_SEAT, NEITHER, UNTOLD = "pad", "seat", "pad and seat", "neither", "cannot be told"
+PAD_AT_LEAST = "pad; seat cannot be told"
 
 
 @dataclass(frozen=True, kw_only=True)
@@ -44,7 +45,7 @@ class Cause:
     Attributes
     ----------
     support : index
-    cause : "pad" | "seat" | "pad and seat" | "neither" | "cannot be told"
+    cause : "pad" | "seat" | "pad and seat" | "pad; seat cannot be told" | "neither" | "cannot be told"
     without_seat, without_pad, without_both : rise of the sum of squares with the seat still, the pad as nominal, both
     seat_sd : m, of the drop by the readings alone; infinite where nothing was read since the datum
     pad_sd : of ln k by the readings alone
@@ -98,6 +99,7 @@ def causes(model: ObservationModel, prior: Prior, start: Floats) -> list[Cause]:
                 cause=_judged(
                     seat > SEAT_MOVED,
                     pad > (PAD_SOFTER if change < 0.0 else PAD_STIFFER),
+                    blind=np.isfinite(seat_sd) and np.sqrt(SEAT_MOVED) * seat_sd > DROP,
                     hidden=both > BOTH or _hidden(seat_sd, float(sd[i]), change),
                 ),
                 without_seat=seat,
@@ -133,11 +135,12 @@ def _cost(model: ObservationModel, prior: Prior, free: NDArray[np.intp] | None, 
     return float(problem.cost(minimise(problem.linearise, start[free]).theta))
 
 
-def _judged(seat: bool, pad: bool, *, hidden: bool) -> str:
+def _judged(seat: bool, pad: bool, *, blind: bool, hidden: bool) -> str:
+    """The cause in a word; `blind` where the seat was read, but could have dropped unseen."""
     if seat and pad:
         return PAD_AND_SEAT
     if seat:
         return SEAT
     if pad:
-        return PAD
+        return PAD_AT_LEAST if blind else PAD
     return UNTOLD if hidden else NEITHER

@@ -18,6 +18,9 @@ def read_unknowns(ctx: click.Context, param: click.Parameter, value: str | None)
     if value is None:
         return None
     names = tuple(dict.fromkeys(name.strip() for name in value.split(",") if name.strip()))
+    if not names:
+        message = f"it names nothing; write some of {','.join(UNKNOWNS)}, parted by commas"
+        raise click.BadParameter(message, ctx=ctx, param=param)
     wrong = [name for name in names if name not in UNKNOWNS]
     if wrong:
         message = f"'{wrong[0]}' is no unknown; write some of {','.join(UNKNOWNS)}, parted by commas"
@@ -94,6 +97,8 @@ def command(
         raise click.UsageError(
             "each reading that is left out needs its reason: --without READING --reason TEXT, as many of both"
         )
+    if len(set(without)) < len(without):
+        raise click.UsageError("a reading is named twice by --without: once is enough, with one reason")
     if any(not text.strip() for text in reason):
         raise click.UsageError("a --reason is empty: say why the reading is left out")
     from assess import workflow

@@ -94,7 +94,8 @@ class RivalResult:
 
 @dataclass(frozen=True, kw_only=True)
 class CauseResult:
-    """What moved at a support: "pad" | "seat" | "pad and seat" | "neither" | "cannot be told".
+    """What moved at a support: "pad" | "seat" | "pad and seat" | "pad; seat cannot be told" | "neither" |
+    "cannot be told".
 
     `off_if_seat_still_sd` and `off_if_pad_nominal_sd` say how far off the readings would be, in standard deviations,
     with the seat at rest and with the pad within its nominal scatter; None where nothing was read of the seat.

@@ -4,9 +4,9 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 
-from assess.calibrate import PAD_AND_SEAT, SUSPECT, UNTOLD, Fit
+from assess.calibrate import PAD_AND_SEAT, PAD_AT_LEAST, SUSPECT, UNTOLD, Fit
 from assess.results import GirderCalibration
-from assess.workflow.cautions import MISFIT, REFERENCE_TEMPERATURE, TOLD, is_far_from_reference
+from assess.workflow.cautions import MISFIT, REFERENCE_TEMPERATURE, TOLD, WELL_TOLD, is_far_from_reference
 from assess.workflow.fitting import Fitting
 from db.documents import ReadingDoc, VisitDoc
 
@@ -61,11 +61,12 @@ def _of_seats(shown: GirderCalibration) -> list[str]:
     blind = [s for s in shown.settlements_mm if s.data_share < TOLD]
     if not blind:
         return []
-    bent = [s for s in blind if s.moment_relevant_data_share >= TOLD]
+    between = shown.settlements_mm[1:-1]  # the end seats make the line
+    bent = all(s.moment_relevant_data_share >= WELL_TOLD for s in between) and between
     names = ", ".join(f'"{s.support}"' for s in blind)
     said = f"{shown.girder}: how far the seats at {names} have dropped in all is told by the assumption, not by the readings"
     if bent:
-        said += "; what bends the girder, their distance from the line through the end seats, is told"
+        said += "; what bends the girder, the distances of the seats between from the line through the end seats, is told"
     return [f"{said}."]
 
 
@@ -76,11 +77,9 @@ def _of_rivals(shown: GirderCalibration) -> list[str]:
     for one in close:
         word = "as well as" if own is None or own.within_2 else "better than"
         decide = f"; this would decide: {one.told_apart_by}" if one.told_apart_by else ""
-        ranks = (
-            ""
-            if own is None or None in (own.aicc, one.aicc)
-            else f" (AICc {one.aicc:.1f} against {own.aicc:.1f})"
-        )
+        ranks = " (by AIC; AICc holds more against a second explanation of few readings)"
+        if one.within_2 and own is not None and None not in (own.aicc, one.aicc):
+            ranks = f" (AICc {one.aicc:.1f} against {own.aicc:.1f})"
         said.append(
             f"{shown.girder}: {one.name} would explain the readings {word} the calibration{ranks}, and the assessment carries "
             f"it along{decide}."
@@ -97,7 +96,7 @@ def _of_rivals(shown: GirderCalibration) -> list[str]:
 def _of_causes(shown: GirderCalibration) -> list[str]:
     if not shown.settlements_mm:
         return []
-    untold = [f'"{one.support}"' for one in shown.causes if one.cause == UNTOLD]
+    untold = [f'"{one.support}"' for one in shown.causes if one.cause in (UNTOLD, PAD_AT_LEAST)]
     both = [f'"{one.support}"' for one in shown.causes if one.cause == PAD_AND_SEAT]
     said = []
     if untold and any(one.name == "datum shift" for one in shown.others):

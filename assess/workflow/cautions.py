@@ -16,6 +16,7 @@ STANDING = (
     "Stiffness seen under a test load may not be there at ultimate load: movements prove stiffness, not strength.",
 )
 
+WELL_TOLD = 0.95  # of the distance of a seat from the line through the end seats
 TOLD = 0.5  # data share below which a pad is told by the assumption
 REFERENCE_TEMPERATURE = 20.0  # degC
 _FAR = 10.0  # K from the reference that calls for a word
@@ -86,7 +87,7 @@ def settlements_used(girder: str, drops: Sequence[tuple[str, float, float, dt.da
     if not drops:
         return []
     each = "; ".join(f'"{s}" {mm:.3g} mm (sd {sd:.2g} mm, {date})' for s, mm, sd, date in drops)
-    said = f"{girder}: the permanent effects of the calibrated case include the measured settlements of the seats"
+    said = f"{girder}: the permanent effects of the calibrated case include the settlements of the seats as levelled or calibrated"
     return [
         f"{said}, downward: {each}. The girder's full stiffness answers them, without relief by creep of the girder."
     ]

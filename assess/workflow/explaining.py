@@ -7,7 +7,7 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
-from assess.calibrate import Cause, Layout, Rival, causes, rivals
+from assess.calibrate import PAD_AND_SEAT, PAD_AT_LEAST, SEAT, UNTOLD, Cause, Layout, Rival, causes, rivals
 from assess.calibrate.unknowns import NUISANCE
 from assess.results import CauseResult, RivalResult
 from assess.workflow.deciding import deciding_reading
@@ -17,6 +17,7 @@ from assess.workflow.unknowns import LEVELS, Setup
 
 Floats = NDArray[np.float64]
 
+DATUM = "pads and datum"
 SEEN = 0.05  # of an unknown's loosened variance that the readings must take away to speak of it at all
 
 
@@ -52,10 +53,11 @@ def explain(fitting: Fitting) -> Explained:
         shown.append(_shown(one, apart, simpler))
         if one is not main and one.close and one.share >= SEEN:
             carried.append(_carried(whole, one, apart))
+    shifted = any(one.name == DATUM and one.close for one in ranked) and own != DATUM
     return Explained(
         rivals=shown,
         carried=carried,
-        causes=[_cause(fitting.setup, one) for one in told],
+        causes=[_cause(fitting.setup, one, shifted=shifted) for one in told],
         own=own,
     )
 
@@ -82,7 +84,7 @@ def _sets(whole: Setup, setup: Setup) -> tuple[dict[str, list[int]], str]:
         sets[f'pads and settlement at "{support}"'] = [*base, j]
     sets["pads and girder stiffness"] = [*base, *layout.places("girder")]
     if "datum" in layout:
-        sets["pads and datum"] = [*base, *layout.places("datum")]
+        sets[DATUM] = [*base, *layout.places("datum")]
     # nuisances are in every rival: they tell none from another
     entries = [entry for entry in setup.layout.entries if entry.block not in NUISANCE]
     asked = {entry_of(whole.layout, entry.block, entry.index) for entry in entries}
@@ -151,12 +153,18 @@ def _causes(setup: Setup) -> list[Cause]:
     return causes(own.equations, own.prior(), own.start)
 
 
-def _cause(setup: Setup, one: Cause) -> CauseResult:
+def _cause(setup: Setup, one: Cause, *, shifted: bool) -> CauseResult:
+    """A cause as shown; where the levels' datum may have moved instead (`shifted`), no seat is said to have."""
+    cause = one.cause
+    if shifted and cause == SEAT:
+        cause = UNTOLD
+    elif shifted and cause == PAD_AND_SEAT:
+        cause = PAD_AT_LEAST
     support = setup.model.doc.supports[one.support].id
     seat, pad = (float(np.sqrt(max(rise, 0.0))) for rise in (one.without_seat, one.without_pad))
     return CauseResult(
         support=support,
-        cause=one.cause,
+        cause=cause,
         off_if_seat_still_sd=seat if np.isfinite(one.seat_sd) else None,
         off_if_pad_nominal_sd=pad,
     )

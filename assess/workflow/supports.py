@@ -235,7 +235,7 @@ def _fitted_seats(
     """
     shown = next(girder for girder in visit_fit.result.girders if girder.girder == fit.girder)
     told = {s.support for s in shown.settlements_mm if s.data_share >= cautions.TOLD}
-    if all(s.moment_relevant_data_share >= cautions.TOLD for s in shown.settlements_mm):
+    if all(s.moment_relevant_data_share >= cautions.WELL_TOLD for s in shown.settlements_mm):
         told = {s.support for s in shown.settlements_mm}
     tied = np.abs(fit.joint) > _TIED * np.sqrt(np.outer(np.diag(fit.joint), np.diag(fit.joint)))
     found = {}
