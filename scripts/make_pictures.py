@@ -19,6 +19,8 @@ PARTS = {
     "section": "Section pier 2:",
     "moments": "Girder north: factored moments",
     "pads": "Pad at pier 2",
+    "pad-and-seat": "Pad and seat at pier 2",
+    "forecast": "sagging in span 3",
 }
 QUIET = [
     "--no-sandbox",
