@@ -32,6 +32,8 @@ def command(record: str, output: Path | None, refresh: bool, as_json: bool) -> N
     """
     if output is not None and not output.parent.is_dir():
         raise wrong("this folder does not exist", file=output.parent, remedy="make it, or name another place")
+    if output is not None and output.suffix.lower() not in (".html", ".htm"):
+        raise wrong("a page is written as .html", file=output, remedy="name it for example network.html")
     from assess import workflow
     from assess.cli.tables.network import show_network
 

@@ -83,6 +83,13 @@ def close_action(
         _words("--although", although)
     with open_record(url) as record:
         action = record.action(number)
+        found = max((one.visit for one in action.findings if one.visit is not None), default=None)
+        if visit is not None and found is not None and visit < found:
+            raise BedstoneError(
+                f"the visit of {visit} lies before that of {found}, which found it",
+                field="--visit",
+                remedy="name the visit that took the check reading",
+            )
         still = [] if action.closed else _still(record, action)
         if still and although is None:
             problem = f"action {number} cannot be closed: {action.details['where']} is still {still[0]}"

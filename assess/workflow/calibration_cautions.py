@@ -121,7 +121,13 @@ def _of_misfit(shown: GirderCalibration, readings: Sequence[ReadingDoc], found: 
     suspects = [
         (abs(found.standardised[j]), reading) for j, reading in enumerate(readings) if found.suspect[j]
     ]
-    if suspects:
+    if suspects and shown.degrees_of_freedom == 0:
+        worst, reading = max(suspects, key=lambda pair: pair[0])
+        said.append(
+            f"{girder}: {_named(reading)} stands {worst:.1f} standard deviations off what is believed of the pads, and no other "
+            "reading checks it: the pad may have changed, or the reading may be wrong. Read it again, and read more beside it."
+        )
+    elif suspects:
         worst, reading = max(suspects, key=lambda pair: pair[0])
         others = (
             f"; {len(suspects) - 1} more pass it too, perhaps because of this one"

@@ -13,6 +13,8 @@ from assess.workflow.kept_fits import GirderFit
 from db.documents import BridgeDoc
 from db.intervention_doc import InterventionDoc
 
+UNREAD = "by assumption, until a visit reads it"
+
 
 def replaced(bridge: BridgeDoc, girder: str) -> list[InterventionDoc]:
     """Pads of a girder that were replaced, by date."""
@@ -51,8 +53,8 @@ def with_new_pads(
             spread[i, i] = variance
         share[i] = 0.0
         said.append(
-            f'{model.doc.id}: the pad at "{support}" was replaced on {day}, after the calibration of {calibrated}: it stands at '
-            "nominal here, by assumption, until a visit reads it."
+            f'{model.doc.id}: the pad at "{support}" was replaced on {day}, after the calibration of {calibrated}: '
+            f"it stands at nominal here, {UNREAD}."
         )
     if not said:
         return fit, []

@@ -21,6 +21,7 @@ from assess.workflow import cautions
 from assess.workflow.actions import open_actions
 from assess.workflow.assessing import assess_in
 from assess.workflow.cautions import section_name
+from assess.workflow.interventions import UNREAD
 from assess.workflow.status import status_of
 from assess.workflow.study import VERSION, Progress, quiet
 from assess.workflow.trending import trend_in
@@ -130,6 +131,8 @@ def _row(
     case = None if section is None else section.calibrated
     used = None if case is None else case.utilisation
     doubts = _doubts(state, late, due, failed)
+    if assessment is not None and any(UNREAD in caution for caution in assessment.cautions):
+        doubts.append("a pad replaced since the last calibration has not been read")
     if used is None and failed is None:
         doubts.append("no utilisation could be determined")
     worst = max((action.days_overdue for action in overdue), default=0)

@@ -23,6 +23,7 @@ from assess.workflow.building import GirderModel
 from assess.workflow.calibrating import calibrate_visit
 from assess.workflow.dates import reach, years_between
 from assess.workflow.forecasting import Ahead, spans_ahead
+from assess.workflow.interventions import replaced
 from assess.workflow.kept_fits import GirderFit, VisitFit, options_of
 from assess.workflow.losses_ahead import PlateLoss, plate_losses
 from assess.workflow.next_visit import is_stale, next_visit
@@ -106,6 +107,13 @@ def trend_study(
 ) -> tuple[TrendResult, list[GirderTrend]]:
     """Trend of a fetched bridge as seen on a day (today for None), and the girders' parts of it."""
     today = today or dt.date.today()
+    newest = max((visit.date for visit in study.visits), default=today)
+    if today < newest:
+        raise BedstoneError(
+            f"{today} lies before the visit of {newest}",
+            field="--today",
+            remedy="name a day from then on: the trend is drawn through all visits of the record",
+        )
     fits = _all_fits(study, progress)
     if not fits:
         raise BedstoneError(
@@ -214,8 +222,10 @@ def _of_spans(part: GirderTrend) -> list[str]:
 
 
 def _aged(study: Study, part: GirderTrend, today: dt.date, *, overdue: bool) -> GirderTrend:
-    """The part as a day sees it: once a visit is overdue nothing is known to be within."""
-    if not (overdue or is_stale(study, part.visits[-1].date, today)):
+    """The part as a day sees it: once a visit is overdue, or a pad new and unread, nothing is known to be within."""
+    last = part.visits[-1].date
+    unread = any(last < one.date <= today for one in replaced(study.bridge, part.girder))
+    if not (overdue or unread or is_stale(study, last, today)):
         return part
     spans = [replace(row, status="unknown") if row.status == "within" else row for row in part.spans]
     return replace(part, spans=spans)

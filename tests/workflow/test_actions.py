@@ -15,6 +15,7 @@ from assess import workflow
 from assess.results import ActionResult
 from assess.workflow import action_rules, actions, ranking
 from db.action_doc import ActionsDoc
+from db.errors import BedstoneError
 from db.records import ActionEvent, KeptAction
 from db.store import open_record
 from tests.workflow.conftest import call
@@ -332,3 +333,46 @@ def test_an_intervention_of_the_record_counts_like_one_of_the_bridge_file(tmp_pa
     after = workflow.assess(url, "ashlow")
     assert any('the pad at "pier 1" was replaced' in one for one in after.cautions)
     assert after.input_digest != before.input_digest
+
+
+def test_a_pad_that_is_new_and_unread_leaves_nothing_within(tmp_path: Path) -> None:
+    url = str(tmp_path / "record.sqlite")
+    workflow.init_record(url)
+    add(url, tmp_path, "corrie", "9000 kN m", visit=RECENT)
+    assert "within" in {row.status for row in workflow.trend(url, "corrie").spans}
+    day = TODAY - dt.timedelta(days=10)
+    words = ("--girder", "north", "--support", "pier 1", "--kind", "replaced", "--date", day.isoformat())
+    assert call(url, "intervention", "add", "corrie", *words).code == 0
+    assert "within" not in {row.status for row in workflow.trend(url, "corrie").spans}
+    (row,) = workflow.network(url).bridges
+    assert row.status == "unknown"
+    assert "a pad replaced since the last calibration has not been read" in row.first
+
+
+def test_a_day_before_the_last_visit_is_refused(weak: tuple[str, Path]) -> None:
+    with pytest.raises(BedstoneError, match="lies before the visit of") as refused:
+        workflow.trend(weak[0], "corrie", today=TODAY - dt.timedelta(days=61))
+    assert refused.value.field == "--today"
+
+
+def test_evidence_is_not_older_than_what_it_closes(tmp_path: Path) -> None:
+    url = str(tmp_path / "record.sqlite")
+    workflow.init_record(url)
+    add(url, tmp_path, "corrie", "1300 kN m", visit=RECENT)
+    log(url, tmp_path, "corrie", (TODAY - dt.timedelta(days=400)).isoformat())
+    number = workflow.assess(url, "corrie").actions[0].action
+    with pytest.raises(BedstoneError, match="which found it"):
+        workflow.close_action(
+            url,
+            number,
+            evidence="gaps read",
+            by="bridge engineer",
+            visit=TODAY - dt.timedelta(days=400),
+            although="x",
+        )
+
+
+def test_a_page_of_the_network_is_no_pdf(weak: tuple[str, Path], tmp_path: Path) -> None:
+    done = call(weak[0], "network", "-o", str(tmp_path / "page.pdf"))
+    assert done.code == 2
+    assert "a page is written as .html" in done.err
