@@ -40,6 +40,7 @@ from assess.workflow.kept_fits import VisitFit
 from assess.workflow.lifting import tipping_named
 from assess.workflow.pad_checks import check_pads
 from assess.workflow.sections import last_loss
+from assess.workflow.status import known
 from assess.workflow.study import DRAWS, SEED, VERSION, Progress, Study, quiet, telling_readings
 from assess.workflow.supports import Supports, kept_fits, supports_of
 from assess.workflow.suppose import Supposition, read_suppositions, supposed_model, supposed_supports
@@ -280,8 +281,8 @@ def _section(
         calibrated=CalibratedCase(
             **_case(calibrated.case),
             settlement=calibrated.case.settled,
-            utilisation_with_relief=_known(calibrated.case.with_relief),
-            utilisation_without_relief=_known(calibrated.case.without_relief),
+            utilisation_with_relief=known(calibrated.case.with_relief),
+            utilisation_without_relief=known(calibrated.case.without_relief),
             utilisation_low95=low,
             utilisation_high95=high,
             probability_over_1=over,
@@ -294,22 +295,17 @@ def _section(
 def _case(case: Case) -> dict[str, Any]:
     return {
         "x_m": case.x,
-        "capacity": _known(case.resistance),
+        "capacity": known(case.resistance),
         "permanent": case.permanent,
         "live": case.live,
         "factored": case.factored,
-        "utilisation": _known(case.utilisation),
-        "rating_factor": _known(case.rating_factor),
-        "least_rating_factor": _known(case.least_rating),
-        "least_rating_x_m": _known(case.least_rating_x),
-        "rating_levels": {name: _known(value) for name, value in case.ratings},
+        "utilisation": known(case.utilisation),
+        "rating_factor": known(case.rating_factor),
+        "least_rating_factor": known(case.least_rating),
+        "least_rating_x_m": known(case.least_rating_x),
+        "rating_levels": {name: known(value) for name, value in case.ratings},
         "temperature": case.temperature,
     }
-
-
-def _known(value: float) -> float | None:
-    """None for what is not determined."""
-    return value if np.isfinite(value) else None
 
 
 def _reactions(model: GirderModel, calibrated: Floats, drops: Floats) -> list[ReactionResult]:

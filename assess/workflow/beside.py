@@ -17,6 +17,7 @@ from assess.calibrate import (
 )
 from assess.results import ProposedRemoval, RobustPad
 from assess.workflow.fitting import Fitting, Options, key_of
+from assess.workflow.status import known
 from assess.workflow.study import DRAWS, SEED
 from assess.workflow.unknowns import Setup
 
@@ -82,7 +83,7 @@ def proposals_of(fitting: Fitting, options: Options) -> list[ProposedRemoval]:
         ProposedRemoval(
             reading=key_of(setup.readings[one.reading]),
             standardised_residual=one.standardised,
-            p_value=float(one.p_value) if np.isfinite(one.p_value) else None,
+            p_value=known(one.p_value),
             alike=[key_of(setup.readings[j]) for j in one.alike],
         )
         for one in propose(without, len(setup.readings)).proposals

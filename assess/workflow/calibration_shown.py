@@ -22,6 +22,7 @@ from assess.results import (
 from assess.workflow.explaining import Explained
 from assess.workflow.fitting import Fitting
 from assess.workflow.pads import cold_shift, corrected
+from assess.workflow.status import known
 from assess.workflow.unknowns import Setup
 from db.documents import ReadingDoc
 from db.quantities import to_unit
@@ -69,7 +70,7 @@ def shown_girder(
         others=others,
         chi_square=found.chi_square,
         degrees_of_freedom=found.degrees_of_freedom,
-        p_value=_finite(found.p_value),
+        p_value=known(found.p_value),
         correlations=_correlations(setup, found),
         singular_values=[float(value) for value in found.singular_values],
         rivals=explained.rivals,
@@ -97,7 +98,7 @@ def _pads(
             support=support,
             stiffness_kN_per_m=float(estimate[i]),
             low95_kN_per_m=float(np.exp(low[i])),
-            high95_kN_per_m=_finite(float(np.exp(high[i]))),
+            high95_kN_per_m=known(float(np.exp(high[i]))),
             nominal_kN_per_m=float(nominal[i]),
             ratio_to_nominal=float(estimate[i] / nominal[i]),
             data_share=float(found.data_share[i]),
@@ -231,7 +232,7 @@ def _reading(
     return replace(
         row,
         predicted=to_unit(float(found.predicted[j]), reading.unit),
-        standardised_residual=_finite(float(found.standardised[j])),
+        standardised_residual=known(float(found.standardised[j])),
         suspect=bool(found.suspect[j]),
         redundancy=float(found.redundancy[j]),
         minimal_detectable=_in_unit(float(detectable[j]), reading.unit),
@@ -240,7 +241,3 @@ def _reading(
 
 def _in_unit(value: float, unit: str) -> float | None:
     return to_unit(value, unit) if np.isfinite(value) else None
-
-
-def _finite(value: float) -> float | None:
-    return float(value) if np.isfinite(value) else None

@@ -33,6 +33,7 @@ from assess.results import (
 from assess.workflow import cautions, contact_cautions, shim_cautions
 from assess.workflow.building import GirderModel
 from assess.workflow.lifting import tipping_named
+from assess.workflow.status import known
 from assess.workflow.study import VERSION, Progress, Study, quiet
 from assess.workflow.supports import Supports, acting, kept_fits, supports_of
 from db.errors import BedstoneError
@@ -194,7 +195,7 @@ class _Packed:
         nothing = self._rows(none)
         new, old_seats = self._replaced()
         replaced = evaluate(self.new.effects, model.factors, new, old_seats)
-        before, with_new = _known(_worst(nothing)), _known(_worst(replaced))
+        before, with_new = known(_worst(nothing)), known(_worst(replaced))
         reason, heights, bound = None, none, None
         if before is None:
             reason = "no section of it has a resistance in the bridge file"
@@ -213,7 +214,7 @@ class _Packed:
                 for support, h in zip(model.doc.supports, heights, strict=True)
             ],
             worst_utilisation_before=before,
-            worst_utilisation_after=None if reason else _known(_worst(shimmed)),
+            worst_utilisation_after=None if reason else known(_worst(shimmed)),
             worst_utilisation_replaced=with_new,
             worst_utilisation_unrounded=bound,
             stages=[] if reason else self._stages(heights),
@@ -235,9 +236,9 @@ class _Packed:
             effect=check.effect,
             span=check.span + 1 if check.span >= 0 else None,
             support=self.model.doc.supports[check.support].id if check.support >= 0 else None,
-            nothing=_known(nothing[i].case.utilisation),
-            shimmed=_known(shimmed[i].case.utilisation) if shimmed else None,
-            replaced=_known(replaced[i].case.utilisation),
+            nothing=known(nothing[i].case.utilisation),
+            shimmed=known(shimmed[i].case.utilisation) if shimmed else None,
+            replaced=known(replaced[i].case.utilisation),
         )
 
     def _reactions(self, heights: Floats, replaced: tuple[Floats, Floats]) -> list[ShimReaction]:
@@ -303,7 +304,3 @@ def _worst(rows: Sequence[Row]) -> float:
     """The worst utilisation of rows that have one; NaN where none has."""
     used = [row.case.utilisation for row in rows if np.isfinite(row.case.utilisation)]
     return max(used, default=np.nan)
-
-
-def _known(value: float) -> float | None:
-    return value if np.isfinite(value) else None

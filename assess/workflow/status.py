@@ -1,6 +1,8 @@
-"""Status words for a utilisation."""
+"""Values as results say them: what is not determined is None; status words for a utilisation."""
 
 from __future__ import annotations
+
+import math
 
 WATCH, LIMIT = 0.9, 1.0
 
@@ -10,3 +12,8 @@ def status_of(utilisation: float | None) -> str:
     if utilisation is None:
         return "unknown"
     return "over" if utilisation >= LIMIT else "watch" if utilisation >= WATCH else "within"
+
+
+def known(value: float) -> float | None:
+    """A value as results say it: None for what is not determined."""
+    return float(value) if math.isfinite(value) else None
